@@ -1,0 +1,33 @@
+/** The plan of focus layers: plain data shared by the stages after it, the report and the window. */
+
+/** A stretch of an element's copper that one layer writes: `from ≤ c ≤ to`, where c is the cut coordinate. */
+export interface Run {
+  /** Index into `Copper.elements`. */
+  element: number;
+  /** What the cut coordinate is: arc length along the trace, or bench height at stage offset 0. */
+  by: 'along' | 'height';
+  /** Limits with the stitch on; -Infinity and +Infinity where nothing is cut. mm. */
+  from: number;
+  to: number;
+}
+
+export interface Layer {
+  /** Number in writing order, from 1. */
+  index: number;
+  /** Bench height in focus while the layer is written, mm. */
+  focusHeight: number;
+  /** Stage offset, mm, up positive: always -focusHeight, whichever axis moves. */
+  stageOffset: number;
+  runs: Run[];
+  /** Largest |defocus| of the layer's copper, mm. */
+  worstDefocus: number;
+}
+
+export interface SetupPlan {
+  /** Index into `project.setups`. */
+  setup: number;
+  name: string;
+  layers: Layer[];
+  /** Copper that no layer writes: runs with the reason. */
+  unreached: (Run & { length: number })[];
+}
