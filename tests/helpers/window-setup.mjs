@@ -7,5 +7,9 @@ export default function setup() {
   process.env.ELECTRON_EXE = electronExe();
   if (process.env.BEAMDRAPE_BUILT === '1') return;
   const root = fileURLToPath(new URL('../..', import.meta.url));
-  execFileSync('npm', ['run', '--silent', 'build'], { cwd: root, stdio: ['ignore', 'ignore', 'inherit'], shell: process.platform === 'win32' });
+  execFileSync('npm', ['run', '--silent', 'build'], {
+    cwd: root,
+    stdio: ['ignore', 'ignore', 'inherit'],
+    shell: process.platform === 'win32',
+  });
 }
