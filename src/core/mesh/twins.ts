@@ -18,8 +18,8 @@ export function pairEdges(triangles: Uint32Array, vertices: number): Edges {
   for (let h = 0; h < n; h++) {
     const a = triangles[h];
     const b = triangles[h % 3 === 2 ? h - 2 : h + 1];
-    low[h] = a < b ? a : b;
-    high[h] = a < b ? b : a;
+    low[h] = Math.min(a, b);
+    high[h] = Math.max(a, b);
     start[low[h] + 1]++;
   }
   for (let v = 0; v < vertices; v++) start[v + 1] += start[v];
