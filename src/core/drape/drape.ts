@@ -1,0 +1,86 @@
+/** Circuit + part → copper on the surface. */
+import { InputError, type InputProblem } from '../base/news.ts';
+import type { RunContext } from '../base/run-context.ts';
+import { WindowSolver } from '../geodesic/windows.ts';
+import type { SurfaceQueries } from '../mesh/queries.ts';
+import type { SurfaceMesh } from '../mesh/surface-mesh.ts';
+import type { Element, Project } from '../project/schema.ts';
+import type { Copper } from './copper.ts';
+import type { Draped, DrapeFinding } from './element.ts';
+import { drapePad } from './pad.ts';
+import { drapeRegion } from './region.ts';
+import { type Place, pull } from './route.ts';
+import { drapeTrace } from './trace.ts';
+
+/** The part as draping needs it. */
+export interface DrapePart {
+  mesh: SurfaceMesh;
+  queries: SurfaceQueries;
+}
+
+/** Prepared for one part: draping many elements shares its solvers. */
+export interface Draper {
+  part: DrapePart;
+  solver: WindowSolver;
+  /** A second one, for a field that is read while the first still holds another. */
+  second: WindowSolver;
+}
+
+export const prepareDraper = (part: DrapePart): Draper => ({ part, solver: new WindowSolver(part.mesh), second: new WindowSolver(part.mesh) });
+
+export interface CircuitDraped {
+  copper: Copper;
+  findings: DrapeFinding[];
+}
+
+/**
+ * Lays every element of the circuit on the part.
+ * @throws InputError `far-from-surface` with every point that is, `drawing-not-read` for drapes of drawings
+ */
+export function drapeCircuit(project: Project, file: string, part: DrapePart, ctx: RunContext): CircuitDraped {
+  const draper = prepareDraper(part);
+  checkPlaces(project, file, draper);
+  const copper: Copper = { elements: [] };
+  const findings: DrapeFinding[] = [];
+  const { elements } = project.circuit;
+  elements.forEach((element, i) => {
+    ctx.step('drape', i, elements.length);
+    const draped = drapeElement(draper, element, `$.circuit.elements[${i}]`, file);
+    if (draped.element) copper.elements.push(draped.element);
+    findings.push(...draped.findings);
+  });
+  ctx.step('drape', elements.length, elements.length);
+  return { copper, findings };
+}
+
+/** One element. @throws InputError `far-from-surface` */
+export function drapeElement(draper: Draper, element: Element, path: string, file: string): Draped {
+  const { solver } = draper;
+  const places = placesOf(draper, element, path, file);
+  if (element.kind === 'trace') return drapeTrace(solver, element, places);
+  if (element.kind === 'pad') return drapePad(solver, element, places[0]);
+  return drapeRegion(solver, draper.second, element, places);
+}
+
+function placesOf(draper: Draper, element: Element, path: string, file: string): Place[] {
+  const { mesh, queries } = draper.part;
+  if (element.kind === 'pad') return [pull(queries, mesh, element.at, { file, place: `${path}.at` })];
+  const [list, name] = element.kind === 'trace' ? [element.route, 'route'] : [element.outline, 'outline'];
+  return list.map((p, i) => pull(queries, mesh, p.at, { file, place: `${path}.${name}[${i}].at` }));
+}
+
+/** Names every bad point of the file at once, before any work is done. */
+export function checkPlaces(project: Project, file: string, draper: Draper): void {
+  const problems: InputProblem[] = [];
+  if (project.circuit.drapes.length > 0)
+    problems.push({ code: 'drawing-not-read', file, place: '$.circuit.drapes[0]', problem: 'this release does not read drawings', mend: 'draw the circuit as elements' });
+  project.circuit.elements.forEach((element, i) => {
+    try {
+      placesOf(draper, element, `$.circuit.elements[${i}]`, file);
+    } catch (error) {
+      if (!(error instanceof InputError)) throw error;
+      problems.push(...error.problems);
+    }
+  });
+  if (problems.length > 0) throw new InputError(problems[0], ...problems.slice(1));
+}

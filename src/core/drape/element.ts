@@ -1,0 +1,48 @@
+/** What every kind of element does once its fields are known: patch, copper, outline. */
+import type { Vec3 } from '../base/vec.ts';
+import type { SurfaceMesh } from '../mesh/surface-mesh.ts';
+import type { CopperElement, FieldPatch, Patch } from './copper.ts';
+import { alongLine, clipBelow, levelLines, patchArea } from './level-lines.ts';
+import { type FieldValue, refine } from './refine.ts';
+
+/** Longest patch edge where an outline crosses, mm: a round of radius 0.3 mm is then true to 1 µm (sagitta). */
+export const FINE = 0.05;
+
+export interface Laid {
+  field: FieldPatch;
+  copper: Patch;
+  outline: Float64Array[];
+  area: number;
+}
+
+/**
+ * @param faces    faces that may hold copper
+ * @param evaluate fields at a place of a face
+ * @param coarse   longest patch edge inside the copper, mm: the sampling step
+ */
+export function layOut(mesh: SurfaceMesh, faces: Iterable<number>, evaluate: (face: number, p: Vec3) => FieldValue, coarse: number): Laid {
+  const field = refine(mesh, faces, evaluate, { fine: Math.min(FINE, coarse), coarse });
+  const copper = clipBelow(field, field.edge, 0);
+  const outline = levelLines(field, field.edge, 0).map((line) => {
+    const points = alongLine(line, field.positions, 3);
+    return line.closed ? Float64Array.of(...points, points[0], points[1], points[2]) : points;
+  });
+  return { field, copper, outline, area: patchArea(copper) };
+}
+
+/** Length of a run of points, 3 a point, mm. */
+export function lineLength(points: Float64Array): number {
+  let sum = 0;
+  for (let i = 3; i < points.length; i += 3) sum += Math.hypot(points[i] - points[i - 3], points[i + 1] - points[i - 2], points[i + 2] - points[i - 1]);
+  return sum;
+}
+
+/** What could not be laid on the part: news for the report, not an error of the file. */
+export interface DrapeFinding {
+  rule: 'no-way' | 'no-copper';
+  element: string;
+  at: Vec3;
+  text: string;
+}
+
+export type Draped = { element: CopperElement; findings: DrapeFinding[] } | { element: null; findings: DrapeFinding[] };

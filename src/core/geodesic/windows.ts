@@ -1,0 +1,650 @@
+/**
+ * Exact distances over a polyhedron by window propagation.
+ *
+ * J. Chen and Y. Han, "Shortest paths on a polyhedron", SoCG 1990, with the pruning of S.-Q. Xin and
+ * G.-J. Wang, "Improving Chen and Han's algorithm on the discrete geodesic problem", ACM Trans. Graph.
+ * 28 (2009) 104: windows leave a priority queue in order of their least distance, and one that a vertex
+ * already beats (their filtering theorem) is dropped. Besides points the sources here may be segments
+ * of a path, whose windows carry parallel rays; the theorem needs only that the distance seen through a
+ * window is 1-Lipschitz, which holds for both. With segment sources the result is the exact distance
+ * to a path, its foot on it and its side.
+ */
+import { Fault } from '../base/news.ts';
+import type { Vec3 } from '../base/vec.ts';
+import { faceOf, next, previous, type SurfaceMesh } from '../mesh/surface-mesh.ts';
+import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
+import { KeyHeap, WindowStore } from './window-store.ts';
+
+/** Weight below which a surface point counts as lying on the opposite edge: float32 input cannot mean less. */
+export const ON_EDGE = 1e-10;
+/** A window shorter than this share of its edge is below the rounding of its own ends. */
+const NO_WIDTH = 1e-12;
+/** Share of a distance that rounding may have cost after thousands of unfoldings. */
+const ROUNDING = 1e-12;
+/** How far past its ends a window is still believed to see, as a share of the edge: closes hair cracks between windows. */
+const SEEN = 1e-9;
+/** A vertex whose angles sum to this much over 2π bends shortest paths around it. */
+const SADDLE = 1e-9;
+
+/**
+ * Where windows start. One root serves one face; a source on an edge or a vertex makes one for each
+ * face around it.
+ */
+export interface Root {
+  kind: 'point' | 'segment';
+  /** Number the caller gave to the source. */
+  source: number;
+  face: number;
+  /** Position of the point, or of the segment's start, part frame. */
+  at: Vec3;
+  /** Length already walked before the root (pseudo-sources at vertices). */
+  sigma: number;
+  /** Vertex whose pseudo-source this is, -1 for a true source. */
+  vertex: number;
+  /** Point: angle of the root frame's x axis in the source's polar angle. */
+  offset: number;
+  /** Point at a vertex: 2π over the sum of its angles; 1 elsewhere. */
+  scale: number;
+  /**
+   * Segment: length, arc length at its start, and the side (+1 left, -1 right) its windows run to.
+   * Pseudo-source: `start` and `side` are those of the path that reached its vertex.
+   */
+  length: number;
+  start: number;
+  side: 1 | -1;
+  /** Windows stop at this distance. */
+  radius: number;
+  /** Root frame in the face: origin `at`, x and y axes as part-frame unit vectors. */
+  x: Vec3;
+  y: Vec3;
+}
+
+export interface PointSource {
+  at: SurfacePoint;
+  source: number;
+  radius: number;
+  /** Direction of polar angle 0, part frame, in the plane of `at.face`; default: its first edge. */
+  zero?: Vec3;
+}
+
+export interface SegmentSource {
+  face: number;
+  from: Vec3;
+  to: Vec3;
+  source: number;
+  /** Arc length at `from`. */
+  start: number;
+  radiusLeft: number;
+  radiusRight: number;
+}
+
+/** Only distances below the bound that a straight line still allows are of use: stops a search for one target early. */
+export interface Target {
+  at: SurfacePoint;
+  /** Length of a known path, or Infinity. */
+  bound: number;
+}
+
+/** What ended at the target: a window, or a vertex (through `-2 - vertex`), or the root itself. */
+export interface Arrival {
+  distance: number;
+  window: number;
+  root: number;
+  /** Corner of the target's face from which the last piece runs, -1 where none. */
+  vertex: number;
+}
+
+/** Prepared for one mesh; each `run` starts afresh. Memory that a run touches is bounded by what its windows reach. */
+export class WindowSolver {
+  readonly mesh: SurfaceMesh;
+  windows = new WindowStore();
+  roots: Root[] = [];
+  private heap = new KeyHeap();
+  /** Shortest distance known at a vertex; valid where its stamp is the run's. */
+  private readonly dist: Float64Array;
+  private readonly stamp: Int32Array;
+  /** What gave that distance: window number, or -1 - root. */
+  private readonly via: Int32Array;
+  private run = 0;
+  /** Distance at which a vertex last sent windows out, so that it does so once. */
+  private readonly fanned = new Map<number, number>();
+  private target: { at: SurfacePoint; p: Vec3; vertex: number; best: Arrival } | null = null;
+
+  constructor(mesh: SurfaceMesh) {
+    this.mesh = mesh;
+    const n = mesh.positions.length / 3;
+    this.dist = new Float64Array(n);
+    this.stamp = new Int32Array(n).fill(-1);
+    this.via = new Int32Array(n);
+  }
+
+  /**
+   * Sends windows out from the sources until their radii or the target stop them.
+   * @returns how the target was reached, `distance` Infinity when it was not (or when none was asked)
+   */
+  propagate(points: readonly PointSource[], segments: readonly SegmentSource[] = [], target?: Target): Arrival {
+    this.run++;
+    this.windows.count = 0;
+    this.roots = [];
+    this.heap.size = 0;
+    this.fanned.clear();
+    this.target = target
+      ? {
+          at: target.at,
+          p: positionOf(this.mesh, target.at),
+          vertex: this.vertexAt(target.at),
+          best: { distance: target.bound, window: -1, root: -1, vertex: -1 },
+        }
+      : null;
+    for (const s of points) this.startPoint(s);
+    for (const s of segments) this.startSegment(s);
+    const { windows, heap } = this;
+    while (heap.size > 0) {
+      if (this.target && heap.least >= this.target.best.distance) break;
+      const item = heap.pop();
+      if (item < 0) this.startVertex(-1 - item);
+      else if (windows.alive[item]) this.advance(item);
+    }
+    const best = this.target?.best;
+    return best && (best.window >= 0 || best.root >= 0 || best.vertex >= 0) ? best : { distance: Infinity, window: -1, root: -1, vertex: -1 };
+  }
+
+  /** Distance known at a vertex, Infinity where no window came. */
+  vertexDistance(v: number): number {
+    return this.stamp[v] === this.run ? this.dist[v] : Infinity;
+  }
+
+  /** Window number that reached the vertex, or -1 - root. */
+  vertexVia(v: number): number {
+    return this.via[v];
+  }
+
+  // ---- sources ----------------------------------------------------------------------------------
+
+  private startPoint(s: PointSource): void {
+    const at = positionOf(this.mesh, s.at);
+    const zeros = s.at.bary.map((b) => Math.abs(b) <= ON_EDGE);
+    const n = zeros.filter(Boolean).length;
+    const f = s.at.face;
+    const zero = s.zero ?? this.edgeDirection(3 * f);
+    if (n === 2) {
+      const corner = zeros.indexOf(false);
+      const v = this.mesh.triangles[3 * f + corner];
+      // The fan below is this vertex's own: no second one as a pseudo-source.
+      this.dist[v] = 0;
+      this.stamp[v] = this.run;
+      this.fanned.set(v, 0);
+      this.startFan(3 * f + corner, at, 0, -1, s.source, s.radius, { face: f, zero });
+      return;
+    }
+    const { x, y } = this.frame(f, zero);
+    const root = { kind: 'point' as const, source: s.source, at, sigma: 0, vertex: -1, offset: 0, scale: 1, length: 0, start: 0, side: 1 as const, radius: s.radius };
+    const here = this.roots.push({ ...root, face: f, x, y }) - 1;
+    if (n === 0) {
+      this.seeFromRoot(here, [3 * f, 3 * f + 1, 3 * f + 2]);
+      return;
+    }
+    // On an edge: the face across it sees the point too, in the same frame once unfolded.
+    const h = 3 * f + ((zeros.indexOf(true) + 1) % 3);
+    this.seeFromRoot(here, [next(h), previous(h)]);
+    const t = this.mesh.twin[h];
+    if (t < 0) return;
+    const [ux, uy] = this.unfold(h, x, y);
+    const there = this.roots.push({ ...root, face: faceOf(t), x: ux, y: uy }) - 1;
+    this.seeFromRoot(there, [next(t), previous(t)]);
+  }
+
+  /** Pseudo-source: a vertex around which shortest paths bend. */
+  private startVertex(v: number): void {
+    if (this.fanned.get(v) === this.dist[v]) return;
+    this.fanned.set(v, this.dist[v]);
+    const via = this.via[v];
+    const half = via >= 0 ? this.windows.half[via] : -1;
+    let h = half >= 0 ? previous(half) : -1;
+    if (h < 0) {
+      const f = this.roots[-1 - via].face;
+      h = [3 * f, 3 * f + 1, 3 * f + 2].find((k) => this.mesh.triangles[k] === v) ?? -1;
+    }
+    if (h < 0 || this.mesh.triangles[h] !== v) throw new Fault(`vertex ${v} was not reached through a face that holds it`);
+    const from = via >= 0 ? this.roots[this.windows.root[via]] : this.roots[-1 - via];
+    const at: Vec3 = [this.mesh.positions[3 * v], this.mesh.positions[3 * v + 1], this.mesh.positions[3 * v + 2]];
+    const q = via >= 0 ? this.look(via, at, Infinity)! : this.inRoot(from, at);
+    const side = from.kind === 'segment' || from.vertex >= 0 ? from.side : q[1] < 0 ? -1 : 1;
+    const foot = from.kind === 'segment' ? from.start + q[0] : from.start;
+    this.startFan(h, at, this.dist[v], v, from.source, from.radius, undefined, side, foot);
+  }
+
+  /** One root for each face around the vertex at which half-edge `h` starts. */
+  private startFan(h: number, at: Vec3, sigma: number, vertex: number, source: number, radius: number, zero?: { face: number; zero: Vec3 }, side: 1 | -1 = 1, start = 0): void {
+    const { twin } = this.mesh;
+    // Clockwise to a border, or once around.
+    let first = h;
+    let border = false;
+    for (;;) {
+      const t = twin[first];
+      if (t < 0) {
+        border = true;
+        break;
+      }
+      first = next(t);
+      if (first === h) break;
+    }
+    const halves: number[] = [];
+    const angles: number[] = [];
+    let total = 0;
+    let k = first;
+    for (;;) {
+      halves.push(k);
+      angles.push(total);
+      total += this.cornerAngle(k);
+      const t = twin[previous(k)];
+      if (t < 0 || t === first) break;
+      k = t;
+    }
+    const scale = border ? 1 : (2 * Math.PI) / total;
+    let zeroAngle = 0;
+    if (zero) {
+      const i = halves.findIndex((half) => faceOf(half) === zero.face);
+      const { x, y } = this.frame(zero.face, this.edgeDirection(halves[i]));
+      zeroAngle = angles[i] + Math.atan2(dot(zero.zero, y), dot(zero.zero, x));
+    }
+    halves.forEach((half, i) => {
+      const face = faceOf(half);
+      const { x, y } = this.frame(face, this.edgeDirection(half));
+      const root = this.roots.push({ kind: 'point', source, face, at, sigma, vertex, offset: angles[i] - zeroAngle, scale, length: 0, start, side, radius, x, y }) - 1;
+      this.seeFromRoot(root, [next(half)]);
+    });
+  }
+
+  private startSegment(s: SegmentSource): void {
+    const along: Vec3 = [s.to[0] - s.from[0], s.to[1] - s.from[1], s.to[2] - s.from[2]];
+    const len = Math.hypot(along[0], along[1], along[2]);
+    if (len === 0) return;
+    const { x, y } = this.frame(s.face, along);
+    for (const side of [1, -1] as const) {
+      const radius = side > 0 ? s.radiusLeft : s.radiusRight;
+      if (radius <= 0) continue;
+      const root = this.roots.push({ kind: 'segment', source: s.source, face: s.face, at: s.from, sigma: 0, vertex: -1, offset: 0, scale: 1, length: len, start: s.start, side, radius, x, y }) - 1;
+      this.seeFromRoot(root, [3 * s.face, 3 * s.face + 1, 3 * s.face + 2]);
+    }
+  }
+
+  /** Gives the root's face its vertices, the target if it is there, and a first window on each of `halves`. */
+  private seeFromRoot(rootIndex: number, halves: readonly number[]): void {
+    const root = this.roots[rootIndex];
+    const { mesh } = this;
+    for (let i = 0; i < 3; i++) {
+      const v = mesh.triangles[3 * root.face + i];
+      if (v === root.vertex) continue;
+      const [qx, qy] = this.inRoot(root, this.position(v));
+      const d = rootDistance(root, qx, qy);
+      if (d < this.vertexDistance(v)) this.reachVertex(v, d, -1 - rootIndex, 3 * root.face + i);
+    }
+    if (this.target && this.target.at.face === root.face) {
+      const [qx, qy] = this.inRoot(root, this.target.p);
+      const d = rootDistance(root, qx, qy);
+      if (d < this.target.best.distance) this.target.best = { distance: d, window: -1, root: rootIndex, vertex: -1 };
+    }
+    for (const h of halves) {
+      const t = mesh.twin[h];
+      if (t < 0) continue;
+      // The twin runs the other way: its start is the end of h.
+      const a = this.position(mesh.triangles[t]);
+      const b = this.position(mesh.triangles[next(t)]);
+      const [ax, ay] = this.inRoot(root, a);
+      const [bx, by] = this.inRoot(root, b);
+      const len = Math.hypot(bx - ax, by - ay);
+      let b0 = 0;
+      let b1 = len;
+      if (root.kind === 'segment') {
+        const clip = clipToStrip(ax, ay, bx, by, root.length, root.side, len);
+        if (!clip) continue;
+        [b0, b1] = clip;
+      }
+      const ex = (bx - ax) / len;
+      const ey = (by - ay) / len;
+      // p in the root frame is q = A + x e + y e⊥, so s = -Rᵀ A.
+      this.open(t, rootIndex, -1, b0, b1, -(ax * ex + ay * ey), -(ay * ex - ax * ey), ex, ey, len);
+    }
+  }
+
+  // ---- windows ----------------------------------------------------------------------------------
+
+  /** Adds a window unless it is out of reach or a vertex beats it, and queues it. */
+  private open(half: number, rootIndex: number, parent: number, b0: number, b1: number, sx: number, sy: number, cos: number, sin: number, len: number): void {
+    if (b0 < 0) b0 = 0;
+    if (b1 > len) b1 = len;
+    if (b1 - b0 <= NO_WIDTH * len) return;
+    const root = this.roots[rootIndex];
+    const least = leastDistance(root, b0, b1, sx, sy, cos, sin);
+    if (least > root.radius) return;
+    const t = this.target;
+    if (t && least >= t.best.distance) return;
+    if (t && least + this.edgeToTarget(half, len, t.p) > t.best.distance * (1 + ROUNDING)) return;
+    if (this.beaten(half, root, b0, b1, sx, sy, cos, sin, len)) return;
+    const w = this.windows.push(half, rootIndex, parent);
+    const n = this.windows.num;
+    const o = 8 * w;
+    n[o] = b0;
+    n[o + 1] = b1;
+    n[o + 2] = sx;
+    n[o + 3] = sy;
+    n[o + 4] = cos;
+    n[o + 5] = sin;
+    n[o + 6] = least;
+    n[o + 7] = len;
+    if (t && t.at.face === faceOf(half)) {
+      const d = this.seen(w, t.p);
+      if (d < t.best.distance) t.best = { distance: d, window: w, root: rootIndex, vertex: -1 };
+    }
+    this.heap.push(w, least);
+  }
+
+  /** Xin and Wang's filtering theorem for the two ends of the edge: is all that the window sees nearer by way of a vertex? */
+  private beaten(half: number, root: Root, b0: number, b1: number, sx: number, sy: number, cos: number, sin: number, len: number): boolean {
+    const { triangles } = this.mesh;
+    const d0 = this.vertexDistance(triangles[half]);
+    const d1 = this.vertexDistance(triangles[next(half)]);
+    const at0 = windowDistance(root, b0, sx, sy, cos, sin);
+    const at1 = windowDistance(root, b1, sx, sy, cos, sin);
+    const slack = ROUNDING * (at0 + at1 + len);
+    return d0 + b1 < at1 - slack || d1 + (len - b0) < at0 - slack;
+  }
+
+  /** Cuts a window at the two far edges of the face it enters. */
+  private advance(w: number): void {
+    const { windows, mesh } = this;
+    const o = 8 * w;
+    let n = windows.num;
+    const b0 = n[o], b1 = n[o + 1], sx = n[o + 2], sy = n[o + 3], cos = n[o + 4], sin = n[o + 5], len = n[o + 7];
+    const half = windows.half[w];
+    const rootIndex = windows.root[w];
+    const root = this.roots[rootIndex];
+    if (this.beaten(half, root, b0, b1, sx, sy, cos, sin, len)) {
+      windows.alive[w] = 0;
+      return;
+    }
+    const hr = next(half);
+    const hl = previous(half);
+    const [cx, cy] = this.apex(half, len);
+    if (cy <= 0) return;
+    // Bounding rays.
+    let d0x: number, d0y: number, d1x: number, d1y: number;
+    if (root.kind === 'point') {
+      d0x = b0 - sx;
+      d0y = -sy;
+      d1x = b1 - sx;
+      d1y = -sy;
+    } else {
+      d0x = d1x = sin * root.side;
+      d0y = d1y = cos * root.side;
+    }
+    const left = d0x * cy - d0y * (cx - b0); // > 0: the apex lies left of the left ray
+    const right = d1x * cy - d1y * (cx - b1); // < 0: right of the right ray
+    const reach0 = ROUNDING * (Math.abs(d0x) + Math.abs(d0y)) * (cy + len);
+    const reach1 = ROUNDING * (Math.abs(d1x) + Math.abs(d1y)) * (cy + len);
+    const seesApex = left <= reach0 && right >= -reach1;
+    if (seesApex) {
+      const v = mesh.triangles[hl];
+      const d = pointDistance(root, cx, cy, sx, sy, cos, sin);
+      if (d < this.vertexDistance(v) && d <= root.radius) this.reachVertex(v, d, w, hl);
+    }
+    const la = Math.hypot(cx, cy);
+    const lb = Math.hypot(len - cx, cy);
+    const vb = this.vertexDistance(mesh.triangles[hr]);
+    const va = this.vertexDistance(mesh.triangles[half]);
+    n = windows.num;
+    if (left <= 0) {
+      // Some rays pass left of the apex: onto the edge from a to c.
+      const t = mesh.twin[hl];
+      if (t >= 0) {
+        const ex = cx / la, ey = cy / la;
+        const t0 = b0 <= 0 ? 0 : crossing(b0, 0, d0x, d0y, ex, ey, 0);
+        const t1 = right >= 0 ? la : crossing(b1, 0, d1x, d1y, ex, ey, la);
+        const a0x = t0 * ex, a0y = t0 * ey;
+        const d = pointDistance(root, a0x, a0y, sx, sy, cos, sin);
+        if (!(vb + Math.hypot(len - a0x, a0y) < d - ROUNDING * (d + len)))
+          this.open(t, rootIndex, w, t0, t1, sx * ex + sy * ey, sy * ex - sx * ey, cos * ex - sin * ey, sin * ex + cos * ey, la);
+      }
+    }
+    if (right >= 0) {
+      // Some pass right of it: onto the edge from c to b.
+      const t = mesh.twin[hr];
+      if (t >= 0) {
+        const ex = (len - cx) / lb, ey = -cy / lb;
+        const t0 = left <= 0 ? 0 : crossing(b0 - cx, -cy, d0x, d0y, ex, ey, 0);
+        const t1 = b1 >= len ? lb : crossing(b1 - cx, -cy, d1x, d1y, ex, ey, lb);
+        const b1x = cx + t1 * ex, b1y = cy + t1 * ey;
+        const d = pointDistance(root, b1x, b1y, sx, sy, cos, sin);
+        const px = sx - cx, py = sy - cy;
+        if (!(va + Math.hypot(b1x, b1y) < d - ROUNDING * (d + len)))
+          this.open(t, rootIndex, w, t0, t1, px * ex + py * ey, py * ex - px * ey, cos * ex - sin * ey, sin * ex + cos * ey, lb);
+      }
+    }
+  }
+
+  private reachVertex(v: number, d: number, via: number, corner: number): void {
+    this.dist[v] = d;
+    this.stamp[v] = this.run;
+    this.via[v] = via;
+    const t = this.target;
+    if (t) {
+      if (t.vertex === v && d < t.best.distance) t.best = { distance: d, window: -1, root: -1, vertex: v };
+      else if (t.vertex < 0 && this.cornerOf(t.at.face, v)) {
+        // By way of the corner: never shorter than the true distance, and there whatever rounding does to windows.
+        const p = this.position(v);
+        const last = Math.hypot(p[0] - t.p[0], p[1] - t.p[1], p[2] - t.p[2]);
+        if (d + last < t.best.distance) t.best = { distance: d + last, window: -1, root: -1, vertex: v };
+      }
+    }
+    if (this.bends(corner)) this.heap.push(-1 - v, d);
+  }
+
+  private cornerOf(face: number, v: number): boolean {
+    const { triangles } = this.mesh;
+    return triangles[3 * face] === v || triangles[3 * face + 1] === v || triangles[3 * face + 2] === v;
+  }
+
+  /** Whether shortest paths may turn at the vertex where half-edge `h` starts: a saddle, or on a border. */
+  private bends(h: number): boolean {
+    const { twin } = this.mesh;
+    let total = 0;
+    let k = h;
+    do {
+      total += this.cornerAngle(k);
+      k = twin[previous(k)];
+      if (k < 0) return true;
+    } while (k !== h);
+    return total > 2 * Math.PI + SADDLE;
+  }
+
+  // ---- seeing -----------------------------------------------------------------------------------
+
+  /** Distance to `p` (in the face the window enters) through window w; Infinity when w does not see it. */
+  seen(w: number, p: Vec3): number {
+    const q = this.look(w, p);
+    return q ? rootDistance(this.roots[this.windows.root[w]], q[0], q[1]) : Infinity;
+  }
+
+  /** Where window w sees `p`, in its root's frame; null when it does not. */
+  look(w: number, p: Vec3, tolerance = SEEN): [number, number] | null {
+    const { windows } = this;
+    const n = windows.num;
+    const o = 8 * w;
+    const [x, y] = this.inHalf(windows.half[w], p, n[o + 7]);
+    const sx = n[o + 2], sy = n[o + 3], cos = n[o + 4], sin = n[o + 5];
+    const root = this.roots[windows.root[w]];
+    // Where the ray to p crosses the edge.
+    let cross: number;
+    if (root.kind === 'point') cross = y - sy > 0 ? sx + ((x - sx) * -sy) / (y - sy) : x;
+    else {
+      const dy = cos * root.side;
+      if (dy <= 0) return null;
+      cross = x - (sin * root.side * y) / dy;
+    }
+    const slack = tolerance * n[o + 7];
+    if (cross < n[o] - slack || cross > n[o + 1] + slack) return null;
+    const px = x - sx, py = y - sy;
+    return [cos * px - sin * py, sin * px + cos * py];
+  }
+
+  /** Coordinates of `p` in the root's frame, for a p in the root's face. */
+  inRoot(root: Root, p: Vec3): [number, number] {
+    const dx = p[0] - root.at[0], dy = p[1] - root.at[1], dz = p[2] - root.at[2];
+    return [dx * root.x[0] + dy * root.x[1] + dz * root.x[2], dx * root.y[0] + dy * root.y[1] + dz * root.y[2]];
+  }
+
+  /** Place on window w's edge where the straight line to root-frame point (qx, qy) crosses it, as a length from the edge's start. */
+  crossingTo(w: number, qx: number, qy: number): number {
+    const n = this.windows.num;
+    const o = 8 * w;
+    const sx = n[o + 2], sy = n[o + 3], cos = n[o + 4], sin = n[o + 5];
+    const px = cos * qx + sin * qy, py = -sin * qx + cos * qy; // p - s
+    const root = this.roots[this.windows.root[w]];
+    let x: number;
+    if (root.kind === 'point') x = py > 0 ? sx + (px * -sy) / py : sx + px;
+    else x = sx + px - (sin / cos) * (py + sy);
+    return Math.min(n[o + 1], Math.max(n[o], x));
+  }
+
+  // ---- geometry of faces ------------------------------------------------------------------------
+
+  position(v: number): Vec3 {
+    const x = this.mesh.positions;
+    return [x[3 * v], x[3 * v + 1], x[3 * v + 2]];
+  }
+
+  private edgeDirection(h: number): Vec3 {
+    const a = this.position(this.mesh.triangles[h]);
+    const b = this.position(this.mesh.triangles[next(h)]);
+    return [b[0] - a[0], b[1] - a[1], b[2] - a[2]];
+  }
+
+  /** Third corner in the local frame of half-edge h. */
+  private apex(h: number, len: number): [number, number] {
+    const { positions: x, triangles: t } = this.mesh;
+    const a = 3 * t[h], b = 3 * t[next(h)], c = 3 * t[previous(h)];
+    const ux = x[b] - x[a], uy = x[b + 1] - x[a + 1], uz = x[b + 2] - x[a + 2];
+    const vx = x[c] - x[a], vy = x[c + 1] - x[a + 1], vz = x[c + 2] - x[a + 2];
+    const nx = uy * vz - uz * vy, ny = uz * vx - ux * vz, nz = ux * vy - uy * vx;
+    return [(ux * vx + uy * vy + uz * vz) / len, Math.hypot(nx, ny, nz) / len];
+  }
+
+  /** `p` of the face of h in h's local frame. */
+  private inHalf(h: number, p: Vec3, len: number): [number, number] {
+    const { positions: x, triangles: t } = this.mesh;
+    const a = 3 * t[h], b = 3 * t[next(h)], c = 3 * t[previous(h)];
+    const ux = (x[b] - x[a]) / len, uy = (x[b + 1] - x[a + 1]) / len, uz = (x[b + 2] - x[a + 2]) / len;
+    const vx = x[c] - x[a], vy = x[c + 1] - x[a + 1], vz = x[c + 2] - x[a + 2];
+    const along = ux * vx + uy * vy + uz * vz;
+    let wx = vx - along * ux, wy = vy - along * uy, wz = vz - along * uz;
+    const l = Math.hypot(wx, wy, wz);
+    wx /= l;
+    wy /= l;
+    wz /= l;
+    const px = p[0] - x[a], py = p[1] - x[a + 1], pz = p[2] - x[a + 2];
+    return [px * ux + py * uy + pz * uz, px * wx + py * wy + pz * wz];
+  }
+
+  private cornerAngle(h: number): number {
+    const { positions: x, triangles: t } = this.mesh;
+    const a = 3 * t[h], b = 3 * t[next(h)], c = 3 * t[previous(h)];
+    const ux = x[b] - x[a], uy = x[b + 1] - x[a + 1], uz = x[b + 2] - x[a + 2];
+    const vx = x[c] - x[a], vy = x[c + 1] - x[a + 1], vz = x[c + 2] - x[a + 2];
+    const nx = uy * vz - uz * vy, ny = uz * vx - ux * vz, nz = ux * vy - uy * vx;
+    return Math.atan2(Math.hypot(nx, ny, nz), ux * vx + uy * vy + uz * vz);
+  }
+
+  /** Axes in the face's plane: x along `direction`, y a quarter turn on, seen from outside. */
+  private frame(face: number, direction: Vec3): { x: Vec3; y: Vec3 } {
+    const u = this.edgeDirection(3 * face);
+    const v = this.edgeDirection(3 * face + 2);
+    const nx = v[1] * u[2] - v[2] * u[1], ny = v[2] * u[0] - v[0] * u[2], nz = v[0] * u[1] - v[1] * u[0];
+    const nl = Math.hypot(nx, ny, nz);
+    const n: Vec3 = [nx / nl, ny / nl, nz / nl];
+    const off = dot(direction, n);
+    const dx = direction[0] - off * n[0], dy = direction[1] - off * n[1], dz = direction[2] - off * n[2];
+    const dl = Math.hypot(dx, dy, dz);
+    const x: Vec3 = [dx / dl, dy / dl, dz / dl];
+    return { x, y: [n[1] * x[2] - n[2] * x[1], n[2] * x[0] - n[0] * x[2], n[0] * x[1] - n[1] * x[0]] };
+  }
+
+  /** Axes of the face of h, turned into the face across h. */
+  private unfold(h: number, x: Vec3, y: Vec3): [Vec3, Vec3] {
+    const t = this.mesh.twin[h];
+    const here = this.frame(faceOf(h), this.edgeDirection(h));
+    const e = this.edgeDirection(h);
+    const there = this.frame(faceOf(t), e);
+    const turn = (v: Vec3): Vec3 => {
+      const a = dot(v, here.x), b = dot(v, here.y);
+      return [a * there.x[0] + b * there.y[0], a * there.x[1] + b * there.y[1], a * there.x[2] + b * there.y[2]];
+    };
+    return [turn(x), turn(y)];
+  }
+
+  private edgeToTarget(half: number, len: number, p: Vec3): number {
+    const { positions: x, triangles: t } = this.mesh;
+    const a = 3 * t[half], b = 3 * t[next(half)];
+    const d = Math.hypot(p[0] - (x[a] + x[b]) / 2, p[1] - (x[a + 1] + x[b + 1]) / 2, p[2] - (x[a + 2] + x[b + 2]) / 2);
+    return Math.max(0, d - len / 2);
+  }
+
+  private vertexAt(p: SurfacePoint): number {
+    const corner = p.bary.findIndex((b) => Math.abs(b - 1) <= ON_EDGE);
+    return corner < 0 ? -1 : this.mesh.triangles[3 * p.face + corner];
+  }
+}
+
+const dot = (a: Vec3, b: Vec3): number => a[0] * b[0] + a[1] * b[1] + a[2] * b[2];
+
+/** Length t along unit direction e, from the edge's start, of its crossing with the ray P + k d; `parallel` when they never meet. */
+function crossing(px: number, py: number, dx: number, dy: number, ex: number, ey: number, parallel: number): number {
+  const den = ex * dy - ey * dx;
+  return den === 0 ? parallel : (px * dy - py * dx) / den;
+}
+
+/** Distance that a root-frame point stands for; Infinity where a segment has no foot for it. */
+export function rootDistance(root: Root, qx: number, qy: number): number {
+  if (root.kind === 'point') return root.sigma + Math.hypot(qx, qy);
+  const slack = SEEN * root.length;
+  return qx < -slack || qx > root.length + slack || qy * root.side < -slack ? Infinity : Math.abs(qy);
+}
+
+function pointDistance(root: Root, x: number, y: number, sx: number, sy: number, cos: number, sin: number): number {
+  return root.kind === 'point' ? root.sigma + Math.hypot(x - sx, y - sy) : Math.abs(sin * (x - sx) + cos * (y - sy));
+}
+
+const windowDistance = (root: Root, x: number, sx: number, sy: number, cos: number, sin: number): number =>
+  pointDistance(root, x, 0, sx, sy, cos, sin);
+
+function leastDistance(root: Root, b0: number, b1: number, sx: number, sy: number, cos: number, sin: number): number {
+  if (root.kind === 'point') {
+    const x = sx < b0 ? b0 : sx > b1 ? b1 : sx;
+    return root.sigma + Math.hypot(x - sx, sy);
+  }
+  return Math.min(windowDistance(root, b0, sx, sy, cos, sin), windowDistance(root, b1, sx, sy, cos, sin));
+}
+
+/**
+ * Part of the edge A → B (root frame of a segment, half-edge of the far face) whose feet lie on the segment and
+ * which lies on the asked side, as lengths from A. An edge that the segment runs along belongs to the side beyond it.
+ */
+function clipToStrip(ax: number, ay: number, bx: number, by: number, length: number, side: number, len: number): [number, number] | null {
+  const slack = SEEN * (length + len);
+  let t0 = 0;
+  let t1 = 1;
+  const cut = (fa: number, fb: number): boolean => {
+    // Keeps where fa + t (fb - fa) >= 0.
+    if (fa < 0 && fb < 0) return false;
+    if (fa < 0) t0 = Math.max(t0, fa / (fa - fb));
+    else if (fb < 0) t1 = Math.min(t1, fa / (fa - fb));
+    return t0 < t1;
+  };
+  if (!cut(ax, bx) || !cut(length - ax, length - bx)) return null;
+  if (Math.abs(ay) <= slack && Math.abs(by) <= slack) {
+    // The far face lies left of A → B: to the segment's left when both run the same way.
+    return bx - ax > 0 === side > 0 ? [t0 * len, t1 * len] : null;
+  }
+  if (!cut(ay * side, by * side)) return null;
+  return [t0 * len, t1 * len];
+}
