@@ -1,0 +1,70 @@
+/** Reads from disk what a job needs: the project, its part, its drawings. */
+import { readFile } from 'node:fs/promises';
+import { dirname, isAbsolute, join } from 'node:path';
+import { InputError } from '../core/base/news.ts';
+import { type ReadProject, readProject } from '../core/project/read.ts';
+
+/** A file that the project names, under the name that the project gives it. */
+export interface NamedFile {
+  file: string;
+  bytes: Uint8Array;
+}
+
+export interface ProjectFiles extends ReadProject {
+  projectFile: string;
+  projectText: string;
+  part: NamedFile;
+  /** Drawings and netlist. */
+  others: NamedFile[];
+}
+
+/** @throws InputError `cannot-read`, and what `readProject` throws */
+export async function readProjectFiles(projectFile: string): Promise<ProjectFiles> {
+  const projectText = new TextDecoder().decode(await readInput(projectFile, '', projectFile));
+  const { project, unknown } = readProject(projectText, projectFile);
+  const beside = (file: string): string => (isAbsolute(file) ? file : join(dirname(projectFile), file));
+  const get = async (file: string, place: string): Promise<NamedFile> => ({
+    file,
+    bytes: await readInput(beside(file), place, projectFile),
+  });
+  const part = await get(project.part.file, '$.part.file');
+  const others = new Map<string, NamedFile>();
+  for (const [i, drape] of project.circuit.drapes.entries())
+    others.set(drape.drawing, await get(drape.drawing, `$.circuit.drapes[${i}].drawing`));
+  if (project.netlist !== undefined) others.set(project.netlist, await get(project.netlist, '$.netlist'));
+  return { project, unknown, projectFile, projectText, part, others: [...others.values()] };
+}
+
+/** @param place  where `namedBy` names the file; empty when the person named it */
+export async function readInput(path: string, place: string, namedBy: string): Promise<Uint8Array> {
+  try {
+    const bytes = await readFile(path);
+    // A copy of its own: a small file otherwise shares a buffer with others and cannot be handed to a thread.
+    return Uint8Array.from(bytes);
+  } catch (error) {
+    const code = (error as { code?: string }).code;
+    const why =
+      code === 'ENOENT' || code === 'ENOTDIR'
+        ? 'there is no such file'
+        : code === 'EISDIR'
+          ? 'this is a folder, not a file'
+          : code === 'EACCES' || code === 'EPERM'
+            ? 'reading it is not allowed'
+            : `it cannot be read (${(error as Error).message})`;
+    if (place === '')
+      throw new InputError({
+        code: 'cannot-read',
+        file: path,
+        place: '',
+        problem: why,
+        mend: 'check the name',
+      });
+    throw new InputError({
+      code: 'cannot-read',
+      file: namedBy,
+      place,
+      problem: `${path}: ${why}`,
+      mend: 'give the path relative to the project file',
+    });
+  }
+}

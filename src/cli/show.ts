@@ -1,0 +1,183 @@
+/** Results in words and tables, for a person at the laser bench. */
+import type { ElementReport, Report } from '../core/project/report.ts';
+import { counted, duration, facts, fixed, grouped, signed, table } from './table.ts';
+
+/** `inspect`: the part alone. */
+export function showPart(file: string, part: Report['part'], trailingBytes: number): string {
+  const size = [0, 1, 2].map((k) => fixed(part.bounds[1][k] - part.bounds[0][k], 2)).join(' × ');
+  const corner = (k: 0 | 1): string => part.bounds[k].map((v) => fixed(v, 2)).join(', ');
+  const rows: [string, string][] = [
+    ['triangles', grouped(part.triangles)],
+    ['vertices', grouped(part.vertices)],
+    ['pieces', `${part.pieces}, ${part.closed ? 'all closed' : 'not all closed: the surface has borders'}`],
+    ['size', `${size} mm`],
+    ['from … to', `(${corner(0)}) … (${corner(1)})`],
+    ['area', `${fixed(part.area, 1)} mm²`],
+    [
+      'volume',
+      part.closed ? `${fixed(part.volume, 1)} mm³` : `${fixed(part.volume, 1)} mm³ in closed pieces`,
+    ],
+    ['mended', mendedWords(part.mended) || 'nothing'],
+  ];
+  if (trailingBytes > 0)
+    rows.push(['not read', `${counted(trailingBytes, 'byte', 'bytes')} after the last facet`]);
+  return `${file}\n${facts(rows)}\n`;
+}
+
+function mendedWords(m: Report['part']['mended']): string {
+  const words: string[] = [];
+  if (m.welded) words.push(`${counted(m.welded, 'vertex', 'vertices')} joined to a near one`);
+  if (m.degenerate) words.push(`${counted(m.degenerate, 'facet', 'facets')} of no area left out`);
+  if (m.duplicate) words.push(`${counted(m.duplicate, 'facet', 'facets')} drawn twice left out`);
+  if (m.flipped) words.push(`${counted(m.flipped, 'facet', 'facets')} turned over`);
+  if (m.nonManifoldEdges)
+    words.push(`${counted(m.nonManifoldEdges, 'edge', 'edges')} of more than two facets taken as borders`);
+  return words.join(', ');
+}
+
+/** `check`: every element against every check, then the shop rules. */
+export function showCheck(report: Report): string {
+  const rows = report.elements.map((e) => [
+    e.id,
+    e.net || '–',
+    fixed(e.length, 1),
+    mark(e.incidence.ok, `${fixed(e.incidence.worst, 1)}°`),
+    mark(e.shade.ok, `${fixed(100 * e.shade.share, 1)} %`),
+    mark(e.field.ok, `${fixed(100 * e.field.worst, 0)} %`),
+    mark(e.dose.ok, `${fixed(e.dose.min, 2)} … ${fixed(e.dose.max, 2)}`),
+  ]);
+  return [
+    headline(report),
+    ...unknownLines(report),
+    '',
+    rows.length
+      ? table(['element', 'net', 'mm', 'angle', 'shaded', 'of field', 'dose J/cm²'], rows)
+      : '  The circuit has no copper.',
+    '',
+    rulesBlock(report),
+    '',
+  ].join('\n');
+}
+
+/** `run` and `demo`: the job in the order a person does it. */
+export function showRun(report: Report, dir: string): string {
+  const lines = [headline(report), ...unknownLines(report), ''];
+  const mended = mendedWords(report.part.mended);
+  const size = [0, 1, 2]
+    .map((k) => fixed(report.part.bounds[1][k] - report.part.bounds[0][k], 1))
+    .join(' × ');
+  const spot = `${fixed(2 * report.beam.waistRadius_um, 0)} µm in focus${report.beam.truncated ? ', the beam is clipped by the aperture' : ''}`;
+  lines.push(
+    facts([
+      [
+        'part',
+        `${counted(report.part.triangles, 'triangle', 'triangles')}, ${size} mm${mended ? `; mended: ${mended}` : ''}`,
+      ],
+      ['spot', spot],
+      ['depth of focus', `±${fixed(report.beam.halfDepth, 2)} mm`],
+    ]),
+    '',
+  );
+  for (const setup of report.setups) lines.push(setupBlock(setup), '');
+  lines.push(unwritten(report), '', rulesBlock(report), '', proofBlock(report), '');
+  lines.push(`Job sheet: ${dir.replace(/\/$/, '')}/sheet.html`, '');
+  return lines.join('\n');
+}
+
+function headline(report: Report): string {
+  const layers = report.setups.reduce((n, s) => n + s.layers.length, 0);
+  const what = layers > 0 ? `${counted(layers, 'focus layer', 'focus layers')}; ` : '';
+  return `${report.project}: ${what}${report.ok ? 'every check holds' : 'NOT EVERY CHECK HOLDS'}.`;
+}
+
+const unknownLines = (report: Report): string[] =>
+  report.unknownFields.length
+    ? [`Not understood, kept as they are: ${report.unknownFields.join(', ')}.`]
+    : [];
+
+function setupBlock(setup: Report['setups'][number]): string {
+  if (setup.layers.length === 0) return `Setup "${setup.name}" has nothing to write.`;
+  const moves = setup.layers[0].zMoves;
+  const up =
+    moves === 'stage'
+      ? 'positive lifts the part toward the head'
+      : 'positive lifts the head away from the part';
+  const rows = setup.layers.map((l) => [
+    String(l.index),
+    signed(l.zOffset, 3),
+    `${fixed(l.heights[0], 2)} … ${fixed(l.heights[1], 2)}`,
+    fixed(l.worstDefocus, 2),
+    fixed(l.copperArea, 1),
+    fixed(l.markLength, 0),
+    duration(l.time),
+    l.files[0] ?? '',
+  ]);
+  return [
+    `Setup "${setup.name}": the ${moves} moves; ${up}.`,
+    table(['layer', 'set Z mm', 'copper at heights', 'defocus', 'mm²', 'mark mm', 'time', 'file'], rows),
+  ].join('\n');
+}
+
+function unwritten(report: Report): string {
+  const rows: string[][] = [];
+  for (const c of report.collisions)
+    rows.push([
+      `layer ${c.layer}`,
+      `the part would meet the lens: it stands ${fixed(c.height, 2)} mm above the focal plane`,
+      where(c.at),
+    ]);
+  for (const e of report.elements)
+    for (const [reason, at] of reasons(e)) rows.push([e.id, reason, where(at)]);
+  for (const id of report.unreached.elements)
+    if (!rows.some((r) => r[0] === id)) rows.push([id, 'no layer reaches all of it', '']);
+  if (rows.length === 0) return 'Everything can be written.';
+  const lost =
+    report.unreached.length > 0 ? ` (${fixed(report.unreached.length, 1)} mm are in no layer)` : '';
+  return `Cannot be written as drawn${lost}:\n${table(['element', 'why', 'worst at x, y, z'], rows)}`;
+}
+
+function reasons(e: ElementReport): [string, readonly number[] | undefined][] {
+  const out: [string, readonly number[] | undefined][] = [];
+  if (!e.focus.ok) out.push([`out of focus: ${fixed(e.focus.worst, 2)} mm off`, e.focus.at]);
+  if (!e.incidence.ok) out.push([`too oblique: ${fixed(e.incidence.worst, 1)}°`, e.incidence.at]);
+  if (!e.shade.ok) out.push([`shaded: ${fixed(100 * e.shade.share, 1)} % of its area`, e.shade.at]);
+  if (!e.field.ok)
+    out.push([`outside the field: ${fixed(100 * e.field.worst, 0)} % of half its width`, e.field.at]);
+  if (!e.dose.ok) out.push([`dose ${fixed(e.dose.min, 2)} … ${fixed(e.dose.max, 2)} J/cm²`, e.dose.at]);
+  return out;
+}
+
+function rulesBlock(report: Report): string {
+  if (report.rules.length === 0) return 'Shop rules: nothing to say.';
+  const rows = report.rules.map((r) => [
+    r.level,
+    r.rule,
+    `${fixed(r.value, 3)}`,
+    `${fixed(r.limit, 3)}`,
+    r.elements.join(', '),
+    where(r.at),
+  ]);
+  return `Shop rules:\n${table(['level', 'rule', 'value', 'limit', 'elements', 'at x, y, z'], rows)}`;
+}
+
+/** The verdict of the read-back proof. */
+export function proofBlock(report: Pick<Report, 'proof' | 'elements'>): string {
+  const p = report.proof;
+  if (!p) return 'Proof: there are no files to prove.';
+  const rows: [string, string][] = [
+    ['files read back', String(p.files)],
+    [
+      'covered',
+      `${fixed(100 * p.covered, 2)} % of the drawn copper${p.coveredElement ? `, least in ${p.coveredElement}` : ''}`,
+    ],
+    ['in focus', `${fixed(100 * p.focus, 2)} %`],
+    ['stray', `${fixed(p.stray_mm2, 3)} mm²`],
+    ['opens', p.opens.length ? p.opens.map((o) => o.join(' – ')).join('; ') : 'none'],
+    ['shorts', p.shorts.length ? p.shorts.map((s) => s.join(' – ')).join('; ') : 'none'],
+  ];
+  return `Proof: burnt on the model, the files ${p.ok ? 'give the drawn copper' : 'DO NOT GIVE THE DRAWN COPPER'}.\n${facts(rows)}`;
+}
+
+const mark = (ok: boolean, text: string): string => (ok ? text : `${text} !`);
+const where = (at: readonly number[] | undefined): string =>
+  at ? at.map((v) => fixed(v, 1)).join(', ') : '';
