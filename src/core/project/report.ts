@@ -117,4 +117,6 @@ export interface ProofReport {
   shorts: string[][];
   /** Number of files read back. */
   files: number;
+  /** What is wrong with the set of files itself, a sentence each, such as a file that is missing. Any of them fails. */
+  findings: string[];
 }

@@ -4,8 +4,8 @@
  * raster cells, and a beam has only the triangles of its own cell to look at. Exact, and cheaper than a tree
  * of boxes because all beams of a layer share it.
  *
- * The edge test is the triple product of Plücker coordinates, as in Segura & Feito, "Algorithms to test ray-triangle
- * intersection", WSCG 2001: the two faces of an edge see the same number with the other sign, so no beam slips between.
+ * The edge test shears the beam onto one axis, as in Woop, Benthin & Wald, "Watertight ray/triangle intersection",
+ * JCGT 2 (2013): the two faces of an edge see the same number with the other sign, so no beam slips between.
  */
 import type { Lean } from './forward.ts';
 
@@ -33,7 +33,12 @@ export interface Raster {
  * @param triangles  vertex numbers, 3 a face
  * @param box        least and greatest command X, Y that will be asked for
  */
-export function rasterFaces(standing: Float64Array, triangles: Uint32Array, lean: Lean, box: readonly [number, number, number, number]): Raster {
+export function rasterFaces(
+  standing: Float64Array,
+  triangles: Uint32Array,
+  lean: Lean,
+  box: readonly [number, number, number, number],
+): Raster {
   const vertices = standing.length / 3;
   const cx = new Float64Array(vertices);
   const cy = new Float64Array(vertices);
@@ -106,7 +111,17 @@ function eachCover(
 }
 
 /** Widens `range` by the command X of the edge's first end and of its crossings with the planes Y = bottom and Y = top. */
-function edgeInBand(p: Float64Array, a: number, b: number, cxa: number, cya: number, bottom: number, top: number, lean: Lean, range: [number, number]): void {
+function edgeInBand(
+  p: Float64Array,
+  a: number,
+  b: number,
+  cxa: number,
+  cya: number,
+  bottom: number,
+  top: number,
+  lean: Lean,
+  range: [number, number],
+): void {
   if (cya >= bottom && cya <= top) widen(range, cxa);
   for (let side = 0; side < 2; side++) {
     const Y = side ? top : bottom;
@@ -136,7 +151,15 @@ export interface FirstHit {
  * Highest face on the beam of command (X, Y): the first one met when coming from the head.
  * Equal heights go to the lowest face number. `out` is filled and returned: no object a pulse.
  */
-export function firstFace(r: Raster, p: Float64Array, triangles: Uint32Array, lean: Lean, X: number, Y: number, out: FirstHit): FirstHit {
+export function firstFace(
+  r: Raster,
+  p: Float64Array,
+  triangles: Uint32Array,
+  lean: Lean,
+  X: number,
+  Y: number,
+  out: FirstHit,
+): FirstHit {
   out.face = -1;
   out.d = -Infinity;
   const i = Math.floor((X - r.x0) / r.cell);

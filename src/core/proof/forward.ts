@@ -15,7 +15,13 @@ export interface Lean {
 /** @throws InputError `not-yet` when the head says how its axes really run: that comes with a later version */
 export function leanOf(head: Head, file = 'project'): Lean {
   if (head.axes && Object.keys(head.axes).length > 0)
-    throw new InputError({ code: 'not-yet', file, place: '$.head.axes', problem: 'turned or mirrored field axes cannot be used yet', mend: 'leave axes out and set the axes in the machine' });
+    throw new InputError({
+      code: 'not-yet',
+      file,
+      place: '$.head.axes',
+      problem: 'turned or mirrored field axes cannot be used yet',
+      mend: 'leave axes out and set the axes in the machine',
+    });
   const [px, py] = head.pivot;
   return { kx: px === null ? 0 : 1 / px, ky: py === null ? 0 : 1 / py };
 }

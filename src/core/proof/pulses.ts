@@ -29,7 +29,13 @@ const EDGE_SLACK = 1e-3;
 export function layPulses(path: BurnPath, rate: number, field: readonly [number, number]): Pulses {
   const most = countPulses(path, rate);
   if (most > MOST_PULSES)
-    throw new InputError({ code: 'too-many-pulses', file: path.file, place: '', problem: `its moves hold ${most.toPrecision(2)} pulses`, mend: 'check the speeds in it' });
+    throw new InputError({
+      code: 'too-many-pulses',
+      file: path.file,
+      place: '',
+      problem: `its moves hold ${most.toPrecision(2)} pulses`,
+      mend: 'check the speeds in it',
+    });
   const command = new Float64Array(2 * most);
   const share = new Float32Array(most);
   const [ex, ey] = [field[0] / 2 + EDGE_SLACK, field[1] / 2 + EDGE_SLACK];
@@ -50,7 +56,11 @@ export function layPulses(path: BurnPath, rate: number, field: readonly [number,
 function countPulses(path: BurnPath, rate: number): number {
   let most = 0;
   for (let i = 1; i < path.x.length; i++)
-    if (path.mark[i]) most += Math.floor((Math.hypot(path.x[i] - path.x[i - 1], path.y[i] - path.y[i - 1]) / path.speed[i]) * rate) + 2;
+    if (path.mark[i])
+      most +=
+        Math.floor(
+          (Math.hypot(path.x[i] - path.x[i - 1], path.y[i] - path.y[i - 1]) / path.speed[i]) * rate,
+        ) + 2;
   return most;
 }
 

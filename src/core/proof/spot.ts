@@ -59,7 +59,13 @@ export function activatedHalfWidth(spot: Spot, radius: number, fluence: number):
  * @param cos    of the incidence, which only the mode "dose" looks at
  * @param share  of the average power, which only the mode "dose" looks at
  */
-export function usableDepth(spot: Spot, limits: Limits, material: Material, cos: number, share: number): number {
+export function usableDepth(
+  spot: Spot,
+  limits: Limits,
+  material: Material,
+  cos: number,
+  share: number,
+): number {
   const depth = limits.depth;
   let half: number;
   if (depth.mode === 'distance') half = depth.halfDepth;
@@ -67,7 +73,9 @@ export function usableDepth(spot: Spot, limits: Limits, material: Material, cos:
   else {
     const inFocus = axisFluence(spot, spot.waist, share) * Math.max(0, cos);
     // imaginary root: no depth at all, the dose is too small even in focus
-    half = spot.rayleigh * Math.sqrt(Math.max(0, inFocus / (material.activationFluence * material.doseMargin) - 1));
+    half =
+      spot.rayleigh *
+      Math.sqrt(Math.max(0, inFocus / (material.activationFluence * material.doseMargin) - 1));
   }
   return Math.max(0, half - limits.heightUncertainty);
 }
