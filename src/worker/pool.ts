@@ -75,7 +75,10 @@ export function createPool(threads: number, tasks: TaskTable, spawn: Spawn): Poo
         else if (next === args.length) resolve(results);
       };
       const feed = (s: Slot): void => {
-        if (failed || next === args.length) return settle();
+        if (failed || next === args.length) {
+          settle();
+          return;
+        }
         const index = next++;
         busy++;
         s.broken = (why) => {
