@@ -51,8 +51,8 @@ export interface CopperElement {
   anchor: Vec3;
   /** Fields on a patch that reaches past the edge. */
   field: FieldPatch;
-  /** The copper itself: `field` cut off at the drawn outline. */
-  copper: Patch;
+  /** The copper itself: `field` cut off at the drawn outline; `source` is the triangle of `field` each was cut from. */
+  copper: Patch & { source: Int32Array };
   /** Closed loops of the drawn outline on the surface, 3 a point, copper on the left seen from outside. */
   outline: Float64Array[];
   /** Centre line on the surface (trace), perimeter of the outline otherwise, mm. */

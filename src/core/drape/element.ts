@@ -1,8 +1,8 @@
 /** What every kind of element does once its fields are known: patch, copper, outline. */
 import type { Vec3 } from '../base/vec.ts';
 import type { SurfaceMesh } from '../mesh/surface-mesh.ts';
-import type { CopperElement, FieldPatch, Patch } from './copper.ts';
-import { alongLine, clipBelow, levelLines, patchArea } from './level-lines.ts';
+import type { CopperElement, FieldPatch } from './copper.ts';
+import { alongLine, type ClippedPatch, clipBelow, levelLines, patchArea } from './level-lines.ts';
 import { type FieldValue, refine } from './refine.ts';
 
 /** Longest patch edge where an outline crosses, mm: a round of radius 0.3 mm is then true to 1 µm (sagitta). */
@@ -10,7 +10,7 @@ export const FINE = 0.05;
 
 export interface Laid {
   field: FieldPatch;
-  copper: Patch;
+  copper: ClippedPatch;
   outline: Float64Array[];
   area: number;
 }

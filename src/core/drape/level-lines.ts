@@ -2,7 +2,8 @@
  * Level lines of a field on a patch, and the part of a patch below a level: linear interpolation in each
  * triangle (marching triangles). A vertex exactly on the level counts as outside.
  */
-import type { FieldPatch, Patch } from './copper.ts';
+import { PairMap } from '../base/pair-map.ts';
+import type { Patch } from './copper.ts';
 
 /** A level line: places on edges of the patch, as (vertex, vertex, share of the way) triples. */
 export interface LevelLine {
@@ -29,67 +30,83 @@ export function alongLine(line: LevelLine, values: ArrayLike<number>, stride: nu
 /**
  * Lines where `values` crosses `level`, with the lower side on the left seen from outside the part.
  * Closed lines do not repeat their first point.
+ * @param only  triangles to look at; lines end where they leave them. Default: all
  */
-export function levelLines(patch: Patch, values: Float64Array, level: number): LevelLine[] {
+export function levelLines(patch: Patch, values: Float64Array, level: number, only?: ArrayLike<number>): LevelLine[] {
   const { triangles } = patch;
   const below = (v: number) => values[v] < level;
-  // Each crossed edge a → b (a below, b not) starts or ends one piece; pieces chain over shared edges.
-  const nextOf = new Map<number, number>();
-  const hasBefore = new Set<number>();
-  const key = (a: number, b: number) => a * 67108864 + b;
-  for (let t = 0; t < triangles.length; t += 3) {
+  // Crossed edges (a below, b not) are numbered; each triangle joins two of them; pieces chain.
+  const number = new PairMap();
+  const ends: number[] = [];
+  const following: number[] = [];
+  const hasBefore: number[] = [];
+  const crossing = (a: number, b: number): number => {
+    let n = number.get(a, b, -1);
+    if (n < 0) {
+      n = following.length;
+      number.set(a, b, n);
+      ends.push(a, b);
+      following.push(-1);
+      hasBefore.push(0);
+    }
+    return n;
+  };
+  const count = only ? only.length : triangles.length / 3;
+  for (let i = 0; i < count; i++) {
+    const t = 3 * (only ? only[i] : i);
     const a = triangles[t], b = triangles[t + 1], c = triangles[t + 2];
     const n = (below(a) ? 1 : 0) + (below(b) ? 1 : 0) + (below(c) ? 1 : 0);
     if (n === 0 || n === 3) continue;
     // p is the odd one out; the triangle stays counter-clockwise as p, q, r.
-    const odd = n === 1 ? below : (v: number) => !below(v);
-    const [p, q, r] = odd(a) ? [a, b, c] : odd(b) ? [b, c, a] : [c, a, b];
+    const pBelow = n === 1;
+    const [p, q, r] = below(a) === pBelow ? [a, b, c] : below(b) === pBelow ? [b, c, a] : [c, a, b];
     // Lower side on the left: with p below the line runs from edge pq to edge pr, else the other way.
-    const from = n === 1 ? key(p, q) : key(r, p);
-    const to = n === 1 ? key(p, r) : key(q, p);
-    nextOf.set(from, to);
-    hasBefore.add(to);
+    const from = pBelow ? crossing(p, q) : crossing(r, p);
+    const to = pBelow ? crossing(p, r) : crossing(q, p);
+    following[from] = to;
+    hasBefore[to] = 1;
   }
   const lines: LevelLine[] = [];
-  const walk = (start: number, closed: boolean) => {
-    const keys: number[] = [];
-    for (let k: number | undefined = start; k !== undefined; ) {
-      keys.push(k);
-      const following: number | undefined = nextOf.get(k);
-      nextOf.delete(k);
-      k = following === start ? undefined : following;
-    }
-    const ends = new Uint32Array(2 * keys.length);
-    const share = new Float64Array(keys.length);
-    keys.forEach((k, i) => {
-      const a = Math.floor(k / 67108864);
-      const b = k - a * 67108864;
-      ends[2 * i] = a;
-      ends[2 * i + 1] = b;
-      share[i] = (level - values[a]) / (values[b] - values[a]);
+  const done = new Uint8Array(following.length);
+  const walk = (start: number) => {
+    const list: number[] = [];
+    let k = start;
+    do {
+      list.push(k);
+      done[k] = 1;
+      k = following[k];
+    } while (k >= 0 && k !== start);
+    lines.push({
+      ends: Uint32Array.from(list.flatMap((i) => [ends[2 * i], ends[2 * i + 1]])),
+      share: Float64Array.from(list, (i) => (level - values[ends[2 * i]]) / (values[ends[2 * i + 1]] - values[ends[2 * i]])),
+      closed: k === start,
     });
-    lines.push({ ends, share, closed });
   };
-  for (const k of [...nextOf.keys()]) if (nextOf.has(k) && !hasBefore.has(k)) walk(k, false);
-  for (const k of [...nextOf.keys()]) if (nextOf.has(k)) walk(k, true);
+  for (let i = 0; i < following.length; i++) if (!hasBefore[i]) walk(i);
+  for (let i = 0; i < following.length; i++) if (!done[i]) walk(i);
   return lines;
 }
 
+export interface ClippedPatch extends Patch {
+  /** Triangle of the patch that each triangle was cut from. */
+  source: Int32Array;
+}
+
 /** The part of a patch where `values < level`, as triangles inside the same faces. */
-export function clipBelow(patch: FieldPatch, values: Float64Array, level: number): Patch {
+export function clipBelow(patch: Patch, values: Float64Array, level: number): ClippedPatch {
   const positions: number[] = [];
   const triangles: number[] = [];
   const face: number[] = [];
-  const number = new Map<number, number>();
+  const source: number[] = [];
+  const number = new PairMap();
   const vertex = (a: number, b: number): number => {
     // Corners as (a, a); places on edges as (lower side, upper side), the same from both triangles.
-    const k = a * 67108864 + b;
-    let n = number.get(k);
-    if (n === undefined) {
+    let n = number.get(a, b, -1);
+    if (n < 0) {
       n = positions.length / 3;
       const t = a === b ? 0 : (level - values[a]) / (values[b] - values[a]);
       for (let i = 0; i < 3; i++) positions.push(patch.positions[3 * a + i] + t * (patch.positions[3 * b + i] - patch.positions[3 * a + i]));
-      number.set(k, n);
+      number.set(a, b, n);
     }
     return n;
   };
@@ -102,18 +119,21 @@ export function clipBelow(patch: FieldPatch, values: Float64Array, level: number
     if (n === 3) {
       triangles.push(vertex(a, a), vertex(b, b), vertex(c, c));
       face.push(f);
+      source.push(t / 3);
     } else if (n === 1) {
       const [p, q, r] = below(a) ? [a, b, c] : below(b) ? [b, c, a] : [c, a, b];
       triangles.push(vertex(p, p), vertex(p, q), vertex(p, r));
       face.push(f);
+      source.push(t / 3);
     } else {
       const [p, q, r] = !below(a) ? [a, b, c] : !below(b) ? [b, c, a] : [c, a, b];
       const pq = vertex(q, p), pr = vertex(r, p), q0 = vertex(q, q), r0 = vertex(r, r);
       triangles.push(pq, q0, r0, pq, r0, pr);
       face.push(f, f);
+      source.push(t / 3, t / 3);
     }
   }
-  return { positions: Float64Array.from(positions), triangles: Uint32Array.from(triangles), face: Int32Array.from(face) };
+  return { positions: Float64Array.from(positions), triangles: Uint32Array.from(triangles), face: Int32Array.from(face), source: Int32Array.from(source) };
 }
 
 /** Area of a patch, mm². */

@@ -6,6 +6,7 @@
  * so neighbours agree and the patch has no cracks (edge-driven refinement, as in Velho and Gomes,
  * "Variable resolution 4-k meshes", 2000, and other conforming schemes).
  */
+import { PairMap } from '../base/pair-map.ts';
 import type { Vec3 } from '../base/vec.ts';
 import type { SurfaceMesh } from '../mesh/surface-mesh.ts';
 import type { FieldPatch } from './copper.ts';
@@ -36,8 +37,7 @@ export function refine(mesh: SurfaceMesh, faces: Iterable<number>, evaluate: (fa
   const triangles: number[] = [];
   const faceOfTriangle: number[] = [];
   const corners = new Map<number, number>();
-  const middles = new Map<number, number>();
-  const whole = new Set<number>();
+  const middles = new PairMap();
   const add = (face: number, x: number, y: number, z: number): number => {
     const f = evaluate(face, [x, y, z]);
     positions.push(x, y, z);
@@ -46,28 +46,26 @@ export function refine(mesh: SurfaceMesh, faces: Iterable<number>, evaluate: (fa
     along.push(f.along);
     return edge.length - 1;
   };
-  // Numbers of two vertices as one key: exact up to 2^26 vertices in a patch.
-  const key = (a: number, b: number) => (a < b ? a * 67108864 + b : b * 67108864 + a);
   const size = (a: number, b: number) =>
     Math.hypot(positions[3 * a] - positions[3 * b], positions[3 * a + 1] - positions[3 * b + 1], positions[3 * a + 2] - positions[3 * b + 2]);
 
   /** Vertex in the middle of an edge, or -1 when the edge stays whole. */
   const middle = (face: number, a: number, b: number): number => {
-    const k = key(a, b);
-    const known = middles.get(k);
-    if (known !== undefined) return known;
-    if (whole.has(k)) return -1;
+    const lo = a < b ? a : b;
+    const hi = a < b ? b : a;
+    const known = middles.get(lo, hi, UNKNOWN);
+    if (known !== UNKNOWN) return known;
     const len = size(a, b);
     const nearest = Math.min(edge[a], edge[b]);
     const deepest = Math.max(edge[a], edge[b]);
     // The field grows by no more than the way walked: beyond one length it cannot change sign near the edge.
     const split = nearest > len ? false : deepest < -len ? len > options.coarse : len > options.fine && (len > options.coarse || touches(edge[a], edge[b], len));
     if (!split) {
-      whole.add(k);
+      middles.set(lo, hi, -1);
       return -1;
     }
     const m = add(face, (positions[3 * a] + positions[3 * b]) / 2, (positions[3 * a + 1] + positions[3 * b + 1]) / 2, (positions[3 * a + 2] + positions[3 * b + 2]) / 2);
-    middles.set(k, m);
+    middles.set(lo, hi, m);
     return m;
   };
 
@@ -111,6 +109,9 @@ export function refine(mesh: SurfaceMesh, faces: Iterable<number>, evaluate: (fa
   }
   return compact(positions, edge, hatch, along, triangles, faceOfTriangle);
 }
+
+/** An edge not asked about yet; -1 stands for one that stays whole. */
+const UNKNOWN = -2;
 
 /** Whether the level 0 can run within half a length of an edge that is nearly fine enough. */
 const touches = (a: number, b: number, len: number): boolean => Math.min(Math.abs(a), Math.abs(b)) <= 0.75 * len || a < 0 !== b < 0;

@@ -25,18 +25,27 @@ export function drapeRegion(solver: WindowSolver, baseline: WindowSolver, region
   const outside = 2 * FINE;
   const rim = band(solver, path, { left: depth, right: outside, closed: true, stops: route.stops });
   // Fill lines run along the longest line from corner to corner, and keep their distance from it.
-  const hatch = hatchBand(baseline, corners, path.length / 2);
-  const laid = layOut(
-    solver.mesh,
-    rim.faces,
-    (face, p) => {
-      const at = rim.at(face, p);
-      if (!at || (at.across <= 0 && at.distance > outside)) return { edge: outside, hatch: 0, along: 0 };
-      const h = hatch?.at(face, p);
-      return { edge: at.across > 0 ? -at.distance : at.distance, hatch: h ? h.across : 0, along: 0 };
-    },
-    AREA_STEP,
-  );
+  const lay = (reach: number) => {
+    const hatch = hatchBand(baseline, corners, reach);
+    let blind = false;
+    const laid = layOut(
+      solver.mesh,
+      rim.faces,
+      (face, p) => {
+        const at = rim.at(face, p);
+        if (!at || (at.across <= 0 && at.distance > outside)) return { edge: outside, hatch: 0, along: 0 };
+        const h = hatch?.at(face, p);
+        if (!h && at.across > 0) blind = true;
+        return { edge: at.across > 0 ? -at.distance : at.distance, hatch: h ? h.across : 0, along: 0 };
+      },
+      AREA_STEP,
+    );
+    return { laid, blind };
+  };
+  // A third of the outline is enough but for regions that wind about.
+  let tried = lay(path.length / 3);
+  if (tried.blind) tried = lay(path.length);
+  const { laid } = tried;
   if (laid.copper.face.length === 0) return { element: null, findings: [{ rule: 'no-copper', element: region.id, at: places[0].point, text: 'the outline encloses nothing' }] };
   return {
     element: { id: region.id, kind: 'region', net: region.net, width: 0, anchor: middle(laid.copper.positions), ...laid, length: path.length, drawnLength: path.length, stretch: 0 },

@@ -9,6 +9,9 @@ export interface Run {
   /** Limits with the stitch on; -Infinity and +Infinity where nothing is cut. mm. */
   from: number;
   to: number;
+  /** The same without the stitch: where this layer and no other is meant to write. */
+  cutFrom: number;
+  cutTo: number;
 }
 
 export interface Layer {
@@ -28,6 +31,8 @@ export interface SetupPlan {
   setup: number;
   name: string;
   layers: Layer[];
-  /** Copper that no layer writes: runs with the reason. */
-  unreached: (Run & { length: number })[];
+  /** Index into `Copper.elements` of those that this setup writes. */
+  elements: number[];
+  /** Copper of those elements that no layer writes: `length` along the trace, or across heights, mm. */
+  unreached: (Run & { length: number; reason: 'focus' | 'shade' | 'field' | 'incidence' })[];
 }

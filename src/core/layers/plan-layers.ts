@@ -1,0 +1,191 @@
+/** Reach → plan: which focus heights, and what each of them writes (model.md §5). */
+import { poseFrame } from '../base/pose.ts';
+import type { RunContext } from '../base/run-context.ts';
+import type { Copper, CopperElement } from '../drape/copper.ts';
+import type { Project, Setup, Stage } from '../project/schema.ts';
+import type { ElementReach, SetupReach } from '../reach/result.ts';
+import { REASONS } from '../reach/result.ts';
+import { type Chain, chainsOf } from './chains.ts';
+import type { Layer, Run, SetupPlan } from './plan.ts';
+import { bestHeights, fewestRuns, type Stretch } from './runs.ts';
+import { fewestHeights, gridCeil, gridFloor, type HeightGrid, stabLeft, stabRight, within } from './stab.ts';
+
+/** Reasons for which the beam cannot go to a place at all: it would burn something else, or turn past its field. */
+const CANNOT_GO = (1 << REASONS.indexOf('shade')) | (1 << REASONS.indexOf('field'));
+
+/** Whether the beam can go to a sample; what is merely weak there (incidence, dose) is written all the same and reported. */
+export const canGo = (reach: ElementReach, t: number): boolean => (reach.fails[t] & CANNOT_GO) === 0 && reach.incidence[t] < Math.PI / 2;
+
+/** Heights that the stage can bring into focus: s = -h within its range, in its steps. */
+export const heightGrid = (stage: Stage): HeightGrid => ({ step: stage.step, least: -stage.range[1], most: -stage.range[0] });
+
+/** Sampling step along a trace, mm (model.md §5). */
+const stepOf = (element: CopperElement): number => Math.min(0.1, element.width > 0 ? element.width / 4 : 0.1);
+
+/**
+ * @param reach  one a setup, from `checkReach`
+ * @returns one plan a setup; an element is written in the setup that can write most of it, the first of equals
+ */
+export function planLayers(project: Project, setups: readonly Setup[], copper: Copper, reach: readonly SetupReach[], ctx: RunContext): SetupPlan[] {
+  const home = copper.elements.map((element, e) => bestSetup(element, reach.map((r) => r.elements[e])));
+  return setups.map((setup, i) => {
+    ctx.step('layers', i, setups.length);
+    const mine = home.flatMap((s, e) => (s === i ? [e] : []));
+    return planSetup(project, setup, i, copper, reach[i], mine);
+  });
+}
+
+function bestSetup(element: CopperElement, reaches: readonly ElementReach[]): number {
+  let best = 0;
+  let most = -1;
+  reaches.forEach((reach, i) => {
+    let n = 0;
+    for (let t = 0; t < element.copper.face.length; t++) if (reach.fails[t] === 0) n++;
+    if (n > most) {
+      most = n;
+      best = i;
+    }
+  });
+  return best;
+}
+
+function planSetup(project: Project, setup: Setup, index: number, copper: Copper, reach: SetupReach, mine: readonly number[]): SetupPlan {
+  const grid = heightGrid(project.stage);
+  const up = poseFrame(setup.pose).directionToPart([0, 0, 1]);
+  const unreached: SetupPlan['unreached'] = [];
+  const chains: Chain[] = [];
+  for (const e of mine) {
+    const element = copper.elements[e];
+    const r = reach.elements[e];
+    unreached.push(...cannotGo(element, e, r));
+    for (const chain of chainsOf(element, e, r, (t) => canGo(r, t), { step: stepOf(element), stitch: project.scan.stitch, up })) {
+      // What no height of the stage brings into focus is a finding; the rest goes on.
+      let keep: Chain['samples'] = [];
+      const flush = () => {
+        if (keep.length > 0) chains.push({ ...chain, samples: keep });
+        keep = [];
+      };
+      for (const s of chain.samples) {
+        const [lo, hi] = within(s, Infinity, grid);
+        if (lo <= hi) keep.push(s);
+        else {
+          flush();
+          const last = unreached[unreached.length - 1];
+          if (last?.element === e && last.reason === 'focus' && last.to === s.from) {
+            last.to = last.cutTo = s.to;
+            last.length += s.to - s.from;
+          } else unreached.push({ element: e, by: chain.by, from: s.from, to: s.to, cutFrom: s.from, cutTo: s.to, length: s.to - s.from, reason: 'focus' });
+        }
+      }
+      flush();
+    }
+  }
+  const layers = chains.length > 0 ? layersOf(chains, grid) : [];
+  return { setup: index, name: setup.name, layers, elements: [...mine], unreached };
+}
+
+function layersOf(chains: readonly Chain[], grid: HeightGrid): Layer[] {
+  const demands = chains.flatMap((c) => c.samples);
+  const fewest = fewestHeights(demands, grid)!;
+  // The bound in the chains' own order.
+  const intervals: (readonly [number, number])[][] = [];
+  let k = 0;
+  for (const c of chains) intervals.push(c.samples.map(() => fewest.intervals[k++]));
+  const right = stabRight(fewest.intervals)!;
+  const left = stabLeft(fewest.intervals)!;
+  const snap = (h: number) => (grid.step > 0 ? Math.round(h / grid.step) * grid.step : h);
+  const { heights } = bestHeights(intervals, left.map((lo, i) => [lo, right[i]] as const), snap);
+  const runs = intervals.map((list) => fewestRuns(list, heights)!);
+  // What is still free takes the middle of its range.
+  const settled = heights.map((h, layer) => {
+    let lo = -Infinity;
+    let hi = Infinity;
+    runs.forEach((stretches, c) => {
+      for (const s of stretches)
+        if (s.height === layer)
+          for (let i = s.first; i <= s.last; i++) {
+            lo = Math.max(lo, intervals[c][i][0]);
+            hi = Math.min(hi, intervals[c][i][1]);
+          }
+    });
+    if (lo === -Infinity) return h;
+    const middle = (lo + hi) / 2;
+    return Math.min(Math.max(snapDown(middle, grid), lo), hi);
+  });
+  const layers = settled.map((h, i): Layer & { key: number } => ({ key: i, index: 0, focusHeight: h, stageOffset: h === 0 ? 0 : -h, runs: [], worstDefocus: 0 }));
+  chains.forEach((chain, c) => {
+    addRuns(chain, intervals[c], runs[c], settled, layers);
+  });
+  return layers
+    .filter((l) => l.runs.length > 0)
+    .sort((a, b) => a.focusHeight - b.focusHeight)
+    .map(({ key: _, ...l }, i) => ({ ...l, index: i + 1 }));
+}
+
+/** Nearest grid height; halfway goes down, so that the same job always gives the same plan. */
+function snapDown(h: number, grid: HeightGrid): number {
+  if (grid.step === 0) return h;
+  const down = gridFloor(h, grid);
+  const up = gridCeil(h, grid);
+  return up - h < h - down ? up : down;
+}
+
+/** Turns stretches into runs: each cut in the middle of where both layers may write, with half a stitch on either side. */
+function addRuns(chain: Chain, intervals: readonly (readonly [number, number])[], stretches: readonly Stretch[], heights: readonly number[], layers: Layer[]): void {
+  const { samples } = chain;
+  const allowed = (i: number, layer: number) => intervals[i][0] <= heights[layer] && heights[layer] <= intervals[i][1];
+  const cuts: number[] = [];
+  for (let r = 0; r + 1 < stretches.length; r++) {
+    // The stretch before ends as late as it can; the one after may begin earlier.
+    const border = stretches[r].last + 1;
+    let early = border;
+    while (early > stretches[r].first + 1 && early - 1 > (cuts[r - 1] ?? 0) && allowed(early - 1, stretches[r + 1].height)) early--;
+    cuts.push(Math.ceil((early + border) / 2));
+  }
+  stretches.forEach((s, r) => {
+    const first = r === 0 ? 0 : cuts[r - 1];
+    const last = r === stretches.length - 1 ? samples.length : cuts[r];
+    const layer = layers[s.height];
+    const h = heights[s.height];
+    for (let i = first; i < last; i++) layer.worstDefocus = Math.max(layer.worstDefocus, samples[i].high - h, h - samples[i].low);
+    const open = { from: r === 0 ? -Infinity : samples[first].from, to: last === samples.length ? Infinity : samples[last - 1].to };
+    // Ends next to copper that cannot be written are ends of the chain, not of the element.
+    const from = r === 0 ? samples[0].from : open.from;
+    const to = last === samples.length ? samples[samples.length - 1].to : open.to;
+    layer.runs.push({
+      element: chain.element,
+      by: chain.by,
+      from: r === 0 ? from : from - samples[first].halfStitch,
+      to: last === samples.length ? to : to + samples[last - 1].halfStitch,
+      cutFrom: from,
+      cutTo: to,
+    });
+  });
+}
+
+/** Stretches that the beam cannot go to, with the reason that most of their copper has. */
+function cannotGo(element: CopperElement, index: number, reach: ElementReach): SetupPlan['unreached'] {
+  let n = 0;
+  let shaded = 0;
+  let off = 0;
+  for (let t = 0; t < element.copper.face.length; t++) {
+    if (canGo(reach, t)) continue;
+    n++;
+    if (reach.fails[t] & (1 << REASONS.indexOf('shade'))) shaded++;
+    else if (reach.fails[t] & (1 << REASONS.indexOf('field'))) off++;
+  }
+  if (n === 0) return [];
+  const share = n / element.copper.face.length;
+  return [
+    {
+      element: index,
+      by: element.kind === 'trace' ? 'along' : 'height',
+      from: -Infinity,
+      to: Infinity,
+      cutFrom: -Infinity,
+      cutTo: Infinity,
+      length: share * element.length,
+      reason: shaded >= off && shaded > 0 ? 'shade' : off > 0 ? 'field' : 'incidence',
+    },
+  ];
+}
