@@ -2,6 +2,7 @@
 import { parseArgs } from 'node:util';
 import { InputError } from '../core/base/news.ts';
 import { MM_PER_UNIT } from '../core/mesh/build.ts';
+import type { ProofFormat } from '../core/proof/prove.ts';
 
 export type ProgressMode = 'json' | 'bar' | 'lines' | 'none';
 export type Units = keyof typeof MM_PER_UNIT;
@@ -21,7 +22,7 @@ export type Command =
   | { name: 'inspect'; part: string; units: Units; json: boolean; settings: Settings }
   | { name: 'run'; project: string; out: string; settings: Settings }
   | { name: 'check'; project: string; json: boolean; settings: Settings }
-  | { name: 'prove'; dir: string; formats: string[] | null; json: boolean; settings: Settings }
+  | { name: 'prove'; dir: string; formats: ProofFormat[] | null; json: boolean; settings: Settings }
   | { name: 'demo'; out: string; settings: Settings }
   | { name: 'window'; args: string[] }
   | { name: 'help' }
@@ -156,11 +157,12 @@ function whole(option: string, value: string | undefined, least: number, most: n
   throw usage(`--${option}`, `"${value}" cannot be used`, `give a whole number from ${least} to ${most}`);
 }
 
-export const FORMATS = ['svg', 'csv', 'dxf', 'iso'] as const;
+/** Formats that can be read back. */
+export const FORMATS: readonly ProofFormat[] = ['svg', 'csv'];
 
-function formatsOf(value: string | undefined): string[] | null {
+function formatsOf(value: string | undefined): ProofFormat[] | null {
   if (value === undefined) return null;
-  return value.split(',').map((f) => oneOf('formats', f.trim(), FORMATS) as string);
+  return value.split(',').map((f) => oneOf('formats', f.trim(), FORMATS) as ProofFormat);
 }
 
 const usage = (place: string, problem: string, mend: string): InputError =>

@@ -1,16 +1,18 @@
 #!/usr/bin/env node
 /** The program for the command line, and the file of its own worker threads. */
 import { availableParallelism } from 'node:os';
+import { join } from 'node:path';
 import { isMainThread, workerData } from 'node:worker_threads';
 import { Cancelled, InputError, sentence } from '../core/base/news.ts';
 import { serveTasks, TASK_ROLE } from '../worker/node.ts';
 import { tasks } from '../worker/tasks.ts';
-import { type Command, HELP, parseCommand, type Settings } from './args.ts';
+import { type Command, FORMATS, HELP, parseCommand, type Settings } from './args.ts';
 import { checkTarget, putFolder } from './folder.ts';
-import { readInput, readProjectFiles } from './inputs.ts';
+import { readInput, readProjectFiles, readRunFolder } from './inputs.ts';
 import { JOB_ROLE, type JobAnswers, type JobRequest, serveJob } from './job.ts';
 import { progressTo } from './progress.ts';
-import { showCheck, showPart, showRun } from './show.ts';
+import { showCheck, showPart, showProof, showRun } from './show.ts';
+import { PROJECT_COPY } from './stand-alone.ts';
 import { startJob } from './thread.ts';
 import { openWindow } from './window.ts';
 
@@ -89,8 +91,21 @@ async function perform(command: Command): Promise<number> {
       const { project: _, unknown: __, ...files } = await readProjectFiles(command.project);
       return runInto(command.out, { kind: 'run', ...files, settings: command.settings });
     }
-    default:
-      throw new Error(`${command.name} is not there yet`);
+    case 'prove': {
+      const runFiles = await readRunFolder(command.dir);
+      const { project: _, unknown: __, ...files } = await readProjectFiles(join(command.dir, PROJECT_COPY));
+      const present = FORMATS.filter((f) => runFiles.some((r) => r.path.toLowerCase().endsWith(`.${f}`)));
+      const formats = command.formats ?? present;
+      const proof = await job({ kind: 'prove', ...files, runFiles, formats, settings: command.settings });
+      print(
+        command.json,
+        { format: 'beamdrape-proof', version: 1, ...proof.report, byFormat: proof.byFormat },
+        () => showProof(command.dir, proof),
+      );
+      return proof.report.ok ? DONE : CHECK_FAILS;
+    }
+    case 'demo':
+      throw new Error('demo is not there yet');
   }
 }
 

@@ -1,8 +1,10 @@
 /** Reads from disk what a job needs: the project, its part, its drawings. */
-import { readFile } from 'node:fs/promises';
+import { readdir, readFile } from 'node:fs/promises';
 import { dirname, isAbsolute, join } from 'node:path';
 import { InputError } from '../core/base/news.ts';
+import type { OutputFile } from '../core/files/output.ts';
 import { type ReadProject, readProject } from '../core/project/read.ts';
+import { PROJECT_COPY } from './stand-alone.ts';
 
 /** A file that the project names, under the name that the project gives it. */
 export interface NamedFile {
@@ -33,6 +35,40 @@ export async function readProjectFiles(projectFile: string): Promise<ProjectFile
     others.set(drape.drawing, await get(drape.drawing, `$.circuit.drapes[${i}].drawing`));
   if (project.netlist !== undefined) others.set(project.netlist, await get(project.netlist, '$.netlist'));
   return { project, unknown, projectFile, projectText, part, others: [...others.values()] };
+}
+
+/**
+ * Everything in the folder of an earlier run.
+ * @returns paths below the folder, with `/` between names, in order of name
+ * @throws InputError `not-a-run`, `cannot-read`
+ */
+export async function readRunFolder(dir: string): Promise<OutputFile[]> {
+  const notARun = (problem: string): InputError =>
+    new InputError({
+      code: 'not-a-run',
+      file: dir,
+      place: '',
+      problem,
+      mend: 'give the folder that "run --out" wrote',
+    });
+  const paths: string[] = [];
+  const walk = async (below: string): Promise<void> => {
+    for (const e of await readdir(join(dir, below), { withFileTypes: true }))
+      if (e.isDirectory()) await walk(`${below}${e.name}/`);
+      else if (e.isFile()) paths.push(below + e.name);
+  };
+  try {
+    await walk('');
+  } catch (error) {
+    if ((error as { code?: string }).code === 'ENOENT') throw notARun('there is no such folder');
+    if ((error as { code?: string }).code === 'ENOTDIR') throw notARun('this is a file, not a folder');
+    throw error;
+  }
+  for (const needed of ['report.json', PROJECT_COPY])
+    if (!paths.includes(needed)) throw notARun(`it holds no ${needed}`);
+  const files: OutputFile[] = [];
+  for (const path of paths.sort()) files.push({ path, bytes: await readInput(join(dir, path), '', '') });
+  return files;
 }
 
 /** @param place  where `namedBy` names the file; empty when the person named it */

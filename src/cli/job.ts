@@ -9,13 +9,15 @@ import { buildMesh, MM_PER_UNIT } from '../core/mesh/build.ts';
 import { readStl } from '../core/mesh/stl.ts';
 import { partReport } from '../core/mesh/summary.ts';
 import { readProject } from '../core/project/read.ts';
-import type { ProofReport, Report } from '../core/project/report.ts';
+import type { Report } from '../core/project/report.ts';
+import type { Proof, ProofFormat } from '../core/proof/prove.ts';
 import { nodeThreads } from '../worker/node.ts';
 import { createPool } from '../worker/pool.ts';
 import { type Failure, failureOf } from '../worker/protocol.ts';
 import { tasks } from '../worker/tasks.ts';
 import type { Settings, Units } from './args.ts';
 import type { NamedFile } from './inputs.ts';
+import { proveRun } from './prove-run.ts';
 import { standAlone } from './stand-alone.ts';
 import { runJob } from './stand-in.ts';
 
@@ -33,13 +35,14 @@ export type JobRequest = { settings: Settings } & (
   | { kind: 'inspect'; part: NamedFile; units: Units }
   | ({ kind: 'run' } & ProjectInput)
   | ({ kind: 'check' } & ProjectInput)
+  | ({ kind: 'prove'; runFiles: OutputFile[]; formats: ProofFormat[] } & ProjectInput)
 );
 
 export interface JobAnswers {
   inspect: { part: Report['part']; trailingBytes: number };
   run: { report: Report; files: OutputFile[] };
   check: { report: Report };
-  prove: { proof: ProofReport };
+  prove: Proof;
 }
 
 export type FromJob =
@@ -77,6 +80,7 @@ async function answer(
     return { part: partReport(mesh), trailingBytes: soup.trailingBytes };
   }
   const { project } = readProject(request.projectText, request.projectFile);
+  if (request.kind === 'prove') return proveRun(request, project, ctx, pool);
   const input = {
     project,
     projectFile: request.projectFile,

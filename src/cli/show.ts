@@ -1,5 +1,6 @@
 /** Results in words and tables, for a person at the laser bench. */
-import type { ElementReport, Report } from '../core/project/report.ts';
+import type { ElementReport, ProofReport, Report } from '../core/project/report.ts';
+import type { Proof } from '../core/proof/prove.ts';
 import { counted, duration, facts, fixed, grouped, signed, table } from './table.ts';
 
 /** `inspect`: the part alone. */
@@ -79,7 +80,7 @@ export function showRun(report: Report, dir: string): string {
     '',
   );
   for (const setup of report.setups) lines.push(setupBlock(setup), '');
-  lines.push(unwritten(report), '', rulesBlock(report), '', proofBlock(report), '');
+  lines.push(unwritten(report), '', rulesBlock(report), '', proofBlock(report.proof), '');
   lines.push(`Job sheet: ${dir.replace(/\/$/, '')}/sheet.html`, '');
   return lines.join('\n');
 }
@@ -160,22 +161,37 @@ function rulesBlock(report: Report): string {
   return `Shop rules:\n${table(['level', 'rule', 'value', 'limit', 'elements', 'at x, y, z'], rows)}`;
 }
 
-/** The verdict of the read-back proof. */
-export function proofBlock(report: Pick<Report, 'proof' | 'elements'>): string {
-  const p = report.proof;
+function proofBlock(p: ProofReport | null): string {
   if (!p) return 'Proof: there are no files to prove.';
-  const rows: [string, string][] = [
+  return `Proof: burnt on the model, the files ${p.ok ? 'give the drawn copper' : 'DO NOT GIVE THE DRAWN COPPER'}.\n${proofFacts(p)}`;
+}
+
+function proofFacts(p: ProofReport): string {
+  const names = (groups: readonly string[][]): string =>
+    groups.length ? groups.map((g) => g.join(' – ')).join('; ') : 'none';
+  return facts([
     ['files read back', String(p.files)],
     [
       'covered',
-      `${fixed(100 * p.covered, 2)} % of the drawn copper${p.coveredElement ? `, least in ${p.coveredElement}` : ''}`,
+      `${fixed(100 * p.covered, 2)} %${p.coveredElement ? ` of ${p.coveredElement}, the least covered` : ''}`,
     ],
-    ['in focus', `${fixed(100 * p.focus, 2)} %`],
+    ['in focus', `${fixed(100 * p.focus, 2)} % of what is written`],
     ['stray', `${fixed(p.stray_mm2, 3)} mm²`],
-    ['opens', p.opens.length ? p.opens.map((o) => o.join(' – ')).join('; ') : 'none'],
-    ['shorts', p.shorts.length ? p.shorts.map((s) => s.join(' – ')).join('; ') : 'none'],
-  ];
-  return `Proof: burnt on the model, the files ${p.ok ? 'give the drawn copper' : 'DO NOT GIVE THE DRAWN COPPER'}.\n${facts(rows)}`;
+    ['opens', names(p.opens)],
+    ['shorts', names(p.shorts)],
+    ...p.findings.map((f): [string, string] => ['wrong', f]),
+  ]);
+}
+
+/** `prove`: the verdict of each format. */
+export function showProof(dir: string, proof: Proof): string {
+  const head = `${dir}: burnt on the model, the files ${proof.report.ok ? 'give the drawn copper' : 'DO NOT GIVE THE DRAWN COPPER'}.`;
+  const parts = proof.byFormat.map(
+    ({ format, report }) =>
+      `${format.toUpperCase()}: ${report.ok ? 'holds' : 'FAILS'}\n${proofFacts(report)}`,
+  );
+  if (parts.length === 0) parts.push(...proof.report.findings);
+  return `${[head, ...parts].join('\n\n')}\n`;
 }
 
 const mark = (ok: boolean, text: string): string => (ok ? text : `${text} !`);

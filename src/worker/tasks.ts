@@ -1,4 +1,11 @@
 /** Functions of the core that may run on another thread, by name. Each is a plain function: (shared, argument) → result. */
+import { type LayerPulses, type TraceTask, tracePulses } from '../core/proof/prove.ts';
 import type { TaskTable } from './pool.ts';
 
-export const tasks: TaskTable = {};
+/** What all files of a proof have in common, and what one of them has of its own. */
+export type TraceShared = Pick<TraceTask, 'head' | 'mesh' | 'normals'>;
+export type TraceOwn = Omit<TraceTask, keyof TraceShared>;
+
+export const tasks = {
+  'trace pulses': (shared: TraceShared, own: TraceOwn): LayerPulses => tracePulses({ ...shared, ...own }),
+} satisfies TaskTable;
