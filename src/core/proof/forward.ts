@@ -14,7 +14,7 @@ export interface Lean {
 
 /** @throws InputError `not-yet` when the head says how its axes really run: that comes with a later version */
 export function leanOf(head: Head, file = 'project'): Lean {
-  if (head.axes && Object.keys(head.axes).length > 0)
+  if (isSet(head.axes))
     throw new InputError({
       code: 'not-yet',
       file,
@@ -24,6 +24,13 @@ export function leanOf(head: Head, file = 'project'): Lean {
     });
   const [px, py] = head.pivot;
   return { kx: px === null ? 0 : 1 / px, ky: py === null ? 0 : 1 / py };
+}
+
+function isSet(axes: Head['axes']): boolean {
+  if (!axes) return false;
+  const { swap, flipX, flipY, turn = 0, scale = 1 } = axes;
+  const scales = typeof scale === 'number' ? [scale] : scale;
+  return Boolean(swap || flipX || flipY) || turn !== 0 || scales.some((k) => k !== 1);
 }
 
 /** Where the beam of command (X, Y) stands at height `d` above the focal plane, mm: ( X (1 − d/px), Y (1 − d/py), d ). */

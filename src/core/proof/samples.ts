@@ -84,7 +84,10 @@ export function areaOf(p: ArrayLike<number>, at: number): number {
   const vx = p[at + 6] - p[at],
     vy = p[at + 7] - p[at + 1],
     vz = p[at + 8] - p[at + 2];
-  return Math.hypot(uy * vz - uz * vy, uz * vx - ux * vz, ux * vy - uy * vx) / 2;
+  const nx = uy * vz - uz * vy;
+  const ny = uz * vx - ux * vz;
+  const nz = ux * vy - uy * vx;
+  return Math.sqrt(nx * nx + ny * ny + nz * nz) / 2;
 }
 
 function wider(from: Float32Array<ArrayBuffer>, size: number): Float32Array<ArrayBuffer> {
