@@ -1,6 +1,7 @@
 /** From loose facets to the surface that every later stage works on. */
 import { Fault, InputError } from '../base/news.ts';
 import type { RunContext } from '../base/run-context.ts';
+import { flipCaps, hasFlat } from './caps.ts';
 import { orient } from './orient.ts';
 import type { Soup } from './stl.ts';
 import type { SurfaceMesh } from './surface-mesh.ts';
@@ -26,8 +27,15 @@ export function buildMesh(soup: Soup, unitsScale: number, ctx: RunContext, file 
   if (!(unitsScale > 0 && unitsScale < Infinity)) throw new Fault(`units scale ${unitsScale}`);
   const facets = soup.corners.length / 9;
   const welded = weld(soup.corners, ctx);
-  const kept = keepFacets(welded.vertex, welded.positions, welded.distance);
-  if (kept.count === 0)
+  const kept = keepFacets(welded.vertex);
+  const whole = mendCaps(
+    cornersOf(welded.vertex, kept.facetOfFace),
+    kept,
+    welded.positions,
+    welded.distance,
+    facets,
+  );
+  if (whole.facetOfFace.length === 0)
     throw new InputError({
       code: 'no-area',
       file,
@@ -36,7 +44,7 @@ export function buildMesh(soup: Soup, unitsScale: number, ctx: RunContext, file 
       mend: 'export the part again',
     });
   ctx.step('load', 2 * facets, 3 * facets);
-  const { positions, triangles } = renumber(welded.vertex, welded.positions, kept.facetOfFace, unitsScale);
+  const { positions, triangles } = renumber(whole.triangles, welded.positions, unitsScale);
   const { partner, crowded } = pairEdges(triangles, positions.length / 3);
   const { twin, pieceOf, pieces, turned, disagreeing } = orient(positions, triangles, partner);
   let flipped = 0;
@@ -48,15 +56,15 @@ export function buildMesh(soup: Soup, unitsScale: number, ctx: RunContext, file 
     twin,
     pieceOf,
     pieces,
-    faceOfFacet: kept.faceOfFacet,
-    facetOfFace: kept.facetOfFace,
+    faceOfFacet: whole.faceOfFacet,
+    facetOfFace: whole.facetOfFace,
     bounds: boundsOf(positions),
     closed: pieces.every((p) => p.closed),
     area: pieces.reduce((s, p) => s + p.area, 0),
     volume: pieces.reduce((s, p) => s + p.volume, 0),
     mended: {
       welded: welded.joined,
-      degenerate: kept.degenerate,
+      degenerate: kept.degenerate + whole.caps,
       duplicate: kept.duplicate,
       flipped,
       nonManifoldEdges: crowded + disagreeing,
@@ -65,17 +73,14 @@ export function buildMesh(soup: Soup, unitsScale: number, ctx: RunContext, file 
 }
 
 interface Kept {
-  count: number;
-  faceOfFacet: Int32Array;
   facetOfFace: Int32Array;
+  /** Facets with two equal corners. */
   degenerate: number;
   duplicate: number;
 }
 
-/** A facet lower than the weld distance over its longest side has no area that was meant, and no normal to trust. */
-function keepFacets(vertex: Uint32Array, x: Float64Array, distance: number): Kept {
+function keepFacets(vertex: Uint32Array): Kept {
   const facets = vertex.length / 3;
-  const faceOfFacet = new Int32Array(facets).fill(-1);
   const facetOfFace = new Int32Array(facets);
   let [count, degenerate, duplicate] = [0, 0, 0];
   let size = 1 << Math.max(4, Math.ceil(Math.log2(2 * facets + 1)));
@@ -83,7 +88,7 @@ function keepFacets(vertex: Uint32Array, x: Float64Array, distance: number): Kep
   size--;
   for (let f = 0; f < facets; f++) {
     const [a, b, c] = [vertex[3 * f], vertex[3 * f + 1], vertex[3 * f + 2]];
-    if (a === b || b === c || c === a || flat(x, 3 * a, 3 * b, 3 * c, distance)) {
+    if (a === b || b === c || c === a) {
       degenerate++;
       continue;
     }
@@ -103,55 +108,73 @@ function keepFacets(vertex: Uint32Array, x: Float64Array, distance: number): Kep
       continue;
     }
     table[s] = f;
-    faceOfFacet[f] = count;
     facetOfFace[count++] = f;
   }
-  return { count, faceOfFacet, facetOfFace: facetOfFace.slice(0, count), degenerate, duplicate };
+  return { facetOfFace: facetOfFace.slice(0, count), degenerate, duplicate };
 }
+
+interface Whole {
+  triangles: Uint32Array;
+  facetOfFace: Int32Array;
+  faceOfFacet: Int32Array;
+  caps: number;
+}
+
+/** A facet lower than the weld distance over its longest side has no area that was meant, and no normal to trust. */
+function mendCaps(
+  triangles: Uint32Array,
+  kept: Kept,
+  x: Float64Array,
+  distance: number,
+  facets: number,
+): Whole {
+  let { facetOfFace } = kept;
+  let caps = 0;
+  if (hasFlat(x, triangles, distance)) {
+    const { partner } = pairEdges(triangles, x.length / 3);
+    const { drop, from, found } = flipCaps(x, triangles, partner, distance);
+    caps = found;
+    const stay: number[] = [];
+    for (let f = 0; f < drop.length; f++) if (!drop[f]) stay.push(f);
+    facetOfFace = Int32Array.from(stay, (f) => kept.facetOfFace[from[f]]);
+    triangles = Uint32Array.from(
+      { length: 3 * stay.length },
+      (_, i) => triangles[3 * stay[(i / 3) | 0] + (i % 3)],
+    );
+  }
+  const faceOfFacet = new Int32Array(facets).fill(-1);
+  // From the back, so that a facet that became two faces names the first.
+  for (let f = facetOfFace.length - 1; f >= 0; f--) faceOfFacet[facetOfFace[f]] = f;
+  return { triangles, facetOfFace, faceOfFacet, caps };
+}
+
+const cornersOf = (vertex: Uint32Array, facetOfFace: Int32Array): Uint32Array => {
+  const triangles = new Uint32Array(3 * facetOfFace.length);
+  for (let f = 0; f < facetOfFace.length; f++)
+    for (let i = 0; i < 3; i++) triangles[3 * f + i] = vertex[3 * facetOfFace[f] + i];
+  return triangles;
+};
 
 function sameCorners(vertex: Uint32Array, f: number, lo: number, mid: number, hi: number): boolean {
   const [a, b, c] = [vertex[3 * f], vertex[3 * f + 1], vertex[3 * f + 2]];
   return Math.min(a, b, c) === lo && Math.max(a, b, c) === hi && (a ^ b ^ c ^ lo ^ hi) === mid;
 }
 
-function flat(x: Float64Array, a: number, b: number, c: number, distance: number): boolean {
-  const ux = x[b] - x[a],
-    uy = x[b + 1] - x[a + 1],
-    uz = x[b + 2] - x[a + 2];
-  const vx = x[c] - x[a],
-    vy = x[c + 1] - x[a + 1],
-    vz = x[c + 2] - x[a + 2];
-  const wx = vx - ux,
-    wy = vy - uy,
-    wz = vz - uz;
-  const nx = uy * vz - uz * vy,
-    ny = uz * vx - ux * vz,
-    nz = ux * vy - uy * vx;
-  const longest = Math.max(
-    ux * ux + uy * uy + uz * uz,
-    vx * vx + vy * vy + vz * vz,
-    wx * wx + wy * wy + wz * wz,
-  );
-  // (2 area)² = longest² · height²
-  return nx * nx + ny * ny + nz * nz <= longest * distance * distance;
-}
-
-/** Vertices that kept facets use, in order of first use, in mm. */
-function renumber(vertex: Uint32Array, x: Float64Array, facetOfFace: Int32Array, scale: number) {
+/** Vertices that faces use, in order of first use, in mm. */
+function renumber(from: Uint32Array, x: Float64Array, scale: number) {
   const number = new Int32Array(x.length / 3).fill(-1);
-  const triangles = new Uint32Array(3 * facetOfFace.length);
+  const triangles = new Uint32Array(from.length);
   const positions = new Float64Array(x.length);
   let count = 0;
-  for (let f = 0; f < facetOfFace.length; f++)
-    for (let i = 0; i < 3; i++) {
-      const v = vertex[3 * facetOfFace[f] + i];
-      if (number[v] < 0) {
-        number[v] = count;
-        for (let k = 0; k < 3; k++) positions[3 * count + k] = x[3 * v + k] * scale;
-        count++;
-      }
-      triangles[3 * f + i] = number[v];
+  for (let c = 0; c < from.length; c++) {
+    const v = from[c];
+    if (number[v] < 0) {
+      number[v] = count;
+      for (let k = 0; k < 3; k++) positions[3 * count + k] = x[3 * v + k] * scale;
+      count++;
     }
+    triangles[c] = number[v];
+  }
   return { positions: positions.slice(0, 3 * count), triangles };
 }
 

@@ -28,8 +28,13 @@ export function checkMesh(mesh: SurfaceMesh): string[] {
     if (a === b || b === c || c === a) say(`face ${f} has two equal corners`);
     if (pieceOf[f] < 0 || pieceOf[f] >= pieces.length) say(`face ${f} is in no piece`);
     else inPiece[pieceOf[f]]++;
-    if (mesh.faceOfFacet[mesh.facetOfFace[f]] !== f) say(`face ${f} and its facet do not name each other`);
+    // A facet that was split names the first of its faces.
+    if (!(mesh.faceOfFacet[mesh.facetOfFace[f]] >= 0 && mesh.faceOfFacet[mesh.facetOfFace[f]] <= f))
+      say(`face ${f} is of a facet that names no face, or a later one`);
   }
+  mesh.faceOfFacet.forEach((f, facet) => {
+    if (f >= 0 && mesh.facetOfFace[f] !== facet) say(`facet ${facet} names a face of another facet`);
+  });
   for (let h = 0; h < twin.length; h++) {
     const t = twin[h];
     if (t === -1) {

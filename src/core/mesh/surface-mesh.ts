@@ -3,7 +3,10 @@
 export interface Mended {
   /** Vertices joined to another one that was not bit for bit the same, but within the weld distance. */
   welded: number;
-  /** Facets of no area left out. */
+  /**
+   * Facets of no area left out. Where one stood with a corner on a neighbour's side, the neighbour is split at that
+   * corner, so that no crack opens: its facet then has two faces.
+   */
   degenerate: number;
   /** Facets on the same three vertices as an earlier one left out. */
   duplicate: number;
@@ -37,7 +40,7 @@ export interface SurfaceMesh {
   /** Piece of each face. */
   readonly pieceOf: Int32Array;
   readonly pieces: readonly Piece[];
-  /** Facet number in the file → face number, -1 where the facet was left out. */
+  /** Facet number in the file → face number (the first of two where it was split), -1 where the facet was left out. */
   readonly faceOfFacet: Int32Array;
   /** Face number → facet number in the file. */
   readonly facetOfFace: Int32Array;

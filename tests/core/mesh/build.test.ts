@@ -70,6 +70,54 @@ describe('mending', () => {
     expect(mesh.facetOfFace[0]).toBe(1);
     expect(mesh.closed).toBe(true);
   });
+  test('a facet of three corners on one line leaves no crack: its neighbour is split there', () => {
+    // The edge from corner 1 to corner 5 of the box gets a corner in its middle on one side only, and a cap between.
+    const b = box(3, 4, 5);
+    const [p, q]: Vec3[] = [
+      [3, 0, 0],
+      [3, 0, 5],
+    ];
+    const middle: Vec3 = [3, 0, 2];
+    const has = (f: Facet, v: Vec3): boolean => f.some((c) => c.join() === v.join());
+    const at = b.findIndex((f) => has(f, p) && has(f, q));
+    const replaced = (f: Facet, from: Vec3, to: Vec3): Facet =>
+      f.map((c) => (c.join() === from.join() ? to : c)) as Facet;
+    for (const cap of [[p, middle, q] as Facet, [q, middle, p] as Facet]) {
+      const facets = [...b, replaced(b[at], q, middle), cap];
+      facets[at] = replaced(b[at], p, middle);
+      const mesh = build(facets);
+      expect(mesh.closed).toBe(true);
+      expect(mesh.volume).toBeCloseTo(60, 12);
+      expect(mesh.area).toBeCloseTo(94, 12);
+      expect(mesh.triangles.length / 3).toBe(14);
+      expect(mesh.mended.degenerate).toBe(1);
+      expect(mesh.mended.nonManifoldEdges).toBe(0);
+      expect(mesh.faceOfFacet[facets.length - 1]).toBe(-1);
+    }
+  });
+  test('a row of caps in one crack is mended whatever the order of the facets (seeds 1 to 20)', () => {
+    // Side A C of the lid has corners on its one side only; caps between, as a fan from A.
+    const [a, c, top, low]: Vec3[] = [
+      [0, 0, 0],
+      [8, 0, 0],
+      [3, 5, 1],
+      [4, -6, 2],
+    ];
+    const n = 6;
+    const on = (i: number): Vec3 => [(8 * i) / n, 0, 0];
+    const facets: Facet[] = [[a, c, top]];
+    for (let i = 0; i < n; i++) facets.push([on(i + 1), on(i), low]);
+    for (let i = 1; i < n; i++) facets.push([a, on(i), on(i + 1)]);
+    for (let seed = 1; seed <= 20; seed++) {
+      const random = randomFrom(seed);
+      const mixed = facets.map((f) => ({ f, r: random() })).sort((u, v) => u.r - v.r);
+      const mesh = build(mixed.map(({ f }) => f));
+      expect(mesh.mended.degenerate).toBe(n - 1);
+      expect(mesh.triangles.length / 3).toBe(2 * n);
+      expect([...mesh.twin].filter((t) => t < 0)).toHaveLength(4);
+      expect(mesh.pieces).toHaveLength(1);
+    }
+  });
   test('–0 and +0 are one place', () => {
     const facets = box(3, 4, 5).map((f, i) =>
       i % 2 ? (f.map((p) => p.map((v) => (v === 0 ? -0 : v))) as unknown as Facet) : f,
