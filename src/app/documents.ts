@@ -1,0 +1,172 @@
+/** Opening, saving, journal and export: the store and the host brought together. */
+import type { Host, HostEvent, Opened } from '../bridge/host.ts';
+import { writeProject } from '../core/project/read.ts';
+import type { Store } from '../store/store.ts';
+import type { Question } from '../panels/dialogs.tsx';
+
+export type Ask = (question: Question) => Promise<{ answer: string | null; entry: string }>;
+export type Documents = ReturnType<typeof createDocuments>;
+
+/** How often unsaved work is kept, ms. */
+const KEEP_EVERY = 4000;
+
+export function createDocuments(store: Store, host: Host, ask: Ask) {
+  let kept = -1;
+  let keptPart: Uint8Array | null = null;
+
+  const guard = async (doing: string, f: () => Promise<unknown>): Promise<void> => {
+    try {
+      await f();
+    } catch (error) {
+      store.fail(error, doing);
+    }
+  };
+
+  /** @returns whether the work at hand may be left */
+  async function mayLeave(): Promise<boolean> {
+    if (!store.unsaved()) return true;
+    const { answer } = await ask({
+      title: 'Save the changes?',
+      text: `“${store.getState().origin.name}” has changes that are not saved.`,
+      answers: [['save', 'Save'], ['drop', 'Do not save']],
+    });
+    if (answer === 'save') return save();
+    return answer === 'drop';
+  }
+
+  async function showOpened(opened: Opened | null): Promise<void> {
+    if (!opened) return;
+    if (opened.kind === 'part') {
+      await store.openPart(opened.name, opened.part);
+      return;
+    }
+    const shown = await store.openProject(opened.text, opened.name, opened.ref, opened.part);
+    if (shown && !opened.part) store.notify('problem', `The part is missing: ${opened.partProblem ?? 'its file was not found'}`, 'put the file back and open the project again');
+  }
+
+  const open = () => guard('Opening', async () => (await mayLeave()) && showOpened(await host.open()));
+
+  const openDemo = () => guard('Opening the demonstration', async () => (await mayLeave()) && fetchDemo());
+
+  async function fetchDemo(): Promise<void> {
+    const index = await fetch('./demo/touch-dial.drape.json');
+    if (!index.ok) return store.notify('problem', 'The demonstration is not in this build', 'build the program again');
+    const text = await index.text();
+    const file = (JSON.parse(text) as { part: { file: string } }).part.file;
+    const bytes = new Uint8Array(await (await fetch(`./demo/${file}`)).arrayBuffer());
+    await store.openProject(text, 'touch-dial.drape.json', null, { ref: null, bytes });
+  }
+
+  async function saveTo(place: { ref: string; name: string } | null): Promise<boolean> {
+    const s = store.getState();
+    if (!s.project) return false;
+    let target = place;
+    let part: { file: string; bytes: Uint8Array } | null = null;
+    let project = s.project;
+    if (!target) {
+      const chosen = await host.choosePlace(s.origin.name || `${project.name}.drape.json`, s.origin.partRef, project.part.file);
+      if (!chosen) return false;
+      target = chosen;
+      project = store.renamePart(chosen.partFile) ?? project;
+      if (chosen.writePart && s.origin.partBytes) part = { file: chosen.partFile, bytes: s.origin.partBytes };
+    }
+    const text = writeProject(project);
+    await host.save({ ref: target.ref, text, part });
+    store.saved({ ref: target.ref, name: target.name }, project, text);
+    await host.journal(null);
+    kept = -1;
+    return true;
+  }
+
+  const save = async (): Promise<boolean> => {
+    const { ref, name } = store.getState().origin;
+    try {
+      return await saveTo(ref ? { ref, name } : null);
+    } catch (error) {
+      store.fail(error, 'Saving');
+      return false;
+    }
+  };
+
+  const saveAs = () => guard('Saving', () => saveTo(null));
+
+  const exportFiles = () =>
+    guard('Writing the scan files', async () => {
+      const s = store.getState();
+      if (!s.project) return;
+      const { project, revision } = s;
+      // An unchanged project is copied as it was read, so that the files are those of the command line.
+      const text = s.origin.text !== null && project === s.origin.saved ? s.origin.text : writeProject(project);
+      const result = await store.exportFiles(text);
+      if (!result) return;
+      const folder = await host.exportFiles(`${safeName(project.name)}-scan`, result.files);
+      if (folder === null) return;
+      store.setExported({ revision, report: result.report, folder, files: result.files.length });
+      store.setStep('files');
+      store.notify('done', `${result.files.length} files written to ${folder}`);
+    });
+
+  const keep = () =>
+    guard('Keeping the work', async () => {
+      const s = store.getState();
+      if (!s.project || s.revision === kept) return;
+      kept = s.revision;
+      if (!store.unsaved()) return host.journal(null);
+      const bytes = s.origin.partRef === null && s.origin.partBytes !== keptPart ? s.origin.partBytes : null;
+      await host.journal({ name: s.origin.name, ref: s.origin.ref, text: writeProject(s.project), partFile: s.project.part.file, partRef: s.origin.partRef, partBytes: bytes });
+      if (bytes) keptPart = bytes;
+    });
+  setInterval(() => void keep(), KEEP_EVERY);
+
+  async function close(): Promise<void> {
+    if (await mayLeave()) {
+      await host.journal(null);
+      host.close();
+    }
+  }
+
+  return {
+    open,
+    openDemo,
+    openDropped: (files: readonly File[]) => guard('Opening', async () => (await mayLeave()) && showOpened(await host.openDropped(files))),
+    openRecent: (ref: string) => guard('Opening', async () => (await mayLeave()) && showOpened(await host.openRecent(ref))),
+    save: () => void save(),
+    saveAs,
+    exportFiles,
+    close: () => guard('Closing', close),
+    hear(event: HostEvent) {
+      if (event.kind === 'close-asked') void guard('Closing', close);
+      else if (event.kind === 'opened') void guard('Opening', async () => (await mayLeave()) && showOpened(event.opened));
+    },
+    /** What a fresh window shows: what was asked for, else lost work, else the demonstration or nothing. */
+    async begin(): Promise<readonly string[]> {
+      const news = await host.start();
+      await guard('Opening', async () => {
+        if (news.opened) return showOpened(news.opened);
+        for (const lost of news.lost) {
+          const { answer } = await ask({
+            title: 'Work that was not saved',
+            text: `“${lost.name}” was open when the program ended on ${new Date(lost.when).toLocaleString()}.`,
+            answers: [['take', 'Bring it back'], ['drop', 'Throw it away']],
+          });
+          if (answer === null) continue;
+          const back = await host.recover(lost.id, answer === 'take');
+          if (back) {
+            await store.openProject(back.text, back.name, back.ref, back.part, false);
+            return;
+          }
+        }
+        await fetchDemo();
+      });
+      return news.dismissed;
+    },
+    showHelp: () =>
+      void ask({
+        title: 'Keys and mouse',
+        text: 'Drag turns the view, Shift and drag (or the right button) moves it, the wheel zooms to the pointer. Arrows turn it, + and − zoom, F fits, B looks down the beam. T draws a trace, P places pads, V selects, Esc steps back. In the strip, arrows move the marker or a layer; Enter shows a layer alone.',
+        answers: [['ok', 'Close this']],
+      }),
+  };
+}
+
+const safeName = (name: string): string => name.normalize('NFKD').replace(/[^A-Za-z0-9._-]+/g, '-').replace(/^[.-]+|[.-]+$/g, '') || 'project';

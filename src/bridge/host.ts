@@ -1,0 +1,143 @@
+/**
+ * The one interface that the window needs from whatever it runs in. Two hosts keep it: the desktop
+ * (electron/) and a local browser served by this project (src/bridge/host/serve.ts).
+ *
+ * The page never names a path. The host hands out a `ref` for a place that the person chose, and
+ * takes back only refs that it handed out.
+ */
+
+export interface PartFile {
+  /** As the project names it, relative to the project file. */
+  file: string;
+  /** Where it lies, or null when only its bytes are known (a drop into a browser, the demonstration). */
+  ref: string | null;
+  bytes: Uint8Array;
+}
+
+export interface OpenedProject {
+  kind: 'project';
+  /** Where it lies; null when it has no place yet. */
+  ref: string | null;
+  /** File name, for titles and messages. */
+  name: string;
+  text: string;
+  /** Null when the part's file could not be read; `partProblem` says why. */
+  part: PartFile | null;
+  partProblem?: string;
+}
+
+export interface OpenedPart {
+  kind: 'part';
+  name: string;
+  part: PartFile;
+}
+
+export type Opened = OpenedProject | OpenedPart;
+
+export interface RecentFile {
+  ref: string;
+  name: string;
+  folder: string;
+}
+
+/** Work that an earlier window could not save. */
+export interface LostWork {
+  id: string;
+  name: string;
+  /** ISO time of the last entry. */
+  when: string;
+}
+
+export interface StartNews {
+  /** What the person asked to open, on the command line or by a double click. */
+  opened: Opened | null;
+  firstStart: boolean;
+  lost: LostWork[];
+  recent: RecentFile[];
+  /** Hints and cautions put away for good. */
+  dismissed: string[];
+}
+
+export interface Place {
+  ref: string;
+  name: string;
+  /** How the project must name the part when it is saved there. */
+  partFile: string;
+  /** The part has no file yet: its bytes go along with the save. */
+  writePart: boolean;
+}
+
+export interface SaveRequest {
+  ref: string;
+  text: string;
+  part: { file: string; bytes: Uint8Array } | null;
+}
+
+export interface JournalEntry {
+  name: string;
+  ref: string | null;
+  text: string;
+  partFile: string;
+  partRef: string | null;
+  /** Sent once for a part without a file. */
+  partBytes: Uint8Array | null;
+}
+
+export interface MenuEntry {
+  id: string;
+  label: string;
+  /** As `Mod+Shift+S`; shown beside the label. The page itself listens for the keys. */
+  keys?: string;
+  enabled: boolean;
+}
+
+export interface Menu {
+  label: string;
+  entries: (MenuEntry | 'line')[];
+}
+
+export type HostEvent =
+  | { kind: 'command'; id: string }
+  | { kind: 'close-asked' }
+  | { kind: 'opened'; opened: Opened };
+
+export interface Host {
+  readonly kind: 'desktop' | 'browser';
+  start(): Promise<StartNews>;
+  /** Asks which file to open. Null when the person changed their mind. */
+  open(): Promise<Opened | null>;
+  openRecent(ref: string): Promise<Opened>;
+  /** Files dropped on the window: the first project among them, else the first part. */
+  openDropped(files: readonly File[]): Promise<Opened | null>;
+  /** Gives back lost work, or throws it away. */
+  recover(id: string, take: boolean): Promise<OpenedProject | null>;
+  /** Asks where to save. */
+  choosePlace(suggested: string, partRef: string | null, partName: string): Promise<Place | null>;
+  save(request: SaveRequest): Promise<void>;
+  /** Asks for a folder and writes the files into a folder of that name in it; null when the person changed their mind. */
+  exportFiles(suggested: string, files: readonly { path: string; bytes: Uint8Array }[]): Promise<string | null>;
+  /** Keeps unsaved work; null when there is none. */
+  journal(entry: JournalEntry | null): Promise<void>;
+  recent(): Promise<RecentFile[]>;
+  dismiss(what: string): Promise<void>;
+  /** Title and unsaved state, for the frame and for the question on closing. */
+  title(name: string, unsaved: boolean): void;
+  menu(menus: readonly Menu[]): void;
+  close(): void;
+  listen(hear: (event: HostEvent) => void): () => void;
+}
+
+/** What travels when a request could not be met. */
+export interface HostProblem {
+  problem: string;
+  mend: string;
+}
+
+export class HostError extends Error {
+  readonly news: HostProblem;
+  constructor(news: HostProblem) {
+    super(`${news.problem}; ${news.mend}.`);
+    this.name = 'HostError';
+    this.news = news;
+  }
+}

@@ -1,0 +1,76 @@
+/** The browser host as the page sees it: requests over HTTP to the server that this project runs. */
+import { type Host, HostError, type HostEvent, type Opened } from '../host.ts';
+import type { Reply, Request } from '../requests.ts';
+import { pack, unpack } from '../wire.ts';
+import { askThrough, common } from './desktop.ts';
+
+/** A browser page has no file dialogs with paths: the window asks by itself. */
+export interface AskPerson {
+  /** One of the names, or null. */
+  file(names: readonly string[]): Promise<string | null>;
+  name(suggested: string): Promise<string | null>;
+}
+
+export function browserHost(person: AskPerson): Host {
+  const send = async (request: Request): Promise<Reply> => {
+    const response = await fetch('/ask', { method: 'POST', body: pack(request) });
+    if (!response.ok)
+      return { ok: false, problem: `the server refused (${response.status})`, mend: 'open the address with its key again' };
+    return unpack(new Uint8Array(await response.arrayBuffer())) as Reply;
+  };
+  const ask = askThrough((r) => send(r).catch((): Reply => ({ ok: false, problem: 'the server does not answer', mend: 'start the program again' })));
+  const listeners = new Set<(event: HostEvent) => void>();
+  let unsaved = false;
+  addEventListener('beforeunload', (event) => {
+    if (unsaved) event.preventDefault();
+  });
+  return {
+    ...common(ask),
+    kind: 'browser',
+    async open() {
+      const named = await person.file(await ask<string[]>({ ask: 'list' }));
+      return named === null ? null : ask<Opened>({ ask: 'open', named });
+    },
+    openDropped,
+    async choosePlace(suggested, partRef, partName) {
+      const named = await person.name(suggested);
+      return named === null ? null : ask({ ask: 'choose-place', suggested, partRef, partName, named });
+    },
+    exportFiles: (suggested, files) => ask({ ask: 'export', suggested, files: [...files] }),
+    title(name, now) {
+      unsaved = now;
+      document.title = `${now ? '• ' : ''}${name} – Beamdrape`;
+    },
+    menu() {},
+    close() {
+      unsaved = false;
+      void ask({ ask: 'close' });
+    },
+    listen(hear) {
+      listeners.add(hear);
+      return () => listeners.delete(hear);
+    },
+  };
+}
+
+/** A project dropped into a browser brings its part along, or finds none. */
+async function openDropped(files: readonly File[]): Promise<Opened | null> {
+  const bytesOf = async (f: File) => new Uint8Array(await f.arrayBuffer());
+  const project = files.find((f) => /\.json$/i.test(f.name));
+  const part = files.find((f) => /\.stl$/i.test(f.name));
+  if (project) {
+    const text = await project.text();
+    return {
+      kind: 'project',
+      ref: null,
+      name: project.name,
+      text,
+      part: part ? { file: part.name, ref: null, bytes: await bytesOf(part) } : null,
+      ...(part ? {} : { partProblem: 'drop the project together with its part' }),
+    };
+  }
+  if (part) return { kind: 'part', name: part.name, part: { file: part.name, ref: null, bytes: await bytesOf(part) } };
+  if (files.length > 0)
+    throw new HostError({ problem: `${files[0]!.name} is neither a part nor a project`, mend: 'drop an .stl or a .drape.json file' });
+  return null;
+}

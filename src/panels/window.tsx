@@ -1,0 +1,25 @@
+/** What every panel may reach: the store, the commands and the view. */
+import { createContext, useContext } from 'react';
+import { useStore } from 'zustand';
+import type { Vec3 } from '../core/base/vec.ts';
+import type { State } from '../store/state.ts';
+import type { Store } from '../store/store.ts';
+
+export interface WindowTools {
+  store: Store;
+  /** Runs a command by its id, as the menu does. */
+  run(command: string): void;
+  showPlace(point: Vec3, normal: Vec3): void;
+  dismissed: ReadonlySet<string>;
+  dismiss(what: string): void;
+}
+
+export const WindowContext = createContext<WindowTools | null>(null);
+
+export function useWindow(): WindowTools {
+  const w = useContext(WindowContext);
+  if (!w) throw new Error('a panel outside the window');
+  return w;
+}
+
+export const useLook = <T,>(f: (s: State) => T): T => useStore(useWindow().store.api, f);

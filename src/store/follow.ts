@@ -1,0 +1,72 @@
+/** Keeps copper, reach and plan abreast of the document: one revision at a time, the newest always next. */
+import type { StoreApi } from 'zustand/vanilla';
+import { type WorkerClient, wasStopped } from '../worker/client.ts';
+import type { State } from './state.ts';
+
+export interface Follower {
+  /** The document changed. */
+  wake(): void;
+  /** Settles when everything shown belongs to the document as it is. */
+  settled(): Promise<void>;
+}
+
+export function createFollower(api: StoreApi<State>, worker: WorkerClient, fail: (error: unknown, doing: string) => void): Follower {
+  let running: Promise<void> | null = null;
+  let beyondDrape = false;
+  /** Revision that was followed to its end, well or not. */
+  let followed = -1;
+
+  const late = (revision: number) => api.getState().revision !== revision;
+
+  async function follow(): Promise<void> {
+    for (;;) {
+      const { revision, project, part } = api.getState();
+      if (revision === followed) return;
+      followed = revision;
+      if (!project || !part) {
+        api.setState({ copper: null, reach: null, plan: null });
+        continue;
+      }
+      const since = performance.now();
+      const tell = (what: string) => (p: { done: number; of: number } | null) =>
+        api.setState({ busy: { what, since, share: p && p.of > 0 ? p.done / p.of : null } });
+      try {
+        const drape = tell('Laying the copper');
+        drape(null);
+        const copper = await worker.call('drape', { project }, drape);
+        // A drag is shown as it goes; only reach and plan wait for it to end.
+        if (revision > (api.getState().copper?.revision ?? -1)) api.setState({ copper: { revision, value: copper } });
+        if (late(revision)) continue;
+        beyondDrape = true;
+        const look = tell('Looking where the beam reaches');
+        look(null);
+        const reach = await worker.call('reach', null, look);
+        if (late(revision)) continue;
+        api.setState({ reach: { revision, value: reach } });
+        const layers = tell('Planning the layers');
+        layers(null);
+        const plan = await worker.call('plan', null, layers);
+        if (late(revision)) continue;
+        api.setState({ plan: { revision, value: plan } });
+      } catch (error) {
+        if (!wasStopped(error)) fail(error, 'Working out the copper');
+      } finally {
+        beyondDrape = false;
+        api.setState((s) => (s.busy?.since === since ? { busy: null } : s));
+      }
+    }
+  }
+
+  const wake = () => {
+    if (beyondDrape) worker.stopAll();
+    running ??= follow().finally(() => {
+      running = null;
+    });
+  };
+  return {
+    wake,
+    settled: async () => {
+      while (running) await running;
+    },
+  };
+}

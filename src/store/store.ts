@@ -1,0 +1,478 @@
+/** The store: state, acts with undo, drawing, and the derived results that follow the document. No React here. */
+import { createStore as zustandStore, type StoreApi } from 'zustand/vanilla';
+import type { Vec3 } from '../core/base/vec.ts';
+import type { Element, Project, Setup } from '../core/project/schema.ts';
+import type { PartPicture, Probe } from '../worker/pictures.ts';
+import { type WorkerClient, WorkFailure, wasStopped } from '../worker/client.ts';
+import type { Ray } from '../worker/session.ts';
+import { type Act, apply, freeId, nameOf } from './document.ts';
+import { createFollower } from './follow.ts';
+import { noHistory, record, redo, seal, undo } from './history.ts';
+import { copperAt } from './margins.ts';
+import { newProject } from './new-project.ts';
+import { current, firstState, isUnsaved, type Notice, type Origin, type State, type Tool } from './state.ts';
+
+export type Store = ReturnType<typeof createStore>;
+
+export interface Workers {
+  /** Long work: drape, reach, plan, export. */
+  heavy: WorkerClient;
+  /** What must answer while the pointer moves. */
+  live: WorkerClient;
+}
+
+export function createStore(workers: Workers) {
+  const api: StoreApi<State> = zustandStore<State>(() => firstState);
+  const get = api.getState;
+  const set = api.setState;
+  const follower = createFollower(api, workers.heavy, (error, doing) => fail(error, doing));
+  let notices = 0;
+  let opening = 0;
+
+  const notify = (level: Notice['level'], text: string, mend = '') =>
+    set((s) => ({ notices: [...s.notices, { id: ++notices, level, text, mend }].slice(-6) }));
+
+  /** Shows what went wrong; what the person stopped is no news. */
+  function fail(error: unknown, doing: string): void {
+    if (wasStopped(error)) return;
+    if (error instanceof WorkFailure && error.failure.kind === 'input') {
+      for (const p of error.failure.problems.slice(0, 4)) notify('problem', `${p.file}${p.place ? `, ${p.place}` : ''}: ${p.problem}`, p.mend);
+      return;
+    }
+    const news = (error as { news?: { problem: string; mend: string } }).news;
+    if (news) return notify('problem', news.problem, news.mend);
+    notify('fault', `${doing} failed by a mistake of this program: ${(error as Error).message}`, 'your work is kept; save it under another name');
+  }
+
+  /** The document after an act. `gesture` joins the acts of one drag into one step. */
+  function act(a: Act, gesture: string | null = null): void {
+    const s = get();
+    if (!s.project) return;
+    const after = apply(s.project, a);
+    if (after === s.project) return;
+    set({ history: record(s.history, nameOf(a), s.project, after, gesture) });
+    become(after);
+  }
+
+  function become(project: Project): void {
+    const s = get();
+    const ids = new Set(project.circuit.elements.map((e) => e.id));
+    const selection = s.selection.filter((id) => ids.has(id));
+    set({
+      project,
+      revision: s.revision + 1,
+      selection: selection.length === s.selection.length ? s.selection : selection,
+      setup: Math.min(s.setup, setupsOf(project).length - 1),
+    });
+    if (s.project && project.part.units !== s.project.part.units) void reopenPart();
+    else follower.wake();
+  }
+
+  async function reopenPart(): Promise<void> {
+    const s = get();
+    if (!s.project || !s.origin.partBytes) return;
+    try {
+      set({ part: await readPart(s.origin.partBytes, s.project) });
+      follower.wake();
+    } catch (error) {
+      fail(error, 'Reading the part');
+    }
+  }
+
+  async function readPart(bytes: Uint8Array, project: Project): Promise<PartPicture> {
+    const argument = { bytes, file: project.part.file, units: project.part.units };
+    const done = busy('Reading the part');
+    try {
+      const [picture] = await Promise.all([workers.heavy.call('openPart', argument, done.hear), workers.live.call('openPart', argument)]);
+      return picture;
+    } finally {
+      done.end();
+    }
+  }
+
+  function busy(what: string) {
+    const mine = { what, share: null, since: performance.now() };
+    set({ busy: mine });
+    return {
+      hear: (p: { done: number; of: number }) => set({ busy: { ...mine, share: p.of > 0 ? p.done / p.of : null } }),
+      end: () => set((s) => (s.busy?.since === mine.since ? { busy: null } : s)),
+    };
+  }
+
+  /** A document in place of the one before, with nothing left of it. */
+  async function show(project: Project, origin: Origin, bytes: Uint8Array | null): Promise<boolean> {
+    const mine = ++opening;
+    workers.heavy.stopAll();
+    try {
+      const picture = bytes ? await readPart(bytes, project) : null;
+      if (mine !== opening) return false;
+      const s = get();
+      set({
+        ...firstState,
+        project,
+        origin: { ...origin, partBytes: bytes },
+        part: picture,
+        revision: s.revision + 1,
+        notices: [],
+        pen: s.pen,
+        history: noHistory,
+        step: picture ? (project.circuit.elements.length > 0 ? 'reach' : 'circuit') : 'part',
+      });
+      follower.wake();
+      return true;
+    } catch (error) {
+      fail(error, 'Opening');
+      return false;
+    }
+  }
+
+  function select(ids: readonly string[]): void {
+    set({ selection: ids });
+  }
+
+  function setTool(kind: Tool['kind']): void {
+    set({ tool: kind === 'trace' ? { kind, route: [], runs: [], live: null } : { kind }, selection: kind === 'look' ? get().selection : [] });
+  }
+
+  // --- drawing ---------------------------------------------------------------------------------
+
+  let asked = 0;
+  let waiting: Ray | null = null;
+  let inFlight = false;
+
+  /** Follows the pointer: only the last place asked for is answered. Null takes the hover away. */
+  function point(ray: Ray | null, snap: number): void {
+    waiting = ray;
+    asked++;
+    if (ray === null) {
+      if (get().hover) set({ hover: null });
+      return;
+    }
+    if (!inFlight) void follow(snap);
+  }
+
+  async function follow(snap: number): Promise<void> {
+    inFlight = true;
+    try {
+      while (waiting) {
+        const ray = waiting;
+        const mine = asked;
+        waiting = null;
+        const probe = await pick(ray);
+        if (mine !== asked && waiting === null) break;
+        hoverAt(probe);
+        const { tool } = get();
+        if (tool.kind !== 'trace' || tool.route.length === 0) continue;
+        if (!probe) {
+          set({ tool: { ...tool, live: null } });
+          continue;
+        }
+        const to = snapped(probe.point, snap);
+        const run = await workers.live.call('run', { from: tool.route[tool.route.length - 1]!, to });
+        const now = get().tool;
+        if (now.kind === 'trace' && now.route === tool.route) set({ tool: { ...now, live: { to, ...run } } });
+      }
+    } catch (error) {
+      fail(error, 'Following the pointer');
+    } finally {
+      inFlight = false;
+    }
+  }
+
+  async function pick(ray: Ray): Promise<Probe | null> {
+    const s = get();
+    if (!s.project || !s.part) return null;
+    return workers.live.call('pick', { ray, setup: setupsOf(s.project)[s.setup]!, head: s.project.head });
+  }
+
+  function hoverAt(probe: Probe | null): void {
+    const { copper } = current(get());
+    if (!probe) return set({ hover: null });
+    const triangle = copper ? copperAt(copper, probe.face, probe.point) : -1;
+    set({ hover: { probe, triangle, element: triangle < 0 ? -1 : copper!.element[triangle]! } });
+  }
+
+  /** The middle of a pad within `reach` mm of the point, or the point itself. */
+  function snapped(p: Vec3, reach: number): Vec3 {
+    let best: { at: Vec3; far: number } | null = null;
+    for (const e of get().project?.circuit.elements ?? []) {
+      if (e.kind !== 'pad') continue;
+      const far = Math.hypot(p[0] - e.at[0], p[1] - e.at[1], p[2] - e.at[2]) - padRadius(e.shape) * 0.7;
+      if (far < reach && (!best || far < best.far)) best = { at: e.at, far };
+    }
+    return best?.at ?? p;
+  }
+
+  /** A click with the tool in hand. @returns what the view may want to know: the probe */
+  async function press(ray: Ray, snap: number, add: boolean): Promise<void> {
+    let probe: Probe | null;
+    try {
+      probe = await pick(ray);
+    } catch (error) {
+      return fail(error, 'Finding the place');
+    }
+    const s = get();
+    if (!s.project) return;
+    if (s.tool.kind === 'look') {
+      hoverAt(probe);
+      const hit = get().hover;
+      const element = hit && hit.element >= 0 ? s.copper?.value.elements[hit.element] : undefined;
+      if (!element) return add ? undefined : select([]);
+      if (add) return select(s.selection.includes(element.id) ? s.selection.filter((id) => id !== element.id) : [...s.selection, element.id]);
+      if (s.selection.length === 1 && s.selection[0] === element.id && element.kind === 'trace' && element.path)
+        return insertPoint(element.id, element.path, probe!.point);
+      return select([element.id]);
+    }
+    if (!probe) return;
+    if (s.tool.kind === 'pad') {
+      const element: Element = { id: freeId(s.project, 'p'), kind: 'pad', net: s.pen.net, at: round3(probe.point), shape: s.pen.shape, turn: 0 };
+      act({ kind: 'add-element', element });
+      return;
+    }
+    await extend(snapped(probe.point, snap));
+  }
+
+  async function extend(to: Vec3): Promise<void> {
+    const { tool } = get();
+    if (tool.kind !== 'trace') return;
+    const last = tool.route[tool.route.length - 1];
+    if (!last) return set({ tool: { ...tool, route: [round3(to)], live: null } });
+    if (Math.hypot(last[0] - to[0], last[1] - to[1], last[2] - to[2]) < SAME_PLACE) return;
+    const known = tool.live && tool.live.to === to ? tool.live : null;
+    const run = known ?? (await workers.live.call('run', { from: last, to }).catch((error) => (fail(error, 'Finding the way'), null)));
+    const now = get().tool;
+    if (!run || now.kind !== 'trace' || now.route !== tool.route) return;
+    if (!run.points) return notify('problem', 'There is no way over the surface to this place', 'choose a place on the same piece of the part');
+    set({ tool: { ...now, route: [...now.route, round3(to)], runs: [...now.runs, run.points], live: null } });
+  }
+
+  /** Ends the trace being drawn; fewer than two places make none. */
+  function finish(): void {
+    const s = get();
+    if (s.tool.kind !== 'trace' || !s.project) return;
+    const { route } = s.tool;
+    set({ tool: { kind: 'trace', route: [], runs: [], live: null } });
+    if (route.length < 2) return;
+    const element: Element = {
+      id: freeId(s.project, 't'),
+      kind: 'trace',
+      net: s.pen.net || netAt(s.project, route[0]!) || netAt(s.project, route[route.length - 1]!),
+      width: s.pen.width,
+      route: route.map((at) => ({ at: [...at] as [number, number, number] })),
+    };
+    act({ kind: 'add-element', element });
+  }
+
+  function takeBack(): void {
+    const { tool } = get();
+    if (tool.kind !== 'trace') return;
+    set({ tool: { ...tool, route: tool.route.slice(0, -1), runs: tool.runs.slice(0, -1), live: null } });
+  }
+
+  /** Escape: first drops the run in hand, then the tool, then the selection. */
+  function drop(): void {
+    const { tool, isolated } = get();
+    if (tool.kind === 'trace' && tool.route.length > 0) setTool('trace');
+    else if (tool.kind !== 'look') setTool('look');
+    else if (isolated !== null) set({ isolated: null });
+    else select([]);
+  }
+
+  function insertPoint(id: string, path: Float32Array, at: Vec3): void {
+    const e = get().project?.circuit.elements.find((x) => x.id === id);
+    if (e?.kind !== 'trace') return;
+    const nearest = (p: readonly number[]) => {
+      let [best, index] = [Infinity, 0];
+      for (let i = 0; i < path.length / 3; i++) {
+        const d = Math.hypot(path[3 * i]! - p[0]!, path[3 * i + 1]! - p[1]!, path[3 * i + 2]! - p[2]!);
+        if (d < best) [best, index] = [d, i];
+      }
+      return index;
+    };
+    const here = nearest(at);
+    let index = e.route.findIndex((r, i) => i > 0 && nearest(r.at) >= here);
+    if (index < 0) index = e.route.length - 1;
+    act({ kind: 'add-point', id, index, at: round3(at) });
+  }
+
+  let dragging: { gesture: string; waiting: Ray | null; running: Promise<void> | null } | null = null;
+
+  /** Drags a point of an element to where the ray meets the part; `end` makes it one step. */
+  function drag(id: string, index: number, ray: Ray, snap: number): void {
+    dragging ??= { gesture: `drag ${++asked}`, waiting: null, running: null };
+    const mine = dragging;
+    mine.waiting = ray;
+    mine.running ??= (async () => {
+      while (mine.waiting) {
+        const next = mine.waiting;
+        mine.waiting = null;
+        const probe = await pick(next);
+        const e = get().project?.circuit.elements.find((x) => x.id === id);
+        if (!probe || !e) continue;
+        if (e.kind === 'pad') act({ kind: 'move-pad', id, at: round3(probe.point) }, mine.gesture);
+        else act({ kind: 'move-point', id, index, at: round3(snapped(probe.point, snap)) }, mine.gesture);
+      }
+      mine.running = null;
+    })().catch((error) => fail(error, 'Moving the point'));
+  }
+
+  async function endDrag(): Promise<void> {
+    const mine = dragging;
+    dragging = null;
+    await mine?.running;
+    set((s) => ({ history: seal(s.history) }));
+  }
+
+  return {
+    api,
+    getState: get,
+    subscribe: api.subscribe,
+    act,
+    seal: () => set((s) => ({ history: seal(s.history) })),
+    undo() {
+      const back = undo(get().history);
+      if (!back) return;
+      set({ history: back.history });
+      become(back.project);
+    },
+    redo() {
+      const forth = redo(get().history);
+      if (!forth) return;
+      set({ history: forth.history });
+      become(forth.project);
+    },
+    notify,
+    dismissNotice: (id: number) => set((s) => ({ notices: s.notices.filter((n) => n.id !== id) })),
+    fail,
+    select,
+    deleteSelected() {
+      const { selection } = get();
+      if (selection.length > 0) act({ kind: 'delete', ids: selection });
+    },
+    setTool,
+    setPen: (pen: Partial<State['pen']>) => set((s) => ({ pen: { ...s.pen, ...pen } })),
+    setStep: (step: State['step']) => set({ step }),
+    setSetup: (setup: number) => set({ setup, isolated: null }),
+    setShow: (show: State['show']) => set({ show, ...(show === 'offset' ? {} : { isolated: null }) }),
+    /** Moves the stage; the copper is then seen as it stands at that offset. */
+    setOffset: (offset: number) => set({ offset, show: 'offset' }),
+    /** Shows one layer alone, at its own offset; the same again shows all. */
+    isolate(layer: number | null) {
+      const s = get();
+      const { plan } = current(s);
+      if (layer === null || s.isolated === layer || !plan?.layers[layer]) set({ isolated: null, show: 'layers' });
+      else set({ isolated: layer, offset: -plan.layers[layer].focusHeight, show: 'layers' });
+    },
+    /** Puts a layer at a height chosen by hand; the project keeps all heights of the setup from then on. */
+    moveLayer(layer: number, height: number, gesture: string | null) {
+      const s = get();
+      const { plan } = current(s);
+      if (!plan || !s.project || s.project.setups === 'auto') return;
+      const heights = ((s.project.setups[s.setup]?.['focusHeights'] as number[] | undefined) ?? plan.layers.map((l) => l.focusHeight)).slice();
+      const old = heights[layer];
+      if (old === undefined) return;
+      // Layers are numbered from below: one does not pass its neighbour, and so keeps its number.
+      const least = Math.max(s.project.stage.step, 0.01);
+      const [below, above] = [heights[layer - 1] ?? -Infinity, heights[layer + 1] ?? Infinity];
+      heights[layer] = Math.round(Math.max(below + least, Math.min(above - least, height)) * 1e4) / 1e4;
+      act({ kind: 'set', path: ['setups', s.setup, 'focusHeights'], what: `height of layer ${layer + 1}`, value: heights }, gesture);
+    },
+    /** Lets the planner choose the heights again. */
+    fewest() {
+      const s = get();
+      act({ kind: 'set', path: ['setups', s.setup, 'focusHeights'], what: 'layers to the fewest', value: undefined });
+    },
+    point,
+    press,
+    finish,
+    takeBack,
+    drop,
+    drag,
+    endDrag,
+    extend,
+    /** Opens a project text. The part's bytes may be missing: then the project is shown without it. */
+    async openProject(text: string, name: string, ref: string | null, part: { ref: string | null; bytes: Uint8Array } | null, saved = true): Promise<boolean> {
+      try {
+        const { project, unknown } = await workers.heavy.call('readProject', { text, file: name });
+        const origin: Origin = { ref, name, text: saved ? text : null, saved: saved ? project : null, partRef: part?.ref ?? null, partBytes: null };
+        const shown = await show(project, origin, part?.bytes ?? null);
+        if (shown && unknown.length > 0) notify('done', `Fields that this program does not know are kept: ${unknown.slice(0, 5).join(', ')}`);
+        return shown;
+      } catch (error) {
+        fail(error, 'Opening');
+        return false;
+      }
+    },
+    /** A new project on a part. */
+    async openPart(name: string, part: { file: string; ref: string | null; bytes: Uint8Array }): Promise<boolean> {
+      const empty = newProject(part.file, null);
+      const origin: Origin = { ref: null, name: `${empty.name}.drape.json`, text: null, saved: null, partRef: part.ref, partBytes: null };
+      const mine = opening + 1;
+      if (!(await show(empty, { ...origin, name: origin.name || name }, part.bytes))) return false;
+      const bounds = get().part?.bounds;
+      if (mine === opening && bounds) {
+        const placed = newProject(part.file, bounds);
+        set((s) => ({ project: placed, revision: s.revision + 1 }));
+        follower.wake();
+      }
+      return true;
+    },
+    /** After a save: the document as it stands is the saved one. */
+    saved(origin: Partial<Origin>, project: Project, text: string) {
+      set((s) => ({ origin: { ...s.origin, ...origin, text, saved: project } }));
+    },
+    /** The part's name in the project follows its place; that is no act of the person. */
+    renamePart(file: string): Project | null {
+      const s = get();
+      if (!s.project || s.project.part.file === file) return s.project;
+      const project = { ...s.project, part: { ...s.project.part, file } };
+      set({ project, revision: s.revision + 1 });
+      follower.wake();
+      return project;
+    },
+    unsaved: () => isUnsaved(get()),
+    setExported: (exported: State['exported']) => set({ exported }),
+    async exportFiles(projectText: string) {
+      const s = get();
+      if (!s.project || !s.origin.partBytes) return null;
+      await follower.settled();
+      const done = busy('Making the scan files');
+      try {
+        return await workers.heavy.call(
+          'exportFiles',
+          { project: s.project, projectFile: s.origin.name, projectText, part: { file: s.project.part.file, bytes: s.origin.partBytes } },
+          done.hear,
+        );
+      } finally {
+        done.end();
+      }
+    },
+    /** Stops whatever long work runs. */
+    stop: () => workers.heavy.stopAll(),
+    settled: follower.settled,
+  };
+}
+
+/** Two clicks closer than this are one, mm: well under the narrowest trace. */
+const SAME_PLACE = 0.02;
+
+export const setupsOf = (project: Project): Setup[] =>
+  project.setups === 'auto' ? [{ name: 'auto', pose: { rotate: [0, 0, 0, 1], move: [0, 0, 0] } }] : project.setups;
+
+const round3 = (p: Vec3): [number, number, number] => [r(p[0]), r(p[1]), r(p[2])];
+/** To 0.1 µm: far below what a bench can hold, and project files stay readable. */
+const r = (x: number): number => Math.round(x * 1e4) / 1e4 + 0;
+
+export function padRadius(shape: State['pen']['shape']): number {
+  if ('circle' in shape) return shape.circle / 2;
+  if ('rect' in shape) return Math.hypot(...shape.rect) / 2;
+  if ('slot' in shape) return Math.max(...shape.slot) / 2;
+  return Math.max(...shape.outline.map(([u, v]) => Math.hypot(u, v)));
+}
+
+/** Net of the pad that stands at this place: a trace that begins on a pad belongs to it. */
+function netAt(project: Project, p: Vec3): string {
+  for (const e of project.circuit.elements)
+    if (e.kind === 'pad' && Math.hypot(e.at[0] - p[0], e.at[1] - p[1], e.at[2] - p[2]) < 0.01) return e.net;
+  return '';
+}

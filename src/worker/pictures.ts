@@ -1,0 +1,113 @@
+/** What the window's worker hands back: flat arrays ready to draw and to ask. Lengths mm, angles degrees. */
+import type { Vec3 } from '../core/base/vec.ts';
+import type { InputProblem } from '../core/base/news.ts';
+import type { ElementKind } from '../core/drape/copper.ts';
+import type { DrapeFinding } from '../core/drape/element.ts';
+import type { Mended } from '../core/mesh/surface-mesh.ts';
+import type { Report } from '../core/project/report.ts';
+
+export interface PartPicture {
+  /** Part frame, 9 a face: corners are not shared, so that creases stay sharp. */
+  positions: Float32Array;
+  normals: Float32Array;
+  /** Creases and borders as segments, 6 a segment. */
+  edges: Float32Array;
+  triangles: number;
+  vertices: number;
+  pieces: number;
+  closed: boolean;
+  area: number;
+  volume: number;
+  bounds: readonly [Vec3, Vec3];
+  mended: Mended;
+}
+
+export interface ElementPicture {
+  id: string;
+  kind: ElementKind;
+  net: string;
+  length: number;
+  drawnLength: number;
+  area: number;
+  stretch: number;
+  anchor: Vec3;
+  /** Its triangles are `first … first + count - 1`. */
+  first: number;
+  count: number;
+  /** Drawn outline, closed loops, 3 a point. */
+  outline: Float32Array[];
+  /** Centre line of a trace. */
+  path: Float32Array | null;
+}
+
+/** The copper of all elements, one triangle after the other; T triangles. */
+export interface CopperPicture {
+  elements: ElementPicture[];
+  /** Elements that could not be laid: why. */
+  problems: InputProblem[];
+  /** Elements that were laid with bad news, or not at all: no way over the surface, no room. */
+  findings: DrapeFinding[];
+  /** Part frame, 9 a triangle. */
+  positions: Float32Array;
+  normals: Float32Array;
+  /** Face of the part under each triangle. */
+  face: Int32Array;
+  /** Element of each triangle. */
+  element: Int32Array;
+  area: Float32Array;
+  /** Bench height of each corner at stage offset 0, 3 a triangle, one array a setup. */
+  heights: Float32Array[];
+}
+
+/** One setup's answers, one number a triangle of the copper. */
+export interface ReachPicture {
+  setup: number;
+  incidence: Float32Array;
+  /** Share of the beam that is blocked, 0 … 1. */
+  blocked: Float32Array;
+  /** Largest |command| over half the field: 1 is the edge. */
+  field: Float32Array;
+  fluence: Float32Array;
+  usable: Float32Array;
+  /** Bit i: `REASONS[i]` fails. */
+  fails: Uint8Array;
+}
+
+export interface LayerPicture {
+  index: number;
+  focusHeight: number;
+  worstDefocus: number;
+  /** mm² */
+  area: number;
+  elements: number;
+}
+
+export interface PlanPicture {
+  setup: number;
+  layers: LayerPicture[];
+  /** Layer of each triangle, counting from 0; -1 where none writes it. */
+  layerOf: Int16Array;
+  unreached: { element: number; length: number }[];
+}
+
+/** What stands under the pointer. */
+export interface Probe {
+  point: Vec3;
+  normal: Vec3;
+  face: number;
+  height: number;
+  incidence: number;
+  /** Distance along the beam to what stands in its way; null where nothing does. */
+  blockedAfter: number | null;
+}
+
+export interface LiveRun {
+  /** Way over the surface, 3 a point; null when there is none. */
+  points: Float32Array | null;
+  length: number;
+}
+
+export interface ExportResult {
+  report: Report;
+  files: { path: string; bytes: Uint8Array }[];
+}

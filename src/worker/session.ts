@@ -1,0 +1,273 @@
+/** The functions behind the window, as plain calls on plain data: what web.ts serves and tests call directly. */
+import { partPoint } from '../core/base/brands.ts';
+import { Fault, InputError, type InputProblem } from '../core/base/news.ts';
+import { poseFrame } from '../core/base/pose.ts';
+import type { RunContext } from '../core/base/run-context.ts';
+import { addScaled, at3, dot, normalize, type Vec3 } from '../core/base/vec.ts';
+import type { Copper, CopperElement } from '../core/drape/copper.ts';
+import type { Draped, DrapeFinding } from '../core/drape/element.ts';
+import { type Draper, drapeElement, prepareDraper } from '../core/drape/drape.ts';
+import { shortestWith } from '../core/geodesic/shortest.ts';
+import type { SurfaceQueries } from '../core/mesh/queries.ts';
+import type { SurfaceMesh } from '../core/mesh/surface-mesh.ts';
+import { barycentric, type SurfacePoint } from '../core/mesh/surface-point.ts';
+import { type CornerNormals, normalAt } from '../core/part/normals.ts';
+import { loadPart, type Part, type Units } from '../core/part/part.ts';
+import { readProject, writeProject } from '../core/project/read.ts';
+import type { Element, Head, Project, Setup } from '../core/project/schema.ts';
+import { creases } from './creases.ts';
+import type { SetupPlan } from '../core/layers/plan.ts';
+import type { SetupReach } from '../core/reach/result.ts';
+import type { CopperPicture, ElementPicture, ExportResult, LiveRun, PartPicture, PlanPicture, Probe, ReachPicture } from './pictures.ts';
+import { standInPlan, standInReach } from './stand-in.ts';
+
+export interface Ray {
+  /** Part frame. */
+  origin: Vec3;
+  /** Unit, part frame. */
+  direction: Vec3;
+}
+
+export type Session = ReturnType<typeof createSession>;
+
+export function createSession() {
+  let part: Part | null = null;
+  let draper: Draper | null = null;
+  let project: Project | null = null;
+  let copper: Copper | null = null;
+  let reached: SetupReach[] | null = null;
+  const needCopper = () => {
+    if (!project || !copper) throw new Fault('no copper is laid in the worker');
+    return { project, copper };
+  };
+  const laid = new Map<string, Draped>();
+
+  const needPart = (): Part => {
+    if (!part) throw new Fault('no part is open in the worker');
+    return part;
+  };
+
+  return {
+    /** @throws InputError for a file that is no part */
+    openPart(a: { bytes: Uint8Array; file: string; units: Units }, ctx: RunContext): PartPicture {
+      part = loadPart(a.bytes, a.file, a.units, ctx);
+      draper = prepareDraper(part);
+      laid.clear();
+      copper = null;
+      const { mesh, normals } = part;
+      const { positions: x, triangles: t } = mesh;
+      const positions = new Float32Array(t.length * 3);
+      for (let i = 0; i < t.length; i++) for (let k = 0; k < 3; k++) positions[3 * i + k] = x[3 * t[i] + k];
+      return {
+        positions,
+        normals: Float32Array.from(normals),
+        edges: creases(mesh),
+        triangles: t.length / 3,
+        vertices: x.length / 3,
+        pieces: mesh.pieces.length,
+        closed: mesh.closed,
+        area: mesh.area,
+        volume: mesh.volume,
+        bounds: mesh.bounds,
+        mended: mesh.mended,
+      };
+    },
+
+    /**
+     * Reads the project as a file would be read and lays its copper. Elements that did not change are not laid again;
+     * one that cannot be laid is named in `problems`, and the others stay.
+     */
+    drape(a: { project: Project }, ctx: RunContext): CopperPicture {
+      const here = needPart();
+      project = readProject(writeProject(a.project), a.project.name).project;
+      const problems: InputProblem[] = [];
+      const elements: CopperElement[] = [];
+      const findings: DrapeFinding[] = [];
+      const keep = new Set<string>();
+      project.circuit.elements.forEach((element, i) => {
+        ctx.step('drape', i, project!.circuit.elements.length);
+        const key = JSON.stringify(element);
+        keep.add(key);
+        try {
+          const known = laid.get(key) ?? drapeElement(draper!, element, `$.circuit.elements[${i}]`, a.project.name);
+          laid.set(key, known);
+          if (known.element) elements.push(known.element);
+          findings.push(...known.findings);
+        } catch (error) {
+          if (!(error instanceof InputError)) throw error;
+          problems.push(...error.problems);
+        }
+      });
+      for (const key of laid.keys()) if (!keep.has(key)) laid.delete(key);
+      copper = { elements };
+      return copperPicture(copper, here, posesOf(project), problems, findings);
+    },
+
+    /** @throws InputError with every problem found in the text */
+    readProject: (a: { text: string; file: string }) => readProject(a.text, a.file),
+
+    /** Reach of the copper laid last. */
+    reach(_: null, ctx: RunContext): ReachPicture[] {
+      const { project: p, copper: c } = needCopper();
+      ctx.step('reach', 0, 1);
+      reached = standInReach(p, c, posesOf(p), needPart().mesh);
+      return reached.map((r) => reachPicture(r, p));
+    },
+
+    /** The layers for the reach found last. */
+    plan(_: null, ctx: RunContext): PlanPicture[] {
+      const { copper: c } = needCopper();
+      if (!reached) throw new Fault('layers are planned after reach');
+      ctx.step('layers', 0, 1);
+      const plans = standInPlan(reached);
+      return plans.map((plan) => planPicture(plan, c, reached![plan.setup]));
+    },
+
+    /** The files that the command line would write, as bytes. */
+    exportFiles(_a: { project: Project; projectFile: string; projectText: string; part: { file: string; bytes: Uint8Array } }, _ctx: RunContext): ExportResult {
+      throw new InputError({ code: 'not-yet', file: 'export', place: '', problem: 'export is not there yet', mend: 'wait for it' });
+    },
+
+    /** What the ray meets first, in the setup's bench. */
+    pick(a: { ray: Ray; setup: Setup; head: Head }): Probe | null {
+      const { mesh, queries, normals } = needPart();
+      const hit = queries.firstHit(a.ray.origin, a.ray.direction);
+      return hit === null ? null : probeAt(mesh, queries, normals, hit.point, hit.face, a.setup, a.head);
+    },
+
+    /** The shortest way from the last point of a route to where the ray meets the part. */
+    run(a: { from: Vec3; to: Vec3 }): LiveRun {
+      const { mesh, queries } = needPart();
+      const [from, to] = [surfacePoint(mesh, queries, a.from), surfacePoint(mesh, queries, a.to)];
+      const path = shortestWith(draper!.solver, from, to);
+      return path === null ? { points: null, length: 0 } : { points: Float32Array.from(path.points), length: path.length };
+    },
+  };
+}
+
+export const posesOf = (project: Project): Setup[] =>
+  project.setups === 'auto' ? [{ name: 'auto', pose: { rotate: [0, 0, 0, 1], move: [0, 0, 0] } }] : project.setups;
+
+function surfacePoint(mesh: SurfaceMesh, queries: SurfaceQueries, p: Vec3): SurfacePoint {
+  const hit = queries.nearest(p);
+  if (!hit) throw new Fault('a surface has a nearest point');
+  return { face: hit.face, bary: barycentric(mesh, hit.face, hit.point) };
+}
+
+/** µm-sized step off the surface, so that a ray does not meet the face it starts on (model.md §4). */
+const LIFT = 1e-3;
+
+function probeAt(mesh: SurfaceMesh, queries: SurfaceQueries, normals: CornerNormals, point: Vec3, face: number, setup: Setup, head: Head): Probe {
+  const frame = poseFrame(setup.pose);
+  const bench = frame.point(partPoint(point));
+  const normal = normalAt(mesh, normals, face, point);
+  const u = normalize([head.pivot[0] ? -bench[0] / head.pivot[0] : 0, head.pivot[1] ? -bench[1] / head.pivot[1] : 0, 1]);
+  const toward = frame.directionToPart(u);
+  const blocked = queries.firstHit(addScaled(point, normal, LIFT), toward);
+  return {
+    point,
+    normal,
+    face,
+    height: bench[2],
+    incidence: (Math.acos(Math.max(-1, Math.min(1, dot(normal, toward)))) * 180) / Math.PI,
+    blockedAfter: blocked ? blocked.distance : null,
+  };
+}
+
+function copperPicture(copper: Copper, part: Part, setups: Setup[], problems: InputProblem[], findings: DrapeFinding[]): CopperPicture {
+  const total = copper.elements.reduce((n, e) => n + e.copper.triangles.length / 3, 0);
+  const positions = new Float32Array(9 * total);
+  const normals = new Float32Array(9 * total);
+  const face = new Int32Array(total);
+  const element = new Int32Array(total);
+  const area = new Float32Array(total);
+  const heights = setups.map(() => new Float32Array(3 * total));
+  const frames = setups.map((s) => poseFrame(s.pose));
+  const elements: ElementPicture[] = [];
+  let t = 0;
+  copper.elements.forEach((e, index) => {
+    const first = t;
+    const { positions: x, triangles, face: f } = e.copper;
+    for (let i = 0; i < triangles.length / 3; i++, t++) {
+      face[t] = f[i];
+      element[t] = index;
+      for (let c = 0; c < 3; c++) {
+        const p = at3(x, triangles[3 * i + c]);
+        const n = normalAt(part.mesh, part.normals, f[i], p);
+        for (let k = 0; k < 3; k++) {
+          positions[9 * t + 3 * c + k] = p[k];
+          normals[9 * t + 3 * c + k] = n[k];
+        }
+        frames.forEach((frame, s) => {
+          heights[s][3 * t + c] = frame.point(partPoint(p))[2];
+        });
+      }
+      const [a, b, c] = [at3(x, triangles[3 * i]), at3(x, triangles[3 * i + 1]), at3(x, triangles[3 * i + 2])];
+      const [ux, uy, uz] = [b[0] - a[0], b[1] - a[1], b[2] - a[2]];
+      const [vx, vy, vz] = [c[0] - a[0], c[1] - a[1], c[2] - a[2]];
+      area[t] = Math.hypot(uy * vz - uz * vy, uz * vx - ux * vz, ux * vy - uy * vx) / 2;
+    }
+    elements.push({
+      id: e.id,
+      kind: e.kind,
+      net: e.net,
+      length: e.length,
+      drawnLength: e.drawnLength,
+      area: e.area,
+      stretch: e.stretch,
+      anchor: e.anchor,
+      first,
+      count: t - first,
+      outline: e.outline.map((o) => Float32Array.from(o)),
+      path: e.path ? Float32Array.from(e.path.points) : null,
+    });
+  });
+  return { elements, problems, findings, positions, normals, face, element, area, heights };
+}
+
+function reachPicture(r: SetupReach, project: Project): ReachPicture {
+  const total = r.elements.reduce((n, e) => n + e.height.length, 0);
+  const out: ReachPicture = {
+    setup: r.setup,
+    incidence: new Float32Array(total),
+    blocked: new Float32Array(total),
+    field: new Float32Array(total),
+    fluence: new Float32Array(total),
+    usable: new Float32Array(total),
+    fails: new Uint8Array(total),
+  };
+  const [fx, fy] = project.head.field;
+  let t = 0;
+  for (const e of r.elements)
+    for (let i = 0; i < e.height.length; i++, t++) {
+      out.incidence[t] = (e.incidence[i] * 180) / Math.PI;
+      out.blocked[t] = e.blocked[i];
+      out.field[t] = Math.max(Math.abs(e.command[2 * i]) / (fx / 2), Math.abs(e.command[2 * i + 1]) / (fy / 2));
+      out.fluence[t] = e.fluence[i];
+      out.usable[t] = e.usable[i];
+      out.fails[t] = e.fails[i];
+    }
+  return out;
+}
+
+function planPicture(plan: SetupPlan, copper: Copper, reach: SetupReach): PlanPicture {
+  const total = copper.elements.reduce((n, e) => n + e.copper.triangles.length / 3, 0);
+  const layerOf = new Int16Array(total).fill(-1);
+  let t = 0;
+  copper.elements.forEach((_, element) => {
+    const r = reach.elements[element];
+    for (let i = 0; i < r.height.length; i++, t++) {
+      let best = r.usable[i];
+      plan.layers.forEach((layer, k) => {
+        const d = Math.abs(r.height[i] - layer.focusHeight);
+        if (d <= best) [best, layerOf[t]] = [d, k];
+      });
+    }
+  });
+  return {
+    setup: plan.setup,
+    layers: plan.layers.map((l) => ({ index: l.index, focusHeight: l.focusHeight, worstDefocus: l.worstDefocus, area: 0, elements: new Set(l.runs.map((x) => x.element)).size })),
+    layerOf,
+    unreached: plan.unreached.map((u) => ({ element: u.element, length: u.length })),
+  };
+}
