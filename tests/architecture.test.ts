@@ -18,7 +18,7 @@ const CORE: Record<string, string[]> = {
   drape: ['base', 'project', 'mesh', 'geodesic', 'drawing'],
   reach: ['base', 'project', 'mesh', 'part', 'beam', 'drape'],
   layers: ['base', 'project', 'reach', 'types:drape'],
-  scan: ['base', 'project', 'mesh', 'beam', 'drape', 'reach', 'layers', 'types:part'],
+  scan: ['base', 'project', 'mesh', 'part', 'beam', 'drape', 'reach', 'layers'],
   files: ['base', 'project', 'types:scan', 'types:layers', 'types:reach', 'types:drape'],
   // The proof shares the head's numbers with what it judges, never the code.
   proof: ['base', 'project', 'mesh', 'part', 'drape'],
@@ -110,6 +110,8 @@ function importsOf(path: string): Import[] {
 function roomOf(path: string): string | null {
   if (path.startsWith('electron/')) return 'electron';
   if (path.startsWith('assets/')) return 'assets';
+  // The report's account of a run belongs to the line as a whole.
+  if (path === 'src/core/account.ts') return 'core/pipeline';
   const m = /^src\/(core\/pipeline(?=\.ts)|core\/[\w-]+(?=\/)|[\w-]+(?=\/))/.exec(path);
   return m ? m[1] : null;
 }

@@ -5,6 +5,7 @@ import { join } from 'node:path';
 import { isMainThread, workerData } from 'node:worker_threads';
 import { Cancelled, InputError, sentence } from '../core/base/news.ts';
 import { serveTasks, TASK_ROLE } from '../worker/node.ts';
+import { PROJECT_COPY } from '../worker/stand-alone.ts';
 import { tasks } from '../worker/tasks.ts';
 import { type Command, FORMATS, HELP, parseCommand, type Settings } from './args.ts';
 import { checkTarget, putFolder } from './folder.ts';
@@ -12,7 +13,6 @@ import { readInput, readProjectFiles, readRunFolder } from './inputs.ts';
 import { JOB_ROLE, type JobAnswers, type JobRequest, serveJob } from './job.ts';
 import { progressTo } from './progress.ts';
 import { showCheck, showPart, showProof, showRun } from './show.ts';
-import { PROJECT_COPY } from './stand-alone.ts';
 import { startJob } from './thread.ts';
 import { openWindow } from './window.ts';
 

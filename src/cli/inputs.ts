@@ -4,13 +4,7 @@ import { dirname, isAbsolute, join } from 'node:path';
 import { InputError } from '../core/base/news.ts';
 import type { OutputFile } from '../core/files/output.ts';
 import { type ReadProject, readProject } from '../core/project/read.ts';
-import { PROJECT_COPY } from './stand-alone.ts';
-
-/** A file that the project names, under the name that the project gives it. */
-export interface NamedFile {
-  file: string;
-  bytes: Uint8Array;
-}
+import { type NamedFile, PROJECT_COPY } from '../worker/stand-alone.ts';
 
 export interface ProjectFiles extends ReadProject {
   projectFile: string;

@@ -8,18 +8,17 @@ import type { OutputFile } from '../core/files/output.ts';
 import { buildMesh, MM_PER_UNIT } from '../core/mesh/build.ts';
 import { readStl } from '../core/mesh/stl.ts';
 import { partReport } from '../core/mesh/summary.ts';
+import { runJob } from '../core/pipeline.ts';
 import { readProject } from '../core/project/read.ts';
 import type { Report } from '../core/project/report.ts';
 import type { Proof, ProofFormat } from '../core/proof/prove.ts';
 import { nodeThreads } from '../worker/node.ts';
 import { createPool } from '../worker/pool.ts';
 import { type Failure, failureOf } from '../worker/protocol.ts';
+import { type NamedFile, standAlone } from '../worker/stand-alone.ts';
 import { tasks } from '../worker/tasks.ts';
 import type { Settings, Units } from './args.ts';
-import type { NamedFile } from './inputs.ts';
 import { proveRun } from './prove-run.ts';
-import { standAlone } from './stand-alone.ts';
-import { runJob } from './stand-in.ts';
 
 /** Worker data that tells the program's file to do a job. */
 export const JOB_ROLE = 'job';
@@ -79,12 +78,13 @@ async function answer(
     const mesh = buildMesh(soup, MM_PER_UNIT[request.units], ctx, request.part.file);
     return { part: partReport(mesh), trailingBytes: soup.trailingBytes };
   }
-  const { project } = readProject(request.projectText, request.projectFile);
+  const { project, unknown } = readProject(request.projectText, request.projectFile);
   if (request.kind === 'prove') return proveRun(request, project, ctx, pool);
   const input = {
     project,
     projectFile: request.projectFile,
     projectText: request.projectText,
+    unknown,
     part: request.part,
   };
   const { report, files } = await runJob(

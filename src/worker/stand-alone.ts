@@ -1,7 +1,12 @@
 /** Makes an output folder stand alone: beside the files of the run, the project, the part and the drawings as they were. */
 import { type OutputFile, textFile } from '../core/files/output.ts';
 import type { Report } from '../core/project/report.ts';
-import type { NamedFile } from './inputs.ts';
+
+/** A file that the project names, under the name that the project gives it. */
+export interface NamedFile {
+  file: string;
+  bytes: Uint8Array;
+}
 
 /** Name of the project's copy in the folder. */
 export const PROJECT_COPY = 'project.drape.json';
