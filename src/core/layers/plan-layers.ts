@@ -52,6 +52,7 @@ function bestSetup(element: CopperElement, reaches: readonly ElementReach[]): nu
 function planSetup(project: Project, setup: Setup, index: number, copper: Copper, reach: SetupReach, mine: readonly number[]): SetupPlan {
   const grid = heightGrid(project.stage);
   const up = poseFrame(setup.pose).directionToPart([0, 0, 1]);
+  const given = setup.focusHeights ? [...new Set(setup.focusHeights)].sort((a, b) => a - b) : null;
   const unreached: SetupPlan['unreached'] = [];
   const chains: Chain[] = [];
   for (const e of mine) {
@@ -67,7 +68,7 @@ function planSetup(project: Project, setup: Setup, index: number, copper: Copper
       };
       for (const s of chain.samples) {
         const [lo, hi] = within(s, Infinity, grid);
-        if (lo <= hi) keep.push(s);
+        if (given ? given.some((h) => s.lo <= h && h <= s.hi) : lo <= hi) keep.push(s);
         else {
           flush();
           const last = unreached[unreached.length - 1];
@@ -80,7 +81,7 @@ function planSetup(project: Project, setup: Setup, index: number, copper: Copper
       flush();
     }
   }
-  const layers = chains.length > 0 ? layersOf(chains, grid) : [];
+  const layers = chains.length === 0 ? [] : given ? layersAt(chains, given) : layersOf(chains, grid);
   return { setup: index, name: setup.name, layers, elements: [...mine], unreached };
 }
 
@@ -112,6 +113,17 @@ function layersOf(chains: readonly Chain[], grid: HeightGrid): Layer[] {
     const middle = (lo + hi) / 2;
     return Math.min(Math.max(snapDown(middle, grid), lo), hi);
   });
+  return writtenAt(chains, intervals, runs, settled);
+}
+
+/** Layers at heights chosen by hand: the fewest runs that they allow. Every sample meets one of them. */
+function layersAt(chains: readonly Chain[], heights: readonly number[]): Layer[] {
+  const intervals = chains.map((c) => c.samples.map((s) => [s.lo, s.hi] as const));
+  return writtenAt(chains, intervals, intervals.map((list) => fewestRuns(list, heights)!), heights);
+}
+
+/** The layers with their runs, from the lowest up; a height that writes nothing makes no layer. */
+function writtenAt(chains: readonly Chain[], intervals: readonly (readonly (readonly [number, number])[])[], runs: readonly Stretch[][], settled: readonly number[]): Layer[] {
   const layers = settled.map((h, i): Layer & { key: number } => ({ key: i, index: 0, focusHeight: h, stageOffset: h === 0 ? 0 : -h, runs: [], worstDefocus: 0 }));
   chains.forEach((chain, c) => {
     addRuns(chain, intervals[c], runs[c], settled, layers);

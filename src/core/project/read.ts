@@ -125,6 +125,10 @@ function cross(p: Project, file: string): InputProblem[] {
     p.setups.forEach((s, i) => {
       if (names.has(s.name)) out.push({ code: 'same-id', file, place: `$.setups[${i}].name`, problem: `"${s.name}" is used twice`, mend: 'give each setup a name of its own' });
       names.add(s.name);
+      s.focusHeights?.forEach((h, k) => {
+        if (-h < p.stage.range[0] || -h > p.stage.range[1])
+          out.push({ code: 'bad-range', file, place: `$.setups[${i}].focusHeights[${k}]`, problem: `the stage cannot bring the height ${h} mm into focus`, mend: 'give a height whose opposite lies in stage.range' });
+      });
     });
   }
   return out;

@@ -106,6 +106,8 @@ const setup = z.looseObject({
   name: z.string().min(1),
   pose,
   measured: z.record(z.string(), measuredPoint).optional(),
+  /** Layers at heights chosen by hand, mm in the bench at stage offset 0; left out, the planner finds the fewest. */
+  focusHeights: z.array(num).min(1).max(200).optional(),
 });
 
 const place = z.looseObject({ at: vec3 });
