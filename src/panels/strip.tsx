@@ -102,7 +102,7 @@ function Strip({ project }: { project: Project }) {
   const byHand = setupsOf(project)[state.setup]?.['focusHeights'] !== undefined;
   const markerX = Math.max(1, Math.min(wide - 1, x(focus)));
   const tag = `${signed(shownZ)} mm`;
-  const lost = copper && plan ? plan.layerOf.reduce((sum, l, t) => (l < 0 ? sum + copper.area[t]! : sum), 0) : 0;
+  const lost = copper && plan ? plan.layerOf.reduce((sum, l, t) => (l === -1 ? sum + copper.area[t]! : sum), 0) : 0;
 
   return (
     <section className="strip" aria-label="Height strip">

@@ -25,7 +25,7 @@ export const plainDepth = (limits: Limits): number =>
 export function reasonAt(t: number, heights: Float32Array, reach: ReachPicture | null, plan: PlanPicture | null, view: Viewing): Reason | null {
   const fails = reach ? reach.fails[t] : 0;
   for (const reason of TOLD) if (reason !== 'focus' && fails & BIT[reason]) return reason;
-  if (view.show === 'layers' && plan) return plan.layerOf[t] < 0 ? 'focus' : null;
+  if (view.show === 'layers' && plan) return plan.layerOf[t] === -1 ? 'focus' : null;
   if (view.show === 'layers') return null;
   const z = (heights[3 * t] + heights[3 * t + 1] + heights[3 * t + 2]) / 3;
   return Math.abs(z + view.offset) > (reach ? reach.usable[t] : view.depth) ? 'focus' : null;

@@ -440,7 +440,7 @@ export function createStore(workers: Workers) {
       try {
         return await workers.heavy.call(
           'exportFiles',
-          { project: s.project, projectFile: s.origin.name, projectText, part: { file: s.project.part.file, bytes: s.origin.partBytes } },
+          { projectFile: s.origin.name, projectText, part: { file: s.project.part.file, bytes: s.origin.partBytes } },
           done.hear,
         );
       } finally {

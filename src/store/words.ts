@@ -74,7 +74,7 @@ export function stepWords(s: State): Record<StepName, StepWords> {
   function unreachedWords(): string {
     if (!copper || !plan) return '';
     let area = 0;
-    for (let t = 0; t < copper.area.length; t++) if (plan.layerOf[t] < 0) area += copper.area[t];
+    for (let t = 0; t < copper.area.length; t++) if (plan.layerOf[t] === -1) area += copper.area[t];
     return area > 1e-6 ? `, ${show(area, 2)} mm² left out` : '';
   }
 

@@ -130,7 +130,7 @@ export function copperMaterial() {
           c = dot(q, q) < 1.9 ? uShadeMark : uShade;
         } else if ((fails & 2) != 0) c = fract(p.y / 6.0) < 0.4 ? uIncidenceMark : uIncidence;
         else if ((fails & 16) != 0) c = uDose;
-        else if (uAtOffset > 0.5 ? abs(vHeight + uOffset) > vUsable : vLayer < -0.5) {
+        else if (uAtOffset > 0.5 ? abs(vHeight + uOffset) > vUsable : vLayer < -0.5 && vLayer > -1.5) {
           c = fract((p.x + p.y) / 8.0) < 0.4 ? uFocusMark : uFocus;
         }
         float l = 0.72 + 0.28 * abs(normalize(vNormal).z);

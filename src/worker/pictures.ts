@@ -4,6 +4,7 @@ import type { InputProblem } from '../core/base/news.ts';
 import type { ElementKind } from '../core/drape/copper.ts';
 import type { DrapeFinding } from '../core/drape/element.ts';
 import type { Mended } from '../core/mesh/surface-mesh.ts';
+import type { Reason } from '../core/reach/result.ts';
 import type { Report } from '../core/project/report.ts';
 
 export interface PartPicture {
@@ -77,17 +78,18 @@ export interface LayerPicture {
   index: number;
   focusHeight: number;
   worstDefocus: number;
-  /** mm² */
-  area: number;
   elements: number;
 }
+
+/** `layerOf` of copper that another setup writes. */
+export const ELSEWHERE = -2;
 
 export interface PlanPicture {
   setup: number;
   layers: LayerPicture[];
-  /** Layer of each triangle, counting from 0; -1 where none writes it. */
+  /** Layer of each triangle, counting from 0; -1 where none writes it, `ELSEWHERE` where another setup does. */
   layerOf: Int16Array;
-  unreached: { element: number; length: number }[];
+  unreached: { element: number; length: number; reason: Reason }[];
 }
 
 /** What stands under the pointer. */

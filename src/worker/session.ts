@@ -16,10 +16,19 @@ import { loadPart, type Part, type Units } from '../core/part/part.ts';
 import { readProject, writeProject } from '../core/project/read.ts';
 import type { Element, Head, Project, Setup } from '../core/project/schema.ts';
 import { creases } from './creases.ts';
+import { layerOfSamples } from '../core/layers/assign.ts';
 import type { SetupPlan } from '../core/layers/plan.ts';
+import { canGo, planLayers } from '../core/layers/plan-layers.ts';
+import { runJob, setupsOf } from '../core/pipeline.ts';
+import { checkReach } from '../core/reach/reach.ts';
 import type { SetupReach } from '../core/reach/result.ts';
-import type { CopperPicture, ElementPicture, ExportResult, LiveRun, PartPicture, PlanPicture, Probe, ReachPicture } from './pictures.ts';
-import { standInPlan, standInReach } from './stand-in.ts';
+import { type CopperPicture, ELSEWHERE, type ElementPicture, type ExportResult, type LiveRun, type PartPicture, type PlanPicture, type Probe, type ReachPicture } from './pictures.ts';
+import { createPool } from './pool.ts';
+import { standAlone } from './stand-alone.ts';
+import { tasks } from './tasks.ts';
+
+/** As the command line's own default. */
+const DEFAULT_SEED = 1;
 
 export interface Ray {
   /** Part frame. */
@@ -35,7 +44,7 @@ export function createSession() {
   let draper: Draper | null = null;
   let project: Project | null = null;
   let copper: Copper | null = null;
-  let reached: SetupReach[] | null = null;
+  let reached: { key: string; copper: Copper; value: SetupReach[] } | null = null;
   const needCopper = () => {
     if (!project || !copper) throw new Fault('no copper is laid in the worker');
     return { project, copper };
@@ -109,23 +118,29 @@ export function createSession() {
     /** Reach of the copper laid last. */
     reach(_: null, ctx: RunContext): ReachPicture[] {
       const { project: p, copper: c } = needCopper();
-      ctx.step('reach', 0, 1);
-      reached = standInReach(p, c, posesOf(p), needPart().mesh);
-      return reached.map((r) => reachPicture(r, p));
+      const setups = setupsOf(p, p.name);
+      // Heights chosen by hand change the plan, not the reach: while a layer is dragged nothing is looked at twice.
+      const key = JSON.stringify([p.head, p.material, p.limits, setups.map((s) => s.pose)]);
+      if (reached?.copper !== c || reached.key !== key) reached = { key, copper: c, value: checkReach(p, setups, needPart(), c, ctx) };
+      return reached.value.map((r) => reachPicture(r, p));
     },
 
     /** The layers for the reach found last. */
     plan(_: null, ctx: RunContext): PlanPicture[] {
-      const { copper: c } = needCopper();
+      const { project: p, copper: c } = needCopper();
       if (!reached) throw new Fault('layers are planned after reach');
-      ctx.step('layers', 0, 1);
-      const plans = standInPlan(reached);
-      return plans.map((plan) => planPicture(plan, c, reached![plan.setup]));
+      const reach = reached.value;
+      return planLayers(p, setupsOf(p, p.name), c, reach, ctx).map((plan) => planPicture(plan, c, reach[plan.setup]));
     },
 
-    /** The files that the command line would write, as bytes. */
-    exportFiles(_a: { project: Project; projectFile: string; projectText: string; part: { file: string; bytes: Uint8Array } }, _ctx: RunContext): ExportResult {
-      throw new InputError({ code: 'not-yet', file: 'export', place: '', problem: 'export is not there yet', mend: 'wait for it' });
+    /** The files that the command line would write with --no-timing, as bytes. */
+    async exportFiles(a: { projectFile: string; projectText: string; part: { file: string; bytes: Uint8Array } }, ctx: RunContext): Promise<ExportResult> {
+      const { project: p, unknown } = readProject(a.projectText, a.projectFile);
+      const pool = createPool(1, tasks, () => {
+        throw new Fault('one thread needs no other');
+      });
+      const { report, files } = await runJob({ project: p, projectFile: a.projectFile, projectText: a.projectText, unknown, part: a.part }, { seed: DEFAULT_SEED }, ctx, pool);
+      return { report, files: standAlone(files, report, { projectText: a.projectText, part: a.part, others: [] }) };
     },
 
     /** What the ray meets first, in the setup's bench. */
@@ -252,22 +267,18 @@ function reachPicture(r: SetupReach, project: Project): ReachPicture {
 
 function planPicture(plan: SetupPlan, copper: Copper, reach: SetupReach): PlanPicture {
   const total = copper.elements.reduce((n, e) => n + e.copper.triangles.length / 3, 0);
-  const layerOf = new Int16Array(total).fill(-1);
+  const layerOf = new Int16Array(total).fill(ELSEWHERE);
+  const mine = new Set(plan.elements);
   let t = 0;
-  copper.elements.forEach((_, element) => {
-    const r = reach.elements[element];
-    for (let i = 0; i < r.height.length; i++, t++) {
-      let best = r.usable[i];
-      plan.layers.forEach((layer, k) => {
-        const d = Math.abs(r.height[i] - layer.focusHeight);
-        if (d <= best) [best, layerOf[t]] = [d, k];
-      });
-    }
+  copper.elements.forEach((e, i) => {
+    const r = reach.elements[i];
+    if (mine.has(i)) layerOf.set(layerOfSamples(plan, e, i, r, (k) => canGo(r, k)), t);
+    t += r.height.length;
   });
   return {
     setup: plan.setup,
-    layers: plan.layers.map((l) => ({ index: l.index, focusHeight: l.focusHeight, worstDefocus: l.worstDefocus, area: 0, elements: new Set(l.runs.map((x) => x.element)).size })),
+    layers: plan.layers.map((l) => ({ index: l.index, focusHeight: l.focusHeight, worstDefocus: l.worstDefocus, elements: new Set(l.runs.map((x) => x.element)).size })),
     layerOf,
-    unreached: plan.unreached.map((u) => ({ element: u.element, length: u.length })),
+    unreached: plan.unreached.map((u) => ({ element: u.element, length: u.length, reason: u.reason })),
   };
 }
