@@ -87,6 +87,7 @@ export class SurfaceField {
 
 /** Polar angle, radians in (-π, π], at which a point source sees the place. Radii are `distance`. */
 export function polarAngle(seen: Seen): number {
-  const a = (seen.root.offset + Math.atan2(seen.qy, seen.qx)) * seen.root.scale;
+  const { root } = seen;
+  const a = root.vertex >= 0 ? root.bearing : (root.offset + Math.atan2(seen.qy, seen.qx)) * root.scale;
   return a - 2 * Math.PI * Math.ceil((a - Math.PI) / (2 * Math.PI));
 }

@@ -45,6 +45,8 @@ export interface Root {
   offset: number;
   /** Point at a vertex: 2π over the sum of its angles; 1 elsewhere. */
   scale: number;
+  /** Pseudo-source of a point: polar angle, radians, at which the source sees its vertex, and with it all that lies behind. */
+  bearing: number;
   /**
    * Segment: length, arc length at its start, and the side (+1 left, -1 right) its windows run to.
    * Pseudo-source: `start` and `side` are those of the path that reached its vertex.
@@ -178,7 +180,7 @@ export class WindowSolver {
       return;
     }
     const { x, y } = this.frame(f, zero);
-    const root = { kind: 'point' as const, source: s.source, at, sigma: 0, vertex: -1, offset: 0, scale: 1, length: 0, start: 0, side: 1 as const, radius: s.radius };
+    const root = { kind: 'point' as const, source: s.source, at, sigma: 0, vertex: -1, offset: 0, scale: 1, bearing: 0, length: 0, start: 0, side: 1 as const, radius: s.radius };
     const here = this.roots.push({ ...root, face: f, x, y }) - 1;
     if (n === 0) {
       this.seeFromRoot(here, [3 * f, 3 * f + 1, 3 * f + 2]);
@@ -211,11 +213,12 @@ export class WindowSolver {
     const q = via >= 0 ? this.look(via, at, Infinity)! : this.inRoot(from, at);
     const side = from.kind === 'segment' || from.vertex >= 0 ? from.side : q[1] < 0 ? -1 : 1;
     const foot = from.kind === 'segment' ? from.start + q[0] : from.start;
-    this.startFan(h, at, this.dist[v], v, from.source, from.radius, undefined, side, foot);
+    const bearing = from.vertex >= 0 ? from.bearing : (from.offset + Math.atan2(q[1], q[0])) * from.scale;
+    this.startFan(h, at, this.dist[v], v, from.source, from.radius, undefined, side, foot, bearing);
   }
 
   /** One root for each face around the vertex at which half-edge `h` starts. */
-  private startFan(h: number, at: Vec3, sigma: number, vertex: number, source: number, radius: number, zero?: { face: number; zero: Vec3 }, side: 1 | -1 = 1, start = 0): void {
+  private startFan(h: number, at: Vec3, sigma: number, vertex: number, source: number, radius: number, zero?: { face: number; zero: Vec3 }, side: 1 | -1 = 1, start = 0, bearing = 0): void {
     const { twin } = this.mesh;
     // Clockwise to a border, or once around.
     let first = h;
@@ -251,7 +254,7 @@ export class WindowSolver {
     halves.forEach((half, i) => {
       const face = faceOf(half);
       const { x, y } = this.frame(face, this.edgeDirection(half));
-      const root = this.roots.push({ kind: 'point', source, face, at, sigma, vertex, offset: angles[i] - zeroAngle, scale, length: 0, start, side, radius, x, y }) - 1;
+      const root = this.roots.push({ kind: 'point', source, face, at, sigma, vertex, offset: angles[i] - zeroAngle, scale, bearing, length: 0, start, side, radius, x, y }) - 1;
       this.seeFromRoot(root, [next(half)]);
     });
   }
@@ -264,7 +267,7 @@ export class WindowSolver {
     for (const side of [1, -1] as const) {
       const radius = side > 0 ? s.radiusLeft : s.radiusRight;
       if (radius <= 0) continue;
-      const root = this.roots.push({ kind: 'segment', source: s.source, face: s.face, at: s.from, sigma: 0, vertex: -1, offset: 0, scale: 1, length: len, start: s.start, side, radius, x, y }) - 1;
+      const root = this.roots.push({ kind: 'segment', source: s.source, face: s.face, at: s.from, sigma: 0, vertex: -1, offset: 0, scale: 1, bearing: 0, length: len, start: s.start, side, radius, x, y }) - 1;
       this.seeFromRoot(root, [3 * s.face, 3 * s.face + 1, 3 * s.face + 2]);
     }
   }

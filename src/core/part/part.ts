@@ -1,6 +1,6 @@
 /** The part as the stages after it see it. */
 import type { RunContext } from '../base/run-context.ts';
-import { buildMesh } from '../mesh/build.ts';
+import { buildMesh, MM_PER_UNIT } from '../mesh/build.ts';
 import { buildQueries, type SurfaceQueries } from '../mesh/queries.ts';
 import { readStl } from '../mesh/stl.ts';
 import type { SurfaceMesh } from '../mesh/surface-mesh.ts';
@@ -12,16 +12,14 @@ export interface Part {
   normals: CornerNormals;
 }
 
-export type Units = 'mm' | 'cm' | 'm' | 'um' | 'inch';
-/** mm in one unit; 1 inch = 25.4 mm exactly (international inch, 1959). */
-const MM: Record<Units, number> = { mm: 1, cm: 10, m: 1000, um: 0.001, inch: 25.4 };
+export type Units = keyof typeof MM_PER_UNIT;
 
 /** @throws InputError from the STL reader */
 export function loadPart(bytes: Uint8Array, file: string, units: Units, ctx: RunContext): Part {
   ctx.step('load', 0, 4);
   const soup = readStl(bytes, file, ctx);
   ctx.step('load', 1, 4);
-  const mesh = buildMesh(soup, MM[units], ctx);
+  const mesh = buildMesh(soup, MM_PER_UNIT[units], ctx, file);
   ctx.step('load', 2, 4);
   const queries = buildQueries(mesh);
   ctx.step('load', 3, 4);

@@ -1,0 +1,157 @@
+/**
+ * The whole line on one page: part + drawing → drape → reach → layers → scan → files → proof.
+ * The window, the command line and the tests all run this, so that all of them get the same bytes.
+ */
+import { InputError } from './base/news.ts';
+import type { RunContext } from './base/run-context.ts';
+import { collisionsOf, elementReports, layerReport, openReport, partsOfReport } from './account.ts';
+import type { Copper } from './drape/copper.ts';
+import { drapeCircuit } from './drape/drape.ts';
+import { layerCsv } from './files/csv.ts';
+import { layerFile, safeNames } from './files/names.ts';
+import { type OutputFile, textFile } from './files/output.ts';
+import { jobSheet } from './files/sheet.ts';
+import { layerSvg } from './files/svg.ts';
+import { focusedBeam } from './beam/beam.ts';
+import type { SetupPlan } from './layers/plan.ts';
+import { planLayers } from './layers/plan-layers.ts';
+import { loadPart, type Part } from './part/part.ts';
+import type { ProofReport, Report } from './project/report.ts';
+import type { Project, Setup } from './project/schema.ts';
+import { planProof, type LayerPulses, type Proof, type ProofFormat, type ProofInput, verdict } from './proof/prove.ts';
+import { checkReach } from './reach/reach.ts';
+import type { SetupReach } from './reach/result.ts';
+import { prepareGround, scanLayer } from './scan/scan-layer.ts';
+import type { LayerScan } from './scan/strokes.ts';
+
+export { loadPart, type Part } from './part/part.ts';
+
+/** Named plain functions on worker threads, results in order; see `src/worker`. */
+export interface Workers {
+  readonly threads: number;
+  map<A, R>(task: string, shared: unknown, args: readonly A[]): Promise<R[]>;
+}
+
+export interface JobInput {
+  project: Project;
+  projectFile: string;
+  projectText: string;
+  /** Fields of the file that the project does not know, by JSON path. */
+  unknown?: readonly string[];
+  part: { file: string; bytes: Uint8Array };
+}
+
+export interface JobOptions {
+  seed: number;
+  stopAfter?: 'reach';
+}
+
+export interface JobResult {
+  report: Report;
+  /** `report.json`, `sheet.html` and the scan files. Empty after `stopAfter`. */
+  files: OutputFile[];
+}
+
+const FORMATS: readonly ProofFormat[] = ['csv', 'svg'];
+
+/**
+ * @throws InputError for everything in the files that cannot be used
+ * @throws Cancelled
+ */
+export async function runJob(input: JobInput, options: JobOptions, ctx: RunContext, workers: Workers): Promise<JobResult> {
+  const { project, projectFile } = input;
+  const setups = setupsOf(project, projectFile);
+  const part = loadPart(input.part.bytes, input.part.file, project.part.units, ctx);
+  const { copper, findings } = drapeCircuit(project, projectFile, part, ctx);
+  const reach = checkReach(project, setups, part, copper, ctx);
+  const report = openReport(project, input.unknown ?? [], part, copper, findings);
+  if (options.stopAfter === 'reach') {
+    report.elements = elementReports(project, setups, part, copper, reach, null, ctx);
+    report.ok = holds(report);
+    return { report, files: [] };
+  }
+  const plans = planLayers(project, setups, copper, reach, ctx);
+  report.elements = elementReports(project, setups, part, copper, reach, plans, ctx);
+  report.collisions = collisionsOf(project, setups, part, plans);
+  partsOfReport(report, setups, copper, plans);
+  if (report.collisions.length > 0) {
+    report.ok = false;
+    return { report, files: [reportFile(report), textFile('sheet.html', jobSheet(project, report, []))] };
+  }
+  const written = scanFiles(project, setups, part, copper, reach, plans, report, ctx);
+  // The proof reads the report from the files, as it would after a run.
+  const drawn = { project, mesh: part.mesh, normals: part.normals, copper };
+  const proof = await proveFiles({ ...drawn, files: [...written.files, reportFile(report)], formats: FORMATS }, ctx, workers);
+  report.proof = proof.report;
+  report.ok = holds(report);
+  const sheet = jobSheet(project, report, written.scans.map((scans, i) => ({ report: report.setups[i], scans })));
+  return { report, files: [...written.files, reportFile(report), textFile('sheet.html', sheet)] };
+}
+
+/** Strokes and files of every layer of every setup; their numbers go into the report. */
+function scanFiles(project: Project, setups: readonly Setup[], part: Part, copper: Copper, reach: readonly SetupReach[], plans: readonly SetupPlan[], report: Report, ctx: RunContext) {
+  const files: OutputFile[] = [];
+  const folders = safeNames(setups.map((s) => s.name));
+  const spot = 2 * focusedBeam(project.head).waist;
+  const total = plans.reduce((n, p) => n + p.layers.length, 0);
+  let done = 0;
+  const scans = plans.map((plan, i): LayerScan[] => {
+    const ground = prepareGround(part, setups[i], copper, reach[i], plan);
+    const layers = plan.layers.map((layer) => {
+      ctx.step('scan', done++, total);
+      const scan = scanLayer(project, setups[i], layer, ground);
+      const names = [layerFile(folders[i], layer.index, 'svg'), layerFile(folders[i], layer.index, 'csv')];
+      files.push(textFile(names[0], layerSvg(scan, project.head, spot)), textFile(names[1], layerCsv(scan)));
+      report.setups[i].layers.push(layerReport(project, copper, reach[i], plan, layer, scan, names));
+      return scan;
+    });
+    return layers;
+  });
+  ctx.step('scan', total, total);
+  return { files, scans };
+}
+
+/** The read-back proof, one file a task. */
+export async function proveFiles(input: ProofInput, ctx: RunContext, workers: Workers): Promise<Proof> {
+  const plans = planProof(input);
+  const first = plans.flatMap((p) => p.tasks)[0];
+  const tasks = plans.flatMap((p) => p.tasks.map(({ head: _, mesh: __, normals: ___, ...own }) => own));
+  ctx.step('proof', 0, tasks.length + 1);
+  const shared = first ? { head: first.head, mesh: first.mesh, normals: first.normals } : {};
+  const traced = await workers.map<unknown, LayerPulses>('trace pulses', shared, tasks);
+  ctx.step('proof', tasks.length, tasks.length + 1);
+  let next = 0;
+  const byPlan = plans.map((p) => traced.slice(next, (next += p.tasks.length)));
+  const proof = verdict(input, plans, byPlan, ctx);
+  ctx.step('proof', tasks.length + 1, tasks.length + 1);
+  return proof;
+}
+
+const reportFile = (report: Report): OutputFile => textFile('report.json', JSON.stringify(report, null, 2) + '\n');
+
+/** Every check of every element, every rule of level error, and the proof. */
+function holds(report: Report): boolean {
+  const proof: ProofReport | null = report.proof;
+  return (
+    report.elements.every((e) => e.focus.ok && e.incidence.ok && e.shade.ok && e.field.ok && e.dose.ok) &&
+    report.rules.every((r) => r.level !== 'error') &&
+    report.collisions.length === 0 &&
+    (proof === null || proof.ok)
+  );
+}
+
+/**
+ * Setups with their poses, and what this release cannot use named.
+ * @throws InputError `not-yet`
+ */
+export function setupsOf(project: Project, file: string): Setup[] {
+  const no = (place: string, problem: string, mend: string) => new InputError({ code: 'not-yet', file, place, problem, mend });
+  if (project.setups === 'auto') throw no('$.setups', 'this release does not choose setups by itself', 'give each setup its pose');
+  project.setups.forEach((s, i) => {
+    if (s.measured) throw no(`$.setups[${i}].measured`, 'this release does not fit a pose to measured points', 'give the pose itself');
+  });
+  const { axes } = project.head;
+  if (axes && (axes.swap || axes.flipX || axes.flipY || axes.turn || axes.scale))
+    throw no('$.head.axes', 'this release does not turn or mirror the field', 'leave it out and turn the field at the machine');
+  return project.setups;
+}
