@@ -17,13 +17,13 @@ function arc(r: number, from: number, to: number): { at: Vec3 }[] {
 
 /** Electrodes by their angles; no two are alike. `leave` is where the trace leaves, `lane` its radius, `tail` its angle in the tail. */
 const ELECTRODES = [
-  { name: 'SENSE1', from: -50, to: 10, inner: 6.2, outer: 10.6, leave: -42, lane: 12.6, tail: -72 },
-  { name: 'SENSE2', from: 22, to: 76, inner: 5.6, outer: 10.4, leave: 30, lane: 13.9, tail: -68 },
-  { name: 'SENSE3', from: 88, to: 150, inner: 6.4, outer: 10.8, leave: 143, lane: 15.2, tail: -84 },
-  { name: 'SENSE4', from: 161, to: 208, inner: 5.8, outer: 10.2, leave: 200, lane: 13.9, tail: -80 },
-  { name: 'SENSE5', from: 219, to: 262, inner: 6.8, outer: 10.6, leave: 255, lane: 12.6, tail: -76 },
+  { name: 'SENSE1', from: -50, to: 10, inner: 6.2, outer: 10.6, leave: -42, lane: 12.6, tail: -69.8 },
+  { name: 'SENSE2', from: 22, to: 76, inner: 5.6, outer: 10.4, leave: 30, lane: 13.9, tail: -64.6 },
+  { name: 'SENSE3', from: 88, to: 150, inner: 6.4, outer: 10.8, leave: 143, lane: 15.2, tail: -85.4 },
+  { name: 'SENSE4', from: 161, to: 208, inner: 5.8, outer: 10.2, leave: 200, lane: 13.9, tail: -80.2 },
+  { name: 'SENSE5', from: 219, to: 262, inner: 6.8, outer: 10.6, leave: 255, lane: 12.6, tail: -75 },
 ];
-const GUARD = { radius: 16.6, from: -63.5, to: 271.5, tailRight: -63.5, tailLeft: -88.5 };
+const GUARD = { radius: 16.6, from: -59.2, to: 269.2, tailRight: -59.2, tailLeft: -90.8 };
 const PAD = { radius: 28.3, width: 1.1, length: 2.2 };
 
 export function dialElements(): object[] {
