@@ -101,14 +101,51 @@ export function verdict(
   const { project, mesh, copper } = input;
   const drawn = prepareDrawn(copper, mesh, input.normals ?? buildNormals(mesh));
   const lean = leanOf(project.head);
+  interface Judged {
+    layers: { pulses: LayerPulses; place: LayerPlace }[];
+    findings: readonly string[];
+    report: ProofReport;
+  }
+  const judged: Judged[] = [];
   const byFormat = plans.map(({ format, tasks, findings }, i) => {
     const layers = tasks.map((task, k): { pulses: LayerPulses; place: LayerPlace } => ({
       pulses: traced[i][k],
       place: { pose: task.pose, offset: task.offset, lean },
     }));
-    return { format, report: judge(project, drawn, layers, findings, ctx) };
+    // Two formats that burn the very same pulses get the very same verdict: worked out once.
+    const twin = judged.find((j) => j.findings.length + findings.length === 0 && samePulses(j.layers, layers));
+    const report = twin ? twin.report : judge(project, drawn, layers, findings, ctx);
+    judged.push({ layers, findings, report });
+    return { format, report };
   });
   return { report: worst(byFormat), byFormat };
+}
+
+type Burnt = readonly { pulses: LayerPulses; place: LayerPlace }[];
+
+/** Whether two sets of files burn the same places with the same light, number for number. */
+function samePulses(a: Burnt, b: Burnt): boolean {
+  return (
+    a.length === b.length &&
+    a.every(({ pulses: p, place }, i) => {
+      const { pulses: q, place: other } = b[i];
+      return place.offset === other.offset && place.pose === other.pose && sameData(p, q);
+    })
+  );
+}
+
+/** Deep equality of plain data and typed arrays. */
+function sameData(a: unknown, b: unknown): boolean {
+  if (Object.is(a, b)) return true;
+  if (typeof a !== 'object' || typeof b !== 'object' || a === null || b === null) return false;
+  if (ArrayBuffer.isView(a) && ArrayBuffer.isView(b)) {
+    const [x, y] = [a as Float64Array, b as Float64Array];
+    if (x.length !== y.length) return false;
+    for (let i = 0; i < x.length; i++) if (x[i] !== y[i]) return false;
+    return true;
+  }
+  const [ka, kb] = [Object.keys(a), Object.keys(b)];
+  return ka.length === kb.length && ka.every((k) => sameData((a as Record<string, unknown>)[k], (b as Record<string, unknown>)[k]));
 }
 
 /** Nothing to prove is no proof. */

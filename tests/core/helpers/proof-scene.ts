@@ -116,6 +116,7 @@ export function rectElement(r: Rect): CopperElement {
     positions: Float64Array.of(x0, y0, 0, x1, y0, 0, x1, y1, 0, x0, y1, 0),
     triangles: Uint32Array.of(0, 1, 2, 0, 2, 3),
     face: Int32Array.of(0, 0),
+    source: Int32Array.of(0, 1),
   };
   const area = (x1 - x0) * (y1 - y0);
   return {

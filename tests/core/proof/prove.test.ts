@@ -238,6 +238,34 @@ describe('read-back proof of tampered files', () => {
     expect(Math.abs(report.stray_mm2 - expected)).toBeLessThan(0.1 * expected);
   });
 
+  it('a stroke where nothing is drawn fails for stray copper alone', () => {
+    const scene = leaning();
+    const more = planRects(
+      scene.project,
+      scene.pose,
+      [{ id: 'x', net: '', from: [1, 3], to: [3, 3.4] }],
+      [{ focusHeight: scene.layers[0].focusHeight, x: [-20, 20] }],
+    )[0].strokes;
+    const layers = scene.layers.map((l, i) => (i ? l : { ...l, strokes: [...l.strokes, ...more] }));
+    const { report } = run({ ...scene, layers });
+    expect(report).toMatchObject({ ok: false, focus: 1, opens: [], shorts: [], findings: [] });
+    expect(report.covered).toBeGreaterThan(0.995);
+    expect(Math.abs(report.stray_mm2 / 0.8 - 1)).toBeLessThan(0.1);
+  });
+
+  it('a pose spoilt in the report does not count where the project gives its own, and does where it was measured', () => {
+    const spoil = (f: TestFiles) => {
+      f.report.setups[0].pose = { ...f.report.setups[0].pose, move: [12.5, -7, 0] };
+    };
+    const scene = leaning();
+    expect(run(scene, spoil, ['csv']).report.ok).toBe(true);
+    const measured = projectWith(scene.pose, {
+      setups: [{ name: 'top', pose: scene.pose, measured: { F1: [0, 0, 0] } }],
+    });
+    expect(run({ ...scene, project: measured }, () => {}, ['csv']).report.ok).toBe(true);
+    expect(run({ ...scene, project: measured }, spoil, ['csv']).report.ok).toBe(false);
+  });
+
   it('a missing fill fails for coverage, and nothing else', () => {
     const { report } = run(
       leaning(),
