@@ -5,8 +5,11 @@ import type { CopperElement, FieldPatch } from './copper.ts';
 import { alongLine, type ClippedPatch, clipBelow, levelLines, patchArea } from './level-lines.ts';
 import { type FieldValue, refine } from './refine.ts';
 
-/** Longest patch edge where an outline crosses, mm: a round of radius 0.3 mm is then true to 1 µm (sagitta). */
-export const FINE = 0.05;
+/** How straight a field must be along patch edges at the outline, mm, and where halving them ends: a sharp corner is cut by less than this. */
+export const TRUE_TO = 0.002;
+export const FINE = 0.02;
+/** Fields are known this far past the outline, mm: as far as patch triangles that hold copper reach. */
+export const MARGIN = 0.1;
 
 export interface Laid {
   field: FieldPatch;
@@ -21,7 +24,7 @@ export interface Laid {
  * @param coarse   longest patch edge inside the copper, mm: the sampling step
  */
 export function layOut(mesh: SurfaceMesh, faces: Iterable<number>, evaluate: (face: number, p: Vec3) => FieldValue, coarse: number): Laid {
-  const field = refine(mesh, faces, evaluate, { fine: Math.min(FINE, coarse), coarse });
+  const field = refine(mesh, faces, evaluate, { fine: FINE, coarse, tolerance: TRUE_TO });
   const copper = clipBelow(field, field.edge, 0);
   const outline = levelLines(field, field.edge, 0).map((line) => {
     const points = alongLine(line, field.positions, 3);

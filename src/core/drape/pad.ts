@@ -5,7 +5,7 @@ import { polarAngle, SurfaceField } from '../geodesic/surface-field.ts';
 import type { WindowSolver } from '../geodesic/windows.ts';
 import { faceNormal } from '../mesh/surface-point.ts';
 import type { Pad } from '../project/schema.ts';
-import { type Draped, FINE, layOut, lineLength } from './element.ts';
+import { type Draped, MARGIN, layOut, lineLength } from './element.ts';
 import { boxBound, heldDistance } from './lower-bound.ts';
 import type { Place } from './route.ts';
 import { circumradius, type FlatShape, flatDistance, perimeter } from './shapes.ts';
@@ -26,7 +26,7 @@ export function drawingU(n: Vec3): Vec3 {
 
 export function drapePad(solver: WindowSolver, pad: Pad, centre: Place): Draped {
   const shape = pad.shape as FlatShape;
-  const reach = circumradius(shape) + 2 * FINE;
+  const reach = circumradius(shape) + MARGIN;
   const { face } = centre.surface;
   solver.propagate([{ at: centre.surface, source: 0, radius: reach, zero: drawingU(faceNormal(solver.mesh, face)) }]);
   const field = new SurfaceField(solver);

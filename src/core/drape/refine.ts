@@ -19,10 +19,12 @@ export interface FieldValue {
 }
 
 export interface RefineOptions {
-  /** Longest edge where the outline crosses, mm. */
+  /** Edges no longer than this are not halved, mm. */
   fine: number;
-  /** Longest edge inside the copper, mm. */
+  /** Longest edge, mm. */
   coarse: number;
+  /** Near the outline edges are halved until the field is this straight along them, mm. */
+  tolerance: number;
 }
 
 /**
@@ -56,17 +58,22 @@ export function refine(mesh: SurfaceMesh, faces: Iterable<number>, evaluate: (fa
     const known = middles.get(lo, hi, UNKNOWN);
     if (known !== UNKNOWN) return known;
     const len = size(a, b);
-    const nearest = Math.min(edge[a], edge[b]);
-    const deepest = Math.max(edge[a], edge[b]);
-    // The field grows by no more than the way walked: beyond one length it cannot change sign near the edge.
-    const split = nearest > len ? false : deepest < -len ? len > options.coarse : len > options.fine && (len > options.coarse || touches(edge[a], edge[b], len));
-    if (!split) {
-      middles.set(lo, hi, -1);
-      return -1;
-    }
-    const m = add(face, (positions[3 * a] + positions[3 * b]) / 2, (positions[3 * a + 1] + positions[3 * b + 1]) / 2, (positions[3 * a + 2] + positions[3 * b + 2]) / 2);
+    const m = wanted(face, a, b, len);
     middles.set(lo, hi, m);
     return m;
+  };
+
+  const halfway = (face: number, a: number, b: number): number =>
+    add(face, (positions[3 * a] + positions[3 * b]) / 2, (positions[3 * a + 1] + positions[3 * b + 1]) / 2, (positions[3 * a + 2] + positions[3 * b + 2]) / 2);
+
+  const wanted = (face: number, a: number, b: number, len: number): number => {
+    // The field grows by no more than the way walked: beyond one length it cannot change sign near the edge.
+    if (Math.min(edge[a], edge[b]) > len) return -1;
+    if (len > options.coarse) return halfway(face, a, b);
+    if (len <= options.fine || !touches(edge[a], edge[b], len)) return -1;
+    // Near the outline the edge is halved where the field bends between its ends.
+    const m = halfway(face, a, b);
+    return Math.abs(edge[m] - (edge[a] + edge[b]) / 2) > options.tolerance ? m : -1;
   };
 
   const stack: number[] = [];
@@ -113,7 +120,7 @@ export function refine(mesh: SurfaceMesh, faces: Iterable<number>, evaluate: (fa
 /** An edge not asked about yet; -1 stands for one that stays whole. */
 const UNKNOWN = -2;
 
-/** Whether the level 0 can run within half a length of an edge that is nearly fine enough. */
+/** Whether the level 0 can run near an edge. */
 const touches = (a: number, b: number, len: number): boolean => Math.min(Math.abs(a), Math.abs(b)) <= 0.75 * len || a < 0 !== b < 0;
 
 /** Keeps the vertices that triangles use, in the order of first use. */
@@ -127,8 +134,12 @@ function compact(positions: number[], edge: number[], hatch: number[], along: nu
     }
     return number[v];
   });
+  const kept = new Float64Array(3 * order.length);
+  order.forEach((v, i) => {
+    for (let k = 0; k < 3; k++) kept[3 * i + k] = positions[3 * v + k];
+  });
   return {
-    positions: Float64Array.from(order.flatMap((v) => [positions[3 * v], positions[3 * v + 1], positions[3 * v + 2]])),
+    positions: kept,
     triangles: used,
     face: Int32Array.from(face),
     edge: Float64Array.from(order, (v) => edge[v]),

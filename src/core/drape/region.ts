@@ -4,7 +4,7 @@ import type { WindowSolver } from '../geodesic/windows.ts';
 import { faceNormal } from '../mesh/surface-point.ts';
 import type { Region } from '../project/schema.ts';
 import { type Band, band } from './band.ts';
-import { type Draped, FINE, layOut } from './element.ts';
+import { type Draped, MARGIN, layOut } from './element.ts';
 import { AREA_STEP } from './pad.ts';
 import { joinRoute, type Place } from './route.ts';
 
@@ -22,7 +22,7 @@ export function drapeRegion(solver: WindowSolver, baseline: WindowSolver, region
   const { path } = route;
   if (path.faces.length < 2) return { element: null, findings: [{ rule: 'no-copper', element: region.id, at: places[0].point, text: 'the outline encloses nothing' }] };
   const depth = (path.length / (2 * Math.PI)) * DEPTH;
-  const outside = 2 * FINE;
+  const outside = MARGIN;
   const rim = band(solver, path, { left: depth, right: outside, closed: true, stops: route.stops });
   // Fill lines run along the longest line from corner to corner, and keep their distance from it.
   const lay = (reach: number) => {

@@ -3,7 +3,7 @@ import type { WindowSolver } from '../geodesic/windows.ts';
 import type { Trace } from '../project/schema.ts';
 import { band } from './band.ts';
 import type { CopperElement } from './copper.ts';
-import { type Draped, FINE, layOut } from './element.ts';
+import { type Draped, MARGIN, layOut } from './element.ts';
 import { boxBound, heldDistance } from './lower-bound.ts';
 import { joinRoute, type Place } from './route.ts';
 
@@ -21,7 +21,7 @@ export function drapeTrace(solver: WindowSolver, trace: Trace, places: readonly 
   if (path.faces.length === 0)
     return { element: null, findings: [{ rule: 'no-copper', element: trace.id, at: places[0].point, text: 'all route points are one place' }] };
   const half = trace.width / 2;
-  const reach = half + 2 * FINE;
+  const reach = half + MARGIN;
   const field = band(solver, path, { left: reach, right: reach, stops: route.stops });
   const far = boxBound(path.points);
   const laid = layOut(

@@ -129,7 +129,7 @@ function samePulses(a: Burnt, b: Burnt): boolean {
     a.length === b.length &&
     a.every(({ pulses: p, place }, i) => {
       const { pulses: q, place: other } = b[i];
-      return place.offset === other.offset && place.pose === other.pose && sameData(p, q);
+      return place.offset === other.offset && sameData(place.pose, other.pose) && sameData({ ...p, file: '' }, { ...q, file: '' });
     })
   );
 }
