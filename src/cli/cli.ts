@@ -8,9 +8,10 @@ import { serveTasks, TASK_ROLE } from '../worker/node.ts';
 import { PROJECT_COPY } from '../worker/stand-alone.ts';
 import { tasks } from '../worker/tasks.ts';
 import { type Command, FORMATS, HELP, parseCommand, type Settings } from './args.ts';
+import { demonstration } from './demo.ts';
 import { checkTarget, putFolder } from './folder.ts';
-import { readInput, readProjectFiles, readRunFolder } from './inputs.ts';
-import { JOB_ROLE, type JobAnswers, type JobRequest, serveJob } from './job.ts';
+import { type ProjectFiles, readInput, readProjectFiles, readRunFolder } from './inputs.ts';
+import { JOB_ROLE, type JobAnswers, type JobRequest, type ProjectInput, serveJob } from './job.ts';
 import { progressTo } from './progress.ts';
 import { showCheck, showPart, showProof, showRun } from './show.ts';
 import { startJob } from './thread.ts';
@@ -81,19 +82,19 @@ async function perform(command: Command): Promise<number> {
       return DONE;
     }
     case 'check': {
-      const { project: _, unknown: __, ...files } = await readProjectFiles(command.project);
+      const files = inputOf(await readProjectFiles(command.project));
       const { report } = await job({ kind: 'check', ...files, settings: command.settings });
       print(command.json, report, () => showCheck(report));
       return report.ok ? DONE : CHECK_FAILS;
     }
     case 'run': {
       await checkTarget(command.out);
-      const { project: _, unknown: __, ...files } = await readProjectFiles(command.project);
+      const files = inputOf(await readProjectFiles(command.project));
       return runInto(command.out, { kind: 'run', ...files, settings: command.settings });
     }
     case 'prove': {
       const runFiles = await readRunFolder(command.dir);
-      const { project: _, unknown: __, ...files } = await readProjectFiles(join(command.dir, PROJECT_COPY));
+      const files = inputOf(await readProjectFiles(join(command.dir, PROJECT_COPY)));
       const present = FORMATS.filter((f) => runFiles.some((r) => r.path.toLowerCase().endsWith(`.${f}`)));
       const formats = command.formats ?? present;
       const proof = await job({ kind: 'prove', ...files, runFiles, formats, settings: command.settings });
@@ -105,8 +106,15 @@ async function perform(command: Command): Promise<number> {
       return proof.report.ok ? DONE : CHECK_FAILS;
     }
     case 'demo':
-      throw new Error('demo is not there yet');
+      await checkTarget(command.out);
+      return runInto(command.out, { kind: 'run', ...inputOf(demonstration()), settings: command.settings });
   }
+}
+
+/** What the job needs of the files; says what the person should know. */
+function inputOf({ projectFile, projectText, part, others, notices }: ProjectFiles): ProjectInput {
+  for (const n of notices) process.stderr.write(`${n}\n`);
+  return { projectFile, projectText, part, others };
 }
 
 async function runInto(out: string, request: JobRequest & { kind: 'run' }): Promise<number> {

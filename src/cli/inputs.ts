@@ -1,4 +1,5 @@
 /** Reads from disk what a job needs: the project, its part, its drawings. */
+import { createHash } from 'node:crypto';
 import { readdir, readFile } from 'node:fs/promises';
 import { dirname, isAbsolute, join } from 'node:path';
 import { InputError } from '../core/base/news.ts';
@@ -12,6 +13,8 @@ export interface ProjectFiles extends ReadProject {
   part: NamedFile;
   /** Drawings and netlist. */
   others: NamedFile[];
+  /** What the person should know though the job goes on. */
+  notices: string[];
 }
 
 /** @throws InputError `cannot-read`, and what `readProject` throws */
@@ -28,7 +31,13 @@ export async function readProjectFiles(projectFile: string): Promise<ProjectFile
   for (const [i, drape] of project.circuit.drapes.entries())
     others.set(drape.drawing, await get(drape.drawing, `$.circuit.drapes[${i}].drawing`));
   if (project.netlist !== undefined) others.set(project.netlist, await get(project.netlist, '$.netlist'));
-  return { project, unknown, projectFile, projectText, part, others: [...others.values()] };
+  const notices: string[] = [];
+  const { sha256 } = project.part;
+  if (sha256 !== undefined && sha256.toLowerCase() !== createHash('sha256').update(part.bytes).digest('hex'))
+    notices.push(
+      `${project.part.file} is not the file that the project was saved with ($.part.sha256 differs).`,
+    );
+  return { project, unknown, projectFile, projectText, part, others: [...others.values()], notices };
 }
 
 /**

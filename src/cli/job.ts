@@ -23,7 +23,7 @@ import { proveRun } from './prove-run.ts';
 /** Worker data that tells the program's file to do a job. */
 export const JOB_ROLE = 'job';
 
-interface ProjectInput {
+export interface ProjectInput {
   projectFile: string;
   projectText: string;
   part: NamedFile;

@@ -283,3 +283,12 @@ test('Ctrl+C while a job runs: status 130, the earlier folder whole, nothing bes
   expect(filesBelow(job.folder)).toEqual(before);
   expect(readdirSync(job.folder).sort()).toEqual(['jobs', 'out', 'parts']);
 });
+
+test('a part that is not the one the project was saved with is said, and the job goes on', async () => {
+  const job = putJob((p) => {
+    p.part.sha256 = '0'.repeat(64);
+  });
+  const r = await runCli(['check', job.project, '--progress', 'none']);
+  expect(r.status).toBe(0);
+  expect(r.stderr).toMatch(/stone\.stl is not the file that the project was saved with/);
+});
