@@ -9,7 +9,7 @@ import { MenuBar } from '../panels/menu-bar.tsx';
 import { BusyLine, Hints, Notices } from '../panels/notices.tsx';
 import { HeightStrip } from '../panels/strip.tsx';
 import { ToolHelp, Tools } from '../panels/tools.tsx';
-import { useLook, WindowContext, type WindowTools } from '../panels/window.tsx';
+import { useSteady, WindowContext, type WindowTools } from '../panels/window.tsx';
 import { isUnsaved } from '../store/state.ts';
 import type { Store } from '../store/store.ts';
 import { createViewport, type Viewport } from '../view/viewport.ts';
@@ -153,7 +153,7 @@ export function App({ store, host, questions }: { store: Store; host: Host; ques
 
 /** Title, menus and unsaved state, inside the window or in the host's own frame. */
 function Frame({ host, commands }: { host: Host; commands: readonly Command[] }) {
-  const state = useLook((s) => s);
+  const state = useSteady();
   const unsaved = isUnsaved(state);
   const name = state.project ? state.origin.name || state.project.name : 'Beamdrape';
   useEffect(() => host.title(name, unsaved), [host, name, unsaved]);

@@ -8,7 +8,7 @@ import { HeadStep } from './step-head.tsx';
 import { HeightsStep } from './step-heights.tsx';
 import { PartStep } from './step-part.tsx';
 import { ReachStep } from './step-reach.tsx';
-import { useLook, useWindow } from './window.tsx';
+import { useSteady, useWindow } from './window.tsx';
 
 const NAMES: Record<StepName, string> = { part: 'Part', circuit: 'Circuit', head: 'Head', reach: 'Reach', heights: 'Heights', files: 'Files' };
 const BODIES: Record<StepName, () => ReactNode> = { part: PartStep, circuit: CircuitStep, head: HeadStep, reach: ReachStep, heights: HeightsStep, files: FilesStep };
@@ -16,7 +16,7 @@ const MARKS: Record<StepWords['mark'], string> = { open: 'not begun', good: 'goo
 
 export function Journey() {
   const { store } = useWindow();
-  const state = useLook((s) => s);
+  const state = useSteady();
   const words = stepWords(state);
   return (
     <nav className="journey" aria-label="Steps of the job">

@@ -5,13 +5,13 @@ import { countLooks, plainDepth } from '../store/looks.ts';
 import { current } from '../store/state.ts';
 import { show } from '../store/units.ts';
 import { Swatch } from './swatch.tsx';
-import { useLook, useWindow } from './window.tsx';
+import { useSteady, useWindow } from './window.tsx';
 
 const WORDS = { reached: 'Reached', focus: 'Out of focus', incidence: 'Too oblique', shade: 'Shaded', field: 'Off the field', dose: 'Wrong dose' } as const;
 
 export function Legend() {
   const { store } = useWindow();
-  const state = useLook((s) => s);
+  const state = useSteady();
   const { copper, reach, plan } = current(state);
   const depth = state.project ? plainDepth(state.project.limits) : 0;
   const counts = useMemo(

@@ -2,11 +2,11 @@
 import { current } from '../store/state.ts';
 import { show } from '../store/units.ts';
 import { ChoiceField, NumberField, TextField } from './fields.tsx';
-import { useLook, useWindow } from './window.tsx';
+import { useSteady, useWindow } from './window.tsx';
 
 export function CircuitStep() {
   const { store } = useWindow();
-  const state = useLook((s) => s);
+  const state = useSteady();
   const { project, pen, tool, selection } = state;
   const { copper } = current(state);
   if (!project) return <p>Open a part first.</p>;

@@ -2,11 +2,11 @@
 import { isUnsaved } from '../store/state.ts';
 import { show, signed } from '../store/units.ts';
 import { NumberField } from './fields.tsx';
-import { useLook, useWindow } from './window.tsx';
+import { useSteady, useWindow } from './window.tsx';
 
 export function FilesStep() {
   const { store, run } = useWindow();
-  const state = useLook((s) => s);
+  const state = useSteady();
   const { project, exported } = state;
   if (!project) return <p>Open a part first.</p>;
   const set = (key: string, what: string, value: unknown) => store.act({ kind: 'set', path: ['scan', key], what, value });

@@ -3,18 +3,18 @@ import { current } from '../store/state.ts';
 import { setupsOf } from '../store/store.ts';
 import { show, signed } from '../store/units.ts';
 import { ChoiceField, NumberField } from './fields.tsx';
-import { useLook, useWindow } from './window.tsx';
+import { useSteady, useWindow } from './window.tsx';
 
 export function HeightsStep() {
   const { store } = useWindow();
-  const state = useLook((s) => s);
+  const state = useSteady();
   const { project } = state;
   const { copper, plan } = current(state);
   if (!project) return <p>Open a part first.</p>;
   const { stage, scan } = project;
   const set = (path: readonly (string | number)[], what: string, value: unknown) => store.act({ kind: 'set', path, what, value });
   const sign = stage.zMoves === 'head' ? 1 : -1;
-  const byHand = setupsOf(project)[state.setup]?.['focusHeights'] !== undefined;
+  const byHand = setupsOf(project)[state.setup]?.focusHeights !== undefined;
   return (
     <>
       {plan && plan.layers.length > 0 ? (

@@ -1,13 +1,12 @@
 /** Reach: what the beam cannot write and why, with the limits that decide it. */
-import { useMemo } from 'react';
 import { REASONS, type Reason } from '../core/reach/result.ts';
-import { countLooks, plainDepth } from '../store/looks.ts';
 import { placeOf } from '../store/margins.ts';
 import { current } from '../store/state.ts';
 import { show } from '../store/units.ts';
+import { overview } from '../store/words.ts';
 import { NumberField, TickField } from './fields.tsx';
 import { Swatch } from './swatch.tsx';
-import { useLook, useWindow } from './window.tsx';
+import { useSteady, useWindow } from './window.tsx';
 
 const MENDS: Record<Exclude<Reason, 'focus'>, string> = {
   incidence: 'Tilt the part toward the head, or move the copper to a flatter place.',
@@ -18,13 +17,10 @@ const MENDS: Record<Exclude<Reason, 'focus'>, string> = {
 
 export function ReachStep() {
   const { store, showPlace } = useWindow();
-  const state = useLook((s) => s);
+  const state = useSteady();
   const { project } = state;
   const { copper, reach, plan } = current(state);
-  const counts = useMemo(
-    () => (copper && reach && project ? countLooks(copper, state.setup, reach, plan, { show: 'layers', offset: 0, depth: plainDepth(project.limits) }) : null),
-    [copper, reach, plan, state.setup, project],
-  );
+  const counts = copper && reach ? overview(copper, state.setup, reach, plan).counts : null;
   if (!project) return <p>Open a part first.</p>;
   const set = (key: string, what: string, value: unknown) => store.act({ kind: 'set', path: ['limits', key], what, value });
   const bad = counts ? REASONS.filter((r): r is Exclude<Reason, 'focus'> => r !== 'focus' && counts[r].elements.length > 0) : [];

@@ -5,9 +5,10 @@ import { plainDepth } from '../store/looks.ts';
 import { heightProfile, niceStep } from '../store/profile.ts';
 import { current } from '../store/state.ts';
 import { setupsOf } from '../store/store.ts';
+import { overview } from '../store/words.ts';
 import { show, signed } from '../store/units.ts';
 import { NumberField } from './fields.tsx';
-import { useLook, useWindow } from './window.tsx';
+import { useLook, useSteady, useWindow } from './window.tsx';
 
 const HIGH = 96;
 const TOP = 22;
@@ -20,10 +21,10 @@ export function HeightStrip() {
 
 function Strip({ project }: { project: Project }) {
   const { store } = useWindow();
-  const state = useLook((s) => s);
+  const state = useSteady();
   const { offset, isolated } = state;
-  const grip = useRef<{ layer: number; x: number; from: number; moved: boolean } | null>(null);
-  const { copper, plan } = current(state);
+  const grip = useRef<{ band: number; x: number; from: number; scale: number; moved: boolean } | null>(null);
+  const { copper, reach, plan } = current(state);
   const profile = useMemo(() => (copper ? heightProfile(copper, state.setup) : null), [copper, state.setup]);
   const box = useRef<HTMLDivElement>(null);
   const [wide, setWide] = useState(600);
@@ -36,10 +37,15 @@ function Strip({ project }: { project: Project }) {
 
   const depth = plainDepth(project.limits);
   const layers = plan?.layers ?? [];
+  const handMade = setupsOf(project)[state.setup]?.focusHeights;
+  // By hand, a height that writes nothing is still there to be dragged back.
+  const bands = handMade
+    ? [...handMade].sort((a, b) => a - b).map((height) => ({ height, layer: layers.findIndex((l) => l.focusHeight === height) }))
+    : layers.map((l, layer) => ({ height: l.focusHeight, layer }));
   const [low, high] = profile?.range ?? [-5, 5];
   const margin = Math.max(depth, (high - low) * 0.08) + 0.6;
-  const from = Math.min(low, ...layers.map((l) => l.focusHeight)) - margin;
-  const to = Math.max(high, ...layers.map((l) => l.focusHeight)) + margin;
+  const from = Math.min(low, ...bands.map((b) => b.height)) - margin;
+  const to = Math.max(high, ...bands.map((b) => b.height)) + margin;
   const x = (z: number) => ((z - from) / (to - from)) * wide;
   const z = (px: number) => from + (px / wide) * (to - from);
   const most = profile ? Math.max(...profile.area, 1e-9) : 1;
@@ -67,29 +73,29 @@ function Strip({ project }: { project: Project }) {
   }
 
   // --- the bands ---
-  function downBand(e: PointerEvent<SVGGElement>, layer: number) {
+  function downBand(e: PointerEvent<SVGGElement>, band: number) {
     e.currentTarget.setPointerCapture(e.pointerId);
-    grip.current = { layer, x: e.clientX, from: layers[layer]!.focusHeight, moved: false };
+    grip.current = { band, x: e.clientX, from: bands[band]!.height, scale: (to - from) / wide, moved: false };
   }
   function moveBand(e: PointerEvent<SVGGElement>) {
     const g = grip.current;
     if (!g || (!g.moved && Math.abs(e.clientX - g.x) < 4)) return;
     g.moved = true;
-    store.moveLayer(g.layer, -toStage(-(g.from + ((e.clientX - g.x) / wide) * (to - from))), 'band');
+    store.moveLayer(g.band, -toStage(-(g.from + (e.clientX - g.x) * g.scale)), 'band');
   }
   function upBand() {
     const g = grip.current;
     grip.current = null;
     if (!g) return;
     if (g.moved) store.seal();
-    else store.isolate(g.layer);
+    else store.isolate(bands[g.band]?.layer ?? null);
   }
-  function keyBand(e: KeyboardEvent, layer: number) {
-    if (e.key === 'Enter' || e.key === ' ') store.isolate(layer);
+  function keyBand(e: KeyboardEvent, band: number) {
+    if (e.key === 'Enter' || e.key === ' ') store.isolate(bands[band]!.layer);
     else {
       const by = { ArrowLeft: -1, ArrowRight: 1 }[e.key];
       if (by === undefined) return;
-      store.moveLayer(layer, -toStage(-(layers[layer]!.focusHeight + by * Math.max(step, e.shiftKey ? 1 : 0.1))), null);
+      store.moveLayer(band, -toStage(-(bands[band]!.height + by * Math.max(step, e.shiftKey ? 1 : 0.1))), null);
     }
     e.preventDefault();
     e.stopPropagation();
@@ -99,10 +105,10 @@ function Strip({ project }: { project: Project }) {
   const ticks: number[] = [];
   for (let t = Math.ceil(from / tick) * tick; t <= to; t += tick) ticks.push(t);
   const atOffset = state.show === 'offset';
-  const byHand = setupsOf(project)[state.setup]?.['focusHeights'] !== undefined;
+  const byHand = handMade !== undefined;
   const markerX = Math.max(1, Math.min(wide - 1, x(focus)));
   const tag = `${signed(shownZ)} mm`;
-  const lost = copper && plan ? plan.layerOf.reduce((sum, l, t) => (l === -1 ? sum + copper.area[t]! : sum), 0) : 0;
+  const lost = copper && plan ? overview(copper, state.setup, reach, plan).lost : 0;
 
   return (
     <section className="strip" aria-label="Height strip">
@@ -146,14 +152,15 @@ function Strip({ project }: { project: Project }) {
                   x={x(profile.from + i * profile.bin)} width={Math.max(1, x(profile.from + profile.bin) - x(profile.from) + 0.3)} y={TOP + HIGH - tall} height={tall} />
               ) : null;
             })}
-          {layers.map((l, i) => (
-            <g key={l.index} className={`band${isolated === i ? ' alone' : ''}${i % 2 ? ' odd' : ''}`} tabIndex={0} role="slider"
-              aria-label={`Layer ${l.index}, focus height; Enter shows it alone`} aria-valuenow={Number(l.focusHeight.toFixed(3))} aria-valuemin={Number(from.toFixed(2))} aria-valuemax={Number(to.toFixed(2))}
-              aria-valuetext={`${signed(l.focusHeight)} mm${isolated === i ? ', shown alone' : ''}`}
+          {bands.map((b, i) => (
+            // biome-ignore lint/suspicious/noArrayIndexKey: bands are known by their order, from below
+            <g key={i} className={`band${isolated !== null && isolated === b.layer ? ' alone' : ''}${i % 2 ? ' odd' : ''}${b.layer < 0 ? ' idle' : ''}`} tabIndex={0} role="slider" data-testid={`band-${i + 1}`}
+              aria-label={b.layer < 0 ? 'Height that writes nothing' : `Layer ${layers[b.layer]!.index}, focus height; Enter shows it alone`} aria-valuenow={Number(b.height.toFixed(3))} aria-valuemin={Number(from.toFixed(2))} aria-valuemax={Number(to.toFixed(2))}
+              aria-valuetext={`${signed(b.height)} mm${isolated !== null && isolated === b.layer ? ', shown alone' : ''}`}
               onPointerDown={(e) => downBand(e, i)} onPointerMove={moveBand} onPointerUp={upBand} onPointerCancel={upBand} onKeyDown={(e) => keyBand(e, i)}>
-              <rect x={x(l.focusHeight - depth)} width={Math.max(2, x(l.focusHeight + depth) - x(l.focusHeight - depth))} y={TOP} height={HIGH} />
-              <line x1={x(l.focusHeight)} x2={x(l.focusHeight)} y1={TOP} y2={TOP + HIGH} />
-              <text x={x(l.focusHeight)} y={TOP + 13} textAnchor="middle">{l.index}</text>
+              <rect x={x(b.height - depth)} width={Math.max(2, x(b.height + depth) - x(b.height - depth))} y={TOP} height={HIGH} />
+              <line x1={x(b.height)} x2={x(b.height)} y1={TOP} y2={TOP + HIGH} />
+              <text x={x(b.height)} y={TOP + 13} textAnchor="middle">{b.layer < 0 ? '–' : layers[b.layer]!.index}</text>
             </g>
           ))}
           <g className="marker" tabIndex={0} role="slider" aria-label={moves === 'head' ? 'Head offset' : 'Stage offset'} aria-orientation="horizontal"

@@ -1,5 +1,5 @@
 /** What every panel may reach: the store, the commands and the view. */
-import { createContext, useContext } from 'react';
+import { createContext, useContext, useEffect, useState } from 'react';
 import { useStore } from 'zustand';
 import type { Vec3 } from '../core/base/vec.ts';
 import type { State } from '../store/state.ts';
@@ -20,6 +20,19 @@ export function useWindow(): WindowTools {
   const w = useContext(WindowContext);
   if (!w) throw new Error('a panel outside the window');
   return w;
+}
+
+/** The whole state, but deaf to the pointer: what hovers over the part concerns few panels. */
+export function useSteady(): State {
+  const { api } = useWindow().store;
+  const [state, setState] = useState(api.getState);
+  useEffect(() => {
+    setState(api.getState());
+    return api.subscribe((now, before) => {
+      if ((Object.keys(now) as (keyof State)[]).some((k) => k !== 'hover' && now[k] !== before[k])) setState(now);
+    });
+  }, [api]);
+  return state;
 }
 
 export const useLook = <T,>(f: (s: State) => T): T => useStore(useWindow().store.api, f);

@@ -10,6 +10,9 @@ export interface Follower {
   settled(): Promise<void>;
 }
 
+/** Time after which the copper laid so far is shown, ms; each further wait is twice as long. */
+const FIRST_LOOK = 500;
+
 export function createFollower(api: StoreApi<State>, worker: WorkerClient, fail: (error: unknown, doing: string) => void): Follower {
   let running: Promise<void> | null = null;
   let beyondDrape = false;
@@ -33,9 +36,13 @@ export function createFollower(api: StoreApi<State>, worker: WorkerClient, fail:
       try {
         const drape = tell('Laying the copper');
         drape(null);
-        const copper = await worker.call('drape', { project }, drape);
-        // A drag is shown as it goes; only reach and plan wait for it to end.
-        if (revision > (api.getState().copper?.revision ?? -1)) api.setState({ copper: { revision, value: copper } });
+        // Copper is shown as it is laid; reach and plan wait for all of it.
+        for (let patience = FIRST_LOOK; ; patience *= 2) {
+          const copper = await worker.call('drape', { project, patience }, drape);
+          if (late(revision)) break;
+          api.setState({ copper: { revision, value: copper } });
+          if (copper.pending === 0) break;
+        }
         if (late(revision)) continue;
         beyondDrape = true;
         const look = tell('Looking where the beam reaches');

@@ -22,14 +22,17 @@ export const plainDepth = (limits: Limits): number =>
   limits.depth.mode === 'distance' ? Math.max(0, limits.depth.halfDepth - limits.heightUncertainty) : 1;
 
 /** Why triangle `t` is not copper-coloured, or null. */
-export function reasonAt(t: number, heights: Float32Array, reach: ReachPicture | null, plan: PlanPicture | null, view: Viewing): Reason | null {
+export function reasonAt(copper: CopperPicture, t: number, heights: Float32Array, reach: ReachPicture | null, plan: PlanPicture | null, view: Viewing): Reason | null {
   const fails = reach ? reach.fails[t] : 0;
   for (const reason of TOLD) if (reason !== 'focus' && fails & BIT[reason]) return reason;
   if (view.show === 'layers' && plan) return plan.layerOf[t] === -1 ? 'focus' : null;
   if (view.show === 'layers') return null;
-  const z = (heights[3 * t] + heights[3 * t + 1] + heights[3 * t + 2]) / 3;
-  return Math.abs(z + view.offset) > (reach ? reach.usable[t] : view.depth) ? 'focus' : null;
+  return Math.abs(heightAt(copper, heights, t) + view.offset) > (reach ? reach.usable[t] : view.depth) ? 'focus' : null;
 }
+
+/** Bench height of the middle of triangle `t`. */
+export const heightAt = (copper: CopperPicture, heights: Float32Array, t: number): number =>
+  (heights[copper.corners[3 * t]] + heights[copper.corners[3 * t + 1]] + heights[copper.corners[3 * t + 2]]) / 3;
 
 export interface Count {
   /** Elements with such a place. */
@@ -44,7 +47,7 @@ export function countLooks(copper: CopperPicture, setup: number, reach: ReachPic
   const keys = ['reached', ...REASONS] as const;
   const counts = Object.fromEntries(keys.map((k) => [k, { elements: [] as number[], area: 0 }])) as unknown as Counts;
   for (let t = 0; t < copper.area.length; t++) {
-    const c = counts[reasonAt(t, heights, reach, plan, view) ?? 'reached'];
+    const c = counts[reasonAt(copper, t, heights, reach, plan, view) ?? 'reached'];
     const e = copper.element[t];
     if (c.elements[c.elements.length - 1] !== e) c.elements.push(e);
     c.area += copper.area[t];

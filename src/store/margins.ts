@@ -2,6 +2,7 @@
 import { REASONS, type Reason } from '../core/reach/result.ts';
 import type { Vec3 } from '../core/base/vec.ts';
 import type { Limits, Material } from '../core/project/schema.ts';
+import { heightAt } from './looks.ts';
 import type { CopperPicture, PlanPicture, ReachPicture } from '../worker/pictures.ts';
 
 export interface Margin {
@@ -51,8 +52,7 @@ export function marginsOf(
         ok = false;
         continue;
       }
-      const z = (heights[3 * t] + heights[3 * t + 1] + heights[3 * t + 2]) / 3;
-      const d = Math.abs(z - layer.focusHeight);
+      const d = Math.abs(heightAt(copper, heights, t) - layer.focusHeight);
       if (d / reach.usable[t] > share) [share, at, value, limit] = [d / reach.usable[t], t, d, reach.usable[t]];
     }
     out.push({ check: 'focus', label: 'Out of focus by', ok, value, limit, unit: 'mm', share: Math.max(0, share), at });
@@ -72,7 +72,8 @@ export function marginsOf(
 
 /** Middle of a triangle of the copper and its normal, part frame. */
 export function placeOf(copper: CopperPicture, t: number): { point: Vec3; normal: Vec3 } {
-  const mean = (a: Float32Array, k: number) => (a[9 * t + k] + a[9 * t + 3 + k] + a[9 * t + 6 + k]) / 3;
+  const [a, b, c] = [0, 1, 2].map((i) => 3 * copper.corners[3 * t + i]);
+  const mean = (x: Float32Array, k: number) => (x[a + k] + x[b + k] + x[c + k]) / 3;
   return {
     point: [mean(copper.positions, 0), mean(copper.positions, 1), mean(copper.positions, 2)],
     normal: [mean(copper.normals, 0), mean(copper.normals, 1), mean(copper.normals, 2)],
@@ -84,10 +85,10 @@ export function copperAt(copper: CopperPicture, face: number, point: Vec3): numb
   const { positions: x } = copper;
   for (let t = copper.face.length - 1; t >= 0; t--) {
     if (copper.face[t] !== face) continue;
-    const o = 9 * t;
+    const [o, a, b] = [0, 1, 2].map((i) => 3 * copper.corners[3 * t + i]);
     const n: [number, number, number] = [0, 0, 0];
-    const [ux, uy, uz] = [x[o + 3] - x[o], x[o + 4] - x[o + 1], x[o + 5] - x[o + 2]];
-    const [vx, vy, vz] = [x[o + 6] - x[o], x[o + 7] - x[o + 1], x[o + 8] - x[o + 2]];
+    const [ux, uy, uz] = [x[a] - x[o], x[a + 1] - x[o + 1], x[a + 2] - x[o + 2]];
+    const [vx, vy, vz] = [x[b] - x[o], x[b + 1] - x[o + 1], x[b + 2] - x[o + 2]];
     n[0] = uy * vz - uz * vy;
     n[1] = uz * vx - ux * vz;
     n[2] = ux * vy - uy * vx;

@@ -27,7 +27,7 @@ export function heightProfile(copper: CopperPicture, setup: number): Profile | n
   const area = new Float64Array(Math.max(1, Math.ceil((hi - from) / bin + 1e-9)));
   for (let t = 0; t < copper.area.length; t++) {
     // A triangle's area is spread evenly over its heights: exact enough at a tenth of a layer's depth.
-    const z = [heights[3 * t], heights[3 * t + 1], heights[3 * t + 2]];
+    const z = [0, 1, 2].map((c) => heights[copper.corners[3 * t + c]]);
     const [a, b] = [Math.min(...z), Math.max(...z)];
     const [i, j] = [binOf(a), binOf(b)];
     if (i === j) area[i] += copper.area[t];

@@ -93,6 +93,8 @@ export interface State {
   selection: readonly string[];
   tool: Tool;
   pen: Pen;
+  /** Ways over the surface to a point being dragged; the copper follows when it is let go. */
+  preview: readonly Float32Array[];
   hover: { probe: Probe; element: number; triangle: number } | null;
 }
 
@@ -116,6 +118,7 @@ export const firstState: State = {
   selection: [],
   tool: { kind: 'look' },
   pen: { width: 0.6, net: '', shape: { circle: 1.6 } },
+  preview: [],
   hover: null,
 };
 

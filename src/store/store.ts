@@ -65,7 +65,7 @@ export function createStore(workers: Workers) {
       setup: Math.min(s.setup, setupsOf(project).length - 1),
     });
     if (s.project && project.part.units !== s.project.part.units) void reopenPart();
-    else follower.wake();
+    else if (!dragging) follower.wake();
   }
 
   async function reopenPart(): Promise<void> {
@@ -310,7 +310,16 @@ export function createStore(workers: Workers) {
         const e = get().project?.circuit.elements.find((x) => x.id === id);
         if (!probe || !e) continue;
         if (e.kind === 'pad') act({ kind: 'move-pad', id, at: round3(probe.point) }, mine.gesture);
-        else act({ kind: 'move-point', id, index, at: round3(snapped(probe.point, snap)) }, mine.gesture);
+        else {
+          const at = round3(snapped(probe.point, snap));
+          act({ kind: 'move-point', id, index, at }, mine.gesture);
+          const points = (e.kind === 'trace' ? e.route : e.outline).map((p) => p.at);
+          const round = e.kind === 'region';
+          const before = points[index - 1] ?? (round ? points[points.length - 1] : undefined);
+          const after = points[index + 1] ?? (round ? points[0] : undefined);
+          const runs = await Promise.all([before, after].flatMap((p) => (p ? [workers.live.call('run', { from: p, to: at })] : [])));
+          set({ preview: runs.flatMap((r) => (r.points ? [r.points] : [])) });
+        }
       }
       mine.running = null;
     })().catch((error) => fail(error, 'Moving the point'));
@@ -320,7 +329,8 @@ export function createStore(workers: Workers) {
     const mine = dragging;
     dragging = null;
     await mine?.running;
-    set((s) => ({ history: seal(s.history) }));
+    set((s) => ({ history: seal(s.history), preview: [] }));
+    follower.wake();
   }
 
   return {
@@ -368,7 +378,7 @@ export function createStore(workers: Workers) {
       const s = get();
       const { plan } = current(s);
       if (!plan || !s.project || s.project.setups === 'auto') return;
-      const heights = ((s.project.setups[s.setup]?.['focusHeights'] as number[] | undefined) ?? plan.layers.map((l) => l.focusHeight)).slice();
+      const heights = [...(s.project.setups[s.setup]?.focusHeights ?? plan.layers.map((l) => l.focusHeight))].sort((a, b) => a - b);
       const old = heights[layer];
       if (old === undefined) return;
       // Layers are numbered from below: one does not pass its neighbour, and so keeps its number.

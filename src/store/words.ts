@@ -1,6 +1,7 @@
 /** The state of each step of the job in words, and whether it wants attention. */
 import { REASONS, type Reason } from '../core/reach/result.ts';
-import { countLooks, plainDepth } from './looks.ts';
+import type { CopperPicture, PlanPicture, ReachPicture } from '../worker/pictures.ts';
+import { type Counts, countLooks } from './looks.ts';
 import { current, type State, type StepName } from './state.ts';
 import { show } from './units.ts';
 
@@ -17,6 +18,29 @@ export const REASON_WORDS: Record<Reason, [one: string, many: string]> = {
   field: ['is off the field', 'are off the field'],
   dose: ['has the wrong dose', 'have the wrong dose'],
 };
+
+interface Overview {
+  counts: Counts;
+  /** Steepest incidence, degrees. */
+  steep: number;
+  /** Copper that no layer writes, mm². */
+  lost: number;
+}
+
+const known = new WeakMap<CopperPicture, { setup: number; reach: ReachPicture | null; plan: PlanPicture | null; value: Overview }>();
+
+/** Sums over all copper as planned; worked out once for each result. */
+export function overview(copper: CopperPicture, setup: number, reach: ReachPicture | null, plan: PlanPicture | null): Overview {
+  const before = known.get(copper);
+  if (before && before.setup === setup && before.reach === reach && before.plan === plan) return before.value;
+  let lost = 0;
+  if (plan) for (let t = 0; t < copper.area.length; t++) if (plan.layerOf[t] === -1) lost += copper.area[t];
+  let steep = 0;
+  if (reach) for (const a of reach.incidence) steep = Math.max(steep, a);
+  const value = { counts: countLooks(copper, setup, reach, plan, { show: 'layers', offset: 0, depth: 0 }), steep, lost };
+  known.set(copper, { setup, reach, plan, value });
+  return value;
+}
 
 export function stepWords(s: State): Record<StepName, StepWords> {
   const { project, part } = s;
@@ -63,8 +87,8 @@ export function stepWords(s: State): Record<StepName, StepWords> {
 
   function reachWords(): StepWords {
     if (!copper || !reach || copper.area.length === 0) return { words: elements.length ? 'Not looked yet' : 'Nothing yet', mark: 'open' };
-    const counts = countLooks(copper, s.setup, reach, plan, { show: 'layers', offset: 0, depth: plainDepth(project!.limits) });
-    const steepest = show(reach.incidence.reduce((a, b) => Math.max(a, b), 0), 0);
+    const { counts, steep } = overview(copper, s.setup, reach, plan);
+    const steepest = show(steep, 0);
     const bad = REASONS.filter((r) => r !== 'focus' && counts[r].elements.length > 0);
     if (bad.length === 0) return { words: `All reached, steepest ${steepest}°`, mark: 'good' };
     const told = bad.map((r) => `${counts[r].elements.length} ${REASON_WORDS[r][counts[r].elements.length === 1 ? 0 : 1]}`);
@@ -73,8 +97,7 @@ export function stepWords(s: State): Record<StepName, StepWords> {
 
   function unreachedWords(): string {
     if (!copper || !plan) return '';
-    let area = 0;
-    for (let t = 0; t < copper.area.length; t++) if (plan.layerOf[t] === -1) area += copper.area[t];
+    const area = overview(copper, s.setup, reach, plan).lost;
     return area > 1e-6 ? `, ${show(area, 2)} mm² left out` : '';
   }
 

@@ -135,7 +135,7 @@ export function copperMaterial() {
         }
         float l = 0.72 + 0.28 * abs(normalize(vNormal).z);
         c *= l;
-        if (uAlone > -0.5 && abs(vLayer - uAlone) > 0.25) c = mix(uPart * 0.8, c, 0.18);
+        if (uAlone > -0.5 && abs(vLayer - uAlone) > 0.25 && abs(vLayer + 1.0) > 0.25) c = mix(uPart * 0.8, c, 0.18);
         gl_FragColor = vec4(c, 1.0);
         #include <colorspace_fragment>
       }`,

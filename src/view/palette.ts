@@ -1,7 +1,7 @@
 /**
  * Colours of the copper and what is told about it: one list for the shader, the legend and the strip.
  * The part is pale and the copper light, so that the dark reasons stand off both: relative luminance
- * (WCAG 2.2) of reached copper is 0.315, of out-of-focus red at most 0.055, which is 3:1 or more in any light
+ * (WCAG 2.2) of reached copper is 0.395, of out-of-focus red at most 0.084, which is 3:1 or more in any light
  * that the shader makes. src/app/style.css repeats the values for the legend.
  */
 import type { Reason } from '../core/reach/result.ts';
@@ -16,8 +16,8 @@ export interface Look {
 }
 
 export const LOOKS: Record<Reason | 'reached', Look> = {
-  reached: { base: '#d2874b', mark: '#d2874b', pattern: 'plain', words: 'Reached' },
-  focus: { base: '#8a0016', mark: '#4a000a', pattern: 'slashes', words: 'Out of focus' },
+  reached: { base: '#de9a5f', mark: '#de9a5f', pattern: 'plain', words: 'Reached' },
+  focus: { base: '#a80018', mark: '#5e000c', pattern: 'slashes', words: 'Out of focus' },
   incidence: { base: '#54389b', mark: '#c8bbf2', pattern: 'stripes', words: 'Too oblique' },
   shade: { base: '#22385c', mark: '#9fb6dc', pattern: 'dots', words: 'Shaded' },
   field: { base: '#0b5a48', mark: '#a9dfce', pattern: 'dashes', words: 'Off the field' },

@@ -63,7 +63,7 @@ export function createScene(canvas: HTMLCanvasElement) {
   const bench = new Group();
   const squareMat = new LineBasicMaterial();
   const square = new LineSegments(new BufferGeometry(), squareMat);
-  const planeMat = new MeshBasicMaterial({ transparent: true, opacity: 0.13, side: DoubleSide, depthWrite: false });
+  const planeMat = new MeshBasicMaterial({ transparent: true, opacity: 0.09, side: DoubleSide, depthWrite: false });
   const plane = new Mesh(new PlaneGeometry(1, 1), planeMat);
   const lensMat = new LineBasicMaterial({ transparent: true, opacity: 0.9 });
   const lens = new LineSegments(new BufferGeometry(), lensMat);
@@ -104,9 +104,10 @@ export function createScene(canvas: HTMLCanvasElement) {
       return;
     }
     const g = geometryOf(copper.positions, copper.normals);
-    const n = copper.area.length;
+    g.setIndex(new BufferAttribute(copper.corners, 1));
+    const n = copper.positions.length / 3;
     g.setAttribute('aHeight', new BufferAttribute(copper.heights[setup] ?? copper.heights[0]!, 1));
-    for (const name of ['aUsable', 'aFails', 'aLayer']) g.setAttribute(name, new BufferAttribute(new Float32Array(3 * n), 1));
+    for (const name of ['aUsable', 'aFails', 'aLayer']) g.setAttribute(name, new BufferAttribute(new Float32Array(n), 1));
     copperMesh.geometry = g;
     setSegments(outlines, segmentsOf(copper.elements.flatMap((e) => e.outline)));
   }
@@ -117,7 +118,13 @@ export function createScene(canvas: HTMLCanvasElement) {
       const a = g.getAttribute(name) as BufferAttribute | undefined;
       if (!a) return;
       const flat = a.array as Float32Array;
-      for (let t = 0; t < copper.area.length; t++) flat[3 * t] = flat[3 * t + 1] = flat[3 * t + 2] = value(t);
+      // A vertex shows what one of its triangles has: patterns are true to the width of one triangle.
+      for (let t = 0; t < copper.area.length; t++) {
+        const v = value(t);
+        flat[copper.corners[3 * t]!] = v;
+        flat[copper.corners[3 * t + 1]!] = v;
+        flat[copper.corners[3 * t + 2]!] = v;
+      }
       a.needsUpdate = true;
     };
     spread('aUsable', reach ? (t) => reach.usable[t]! : () => depth);

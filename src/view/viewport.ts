@@ -104,7 +104,8 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
       const ids = new Set(s.selection);
       scene.setChosen((copper?.elements ?? []).filter((e) => ids.has(e.id)).flatMap((e) => e.outline));
     }
-    if (changed((x) => x.tool)) scene.setLive(s.tool.kind === 'trace' ? [...s.tool.runs, ...(s.tool.live?.points ? [s.tool.live.points] : [])] : []);
+    if (changed((x) => x.tool) || changed((x) => x.preview))
+      scene.setLive(s.tool.kind === 'trace' ? [...s.tool.runs, ...(s.tool.live?.points ? [s.tool.live.points] : [])] : s.preview);
     if (changed((x) => x.hover) || changed((x) => x.offset)) {
       const frame = frameOf(s);
       const p = s.hover && flags.lens ? frame.point(partPoint(s.hover.probe.point)) : null;

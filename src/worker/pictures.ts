@@ -32,7 +32,7 @@ export interface ElementPicture {
   area: number;
   stretch: number;
   anchor: Vec3;
-  /** Its triangles are `first … first + count - 1`. */
+  /** Its triangles are `first … first + count - 1`; their corners belong to it alone. */
   first: number;
   count: number;
   /** Drawn outline, closed loops, 3 a point. */
@@ -41,22 +41,26 @@ export interface ElementPicture {
   path: Float32Array | null;
 }
 
-/** The copper of all elements, one triangle after the other; T triangles. */
+/** The copper of all elements, one triangle after the other: T triangles on V vertices. */
 export interface CopperPicture {
   elements: ElementPicture[];
+  /** Elements still to be laid, when the call's patience ran out. */
+  pending: number;
   /** Elements that could not be laid: why. */
   problems: InputProblem[];
   /** Elements that were laid with bad news, or not at all: no way over the surface, no room. */
   findings: DrapeFinding[];
-  /** Part frame, 9 a triangle. */
+  /** Part frame, 3 a vertex. */
   positions: Float32Array;
   normals: Float32Array;
+  /** Vertices of the triangles, 3 each. */
+  corners: Uint32Array;
   /** Face of the part under each triangle. */
   face: Int32Array;
   /** Element of each triangle. */
   element: Int32Array;
   area: Float32Array;
-  /** Bench height of each corner at stage offset 0, 3 a triangle, one array a setup. */
+  /** Bench height of each vertex at stage offset 0, one array a setup. */
   heights: Float32Array[];
 }
 

@@ -84,20 +84,27 @@ export function createSession() {
 
     /**
      * Reads the project as a file would be read and lays its copper. Elements that did not change are not laid again;
-     * one that cannot be laid is named in `problems`, and the others stay.
+     * one that cannot be laid is named in `problems`, and the others stay. After `patience` ms it gives what there is:
+     * the next call goes on from there, so that copper appears as it is laid.
      */
-    drape(a: { project: Project }, ctx: RunContext): CopperPicture {
+    drape(a: { project: Project; patience?: number }, ctx: RunContext): CopperPicture {
       const here = needPart();
       project = readProject(writeProject(a.project), a.project.name).project;
       const problems: InputProblem[] = [];
       const elements: CopperElement[] = [];
       const findings: DrapeFinding[] = [];
       const keep = new Set<string>();
+      const until = performance.now() + (a.patience ?? Infinity);
+      let pending = 0;
       project.circuit.elements.forEach((element, i) => {
         ctx.step('drape', i, project!.circuit.elements.length);
         const key = JSON.stringify(element);
         keep.add(key);
         try {
+          if (!laid.has(key) && performance.now() > until) {
+            pending++;
+            return;
+          }
           const known = laid.get(key) ?? drapeElement(draper!, element, `$.circuit.elements[${i}]`, a.project.name);
           laid.set(key, known);
           if (known.element) elements.push(known.element);
@@ -109,7 +116,7 @@ export function createSession() {
       });
       for (const key of laid.keys()) if (!keep.has(key)) laid.delete(key);
       copper = { elements };
-      return copperPicture(copper, here, posesOf(project), problems, findings);
+      return { ...copperPicture(copper, here, posesOf(project)), problems, findings, pending };
     },
 
     /** @throws InputError with every problem found in the text */
@@ -189,39 +196,41 @@ function probeAt(mesh: SurfaceMesh, queries: SurfaceQueries, normals: CornerNorm
   };
 }
 
-function copperPicture(copper: Copper, part: Part, setups: Setup[], problems: InputProblem[], findings: DrapeFinding[]): CopperPicture {
-  const total = copper.elements.reduce((n, e) => n + e.copper.triangles.length / 3, 0);
-  const positions = new Float32Array(9 * total);
-  const normals = new Float32Array(9 * total);
-  const face = new Int32Array(total);
-  const element = new Int32Array(total);
-  const area = new Float32Array(total);
-  const heights = setups.map(() => new Float32Array(3 * total));
+function copperPicture(copper: Copper, part: Part, setups: Setup[]): Omit<CopperPicture, 'problems' | 'findings' | 'pending'> {
+  const triangles = copper.elements.reduce((n, e) => n + e.copper.triangles.length / 3, 0);
+  const vertices = copper.elements.reduce((n, e) => n + e.copper.positions.length / 3, 0);
+  const positions = new Float32Array(3 * vertices);
+  const normals = new Float32Array(3 * vertices);
+  const corners = new Uint32Array(3 * triangles);
+  const face = new Int32Array(triangles);
+  const element = new Int32Array(triangles);
+  const area = new Float32Array(triangles);
+  const heights = setups.map(() => new Float32Array(vertices));
   const frames = setups.map((s) => poseFrame(s.pose));
   const elements: ElementPicture[] = [];
   let t = 0;
+  let v = 0;
   copper.elements.forEach((e, index) => {
     const first = t;
-    const { positions: x, triangles, face: f } = e.copper;
-    for (let i = 0; i < triangles.length / 3; i++, t++) {
+    const { positions: x, triangles: own, face: f } = e.copper;
+    for (let i = 0; i < own.length / 3; i++, t++) {
       face[t] = f[i];
       element[t] = index;
+      area[t] = triangleArea(x, own[3 * i], own[3 * i + 1], own[3 * i + 2]);
       for (let c = 0; c < 3; c++) {
-        const p = at3(x, triangles[3 * i + c]);
-        const n = normalAt(part.mesh, part.normals, f[i], p);
-        for (let k = 0; k < 3; k++) {
-          positions[9 * t + 3 * c + k] = p[k];
-          normals[9 * t + 3 * c + k] = n[k];
-        }
-        frames.forEach((frame, s) => {
-          heights[s][3 * t + c] = frame.point(partPoint(p))[2];
-        });
+        const vertex = own[3 * i + c];
+        corners[3 * t + c] = v + vertex;
+        normals.set(normalAt(part.mesh, part.normals, f[i], at3(x, vertex)), 3 * (v + vertex));
       }
-      const [a, b, c] = [at3(x, triangles[3 * i]), at3(x, triangles[3 * i + 1]), at3(x, triangles[3 * i + 2])];
-      const [ux, uy, uz] = [b[0] - a[0], b[1] - a[1], b[2] - a[2]];
-      const [vx, vy, vz] = [c[0] - a[0], c[1] - a[1], c[2] - a[2]];
-      area[t] = Math.hypot(uy * vz - uz * vy, uz * vx - ux * vz, ux * vy - uy * vx) / 2;
     }
+    for (let i = 0; i < x.length / 3; i++) {
+      const p = at3(x, i);
+      positions.set(p, 3 * (v + i));
+      frames.forEach((frame, s) => {
+        heights[s][v + i] = frame.point(partPoint(p))[2];
+      });
+    }
+    v += x.length / 3;
     elements.push({
       id: e.id,
       kind: e.kind,
@@ -237,7 +246,13 @@ function copperPicture(copper: Copper, part: Part, setups: Setup[], problems: In
       path: e.path ? Float32Array.from(e.path.points) : null,
     });
   });
-  return { elements, problems, findings, positions, normals, face, element, area, heights };
+  return { elements, positions, normals, corners, face, element, area, heights };
+}
+
+function triangleArea(x: Float64Array, a: number, b: number, c: number): number {
+  const [ux, uy, uz] = [x[3 * b] - x[3 * a], x[3 * b + 1] - x[3 * a + 1], x[3 * b + 2] - x[3 * a + 2]];
+  const [vx, vy, vz] = [x[3 * c] - x[3 * a], x[3 * c + 1] - x[3 * a + 1], x[3 * c + 2] - x[3 * a + 2]];
+  return Math.hypot(uy * vz - uz * vy, uz * vx - ux * vz, ux * vy - uy * vx) / 2;
 }
 
 function reachPicture(r: SetupReach, project: Project): ReachPicture {
