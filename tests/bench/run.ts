@@ -9,7 +9,10 @@ import { writeFileSync } from 'node:fs';
 import { availableParallelism, cpus } from 'node:os';
 import { parseArgs } from 'node:util';
 import { quiet } from '../../src/core/base/run-context.ts';
+import { focusedBeam } from '../../src/core/beam/beam.ts';
 import { drapeCircuit } from '../../src/core/drape/drape.ts';
+import { layerCsv } from '../../src/core/files/csv.ts';
+import { layerSvg } from '../../src/core/files/svg.ts';
 import { planLayers } from '../../src/core/layers/plan-layers.ts';
 import { buildMesh } from '../../src/core/mesh/build.ts';
 import { buildQueries } from '../../src/core/mesh/queries.ts';
@@ -60,10 +63,14 @@ function measure(size: number): Row {
   const { copper } = timed('trace', () => drapeCircuit(project, 'stone.drape.json', part, quiet));
   const reach = timed('reach', () => checkReach(project, setups, part, copper, quiet));
   const plans = timed('plan', () => planLayers(project, setups, copper, reach, quiet));
+  const spot = 2 * focusedBeam(project.head).waist;
   timed('export', () =>
-    plans.map((plan) => {
+    plans.flatMap((plan) => {
       const ground = prepareGround(part, setups[plan.setup], copper, reach[plan.setup], plan);
-      return plan.layers.map((layer) => scanLayer(project, setups[plan.setup], layer, ground));
+      return plan.layers.map((layer) => {
+        const scan = scanLayer(project, setups[plan.setup], layer, ground);
+        return [layerSvg(scan, project.head, spot), layerCsv(scan)];
+      });
     }),
   );
   times['all'] = Object.values(times).reduce((s, t) => s + t, 0);
