@@ -3,6 +3,7 @@
  * The last line is the count over all runs: `N passed, N failed`. Status 0 only when everything held and tests ran.
  *
  *   --all    window tests left out count as a failure (what the checks on every change use)
+ *   WORDS    only test files whose path holds one of them, as `npm test -- core/mesh`
  */
 import { spawnSync } from 'node:child_process';
 import { mkdirSync, readFileSync, rmSync } from 'node:fs';
@@ -13,6 +14,7 @@ import { electronExe } from './electron-runtime.mjs';
 const ROOT = fileURLToPath(new URL('../..', import.meta.url));
 const OUT = join(ROOT, 'out', 'test-results');
 const all = process.argv.includes('--all');
+const words = process.argv.slice(2).filter((a) => !a.startsWith('--'));
 const shell = process.platform === 'win32';
 
 let passed = 0;
@@ -85,6 +87,7 @@ function vitest(project, wrap, env = {}) {
     join(ROOT, 'node_modules', 'vitest', 'vitest.mjs'),
     'run',
     ...['--project', project, '--reporter=default', '--reporter=json', `--outputFile.json=${file}`],
+    ...(words.length > 0 ? ['--passWithNoTests', ...words] : []),
   ];
   const ok = run(`${project} tests`, command[0], command.slice(1), env);
   let result;
