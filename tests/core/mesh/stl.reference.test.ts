@@ -5,12 +5,13 @@ import { quiet } from '../../../src/core/base/run-context.ts';
 import { buildMesh } from '../../../src/core/mesh/build.ts';
 import { checkMesh } from '../../../src/core/mesh/check-mesh.ts';
 import { readStl } from '../../../src/core/mesh/stl.ts';
+import { source } from '../../reference/sources.ts';
 
 const FOLDER = new URL('../../reference/geodesic/', import.meta.url);
 const load = (name: string) =>
   buildMesh(readStl(readFileSync(new URL(`${name}.stl`, FOLDER)), `${name}.stl`, quiet), 1, quiet);
 
-describe('the reference set is read as its README describes it', () => {
+describe(`the reference set is read as its README describes it (${source('exact-geodesics')})`, () => {
   const parts: [string, number, boolean, number][] = [
     // Name, triangles, closed, Euler number: sphere 2, torus 0, tube 0, sheet 1.
     ['sphere', 20480, true, 2],
