@@ -1,12 +1,13 @@
 /** Puts store, view, panels and bridge together. */
 import { useCallback, useEffect, useMemo, useRef, useState } from 'react';
 import type { Host } from '../bridge/host.ts';
-import { QuestionDialog, type Question } from '../panels/dialogs.tsx';
+import { QuestionDialog } from '../panels/dialogs.tsx';
 import { Facts } from '../panels/facts.tsx';
 import { Journey } from '../panels/journey.tsx';
 import { Legend } from '../panels/legend.tsx';
 import { MenuBar } from '../panels/menu-bar.tsx';
 import { BusyLine, Hints, Notices } from '../panels/notices.tsx';
+import type { Question } from '../panels/question.ts';
 import { HeightStrip } from '../panels/strip.tsx';
 import { ToolHelp, Tools } from '../panels/tools.tsx';
 import { useSteady, WindowContext, type WindowTools } from '../panels/window.tsx';

@@ -2,7 +2,7 @@
 import type { Host, HostEvent, Opened } from '../bridge/host.ts';
 import { writeProject } from '../core/project/read.ts';
 import type { Store } from '../store/store.ts';
-import type { Question } from '../panels/dialogs.tsx';
+import type { Question } from '../panels/question.ts';
 
 export type Ask = (question: Question) => Promise<{ answer: string | null; entry: string }>;
 export type Documents = ReturnType<typeof createDocuments>;

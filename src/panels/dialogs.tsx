@@ -1,16 +1,6 @@
 /** Questions to the person, one at a time, in the window's own dialog. */
 import { useEffect, useId, useRef, useState } from 'react';
-
-export interface Question {
-  title: string;
-  text: string;
-  /** First is the one that Enter takes. */
-  answers: readonly (readonly [id: string, label: string])[];
-  /** A text to give, with its first value. */
-  entry?: { label: string; value: string };
-  /** Things to choose among instead of answers. */
-  choices?: readonly string[];
-}
+import type { Question } from './question.ts';
 
 /** `answer` is an answer's id, a choice, or null; `entry` what was typed. */
 export function QuestionDialog({ question, onAnswer }: { question: Question; onAnswer(answer: string | null, entry: string): void }) {

@@ -203,7 +203,15 @@ export function createStore(workers: Workers) {
     return best?.at ?? p;
   }
 
-  /** A click with the tool in hand. @returns what the view may want to know: the probe */
+  let line: Promise<unknown> = Promise.resolve();
+  /** Clicks and keys of a tool take effect in the order they were made, though each click waits for its place. */
+  function inTurn(f: () => unknown): Promise<void> {
+    const mine = line.then(f).then(() => {});
+    line = mine.catch(() => {});
+    return mine;
+  }
+
+  /** A click with the tool in hand. */
   async function press(ray: Ray, snap: number, add: boolean): Promise<void> {
     let probe: Probe | null;
     try {
@@ -393,13 +401,12 @@ export function createStore(workers: Workers) {
       act({ kind: 'set', path: ['setups', s.setup, 'focusHeights'], what: 'layers to the fewest', value: undefined });
     },
     point,
-    press,
-    finish,
-    takeBack,
-    drop,
+    press: (ray: Ray, snap: number, add: boolean) => inTurn(() => press(ray, snap, add)),
+    finish: () => inTurn(finish),
+    takeBack: () => inTurn(takeBack),
+    drop: () => inTurn(drop),
     drag,
     endDrag,
-    extend,
     /** Opens a project text. The part's bytes may be missing: then the project is shown without it. */
     async openProject(text: string, name: string, ref: string | null, part: { ref: string | null; bytes: Uint8Array } | null, saved = true): Promise<boolean> {
       try {

@@ -286,10 +286,9 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
     const twice = performance.now() - lastClick.time < 350 && Math.hypot(x - lastClick.x, y - lastClick.y) < STILL;
     lastClick = { time: performance.now(), x, y };
     // The second click of a double click stands where the first stood: it ends the trace and adds no place.
-    if (twice && get().tool.kind === 'trace') return void pressing.then(() => store.finish());
-    pressing = pressing.then(() => store.press(rayAt(x, y), snap(), e.shiftKey || e.ctrlKey || e.metaKey));
+    if (twice && get().tool.kind === 'trace') return void store.finish();
+    void store.press(rayAt(x, y), snap(), e.shiftKey || e.ctrlKey || e.metaKey);
   };
-  let pressing: Promise<void> = Promise.resolve();
 
   const onWheel = (e: WheelEvent) => {
     e.preventDefault();
@@ -325,7 +324,7 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
     else if (e.key === '-' || e.key === '_') move(zoomed(eye, 1 / 0.85, 0, 0, 1));
     else if (e.key === ' ' && tool.kind !== 'look') {
       if (cross.hidden) setCross(width / 2, height / 2);
-      pressing = pressing.then(() => store.press(rayAt(...crossAt), snap(), false));
+      void store.press(rayAt(...crossAt), snap(), false);
     } else return;
     e.preventDefault();
     e.stopPropagation();

@@ -8,7 +8,7 @@ export function domeHeight(x: number, y: number): number {
   return 14 * Math.max(0, 1 - r2 / 441) + 2.4 * Math.exp(-((x - 7) ** 2 + (y - 3) ** 2) / 16);
 }
 
-export function domeStl(rings = 48, spokes = 120): Uint8Array {
+export function domeStl(rings = 30, spokes = 72): Uint8Array {
   const at = (i: number, j: number): [number, number, number] => {
     const r = (20 * i) / rings;
     const a = (2 * Math.PI * j) / spokes;

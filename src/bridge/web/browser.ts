@@ -1,8 +1,9 @@
 /** The browser host as the page sees it: requests over HTTP to the server that this project runs. */
-import { type Host, HostError, type HostEvent, type Opened } from '../host.ts';
+import type { Host, HostEvent, Opened } from '../host.ts';
 import type { Reply, Request } from '../requests.ts';
 import { pack, unpack } from '../wire.ts';
 import { askThrough, common } from './desktop.ts';
+import { openDropped } from './drops.ts';
 
 /** A browser page has no file dialogs with paths: the window asks by itself. */
 export interface AskPerson {
@@ -51,26 +52,4 @@ export function browserHost(person: AskPerson): Host {
       return () => listeners.delete(hear);
     },
   };
-}
-
-/** A project dropped into a browser brings its part along, or finds none. */
-async function openDropped(files: readonly File[]): Promise<Opened | null> {
-  const bytesOf = async (f: File) => new Uint8Array(await f.arrayBuffer());
-  const project = files.find((f) => /\.json$/i.test(f.name));
-  const part = files.find((f) => /\.stl$/i.test(f.name));
-  if (project) {
-    const text = await project.text();
-    return {
-      kind: 'project',
-      ref: null,
-      name: project.name,
-      text,
-      part: part ? { file: part.name, ref: null, bytes: await bytesOf(part) } : null,
-      ...(part ? {} : { partProblem: 'drop the project together with its part' }),
-    };
-  }
-  if (part) return { kind: 'part', name: part.name, part: { file: part.name, ref: null, bytes: await bytesOf(part) } };
-  if (files.length > 0)
-    throw new HostError({ problem: `${files[0]!.name} is neither a part nor a project`, mend: 'drop an .stl or a .drape.json file' });
-  return null;
 }

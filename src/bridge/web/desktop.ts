@@ -1,6 +1,7 @@
 /** The desktop host as the page sees it: the few functions that electron/preload.ts exposes. */
-import { type Host, HostError, type HostEvent } from '../host.ts';
+import { type Host, HostError, type HostEvent, type Opened } from '../host.ts';
 import type { Reply, Request } from '../requests.ts';
+import { openDropped } from './drops.ts';
 
 export interface Preload {
   ask(request: Request): Promise<Reply>;
@@ -15,7 +16,7 @@ export function desktopHost(preload: Preload): Host {
     ...common(ask),
     kind: 'desktop',
     open: () => ask({ ask: 'open' }),
-    openDropped: async (files) => valueOf(await preload.dropped([...files])),
+    openDropped: async (files) => valueOf<Opened | null>(await preload.dropped([...files])) ?? openDropped(files),
     choosePlace: (suggested, partRef, partName) => ask({ ask: 'choose-place', suggested, partRef, partName }),
     exportFiles: (suggested, files) => ask({ ask: 'export', suggested, files: [...files] }),
     listen: (hear) => preload.listen(hear),

@@ -1,0 +1,24 @@
+/** Dropped files of which only the bytes are known: what a browser gives, or a drag out of another program. */
+import { HostError, type Opened } from '../host.ts';
+
+/** A project dropped like this brings its part along, or finds none. */
+export async function openDropped(files: readonly File[]): Promise<Opened | null> {
+  const bytesOf = async (f: File) => new Uint8Array(await f.arrayBuffer());
+  const project = files.find((f) => /\.json$/i.test(f.name));
+  const part = files.find((f) => /\.stl$/i.test(f.name));
+  if (project) {
+    const text = await project.text();
+    return {
+      kind: 'project',
+      ref: null,
+      name: project.name,
+      text,
+      part: part ? { file: part.name, ref: null, bytes: await bytesOf(part) } : null,
+      ...(part ? {} : { partProblem: 'drop the project together with its part' }),
+    };
+  }
+  if (part) return { kind: 'part', name: part.name, part: { file: part.name, ref: null, bytes: await bytesOf(part) } };
+  if (files.length > 0)
+    throw new HostError({ problem: `${files[0]!.name} is neither a part nor a project`, mend: 'drop an .stl or a .drape.json file' });
+  return null;
+}
