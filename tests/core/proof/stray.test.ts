@@ -28,8 +28,8 @@ function stray(
   aims: Vec3[],
   tolerance: number,
   head: Record<string, unknown> = {},
+  mesh = box(-14, -9, 10, 8, 4),
 ): number {
-  const mesh = box(-14, -9, 10, 8, 4);
   const project = projectWith(pose, { head: { ...exampleHead, ...head } });
   const offset = -toBench(pose, aims[0])[2]; // in focus at the first
   const rows = aims.flatMap((p) => {
@@ -97,6 +97,17 @@ describe('stray area', () => {
       expect(Math.abs(area / (n * ellipse(Math.cos((tilt * Math.PI) / 180))) - 1)).toBeLessThan(0.03);
     },
   );
+
+  it('counts area of a face that leans in the part itself: a plane z = 0.75 x, 0.8 the cosine', () => {
+    const slope = meshOf([-9, -9, -6.75, 8, -9, 6, 8, 9, 6, -9, 9, -6.75], [0, 1, 2, 0, 2, 3]);
+    const n = 140;
+    const aims = Array.from(
+      { length: n },
+      (_, i): Vec3 => [(0.00371 * i) % 0.03, -8 + 0.1037 * i, 0.75 * ((0.00371 * i) % 0.03)],
+    );
+    const area = stray(turned([0, 0, 1], 0), far, aims, 0.05, { pivot: null }, slope);
+    expect(Math.abs(area / (n * ellipse(0.8)) - 1)).toBeLessThan(0.03);
+  });
 
   it('counts a place hit twice once', () => {
     const aims = scattered(100, -4, -3);
