@@ -1,5 +1,4 @@
 /** From traced pulses to the verdict on one set of files (model.md §7). */
-import type { RunContext } from '../base/run-context.ts';
 import type { Copper } from '../drape/copper.ts';
 import type { SurfaceMesh } from '../mesh/surface-mesh.ts';
 import type { CornerNormals } from '../part/normals.ts';
@@ -51,18 +50,19 @@ export function prepareDrawn(copper: Copper, mesh: SurfaceMesh, normals: CornerN
   };
 }
 
+/** @param alive  called between the steps of the work; it throws Cancelled when the person has asked to stop */
 export function judge(
   project: Project,
   drawn: Drawn,
   layers: readonly { pulses: LayerPulses; place: LayerPlace }[],
   findings: readonly string[],
-  ctx: RunContext,
+  alive: () => void,
 ): ProofReport {
   const { copper, mesh, normals, samples, grid, nets, netOf } = drawn;
   const spot = spotOf(project.head, project.material);
   const flags = new Uint8Array(samples.count);
-  const burnt = layers.map(({ pulses, place }, i) => {
-    ctx.step('proof', i, layers.length);
+  const burnt = layers.map(({ pulses, place }) => {
+    alive();
     return {
       pulses,
       place,
@@ -70,7 +70,7 @@ export function judge(
     };
   });
   const all = gatherPulses(burnt);
-  ctx.step('proof', layers.length, layers.length);
+  alive();
 
   const share = coverage(samples, flags);
   let least = 0;
@@ -78,6 +78,7 @@ export function judge(
     if (c < share.covered[least]) least = e;
   });
   const joins = findJoins(all, mesh, grid, copper.elements.length, netOf, nets.length);
+  alive();
   const stray = strayArea(all, mesh, normals, grid, project.limits.proof.strayTolerance);
 
   const opens: string[][] = [];

@@ -52,13 +52,17 @@ export interface ProofPlan {
  */
 export function prove(input: ProofInput, ctx: RunContext): Proof {
   const plans = planProof(input);
+  const files = plans.reduce((n, plan) => n + plan.tasks.length, 0);
+  let done = 0;
   const traced = plans.map((plan) =>
-    plan.tasks.map((task, i) => {
-      ctx.step('proof', i, plan.tasks.length);
+    plan.tasks.map((task) => {
+      ctx.step('proof', done++, files + 1);
       return tracePulses(task);
     }),
   );
-  return verdict(input, plans, traced, ctx);
+  const proof = verdict(input, plans, traced, ctx);
+  ctx.step('proof', files + 1, files + 1);
+  return proof;
 }
 
 /** The tracing that a proof needs, one independent task a file: they may run on other threads, in any order. */
@@ -99,6 +103,9 @@ export function verdict(
   ctx: RunContext,
 ): Proof {
   const { project, mesh, copper } = input;
+  const files = plans.reduce((n, plan) => n + plan.tasks.length, 0);
+  const alive = () => ctx.step('proof', files, files + 1); // every file is traced, the verdict is out
+  alive();
   const drawn = prepareDrawn(copper, mesh, input.normals ?? buildNormals(mesh));
   const lean = leanOf(project.head);
   interface Judged {
@@ -113,8 +120,10 @@ export function verdict(
       place: { pose: task.pose, offset: task.offset, lean },
     }));
     // Two formats that burn the very same pulses get the very same verdict: worked out once.
-    const twin = judged.find((j) => j.findings.length + findings.length === 0 && samePulses(j.layers, layers));
-    const report = twin ? twin.report : judge(project, drawn, layers, findings, ctx);
+    const twin = judged.find(
+      (j) => j.findings.length + findings.length === 0 && samePulses(j.layers, layers),
+    );
+    const report = twin ? twin.report : judge(project, drawn, layers, findings, alive);
     judged.push({ layers, findings, report });
     return { format, report };
   });
@@ -129,7 +138,13 @@ function samePulses(a: Burnt, b: Burnt): boolean {
     a.length === b.length &&
     a.every(({ pulses: p, place }, i) => {
       const { pulses: q, place: other } = b[i];
-      return place.offset === other.offset && sameData(place.pose, other.pose) && sameData({ ...p, file: '' }, { ...q, file: '' });
+      // a verdict on pulses outside the field names the file
+      return (
+        p.outside === 0 &&
+        place.offset === other.offset &&
+        sameData(place.pose, other.pose) &&
+        sameData({ ...p, file: '' }, { ...q, file: '' })
+      );
     })
   );
 }
@@ -145,7 +160,10 @@ function sameData(a: unknown, b: unknown): boolean {
     return true;
   }
   const [ka, kb] = [Object.keys(a), Object.keys(b)];
-  return ka.length === kb.length && ka.every((k) => sameData((a as Record<string, unknown>)[k], (b as Record<string, unknown>)[k]));
+  return (
+    ka.length === kb.length &&
+    ka.every((k) => sameData((a as Record<string, unknown>)[k], (b as Record<string, unknown>)[k]))
+  );
 }
 
 /** Nothing to prove is no proof. */

@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { InputError } from '../../../src/core/base/news.ts';
+import { Cancelled, InputError } from '../../../src/core/base/news.ts';
 import { quiet } from '../../../src/core/base/run-context.ts';
 import { encodeUtf8 } from '../../../src/core/base/utf8.ts';
 import { prove } from '../../../src/core/proof/prove.ts';
@@ -138,6 +138,38 @@ describe('read-back proof of honest files', () => {
       ['svg'],
     );
     expect(report).toMatchObject({ ok: true, findings: [] });
+  });
+});
+
+describe('progress and stopping', () => {
+  const scene = leaning();
+  const input = {
+    project: scene.project,
+    mesh: scene.mesh,
+    copper: scene.copper,
+    files: pack(filesOf(scene)),
+    formats: ['csv', 'svg'] as const,
+  };
+
+  it('progress never runs backward and ends complete', () => {
+    const seen: [number, number][] = [];
+    prove(input, { step: (_, done, of) => seen.push([done, of]) });
+    expect(seen.every(([done], i) => i === 0 || done >= seen[i - 1][0])).toBe(true);
+    expect(seen[seen.length - 1]).toEqual([5, 5]);
+  });
+
+  it.each([1, 3, 6, 9])('stops when asked at step %d', (at) => {
+    let n = 0;
+    const step = () => {
+      if (++n === at) throw new Cancelled();
+    };
+    let stopped = false;
+    try {
+      prove(input, { step });
+    } catch (error) {
+      stopped = error instanceof Cancelled;
+    }
+    expect([stopped, n]).toEqual([true, at]);
   });
 });
 

@@ -15,6 +15,7 @@ import {
   commandFor,
   copperOf,
   exampleHead,
+  meshOf,
   projectWith,
   type Rect,
   toBench,
