@@ -4,6 +4,8 @@ import { availableParallelism } from 'node:os';
 import { join } from 'node:path';
 import { isMainThread, workerData } from 'node:worker_threads';
 import { Cancelled, InputError, sentence } from '../core/base/news.ts';
+import type { OutputFile } from '../core/files/output.ts';
+import type { ProofFormat } from '../core/proof/prove.ts';
 import { serveTasks, TASK_ROLE } from '../worker/node.ts';
 import { PROJECT_COPY } from '../worker/stand-alone.ts';
 import { tasks } from '../worker/tasks.ts';
@@ -97,11 +99,12 @@ async function perform(command: Command): Promise<number> {
       const files = inputOf(await readProjectFiles(join(command.dir, PROJECT_COPY)));
       const present = FORMATS.filter((f) => runFiles.some((r) => r.path.toLowerCase().endsWith(`.${f}`)));
       const formats = command.formats ?? present;
+      const absent = namedFormats(runFiles).filter((f) => !formats.includes(f));
       const proof = await job({ kind: 'prove', ...files, runFiles, formats, settings: command.settings });
       print(
         command.json,
-        { format: 'beamdrape-proof', version: 1, ...proof.report, byFormat: proof.byFormat },
-        () => showProof(command.dir, proof),
+        { format: 'beamdrape-proof', version: 1, ...proof.report, absent, byFormat: proof.byFormat },
+        () => showProof(command.dir, proof, absent),
       );
       return proof.report.ok ? DONE : CHECK_FAILS;
     }
@@ -109,6 +112,13 @@ async function perform(command: Command): Promise<number> {
       await checkTarget(command.out);
       return runInto(command.out, { kind: 'run', ...inputOf(demonstration()), settings: command.settings });
   }
+}
+
+/** Formats of the files that the report of a run names. */
+function namedFormats(runFiles: readonly OutputFile[]): ProofFormat[] {
+  const report = runFiles.find((f) => f.path === 'report.json');
+  const text = report ? new TextDecoder().decode(report.bytes) : '';
+  return FORMATS.filter((f) => text.includes(`.${f}"`));
 }
 
 /** What the job needs of the files; says what the person should know. */

@@ -183,14 +183,15 @@ function proofFacts(p: ProofReport): string {
   ]);
 }
 
-/** `prove`: the verdict of each format. */
-export function showProof(dir: string, proof: Proof): string {
+/** `prove`: the verdict of each format. @param absent  formats that the run wrote and that were not proved now */
+export function showProof(dir: string, proof: Proof, absent: readonly string[]): string {
   const head = `${dir}: burnt on the model, the files ${proof.report.ok ? 'give the drawn copper' : 'DO NOT GIVE THE DRAWN COPPER'}.`;
   const parts = proof.byFormat.map(
     ({ format, report }) =>
       `${format.toUpperCase()}: ${report.ok ? 'holds' : 'FAILS'}\n${proofFacts(report)}`,
   );
   if (parts.length === 0) parts.push(...proof.report.findings);
+  parts.push(...absent.map((f) => `${f.toUpperCase()}: written by the run, not looked at now`));
   return `${[head, ...parts].join('\n\n')}\n`;
 }
 
