@@ -23,10 +23,18 @@ export function positionOf(mesh: SurfaceMesh, p: SurfacePoint): Vec3 {
 export function barycentric(mesh: SurfaceMesh, face: number, p: Vec3): Vec3 {
   const { positions: x, triangles: t } = mesh;
   const [a, b, c] = [3 * t[3 * face], 3 * t[3 * face + 1], 3 * t[3 * face + 2]];
-  const ux = x[b] - x[a], uy = x[b + 1] - x[a + 1], uz = x[b + 2] - x[a + 2];
-  const vx = x[c] - x[a], vy = x[c + 1] - x[a + 1], vz = x[c + 2] - x[a + 2];
-  const px = p[0] - x[a], py = p[1] - x[a + 1], pz = p[2] - x[a + 2];
-  const nx = uy * vz - uz * vy, ny = uz * vx - ux * vz, nz = ux * vy - uy * vx;
+  const ux = x[b] - x[a],
+    uy = x[b + 1] - x[a + 1],
+    uz = x[b + 2] - x[a + 2];
+  const vx = x[c] - x[a],
+    vy = x[c + 1] - x[a + 1],
+    vz = x[c + 2] - x[a + 2];
+  const px = p[0] - x[a],
+    py = p[1] - x[a + 1],
+    pz = p[2] - x[a + 2];
+  const nx = uy * vz - uz * vy,
+    ny = uz * vx - ux * vz,
+    nz = ux * vy - uy * vx;
   const nn = nx * nx + ny * ny + nz * nz;
   const s = ((py * vz - pz * vy) * nx + (pz * vx - px * vz) * ny + (px * vy - py * vx) * nz) / nn;
   const r = ((uy * pz - uz * py) * nx + (uz * px - ux * pz) * ny + (ux * py - uy * px) * nz) / nn;
@@ -37,9 +45,15 @@ export function barycentric(mesh: SurfaceMesh, face: number, p: Vec3): Vec3 {
 export function faceNormal(mesh: SurfaceMesh, face: number): Vec3 {
   const { positions: x, triangles: t } = mesh;
   const [a, b, c] = [3 * t[3 * face], 3 * t[3 * face + 1], 3 * t[3 * face + 2]];
-  const ux = x[b] - x[a], uy = x[b + 1] - x[a + 1], uz = x[b + 2] - x[a + 2];
-  const vx = x[c] - x[a], vy = x[c + 1] - x[a + 1], vz = x[c + 2] - x[a + 2];
-  const nx = uy * vz - uz * vy, ny = uz * vx - ux * vz, nz = ux * vy - uy * vx;
+  const ux = x[b] - x[a],
+    uy = x[b + 1] - x[a + 1],
+    uz = x[b + 2] - x[a + 2];
+  const vx = x[c] - x[a],
+    vy = x[c + 1] - x[a + 1],
+    vz = x[c + 2] - x[a + 2];
+  const nx = uy * vz - uz * vy,
+    ny = uz * vx - ux * vz,
+    nz = ux * vy - uy * vx;
   const l = Math.hypot(nx, ny, nz);
   return [nx / l, ny / l, nz / l];
 }

@@ -8,15 +8,13 @@ import { readStl } from '../../../src/core/mesh/stl.ts';
 import { binaryStl, bytesOf, type Facet, lumpyRing, soupOf, textStl } from './parts.ts';
 
 const SEED = 20;
-const coordinate = fc.float({ min: -1000, max: 1000, noNaN: true });
-const facet = fc.tuple(
-  ...Array.from({ length: 3 }, () => fc.tuple(coordinate, coordinate, coordinate)),
-) as fc.Arbitrary<Facet>;
+const facetOf = (coordinate: fc.Arbitrary<number>): fc.Arbitrary<Facet> => {
+  const corner = fc.tuple(coordinate, coordinate, coordinate);
+  return fc.tuple(corner, corner, corner);
+};
+const facet = facetOf(fc.float({ min: -1000, max: 1000, noNaN: true }));
 /** Corners from a small grid, so that facets share edges, repeat, fold and lie flat. */
-const small = fc.integer({ min: 0, max: 2 });
-const crowdedFacet = fc.tuple(
-  ...Array.from({ length: 3 }, () => fc.tuple(small, small, small)),
-) as fc.Arbitrary<Facet>;
+const crowdedFacet = facetOf(fc.integer({ min: 0, max: 2 }));
 
 function readOrProblem(bytes: Uint8Array): 'read' | string {
   try {
