@@ -53,6 +53,30 @@ export function partMaterial(): ShaderMaterial {
   });
 }
 
+/** Thin lines that lie on the surface: drawn a little nearer than they are, so that the surface does not swallow them. */
+export function surfaceLineMaterial(): ShaderMaterial {
+  return new ShaderMaterial({
+    uniforms: { uColor: { value: new Color() }, uCut: { value: new Vector4(0, 0, 0, 1) } },
+    vertexShader: /* glsl */ `
+      varying vec3 vBench;
+      void main() {
+        vec4 bench = modelMatrix * vec4(position, 1.0);
+        vBench = bench.xyz;
+        gl_Position = projectionMatrix * viewMatrix * bench;
+        gl_Position.z -= 1.2e-4 * gl_Position.w;
+      }`,
+    fragmentShader: /* glsl */ `
+      uniform vec3 uColor;
+      varying vec3 vBench;
+      ${CUT}
+      void main() {
+        cut(vBench);
+        gl_FragColor = vec4(uColor, 1.0);
+        #include <colorspace_fragment>
+      }`,
+  });
+}
+
 export type CopperMaterial = ReturnType<typeof copperMaterial>;
 
 export function copperMaterial() {

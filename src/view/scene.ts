@@ -26,7 +26,7 @@ import type { Vec3 } from '../core/base/vec.ts';
 import type { Head, Setup } from '../core/project/schema.ts';
 import type { CopperPicture, PartPicture, PlanPicture, ReachPicture } from '../worker/pictures.ts';
 import { axesOf, type Eye } from './eye.ts';
-import { copperMaterial, partMaterial } from './materials.ts';
+import { copperMaterial, partMaterial, surfaceLineMaterial } from './materials.ts';
 import { LOOKS, type Scheme } from './palette.ts';
 
 /** Distance of the eye, mm: beyond any lens body. A parallel projection looks the same from everywhere. */
@@ -35,6 +35,7 @@ const FAR = 2000;
 export function createScene(canvas: HTMLCanvasElement) {
   const renderer = new WebGLRenderer({ canvas, antialias: true, powerPreference: 'high-performance' });
   renderer.autoClear = true;
+  let size = { width: 0, height: 0, pixels: 0 };
   const scene = new Scene();
   const camera = new OrthographicCamera(-1, 1, 1, -1, 1, 2 * FAR);
   const partMat = partMaterial();
@@ -47,7 +48,8 @@ export function createScene(canvas: HTMLCanvasElement) {
   const copperMesh = new Mesh(new BufferGeometry(), copperMat);
   const fat = (width: number, depthTest = true) =>
     new LineMaterial({ linewidth: width, depthTest, polygonOffset: true, polygonOffsetFactor: 0, polygonOffsetUnits: -2500 });
-  const outlines = new LineSegments2(new LineSegmentsGeometry(), fat(1.1));
+  const rimMat = surfaceLineMaterial();
+  const outlines = new LineSegments(new BufferGeometry(), rimMat);
   const doseLines = new LineSegments2(new LineSegmentsGeometry(), fat(3));
   const chosen = new LineSegments2(new LineSegmentsGeometry(), fat(3));
   const live = new LineSegments2(new LineSegmentsGeometry(), fat(3.5));
@@ -87,6 +89,12 @@ export function createScene(canvas: HTMLCanvasElement) {
     if (lines.visible) lines.geometry.setPositions(flat);
   }
 
+  function setRims(flat: Float32Array): void {
+    outlines.geometry.dispose();
+    outlines.geometry = geometryOf(flat, null);
+    outlines.visible = flat.length >= 6;
+  }
+
   function setPart(picture: PartPicture | null): void {
     partMesh.geometry.dispose();
     partEdges.geometry.dispose();
@@ -99,7 +107,7 @@ export function createScene(canvas: HTMLCanvasElement) {
     copperMesh.geometry.dispose();
     copperMesh.visible = copper !== null && copper.area.length > 0;
     if (!copper) {
-      setSegments(outlines, new Float32Array(0));
+      setRims(new Float32Array(0));
       setSegments(doseLines, new Float32Array(0));
       return;
     }
@@ -109,7 +117,7 @@ export function createScene(canvas: HTMLCanvasElement) {
     g.setAttribute('aHeight', new BufferAttribute(copper.heights[setup] ?? copper.heights[0]!, 1));
     for (const name of ['aUsable', 'aFails', 'aLayer']) g.setAttribute(name, new BufferAttribute(new Float32Array(n), 1));
     copperMesh.geometry = g;
-    setSegments(outlines, segmentsOf(copper.elements.flatMap((e) => e.outline)));
+    setRims(segmentsOf(copper.elements.flatMap((e) => e.outline)));
   }
 
   function setReach(copper: CopperPicture, reach: ReachPicture | null, plan: PlanPicture | null, depth: number): void {
@@ -166,7 +174,7 @@ export function createScene(canvas: HTMLCanvasElement) {
     copperMat.uniforms['uOffset']!.value = look.offset;
     copperMat.uniforms['uAtOffset']!.value = look.atOffset ? 1 : 0;
     copperMat.uniforms['uAlone']!.value = look.alone;
-    for (const m of [copperMat, partMat]) m.uniforms['uCut']!.value.set(...(look.cut ?? [0, 0, 0, 1]));
+    for (const m of [copperMat, partMat, rimMat]) m.uniforms['uCut']!.value.set(...(look.cut ?? [0, 0, 0, 1]));
     bench.position.z = -look.offset;
     square.visible = plane.visible = look.plane;
     lens.visible = glass.visible = look.lens;
@@ -181,7 +189,7 @@ export function createScene(canvas: HTMLCanvasElement) {
     planeMat.color.set(s.plane);
     lensMat.color.set(s.lens);
     glassMat.color.set(s.lens);
-    (outlines.material as LineMaterial).color.set(s.copperEdge);
+    rimMat.uniforms['uColor']!.value.set(s.copperEdge);
     (chosen.material as LineMaterial).color.set(s.select);
     (live.material as LineMaterial).color.set(s.live);
     (beam.material as LineMaterial).color.set(s.live);
@@ -189,8 +197,12 @@ export function createScene(canvas: HTMLCanvasElement) {
 
   /** @param pixels  device pixels in a CSS pixel, lower while things move */
   function draw(eye: Eye, width: number, height: number, pixels: number): void {
-    renderer.setPixelRatio(pixels);
-    renderer.setSize(width, height, false);
+    // Setting a size, even the same one, makes the browser allocate the picture anew.
+    if (width !== size.width || height !== size.height || pixels !== size.pixels) {
+      size = { width, height, pixels };
+      renderer.setPixelRatio(pixels);
+      renderer.setSize(width, height, false);
+    }
     copperMat.uniforms['uGrain']!.value = pixels;
     const aspect = width / height;
     camera.left = -eye.half * aspect;
@@ -202,7 +214,7 @@ export function createScene(canvas: HTMLCanvasElement) {
     camera.quaternion.setFromRotationMatrix(m);
     camera.position.set(eye.target[0] + back[0] * FAR, eye.target[1] + back[1] * FAR, eye.target[2] + back[2] * FAR);
     camera.updateProjectionMatrix();
-    for (const l of [outlines, doseLines, chosen, live, beam]) (l.material as LineMaterial).resolution.set(width, height);
+    for (const l of [doseLines, chosen, live, beam]) (l.material as LineMaterial).resolution.set(width, height);
     renderer.render(scene, camera);
   }
 

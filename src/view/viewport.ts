@@ -52,7 +52,8 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
   function paint(): void {
     wanted = 0;
     if (width < 2 || height < 2) return;
-    const coarse = performance.now() < moving && (get().part?.triangles ?? 0) > MANY;
+    const triangles = (get().part?.triangles ?? 0) + (get().copper?.value.area.length ?? 0);
+    const coarse = performance.now() < moving && triangles > MANY;
     scene.draw(eye, width, height, devicePixelRatio * (coarse ? 0.5 : 1));
     placeHandles();
     overlay.dataset['drawn'] = String(Number(overlay.dataset['drawn'] ?? 0) + 1);
@@ -83,7 +84,12 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
   function follow(s: State): void {
     const before = shown;
     shown = s;
-    const changed = (f: (s: State) => unknown) => !before || f(before) !== f(s);
+    let visible = false;
+    const changed = (f: (s: State) => unknown) => {
+      const is = !before || f(before) !== f(s);
+      visible ||= is;
+      return is;
+    };
     if (changed((x) => x.part)) {
       scene.setPart(s.part);
       if (s.part) {
@@ -106,6 +112,7 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
     }
     if (changed((x) => x.tool) || changed((x) => x.preview))
       scene.setLive(s.tool.kind === 'trace' ? [...s.tool.runs, ...(s.tool.live?.points ? [s.tool.live.points] : [])] : s.preview);
+    const nothingElse = !visible;
     if (changed((x) => x.hover) || changed((x) => x.offset)) {
       const frame = frameOf(s);
       const p = s.hover && flags.lens ? frame.point(partPoint(s.hover.probe.point)) : null;
@@ -113,8 +120,11 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
       const up = (s.project?.head.workingDistance ?? 0) - s.offset;
       scene.setBeam(p, p ? [p[0] - (px ? (p[0] / px) * up : 0), p[1] - (py ? (p[1] / py) * up : 0), up] : null);
     }
-    look();
-    redraw();
+    if (nothingElse && !flags.lens && before?.offset === s.offset) visible = false;
+    if (changed((x) => x.show) || changed((x) => x.isolated) || visible) {
+      look();
+      redraw();
+    }
   }
 
   function look(): void {

@@ -1,0 +1,43 @@
+/** Fewer points for a line that is only drawn: D. Douglas and T. Peucker, The Canadian Cartographer 10 (1973) 112. */
+
+/** @param line  3 a point; @param tolerance  mm that the thinned line may stray; @returns a line with the same ends */
+export function thinned(line: ArrayLike<number>, tolerance: number): Float32Array {
+  const n = line.length / 3;
+  if (n < 3) return Float32Array.from(line);
+  const keep = new Uint8Array(n);
+  keep[0] = keep[n - 1] = 1;
+  const stack: [number, number][] = [[0, n - 1]];
+  while (stack.length > 0) {
+    const [a, b] = stack.pop()!;
+    let far = tolerance;
+    let at = -1;
+    for (let i = a + 1; i < b; i++) {
+      const d = distanceToSegment(line, i, a, b);
+      if (d > far) [far, at] = [d, i];
+    }
+    if (at < 0) continue;
+    keep[at] = 1;
+    stack.push([a, at], [at, b]);
+  }
+  const out: number[] = [];
+  for (let i = 0; i < n; i++) if (keep[i]) out.push(line[3 * i], line[3 * i + 1], line[3 * i + 2]);
+  return Float32Array.from(out);
+}
+
+function distanceToSegment(x: ArrayLike<number>, p: number, a: number, b: number): number {
+  const at = (i: number, k: number) => x[3 * i + k];
+  let dd = 0;
+  let dp = 0;
+  for (let k = 0; k < 3; k++) {
+    const d = at(b, k) - at(a, k);
+    dd += d * d;
+    dp += d * (at(p, k) - at(a, k));
+  }
+  const t = dd > 0 ? Math.max(0, Math.min(1, dp / dd)) : 0;
+  let s = 0;
+  for (let k = 0; k < 3; k++) {
+    const e = at(p, k) - at(a, k) - t * (at(b, k) - at(a, k));
+    s += e * e;
+  }
+  return Math.sqrt(s);
+}
