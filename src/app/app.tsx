@@ -162,7 +162,7 @@ function Frame({ host, commands }: { host: Host; commands: readonly Command[] })
   const told = JSON.stringify(menus);
   // The text stands for the menus: the host hears of them only when something in them changed.
   useEffect(() => host.menu(JSON.parse(told)), [host, told]);
-  return host.kind === 'browser' ? <MenuBar menus={menus} title={`${unsaved ? '• ' : ''}${name}`} /> : <h1 className="sr">{name}</h1>;
+  return host.kind === 'browser' ? <MenuBar menus={menus} title={`${unsaved ? '• ' : ''}${name}`} /> : <header className="sr"><h1>{name}</h1></header>;
 }
 
 function ViewportBox({ store, onView }: { store: Store; onView(v: Viewport | null): void }) {

@@ -10,8 +10,22 @@ import { PartStep } from './step-part.tsx';
 import { ReachStep } from './step-reach.tsx';
 import { useSteady, useWindow } from './window.tsx';
 
-const NAMES: Record<StepName, string> = { part: 'Part', circuit: 'Circuit', head: 'Head', reach: 'Reach', heights: 'Heights', files: 'Files' };
-const BODIES: Record<StepName, () => ReactNode> = { part: PartStep, circuit: CircuitStep, head: HeadStep, reach: ReachStep, heights: HeightsStep, files: FilesStep };
+const NAMES: Record<StepName, string> = {
+  part: 'Part',
+  circuit: 'Circuit',
+  head: 'Head',
+  reach: 'Reach',
+  heights: 'Heights',
+  files: 'Files',
+};
+const BODIES: Record<StepName, () => ReactNode> = {
+  part: PartStep,
+  circuit: CircuitStep,
+  head: HeadStep,
+  reach: ReachStep,
+  heights: HeightsStep,
+  files: FilesStep,
+};
 const MARKS: Record<StepWords['mark'], string> = { open: 'not begun', good: 'good', look: 'wants a look' };
 
 export function Journey() {
@@ -27,11 +41,20 @@ export function Journey() {
           const { words: told, mark } = words[step];
           return (
             <li key={step} className={open ? 'open' : ''}>
-              <button type="button" className="step" aria-expanded={open} aria-controls={`step-${step}`} data-step={step} onClick={() => store.setStep(step)}>
-                <Mark mark={mark} />
-                <span className="step-name">{NAMES[step]}</span>
-                <span className="step-words">{told}</span>
-              </button>
+              <h2>
+                <button
+                  type="button"
+                  className="step"
+                  aria-expanded={open}
+                  aria-controls={`step-${step}`}
+                  data-step={step}
+                  onClick={() => store.setStep(step)}
+                >
+                  <Mark mark={mark} />
+                  <span className="step-name">{NAMES[step]}</span>
+                  <span className="step-words">{told}</span>
+                </button>
+              </h2>
               {open && (
                 <div className="step-body" id={`step-${step}`}>
                   <Body />
@@ -47,7 +70,14 @@ export function Journey() {
 
 function Mark({ mark }: { mark: StepWords['mark'] }) {
   return (
-    <svg className={`mark mark-${mark}`} width="16" height="16" viewBox="0 0 16 16" role="img" aria-label={MARKS[mark]}>
+    <svg
+      className={`mark mark-${mark}`}
+      width="16"
+      height="16"
+      viewBox="0 0 16 16"
+      role="img"
+      aria-label={MARKS[mark]}
+    >
       <circle cx="8" cy="8" r="6.5" />
       {mark === 'good' && <path d="M4.8 8.3 L7.2 10.6 L11.3 5.8" />}
       {mark === 'look' && <path d="M8 4.2 V9 M8 11.4 V11.6" />}

@@ -66,7 +66,7 @@ export function MenuBar({ menus, title }: { menus: readonly MenuList[]; title: s
           </div>
         ))}
       </div>
-      <p className="title">{title}</p>
+      <h1 className="title">{title}</h1>
     </header>
   );
 }

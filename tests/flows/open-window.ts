@@ -92,7 +92,14 @@ export interface Tally {
 
 /** Counts pixels of the viewport by what their colour says. */
 export async function tally(page: Page): Promise<Tally> {
+  // What lies over the viewport has the same colours.
+  const over = (visibility: string) =>
+    page.evaluate((v) => {
+      for (const e of document.querySelectorAll<HTMLElement>('.stage > :not(.viewport)')) e.style.visibility = v;
+    }, visibility);
+  await over('hidden');
   const shot = (await page.getByTestId('view').screenshot()).toString('base64');
+  await over('');
   return page.evaluate(async (png) => {
     const bytes = Uint8Array.from(atob(png), (c) => c.charCodeAt(0));
     const bitmap = await createImageBitmap(new Blob([bytes], { type: 'image/png' }));
