@@ -86,6 +86,7 @@ describe('unsaved work', () => {
     await next.page.getByRole('dialog').waitFor();
     expect(await next.page.getByRole('dialog').textContent()).toContain('dome.drape.json');
     await next.page.getByRole('button', { name: 'Bring it back' }).click();
+    await planned(next.page);
     await step(next.page, 'circuit');
     await expect.poll(() => next.page.locator('.elements button').first().textContent()).toContain('LOST');
     await expect.poll(() => next.app.evaluate(({ BrowserWindow }) => BrowserWindow.getAllWindows()[0]!.getTitle())).toMatch(/^• dome/);
