@@ -1,8 +1,8 @@
+import { FuseV1Options, FuseVersion } from '@electron/fuses';
 import { MakerDeb } from '@electron-forge/maker-deb';
 import { MakerZIP } from '@electron-forge/maker-zip';
 import { FusesPlugin } from '@electron-forge/plugin-fuses';
 import type { ForgeConfig } from '@electron-forge/shared-types';
-import { FuseV1Options, FuseVersion } from '@electron/fuses';
 
 /** Folder with a runtime archive, for machines without the download host; unset elsewhere, and the packager downloads. */
 const zipDir = process.env['ELECTRON_ZIP_DIR'];
@@ -14,7 +14,8 @@ const config: ForgeConfig = {
     ...(zipDir ? { electronZipDir: zipDir } : {}),
     // Everything is bundled into out/: nothing of node_modules goes along.
     prune: false,
-    ignore: (file: string) => file !== '' && !/^\/(package\.json|out(\/(main|preload|renderer|cli)(\/.*)?)?)$/.test(file),
+    ignore: (file: string) =>
+      file !== '' && !/^\/(package\.json|out(\/(main|preload|renderer|cli)(\/.*)?)?)$/.test(file),
   },
   rebuildConfig: { onlyModules: [] },
   outDir: 'dist',

@@ -1,7 +1,7 @@
 /** Every request from a page: is the sender ours, then the window's own desk. */
-import { ipcMain, type IpcMainInvokeEvent } from 'electron';
-import { HostError } from '../src/bridge/host.ts';
+import { type IpcMainInvokeEvent, ipcMain } from 'electron';
 import type { Desk } from '../src/bridge/host/desk.ts';
+import { HostError } from '../src/bridge/host.ts';
 import type { Reply } from '../src/bridge/requests.ts';
 
 const desks = new Map<number, Desk>();
@@ -9,7 +9,11 @@ const desks = new Map<number, Desk>();
 export const seat = (webContentsId: number, desk: Desk): void => void desks.set(webContentsId, desk);
 export const leave = (webContentsId: number): void => void desks.delete(webContentsId);
 
-const REFUSED: Reply = { ok: false, problem: 'the request does not come from the window', mend: 'nothing was done' };
+const REFUSED: Reply = {
+  ok: false,
+  problem: 'the request does not come from the window',
+  mend: 'nothing was done',
+};
 
 /** In Node the origin of an app: address is 'null', so the address itself is compared. */
 function deskOf(event: IpcMainInvokeEvent): Desk | undefined {
@@ -19,7 +23,10 @@ function deskOf(event: IpcMainInvokeEvent): Desk | undefined {
 }
 
 export function openBridge(): void {
-  ipcMain.handle('beamdrape:ask', (event, raw: unknown): Promise<Reply> | Reply => deskOf(event)?.answer(raw) ?? REFUSED);
+  ipcMain.handle(
+    'beamdrape:ask',
+    (event, raw: unknown): Promise<Reply> | Reply => deskOf(event)?.answer(raw) ?? REFUSED,
+  );
   ipcMain.handle('beamdrape:dropped', async (event, raw: unknown): Promise<Reply> => {
     const desk = deskOf(event);
     if (!desk || !Array.isArray(raw)) return REFUSED;
@@ -29,7 +36,10 @@ export function openBridge(): void {
     try {
       return { ok: true, value: await desk.openPath(path) };
     } catch (error) {
-      const news = error instanceof HostError ? error.news : { problem: (error as Error).message, mend: 'drop another file' };
+      const news =
+        error instanceof HostError
+          ? error.news
+          : { problem: (error as Error).message, mend: 'drop another file' };
       return { ok: false, ...news };
     }
   });

@@ -46,7 +46,8 @@ const sizeFile = (): string => join(app.getPath('userData'), 'size.json');
 export function rememberedSize(): Size {
   try {
     const s = JSON.parse(readFileSync(sizeFile(), 'utf8')) as Partial<Size>;
-    if (Number(s.width) >= 640 && Number(s.height) >= 480) return { width: Number(s.width), height: Number(s.height) };
+    if (Number(s.width) >= 640 && Number(s.height) >= 480)
+      return { width: Number(s.width), height: Number(s.height) };
   } catch {
     // No size yet, or one that cannot be read: the first size serves.
   }

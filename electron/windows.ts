@@ -1,9 +1,9 @@
 /** Windows: one a project, each with its desk; the app:// pages; what a page may never do. */
 import { join } from 'node:path';
 import { app, BrowserWindow, Menu, type MenuItemConstructorOptions, protocol, session } from 'electron';
-import type { HostEvent } from '../src/bridge/host.ts';
 import { createDesk } from '../src/bridge/host/desk.ts';
 import { HEADERS, pageAt } from '../src/bridge/host/pages.ts';
+import type { HostEvent } from '../src/bridge/host.ts';
 import type { Request } from '../src/bridge/requests.ts';
 import { leave, seat } from './bridge.ts';
 import { rememberedSize, rememberSize, stateFolder, systemDialogs } from './files.ts';
@@ -11,7 +11,10 @@ import { rememberedSize, rememberSize, stateFolder, systemDialogs } from './file
 /** Before the app is ready. */
 export function registerPages(): void {
   protocol.registerSchemesAsPrivileged([
-    { scheme: 'app', privileges: { standard: true, secure: true, supportFetchAPI: true, stream: true, codeCache: true } },
+    {
+      scheme: 'app',
+      privileges: { standard: true, secure: true, supportFetchAPI: true, stream: true, codeCache: true },
+    },
   ]);
 }
 
@@ -19,7 +22,8 @@ export function servePages(): void {
   const root = join(__dirname, '../renderer');
   protocol.handle('app', async (request) => {
     const url = new URL(request.url);
-    if (url.host !== 'main' || request.method !== 'GET') return new Response(null, { status: 403, headers: HEADERS });
+    if (url.host !== 'main' || request.method !== 'GET')
+      return new Response(null, { status: 403, headers: HEADERS });
     const page = await pageAt(root, url.pathname);
     return new Response(page.body, { status: page.status, headers: page.headers });
   });
@@ -93,16 +97,19 @@ export function openWindow(file: string | null): void {
 function showMenu(menus: Extract<Request, { ask: 'menu' }>['menus'], tell: (event: HostEvent) => void): void {
   const template: MenuItemConstructorOptions[] = menus.map((m) => ({
     label: m.label,
-    submenu: m.entries.map((e): MenuItemConstructorOptions =>
-      e === 'line'
-        ? { type: 'separator' }
-        : {
-            id: e.id,
-            label: e.label,
-            enabled: e.enabled,
-            ...(e.keys ? { accelerator: e.keys.replace('Mod', 'CommandOrControl'), registerAccelerator: false } : {}),
-            click: () => tell({ kind: 'command', id: e.id }),
-          },
+    submenu: m.entries.map(
+      (e): MenuItemConstructorOptions =>
+        e === 'line'
+          ? { type: 'separator' }
+          : {
+              id: e.id,
+              label: e.label,
+              enabled: e.enabled,
+              ...(e.keys
+                ? { accelerator: e.keys.replace('Mod', 'CommandOrControl'), registerAccelerator: false }
+                : {}),
+              click: () => tell({ kind: 'command', id: e.id }),
+            },
     ),
   }));
   if (process.platform === 'darwin') template.unshift({ role: 'appMenu' });

@@ -1,6 +1,6 @@
 /** Puts store, view, panels and bridge together. */
 import { useCallback, useEffect, useMemo, useRef, useState } from 'react';
-import type { Host } from '../bridge/host.ts';
+import type { Host, RecentFile } from '../bridge/host.ts';
 import { QuestionDialog } from '../panels/dialogs.tsx';
 import { Facts } from '../panels/facts.tsx';
 import { Journey } from '../panels/journey.tsx';
@@ -14,7 +14,7 @@ import { useSteady, WindowContext, type WindowTools } from '../panels/window.tsx
 import { isUnsaved } from '../store/state.ts';
 import type { Store } from '../store/store.ts';
 import { createViewport, type Viewport } from '../view/viewport.ts';
-import { type Command, commandFor, commandList, menusOf } from './commands.ts';
+import { type Command, commandFor, commandList, menusOf, recentCommands } from './commands.ts';
 import { type Ask, createDocuments } from './documents.ts';
 
 interface Asked {
@@ -32,7 +32,9 @@ export interface Questions {
 export function createQuestions(): Questions {
   let line: Asked[] = [];
   const listeners = new Set<(asked: Asked[]) => void>();
-  const tell = () => listeners.forEach((l) => l(line));
+  const tell = () => {
+    for (const hear of listeners) hear(line);
+  };
   return {
     ask: (question) =>
       new Promise((done) => {
@@ -56,7 +58,12 @@ export function App({ store, host, questions }: { store: Store; host: Host; ques
   const [dismissed, setDismissed] = useState<ReadonlySet<string> | null>(null);
   const [asked, setAsked] = useState<Asked[]>([]);
   const documents = useMemo(() => createDocuments(store, host, questions.ask), [store, host, questions]);
-  const commands = useMemo(() => commandList(store, documents, () => view.current), [store, documents]);
+  const [recent, setRecent] = useState<readonly RecentFile[]>([]);
+  useEffect(() => documents.onRecent(setRecent), [documents]);
+  const commands = useMemo(
+    () => [...commandList(store, documents, () => view.current), ...recentCommands(recent, documents)],
+    [store, documents, recent],
+  );
   const run = useCallback(
     (id: string) => {
       const command = commands.find((c) => c.id === id);
@@ -66,8 +73,8 @@ export function App({ store, host, questions }: { store: Store; host: Host; ques
   );
 
   useEffect(() => questions.listen(setAsked), [questions]);
+  useEffect(() => void documents.begin().then((put) => setDismissed(new Set(put))), [documents]);
   useEffect(() => {
-    void documents.begin().then((put) => setDismissed(new Set(put)));
     return host.listen((event) => (event.kind === 'command' ? run(event.id) : documents.hear(event)));
   }, [documents, host, run]);
 
@@ -77,7 +84,13 @@ export function App({ store, host, questions }: { store: Store; host: Host; ques
       const { tool } = store.getState();
       const typing = (e.target as HTMLElement).matches?.('input:not([type=checkbox]), select, textarea');
       if (!typing && e.key === 'Escape') store.drop();
-      else if (!typing && e.key === 'Enter' && tool.kind === 'trace' && !(e.target as HTMLElement).matches('button, summary, [role=slider]')) store.finish();
+      else if (
+        !typing &&
+        e.key === 'Enter' &&
+        tool.kind === 'trace' &&
+        !(e.target as HTMLElement).matches('button, summary, [role=slider]')
+      )
+        store.finish();
       else if (!typing && e.key === 'Backspace') {
         if (tool.kind === 'trace') store.takeBack();
         else run('delete');
@@ -162,7 +175,13 @@ function Frame({ host, commands }: { host: Host; commands: readonly Command[] })
   const told = JSON.stringify(menus);
   // The text stands for the menus: the host hears of them only when something in them changed.
   useEffect(() => host.menu(JSON.parse(told)), [host, told]);
-  return host.kind === 'browser' ? <MenuBar menus={menus} title={`${unsaved ? '• ' : ''}${name}`} /> : <header className="sr"><h1>{name}</h1></header>;
+  return host.kind === 'browser' ? (
+    <MenuBar menus={menus} title={`${unsaved ? '• ' : ''}${name}`} />
+  ) : (
+    <header className="sr">
+      <h1>{name}</h1>
+    </header>
+  );
 }
 
 function ViewportBox({ store, onView }: { store: Store; onView(v: Viewport | null): void }) {
@@ -184,9 +203,18 @@ function ViewportBox({ store, onView }: { store: Store; onView(v: Viewport | nul
   }, [store]);
   return (
     <div className="viewport">
-      <canvas ref={canvas} tabIndex={0} role="application" aria-label="The part on the bench. Arrows turn the view, plus and minus zoom; with a tool, arrows move a cross and Space places." data-testid="view" />
+      {/* biome-ignore lint/a11y/noInteractiveElementToNoninteractiveRole: it hears arrows and letters by itself, as an application does */}
+      <canvas
+        ref={canvas}
+        tabIndex={0}
+        role="application"
+        aria-label="The part on the bench. Arrows turn the view, plus and minus zoom; with a tool, arrows move a cross and Space places."
+        data-testid="view"
+      />
       <div className="overlay" ref={overlay} aria-hidden="true" data-testid="overlay" />
-      {trouble && <p className="wrong no-view">The picture cannot be drawn here: {trouble}. Everything else works.</p>}
+      {trouble && (
+        <p className="wrong no-view">The picture cannot be drawn here: {trouble}. Everything else works.</p>
+      )}
     </div>
   );
 }

@@ -1,8 +1,8 @@
 /** Opening, saving, journal and export: the store and the host brought together. */
-import type { Host, HostEvent, Opened } from '../bridge/host.ts';
+import type { Host, HostEvent, Opened, RecentFile } from '../bridge/host.ts';
 import { writeProject } from '../core/project/read.ts';
-import type { Store } from '../store/store.ts';
 import type { Question } from '../panels/question.ts';
+import type { Store } from '../store/store.ts';
 
 export type Ask = (question: Question) => Promise<{ answer: string | null; entry: string }>;
 export type Documents = ReturnType<typeof createDocuments>;
@@ -13,6 +13,13 @@ const KEEP_EVERY = 4000;
 export function createDocuments(store: Store, host: Host, ask: Ask) {
   let kept = -1;
   let keptPart: Uint8Array | null = null;
+
+  const recentListeners = new Set<(files: readonly RecentFile[]) => void>();
+  const tellRecent = () =>
+    guard('Listing recent files', async () => {
+      const files = await host.recent();
+      for (const hear of recentListeners) hear(files);
+    });
 
   const guard = async (doing: string, f: () => Promise<unknown>): Promise<void> => {
     try {
@@ -28,7 +35,10 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
     const { answer } = await ask({
       title: 'Save the changes?',
       text: `“${store.getState().origin.name}” has changes that are not saved.`,
-      answers: [['save', 'Save'], ['drop', 'Do not save']],
+      answers: [
+        ['save', 'Save'],
+        ['drop', 'Do not save'],
+      ],
     });
     if (answer === 'save') return save();
     return answer === 'drop';
@@ -41,7 +51,25 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
       return;
     }
     const shown = await store.openProject(opened.text, opened.name, opened.ref, opened.part);
-    if (shown && !opened.part) store.notify('problem', `The part is missing: ${opened.partProblem ?? 'its file was not found'}`, 'put the file back and open the project again');
+    void tellRecent();
+    const { project } = store.getState();
+    if (
+      shown &&
+      opened.part &&
+      project?.part.sha256 !== undefined &&
+      project.part.sha256.toLowerCase() !== (await sha256(opened.part.bytes))
+    )
+      store.notify(
+        'problem',
+        `${project.part.file} is not the file that the project was saved with`,
+        'check that it is the right part',
+      );
+    if (shown && !opened.part)
+      store.notify(
+        'problem',
+        `The part is missing: ${opened.partProblem ?? 'its file was not found'}`,
+        'put the file back and open the project again',
+      );
   }
 
   const open = () => guard('Opening', async () => (await mayLeave()) && showOpened(await host.open()));
@@ -50,7 +78,8 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
 
   async function fetchDemo(): Promise<void> {
     const index = await fetch('./demo/touch-dial.drape.json');
-    if (!index.ok) return store.notify('problem', 'The demonstration is not in this build', 'build the program again');
+    if (!index.ok)
+      return store.notify('problem', 'The demonstration is not in this build', 'build the program again');
     const text = await index.text();
     const file = (JSON.parse(text) as { part: { file: string } }).part.file;
     const bytes = new Uint8Array(await (await fetch(`./demo/${file}`)).arrayBuffer());
@@ -64,7 +93,11 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
     let part: { file: string; bytes: Uint8Array } | null = null;
     let project = s.project;
     if (!target) {
-      const chosen = await host.choosePlace(s.origin.name || `${project.name}.drape.json`, s.origin.partRef, project.part.file);
+      const chosen = await host.choosePlace(
+        s.origin.name || `${project.name}.drape.json`,
+        s.origin.partRef,
+        project.part.file,
+      );
       if (!chosen) return false;
       target = chosen;
       project = store.renamePart(chosen.partFile) ?? project;
@@ -75,6 +108,7 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
     store.saved({ ref: target.ref, name: target.name }, project, text);
     await host.journal(null);
     kept = -1;
+    void tellRecent();
     return true;
   }
 
@@ -96,7 +130,8 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
       if (!s.project) return;
       const { project, revision } = s;
       // An unchanged project is copied as it was read, so that the files are those of the command line.
-      const text = s.origin.text !== null && project === s.origin.saved ? s.origin.text : writeProject(project);
+      const text =
+        s.origin.text !== null && project === s.origin.saved ? s.origin.text : writeProject(project);
       const result = await store.exportFiles(text);
       if (!result) return;
       const folder = await host.exportFiles(`${safeName(project.name)}-scan`, result.files);
@@ -113,7 +148,14 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
       kept = s.revision;
       if (!store.unsaved()) return host.journal(null);
       const bytes = s.origin.partRef === null && s.origin.partBytes !== keptPart ? s.origin.partBytes : null;
-      await host.journal({ name: s.origin.name, ref: s.origin.ref, text: writeProject(s.project), partFile: s.project.part.file, partRef: s.origin.partRef, partBytes: bytes });
+      await host.journal({
+        name: s.origin.name,
+        ref: s.origin.ref,
+        text: writeProject(s.project),
+        partFile: s.project.part.file,
+        partRef: s.origin.partRef,
+        partBytes: bytes,
+      });
       if (bytes) keptPart = bytes;
     });
   setInterval(() => void keep(), KEEP_EVERY);
@@ -128,15 +170,23 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
   return {
     open,
     openDemo,
-    openDropped: (files: readonly File[]) => guard('Opening', async () => (await mayLeave()) && showOpened(await host.openDropped(files))),
-    openRecent: (ref: string) => guard('Opening', async () => (await mayLeave()) && showOpened(await host.openRecent(ref))),
+    openDropped: (files: readonly File[]) =>
+      guard('Opening', async () => (await mayLeave()) && showOpened(await host.openDropped(files))),
+    openRecent: (ref: string) =>
+      guard('Opening', async () => (await mayLeave()) && showOpened(await host.openRecent(ref))),
+    onRecent(hear: (files: readonly RecentFile[]) => void): () => void {
+      recentListeners.add(hear);
+      void tellRecent();
+      return () => recentListeners.delete(hear);
+    },
     save: () => void save(),
     saveAs,
     exportFiles,
     close: () => guard('Closing', close),
     hear(event: HostEvent) {
       if (event.kind === 'close-asked') void guard('Closing', close);
-      else if (event.kind === 'opened') void guard('Opening', async () => (await mayLeave()) && showOpened(event.opened));
+      else if (event.kind === 'opened')
+        void guard('Opening', async () => (await mayLeave()) && showOpened(event.opened));
     },
     /** What a fresh window shows: what was asked for, else lost work, else the demonstration or nothing. */
     async begin(): Promise<readonly string[]> {
@@ -147,7 +197,10 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
           const { answer } = await ask({
             title: 'Work that was not saved',
             text: `“${lost.name}” was open when the program ended on ${new Date(lost.when).toLocaleString()}.`,
-            answers: [['take', 'Bring it back'], ['drop', 'Throw it away']],
+            answers: [
+              ['take', 'Bring it back'],
+              ['drop', 'Throw it away'],
+            ],
           });
           if (answer === null) continue;
           const back = await host.recover(lost.id, answer === 'take');
@@ -169,4 +222,13 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
   };
 }
 
-const safeName = (name: string): string => name.normalize('NFKD').replace(/[^A-Za-z0-9._-]+/g, '-').replace(/^[.-]+|[.-]+$/g, '') || 'project';
+async function sha256(bytes: Uint8Array): Promise<string> {
+  const sum = new Uint8Array(await crypto.subtle.digest('SHA-256', bytes as Uint8Array<ArrayBuffer>));
+  return [...sum].map((b) => b.toString(16).padStart(2, '0')).join('');
+}
+
+const safeName = (name: string): string =>
+  name
+    .normalize('NFKD')
+    .replace(/[^A-Za-z0-9._-]+/g, '-')
+    .replace(/^[.-]+|[.-]+$/g, '') || 'project';

@@ -115,7 +115,10 @@ export interface Host {
   choosePlace(suggested: string, partRef: string | null, partName: string): Promise<Place | null>;
   save(request: SaveRequest): Promise<void>;
   /** Asks for a folder and writes the files into a folder of that name in it; null when the person changed their mind. */
-  exportFiles(suggested: string, files: readonly { path: string; bytes: Uint8Array }[]): Promise<string | null>;
+  exportFiles(
+    suggested: string,
+    files: readonly { path: string; bytes: Uint8Array }[],
+  ): Promise<string | null>;
   /** Keeps unsaved work; null when there is none. */
   journal(entry: JournalEntry | null): Promise<void>;
   recent(): Promise<RecentFile[]>;

@@ -9,7 +9,9 @@ const below = z
   .string()
   .max(400)
   .regex(/^(?![./\\])[^\\:*?"<>|]+$/)
-  .refine((p) => p.split('/').every((s) => s !== '' && s !== '.' && s !== '..' && ![...s].some((c) => c < ' ')));
+  .refine((p) =>
+    p.split('/').every((s) => s !== '' && s !== '.' && s !== '..' && ![...s].some((c) => c < ' ')),
+  );
 
 export const requestSchema = z.discriminatedUnion('ask', [
   z.strictObject({ ask: z.literal('start') }),
@@ -62,7 +64,12 @@ export const requestSchema = z.discriminatedUnion('ask', [
             .array(
               z.union([
                 z.literal('line'),
-                z.strictObject({ id: z.string().max(60), label: z.string().max(120), keys: z.string().max(30).optional(), enabled: z.boolean() }),
+                z.strictObject({
+                  id: z.string().max(60),
+                  label: z.string().max(120),
+                  keys: z.string().max(30).optional(),
+                  enabled: z.boolean(),
+                }),
               ]),
             )
             .max(60),

@@ -30,7 +30,8 @@ export function unpack(message: Uint8Array): unknown {
   return JSON.parse(new TextDecoder().decode(message.subarray(4, 4 + size)), (_key, v: unknown) => {
     if (typeof v !== 'object' || v === null || !('$bytes' in v)) return v;
     const length = (v as { length?: unknown }).length;
-    if (typeof length !== 'number' || length < 0 || at + length > message.length) throw new RangeError('message cut short');
+    if (typeof length !== 'number' || length < 0 || at + length > message.length)
+      throw new RangeError('message cut short');
     const blob = message.slice(at, at + length);
     at += length;
     return blob;

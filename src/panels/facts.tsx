@@ -24,7 +24,11 @@ export function Facts() {
         <>
           <h2>{chosen.length} elements</h2>
           <p className="ids">{chosen.map((e) => e.id).join(', ')}</p>
-          <p className="row"><button type="button" onClick={() => store.deleteSelected()}>Delete them</button></p>
+          <p className="row">
+            <button type="button" onClick={() => store.deleteSelected()}>
+              Delete them
+            </button>
+          </p>
         </>
       )}
       <Pointer state={state} />
@@ -60,69 +64,153 @@ function One({ element: e, state }: { element: Element; state: State }) {
   const index = copper?.elements.findIndex((c) => c.id === e.id) ?? -1;
   const laid = copper?.elements[index];
   const margins = useMemo(
-    () => (copper && index >= 0 ? marginsOf(index, copper, state.setup, reach, plan, project.limits, project.material) : []),
+    () =>
+      copper && index >= 0
+        ? marginsOf(index, copper, state.setup, reach, plan, project.limits, project.material)
+        : [],
     [copper, index, state.setup, reach, plan, project.limits, project.material],
   );
   const layers = new Set<number>();
   if (laid && plan) for (let t = laid.first; t < laid.first + laid.count; t++) layers.add(plan.layerOf[t]!);
-  const edit = (what: string, change: Record<string, unknown>) => store.act({ kind: 'edit-element', id: e.id, what, change });
+  const edit = (what: string, change: Record<string, unknown>) =>
+    store.act({ kind: 'edit-element', id: e.id, what, change });
   const names = { trace: 'Trace', pad: 'Pad', region: 'Region' };
   return (
     <>
-      <h2>{names[e.kind]} {e.id}</h2>
+      <h2>
+        {names[e.kind]} {e.id}
+      </h2>
       <TextField label="Net" value={e.net} placeholder="no net" onValue={(net) => edit('net', { net })} />
-      {e.kind === 'trace' && <NumberField label="Width" unit="mm" quantity="length" value={e.width} min={0} open onValue={(width) => edit('width', { width })} />}
+      {e.kind === 'trace' && (
+        <NumberField
+          label="Width"
+          unit="mm"
+          quantity="length"
+          value={e.width}
+          min={0}
+          open
+          onValue={(width) => edit('width', { width })}
+        />
+      )}
       {e.kind === 'pad' && <PadFields e={e} edit={edit} />}
       {laid && (
         <dl>
           <Fact label={e.kind === 'trace' ? 'Length' : 'Outline'}>{show(laid.length, 2)} mm</Fact>
           <Fact label="Copper">{show(laid.area, 2)} mm²</Fact>
           {laid.stretch > 5e-4 && <Fact label="Stretch">{show(100 * laid.stretch, 2)} %</Fact>}
-          {plan && <Fact label="Layers">{[...layers].filter((l) => l >= 0).sort((a, b) => a - b).map((l) => plan.layers[l]!.index).join(', ') || 'none'}{layers.has(-1) ? ' and left out in part' : ''}</Fact>}
+          {plan && (
+            <Fact label="Layers">
+              {[...layers]
+                .filter((l) => l >= 0)
+                .sort((a, b) => a - b)
+                .map((l) => plan.layers[l]!.index)
+                .join(', ') || 'none'}
+              {layers.has(-1) ? ' and left out in part' : ''}
+            </Fact>
+          )}
         </dl>
       )}
       {margins.length > 0 && (
         <section aria-label="Margins">
           <h3>Margins</h3>
           {margins.map((m) => (
-            <MarginRow key={m.check} margin={m} onShow={() => { const p = placeOf(copper!, m.at); showPlace(p.point, p.normal); }} />
+            <MarginRow
+              key={m.check}
+              margin={m}
+              onShow={() => {
+                const p = placeOf(copper!, m.at);
+                showPlace(p.point, p.normal);
+              }}
+            />
           ))}
         </section>
       )}
       {e.kind !== 'pad' && <Points e={e} />}
-      <p className="row"><button type="button" onClick={() => store.deleteSelected()}>Delete {e.id}</button></p>
+      <p className="row">
+        <button type="button" onClick={() => store.deleteSelected()}>
+          Delete {e.id}
+        </button>
+      </p>
     </>
   );
 }
 
-function PadFields({ e, edit }: { e: Extract<Element, { kind: 'pad' }>; edit(what: string, change: Record<string, unknown>): void }) {
+function PadFields({
+  e,
+  edit,
+}: {
+  e: Extract<Element, { kind: 'pad' }>;
+  edit(what: string, change: Record<string, unknown>): void;
+}) {
   const { store } = useWindow();
   const s = e.shape;
   return (
     <>
-      {'circle' in s && <NumberField label="Diameter" unit="mm" quantity="length" value={s.circle} min={0} open onValue={(v) => edit('size', { shape: { circle: v } })} />}
+      {'circle' in s && (
+        <NumberField
+          label="Diameter"
+          unit="mm"
+          quantity="length"
+          value={s.circle}
+          min={0}
+          open
+          onValue={(v) => edit('size', { shape: { circle: v } })}
+        />
+      )}
       {('rect' in s || 'slot' in s) && (
         <div className="two">
           {[0, 1].map((k) => {
             const both = 'rect' in s ? s.rect : s.slot;
             return (
-              <NumberField key={k} label={k === 0 ? 'Length' : 'Breadth'} unit="mm" quantity="length" value={both[k]!} min={0} open
-                onValue={(v) => { const next = both.map((b, i) => (i === k ? v : b)); edit('size', { shape: 'rect' in s ? { rect: next } : { slot: next } }); }} />
+              <NumberField
+                key={k}
+                label={k === 0 ? 'Length' : 'Breadth'}
+                unit="mm"
+                quantity="length"
+                value={both[k]!}
+                min={0}
+                open
+                onValue={(v) => {
+                  const next = both.map((b, i) => (i === k ? v : b));
+                  edit('size', { shape: 'rect' in s ? { rect: next } : { slot: next } });
+                }}
+              />
             );
           })}
         </div>
       )}
-      <NumberField label="Turn" unit="°" quantity="angle" value={e.turn} onValue={(turn) => edit('turn', { turn })} />
+      <NumberField
+        label="Turn"
+        unit="°"
+        quantity="angle"
+        value={e.turn}
+        onValue={(turn) => edit('turn', { turn })}
+      />
       <Place label="Place" at={e.at} onPlace={(at) => store.act({ kind: 'move-pad', id: e.id, at })} />
     </>
   );
 }
 
-function Place({ label, at, onPlace }: { label: string; at: readonly [number, number, number]; onPlace(at: [number, number, number]): void }) {
+function Place({
+  label,
+  at,
+  onPlace,
+}: {
+  label: string;
+  at: readonly [number, number, number];
+  onPlace(at: [number, number, number]): void;
+}) {
   return (
     <div className="three">
       {(['X', 'Y', 'Z'] as const).map((axis, k) => (
-        <NumberField key={axis} label={`${label} ${axis}`} unit="" quantity="length" value={at[k]!} onValue={(v) => onPlace(at.map((a, i) => (i === k ? v : a)) as [number, number, number])} />
+        <NumberField
+          key={axis}
+          label={`${label} ${axis}`}
+          unit=""
+          quantity="length"
+          value={at[k]!}
+          onValue={(v) => onPlace(at.map((a, i) => (i === k ? v : a)) as [number, number, number])}
+        />
       ))}
     </div>
   );
@@ -137,8 +225,19 @@ function Points({ e }: { e: Extract<Element, { kind: 'trace' | 'region' }> }) {
       {points.map((p, i) => (
         // biome-ignore lint/suspicious/noArrayIndexKey: a point is known by its place in the route
         <div key={i} className="point">
-          <Place label={`${i + 1}`} at={p.at} onPlace={(at) => store.act({ kind: 'move-point', id: e.id, index: i, at })} />
-          <button type="button" aria-label={`Take point ${i + 1} out`} disabled={points.length <= (e.kind === 'trace' ? 2 : 3)} onClick={() => store.act({ kind: 'remove-point', id: e.id, index: i })}>−</button>
+          <Place
+            label={`${i + 1}`}
+            at={p.at}
+            onPlace={(at) => store.act({ kind: 'move-point', id: e.id, index: i, at })}
+          />
+          <button
+            type="button"
+            aria-label={`Take point ${i + 1} out`}
+            disabled={points.length <= (e.kind === 'trace' ? 2 : 3)}
+            onClick={() => store.act({ kind: 'remove-point', id: e.id, index: i })}
+          >
+            −
+          </button>
         </div>
       ))}
     </details>
@@ -149,10 +248,22 @@ function MarginRow({ margin: m, onShow }: { margin: Margin; onShow(): void }) {
   const share = Math.max(0, Math.min(1, m.share));
   return (
     <div className={m.ok ? 'margin' : 'margin bad'}>
-      <span className="margin-name">{m.ok ? '' : '✕ '}{m.label}</span>
-      <span className="margin-value">{show(m.value, 2)} <span className="dim">of {show(m.limit, 2)} {m.unit}</span></span>
-      <span className="bar" aria-hidden="true"><span style={{ width: `${100 * share}%` }} /></span>
-      <button type="button" onClick={onShow} aria-label={`Show me where: ${m.label}`}>Show me</button>
+      <span className="margin-name">
+        {m.ok ? '' : '✕ '}
+        {m.label}
+      </span>
+      <span className="margin-value">
+        {show(m.value, 2)}{' '}
+        <span className="dim">
+          of {show(m.limit, 2)} {m.unit}
+        </span>
+      </span>
+      <span className="bar" aria-hidden="true">
+        <span style={{ width: `${100 * share}%` }} />
+      </span>
+      <button type="button" onClick={onShow} aria-label={`Show me where: ${m.label}`}>
+        Show me
+      </button>
     </div>
   );
 }
@@ -171,7 +282,9 @@ function Pointer({ state }: { state: State }) {
         <Fact label="Bench height">{show(h.probe.height, 2)} mm</Fact>
         <Fact label="Defocus now">{show(defocus, 2)} mm</Fact>
         <Fact label="Incidence">{show(h.probe.incidence, 1)}°</Fact>
-        {h.probe.blockedAfter !== null && <Fact label="Beam">meets the part {show(h.probe.blockedAfter, 1)} mm above</Fact>}
+        {h.probe.blockedAfter !== null && (
+          <Fact label="Beam">meets the part {show(h.probe.blockedAfter, 1)} mm above</Fact>
+        )}
         {reach && h.triangle >= 0 && <Fact label="Dose">{show(reach.fluence[h.triangle]!, 2)} J/cm²</Fact>}
       </dl>
     </section>

@@ -17,7 +17,18 @@ interface NumberProps {
   onValue(value: number): void;
 }
 
-export function NumberField({ label, value, unit, quantity = 'plain', digits = 3, min, max, open = false, compact = false, onValue }: NumberProps) {
+export function NumberField({
+  label,
+  value,
+  unit,
+  quantity = 'plain',
+  digits = 3,
+  min,
+  max,
+  open = false,
+  compact = false,
+  onValue,
+}: NumberProps) {
   const id = useId();
   const plain = show(value, digits).replace('−', '-');
   const [text, setText] = useState(plain);
@@ -32,8 +43,10 @@ export function NumberField({ label, value, unit, quantity = 'plain', digits = 3
     const typed = readNumber(text, quantity, unit);
     if ('problem' in typed) return setProblem(typed.problem);
     const v = typed.value;
-    if (min !== undefined && (open ? v <= min : v < min)) return setProblem(`${open ? 'more than' : 'at least'} ${show(min)} ${unit}`);
-    if (max !== undefined && (open ? v >= max : v > max)) return setProblem(`${open ? 'less than' : 'at most'} ${show(max)} ${unit}`);
+    if (min !== undefined && (open ? v <= min : v < min))
+      return setProblem(`${open ? 'more than' : 'at least'} ${show(min)} ${unit}`);
+    if (max !== undefined && (open ? v >= max : v > max))
+      return setProblem(`${open ? 'less than' : 'at most'} ${show(max)} ${unit}`);
     setProblem('');
     setText(show(v, digits).replace('−', '-'));
     onValue(v);
@@ -72,7 +85,17 @@ export function NumberField({ label, value, unit, quantity = 'plain', digits = 3
   );
 }
 
-export function TextField({ label, value, placeholder, onValue }: { label: string; value: string; placeholder?: string; onValue(v: string): void }) {
+export function TextField({
+  label,
+  value,
+  placeholder,
+  onValue,
+}: {
+  label: string;
+  value: string;
+  placeholder?: string;
+  onValue(v: string): void;
+}) {
   const id = useId();
   const [text, setText] = useState(value);
   useEffect(() => setText(value), [value]);
@@ -81,13 +104,31 @@ export function TextField({ label, value, placeholder, onValue }: { label: strin
     <div className="field">
       <label htmlFor={id}>{label}</label>
       <span className="entry">
-        <input id={id} autoComplete="off" placeholder={placeholder} value={text} onChange={(e) => setText(e.target.value)} onBlur={take} onKeyDown={(e) => e.key === 'Enter' && take()} />
+        <input
+          id={id}
+          autoComplete="off"
+          placeholder={placeholder}
+          value={text}
+          onChange={(e) => setText(e.target.value)}
+          onBlur={take}
+          onKeyDown={(e) => e.key === 'Enter' && take()}
+        />
       </span>
     </div>
   );
 }
 
-export function ChoiceField<T extends string>({ label, value, options, onValue }: { label: string; value: T; options: readonly (readonly [T, string])[]; onValue(v: T): void }) {
+export function ChoiceField<T extends string>({
+  label,
+  value,
+  options,
+  onValue,
+}: {
+  label: string;
+  value: T;
+  options: readonly (readonly [T, string])[];
+  onValue(v: T): void;
+}) {
   const id = useId();
   return (
     <div className="field">
@@ -105,7 +146,15 @@ export function ChoiceField<T extends string>({ label, value, options, onValue }
   );
 }
 
-export function TickField({ label, value, onValue }: { label: string; value: boolean; onValue(v: boolean): void }) {
+export function TickField({
+  label,
+  value,
+  onValue,
+}: {
+  label: string;
+  value: boolean;
+  onValue(v: boolean): void;
+}) {
   const id = useId();
   return (
     <div className="field tick">

@@ -7,7 +7,14 @@ import { show } from '../store/units.ts';
 import { Swatch } from './swatch.tsx';
 import { useSteady, useWindow } from './window.tsx';
 
-const WORDS = { reached: 'Reached', focus: 'Out of focus', incidence: 'Too oblique', shade: 'Shaded', field: 'Off the field', dose: 'Wrong dose' } as const;
+const WORDS = {
+  reached: 'Reached',
+  focus: 'Out of focus',
+  incidence: 'Too oblique',
+  shade: 'Shaded',
+  field: 'Off the field',
+  dose: 'Wrong dose',
+} as const;
 
 export function Legend() {
   const { store } = useWindow();
@@ -15,7 +22,10 @@ export function Legend() {
   const { copper, reach, plan } = current(state);
   const depth = state.project ? plainDepth(state.project.limits) : 0;
   const counts = useMemo(
-    () => (copper ? countLooks(copper, state.setup, reach, plan, { show: state.show, offset: state.offset, depth }) : null),
+    () =>
+      copper
+        ? countLooks(copper, state.setup, reach, plan, { show: state.show, offset: state.offset, depth })
+        : null,
     [copper, reach, plan, state.setup, state.show, state.offset, depth],
   );
   if (!copper || !counts || copper.elements.length === 0) return null;

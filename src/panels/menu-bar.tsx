@@ -47,7 +47,15 @@ export function MenuBar({ menus, title }: { menus: readonly MenuList[]; title: s
       <div className="menus" ref={bar} onKeyDown={onKey}>
         {menus.map((m, i) => (
           <div key={m.label} className="menu">
-            <button type="button" className="menu-name" aria-haspopup="menu" aria-expanded={open === i} onClick={() => setOpen(open === i ? -1 : i)}>{m.label}</button>
+            <button
+              type="button"
+              className="menu-name"
+              aria-haspopup="menu"
+              aria-expanded={open === i}
+              onClick={() => setOpen(open === i ? -1 : i)}
+            >
+              {m.label}
+            </button>
             {open === i && (
               <div role="menu" aria-label={m.label}>
                 {m.entries.map((e, k) =>
@@ -55,7 +63,16 @@ export function MenuBar({ menus, title }: { menus: readonly MenuList[]; title: s
                     // biome-ignore lint/suspicious/noArrayIndexKey: a line has no name
                     <hr key={k} />
                   ) : (
-                    <button key={e.id} type="button" role="menuitem" disabled={!e.enabled} onClick={() => { close(i); run(e.id); }}>
+                    <button
+                      key={e.id}
+                      type="button"
+                      role="menuitem"
+                      disabled={!e.enabled}
+                      onClick={() => {
+                        close(i);
+                        run(e.id);
+                      }}
+                    >
                       <span>{e.label}</span>
                       {e.keys && <kbd>{e.keys.replace('Mod', 'Ctrl')}</kbd>}
                     </button>

@@ -6,16 +6,24 @@ export function Notices() {
   const { store } = useWindow();
   const notices = useLook((s) => s.notices);
   return (
-    <div className="notices" role="region" aria-label="News" aria-live="polite">
+    <section className="notices" aria-label="News" aria-live="polite">
       {notices.map((n) => (
         <div key={n.id} className={`notice ${n.level}`} role={n.level === 'done' ? 'status' : 'alert'}>
           <p>
-            {n.text}.{n.mend && <> <span className="mend">{n.mend.charAt(0).toUpperCase() + n.mend.slice(1)}.</span></>}
+            {n.text}.
+            {n.mend && (
+              <>
+                {' '}
+                <span className="mend">{n.mend.charAt(0).toUpperCase() + n.mend.slice(1)}.</span>
+              </>
+            )}
           </p>
-          <button type="button" aria-label="Put away" onClick={() => store.dismissNotice(n.id)}>×</button>
+          <button type="button" aria-label="Put away" onClick={() => store.dismissNotice(n.id)}>
+            ×
+          </button>
         </div>
       ))}
-    </div>
+    </section>
   );
 }
 
@@ -38,13 +46,18 @@ export function BusyLine() {
     <div className="busy" role="status">
       <span>{busy.what}…</span>
       <progress aria-label={busy.what} max={1} {...(busy.share === null ? {} : { value: busy.share })} />
-      <button type="button" onClick={() => store.stop()}>Stop</button>
+      <button type="button" onClick={() => store.stop()}>
+        Stop
+      </button>
     </div>
   );
 }
 
 const HINTS: readonly (readonly [id: string, text: string])[] = [
-  ['hint-offset', 'Drag the marker in the strip below: it moves the stage. Copper that is then out of focus turns red.'],
+  [
+    'hint-offset',
+    'Drag the marker in the strip below: it moves the stage. Copper that is then out of focus turns red.',
+  ],
   ['hint-trace', 'Choose Trace and click along the dome: the run follows the surface the shortest way.'],
   ['hint-files', 'Open Files to write what the laser needs, one set a layer, with the Z to set for each.'],
 ];
@@ -58,7 +71,9 @@ export function Hints() {
       {left.map(([id, text]) => (
         <div key={id} className="hint">
           <p>{text}</p>
-          <button type="button" onClick={() => dismiss(id)}>Got it<span className="sr">: {text.split(/[:.]/)[0]}</span></button>
+          <button type="button" onClick={() => dismiss(id)}>
+            Got it<span className="sr">: {text.split(/[:.]/)[0]}</span>
+          </button>
         </div>
       ))}
     </section>

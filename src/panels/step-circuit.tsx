@@ -17,40 +17,112 @@ export function CircuitStep() {
   return (
     <>
       <p className="row">
-        <button type="button" aria-pressed={tool.kind === 'trace'} disabled={!state.part} onClick={() => store.setTool(tool.kind === 'trace' ? 'look' : 'trace')}>Draw a trace</button>
-        <button type="button" aria-pressed={tool.kind === 'pad'} disabled={!state.part} onClick={() => store.setTool(tool.kind === 'pad' ? 'look' : 'pad')}>Place pads</button>
+        <button
+          type="button"
+          aria-pressed={tool.kind === 'trace'}
+          disabled={!state.part}
+          onClick={() => store.setTool(tool.kind === 'trace' ? 'look' : 'trace')}
+        >
+          Draw a trace
+        </button>
+        <button
+          type="button"
+          aria-pressed={tool.kind === 'pad'}
+          disabled={!state.part}
+          onClick={() => store.setTool(tool.kind === 'pad' ? 'look' : 'pad')}
+        >
+          Place pads
+        </button>
       </p>
       <div className="two">
-        <NumberField label="Trace width" value={pen.width} unit="mm" quantity="length" min={0} open onValue={(width) => store.setPen({ width })} />
-        <TextField label="Net" value={pen.net} placeholder="as its pad" onValue={(net) => store.setPen({ net })} />
+        <NumberField
+          label="Trace width"
+          value={pen.width}
+          unit="mm"
+          quantity="length"
+          min={0}
+          open
+          onValue={(width) => store.setPen({ width })}
+        />
+        <TextField
+          label="Net"
+          value={pen.net}
+          placeholder="as its pad"
+          onValue={(net) => store.setPen({ net })}
+        />
       </div>
-      <ChoiceField label="Pad shape" value={round ? 'circle' : 'rect'} options={[['circle', 'round'], ['rect', 'rectangle']]}
-        onValue={(v) => store.setPen({ shape: v === 'circle' ? { circle: size } : { rect: [size, size2] } })} />
+      <ChoiceField
+        label="Pad shape"
+        value={round ? 'circle' : 'rect'}
+        options={[
+          ['circle', 'round'],
+          ['rect', 'rectangle'],
+        ]}
+        onValue={(v) => store.setPen({ shape: v === 'circle' ? { circle: size } : { rect: [size, size2] } })}
+      />
       <div className="two">
-        <NumberField label={round ? 'Pad diameter' : 'Pad length'} value={size} unit="mm" quantity="length" min={0} open onValue={(v) => store.setPen({ shape: round ? { circle: v } : { rect: [v, size2] } })} />
-        {!round && <NumberField label="Pad breadth" value={size2} unit="mm" quantity="length" min={0} open onValue={(v) => store.setPen({ shape: { rect: [size, v] } })} />}
+        <NumberField
+          label={round ? 'Pad diameter' : 'Pad length'}
+          value={size}
+          unit="mm"
+          quantity="length"
+          min={0}
+          open
+          onValue={(v) => store.setPen({ shape: round ? { circle: v } : { rect: [v, size2] } })}
+        />
+        {!round && (
+          <NumberField
+            label="Pad breadth"
+            value={size2}
+            unit="mm"
+            quantity="length"
+            min={0}
+            open
+            onValue={(v) => store.setPen({ shape: { rect: [size, v] } })}
+          />
+        )}
       </div>
       <h3>Drawn</h3>
-      {project.circuit.elements.length === 0 && <p className="dim">Nothing yet. Choose “Draw a trace” and click along the part.</p>}
+      {project.circuit.elements.length === 0 && (
+        <p className="dim">Nothing yet. Choose “Draw a trace” and click along the part.</p>
+      )}
       <ul className="elements" aria-label="Elements">
         {project.circuit.elements.map((e) => {
           const laid = copper?.elements.find((c) => c.id === e.id);
           return (
             <li key={e.id}>
-              <button type="button" aria-pressed={chosen.has(e.id)} onClick={(ev) => store.select(ev.shiftKey || ev.ctrlKey || ev.metaKey ? toggled(selection, e.id) : [e.id])}>
+              <button
+                type="button"
+                aria-pressed={chosen.has(e.id)}
+                onClick={(ev) =>
+                  store.select(ev.shiftKey || ev.ctrlKey || ev.metaKey ? toggled(selection, e.id) : [e.id])
+                }
+              >
                 <span className="id">{e.id}</span>
                 <span className="dim">{e.net || 'no net'}</span>
-                <span className="count">{laid ? (e.kind === 'trace' ? `${show(laid.length, 1)} mm` : `${show(laid.area, 2)} mm²`) : e.kind}</span>
+                <span className="count">
+                  {laid
+                    ? e.kind === 'trace'
+                      ? `${show(laid.length, 1)} mm`
+                      : `${show(laid.area, 2)} mm²`
+                    : e.kind}
+                </span>
               </button>
             </li>
           );
         })}
       </ul>
-      {[...(copper?.problems ?? []).map((p) => `${p.place}: ${p.problem}; ${p.mend}.`), ...(copper?.findings ?? []).map((f) => `${f.element}: ${f.text}.`)].map((t) => (
-        <p key={t} className="wrong">{t}</p>
+      {[
+        ...(copper?.problems ?? []).map((p) => `${p.place}: ${p.problem}; ${p.mend}.`),
+        ...(copper?.findings ?? []).map((f) => `${f.element}: ${f.text}.`),
+      ].map((t) => (
+        <p key={t} className="wrong">
+          {t}
+        </p>
       ))}
     </>
   );
 }
 
-const toggled = (list: readonly string[], id: string): string[] => (list.includes(id) ? list.filter((x) => x !== id) : [...list, id]);
+const toggled = (list: readonly string[], id: string): string[] =>
+  list.includes(id) ? list.filter((x) => x !== id) : [...list, id];

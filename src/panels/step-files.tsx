@@ -9,32 +9,56 @@ export function FilesStep() {
   const state = useSteady();
   const { project, exported } = state;
   if (!project) return <p>Open a part first.</p>;
-  const set = (key: string, what: string, value: unknown) => store.act({ kind: 'set', path: ['scan', key], what, value });
+  const set = (key: string, what: string, value: unknown) =>
+    store.act({ kind: 'set', path: ['scan', key], what, value });
   const fresh = exported && exported.revision === state.revision;
   const report = exported?.report;
   return (
     <>
       <div className="caution" role="note">
-        <p><b>Before the beam is switched on.</b> The head is a class 4 laser: its beam and its stray light harm eyes and skin and can start a fire. Follow IEC 60825-1, the local codes and the shop’s laser safety officer.</p>
-        <p>The plating bath is caustic and may hold formaldehyde: ventilate, wear gloves and eye protection, follow its data sheet.</p>
+        <p>
+          <b>Before the beam is switched on.</b> The head is a class 4 laser: its beam and its stray light
+          harm eyes and skin and can start a fire. Follow IEC 60825-1, the local codes and the shop’s laser
+          safety officer.
+        </p>
+        <p>
+          The plating bath is caustic and may hold formaldehyde: ventilate, wear gloves and eye protection,
+          follow its data sheet.
+        </p>
         <p>No number here is a safety limit.</p>
       </div>
       <p className="row">
-        <button type="button" className="main" disabled={!state.part || project.circuit.elements.length === 0} onClick={() => run('export')}>Write the scan files…</button>
+        <button
+          type="button"
+          className="main"
+          disabled={!state.part || project.circuit.elements.length === 0}
+          onClick={() => run('export')}
+        >
+          Write the scan files…
+        </button>
       </p>
       {isUnsaved(state) && <p className="dim">The project itself is not saved yet.</p>}
       {exported && report && (
         <section aria-label="What was written">
           <h3>{fresh ? 'Written' : 'Written before the last change'}</h3>
-          <p>{exported.files} files in <span className="path">{exported.folder}</span></p>
+          <p>
+            {exported.files} files in <span className="path">{exported.folder}</span>
+          </p>
           <p className={report.ok ? 'good' : 'wrong'}>
             {report.ok ? 'Every check holds.' : 'A check fails; the report says which.'}{' '}
-            {report.proof && `Read back: ${show(100 * report.proof.covered, 2)} % covered, ${show(report.proof.stray_mm2, 3)} mm² stray, ${report.proof.opens.length} opens, ${report.proof.shorts.length} shorts.`}
+            {report.proof &&
+              `Read back: ${show(100 * report.proof.covered, 2)} % covered, ${show(report.proof.stray_mm2, 3)} mm² stray, ${report.proof.opens.length} opens, ${report.proof.shorts.length} shorts.`}
           </p>
           {report.setups.map((s) => (
             <table key={s.name} className="layers">
               <caption>Setup “{s.name}”, in this order</caption>
-              <thead><tr><th scope="col">Layer</th><th scope="col">Set Z to</th><th scope="col">Time</th></tr></thead>
+              <thead>
+                <tr>
+                  <th scope="col">Layer</th>
+                  <th scope="col">Set Z to</th>
+                  <th scope="col">Time</th>
+                </tr>
+              </thead>
               <tbody>
                 {s.layers.map((l) => (
                   <tr key={l.index}>
@@ -46,14 +70,48 @@ export function FilesStep() {
               </tbody>
             </table>
           ))}
-          <p className="dim">{project.stage.zMoves === 'head' ? 'The head moves; + lifts the head.' : 'The stage moves; + lifts the part.'}</p>
+          <p className="dim">
+            {project.stage.zMoves === 'head'
+              ? 'The head moves; + lifts the head.'
+              : 'The stage moves; + lifts the part.'}
+          </p>
         </section>
       )}
       <h3>Scan</h3>
-      <NumberField label="Line pitch on the surface" unit="mm" quantity="length" digits={4} value={project.scan.linePitch} min={0} open onValue={(v) => set('linePitch', 'line pitch', v)} />
-      <NumberField label="Mark speed" unit="mm/s" value={project.scan.markSpeed} min={0} open onValue={(v) => set('markSpeed', 'mark speed', v)} />
-      <NumberField label="Jump speed" unit="mm/s" value={project.scan.jumpSpeed} min={0} open onValue={(v) => set('jumpSpeed', 'jump speed', v)} />
-      <NumberField label="Passes" unit="" value={project.scan.passes} min={1} max={100} onValue={(v) => set('passes', 'passes', Math.round(v))} />
+      <NumberField
+        label="Line pitch on the surface"
+        unit="mm"
+        quantity="length"
+        digits={4}
+        value={project.scan.linePitch}
+        min={0}
+        open
+        onValue={(v) => set('linePitch', 'line pitch', v)}
+      />
+      <NumberField
+        label="Mark speed"
+        unit="mm/s"
+        value={project.scan.markSpeed}
+        min={0}
+        open
+        onValue={(v) => set('markSpeed', 'mark speed', v)}
+      />
+      <NumberField
+        label="Jump speed"
+        unit="mm/s"
+        value={project.scan.jumpSpeed}
+        min={0}
+        open
+        onValue={(v) => set('jumpSpeed', 'jump speed', v)}
+      />
+      <NumberField
+        label="Passes"
+        unit=""
+        value={project.scan.passes}
+        min={1}
+        max={100}
+        onValue={(v) => set('passes', 'passes', Math.round(v))}
+      />
     </>
   );
 }

@@ -4,7 +4,13 @@ import type { Quantity } from '../store/units.ts';
 import { ChoiceField, NumberField, TickField } from './fields.tsx';
 import { useLook, useWindow } from './window.tsx';
 
-type Row = readonly [path: readonly (string | number)[], label: string, unit: string, quantity?: Quantity, min?: number];
+type Row = readonly [
+  path: readonly (string | number)[],
+  label: string,
+  unit: string,
+  quantity?: Quantity,
+  min?: number,
+];
 
 const LENS: Row[] = [
   [['head', 'focalLength'], 'Focal length', 'mm', 'length', 0],
@@ -32,11 +38,20 @@ export function HeadStep() {
   const { store } = useWindow();
   const project = useLook((s) => s.project);
   if (!project) return <p>Open a part first.</p>;
-  const set = (path: readonly (string | number)[], what: string, value: unknown) => store.act({ kind: 'set', path, what, value });
+  const set = (path: readonly (string | number)[], what: string, value: unknown) =>
+    store.act({ kind: 'set', path, what, value });
   const rows = (list: Row[]) =>
     list.map(([path, label, unit, quantity = 'plain', min]) => (
-      <NumberField key={label} label={label} unit={unit} quantity={quantity} digits={4} value={valueAt(project, path)} {...(min === undefined ? {} : { min, open: true })}
-        onValue={(v) => set(path, label.toLowerCase(), v)} />
+      <NumberField
+        key={label}
+        label={label}
+        unit={unit}
+        quantity={quantity}
+        digits={4}
+        value={valueAt(project, path)}
+        {...(min === undefined ? {} : { min, open: true })}
+        onValue={(v) => set(path, label.toLowerCase(), v)}
+      />
     ));
   const depth = project.limits.depth;
   return (
@@ -45,10 +60,27 @@ export function HeadStep() {
       {rows(LENS)}
       {(['X', 'Y'] as const).map((axis, k) => (
         <div key={axis}>
-          <TickField label={`Telecentric along ${axis}`} value={project.head.pivot[k] === null}
-            onValue={(on) => set(['head', 'pivot', k], `pivot along ${axis}`, on ? null : Math.round(project.head.workingDistance * 1.15))} />
+          <TickField
+            label={`Telecentric along ${axis}`}
+            value={project.head.pivot[k] === null}
+            onValue={(on) =>
+              set(
+                ['head', 'pivot', k],
+                `pivot along ${axis}`,
+                on ? null : Math.round(project.head.workingDistance * 1.15),
+              )
+            }
+          />
           {project.head.pivot[k] !== null && (
-            <NumberField label={`Pivot height along ${axis}`} unit="mm" quantity="length" value={project.head.pivot[k]!} min={project.head.workingDistance} open onValue={(v) => set(['head', 'pivot', k], `pivot along ${axis}`, v)} />
+            <NumberField
+              label={`Pivot height along ${axis}`}
+              unit="mm"
+              quantity="length"
+              value={project.head.pivot[k]!}
+              min={project.head.workingDistance}
+              open
+              onValue={(v) => set(['head', 'pivot', k], `pivot along ${axis}`, v)}
+            />
           )}
         </div>
       ))}
@@ -57,15 +89,54 @@ export function HeadStep() {
       <h3>Material</h3>
       {rows(MATERIAL)}
       <h3>Depth of focus</h3>
-      <ChoiceField label="Set by" value={depth.mode} options={[['distance', 'a distance I measured'], ['spot', 'growth of the spot'], ['dose', 'the dose window']]}
-        onValue={(mode) => set(['limits', 'depth'], 'depth of focus', mode === 'distance' ? { mode, halfDepth: 2 } : mode === 'spot' ? { mode, growth: 1.5 } : { mode })} />
+      <ChoiceField
+        label="Set by"
+        value={depth.mode}
+        options={[
+          ['distance', 'a distance I measured'],
+          ['spot', 'growth of the spot'],
+          ['dose', 'the dose window'],
+        ]}
+        onValue={(mode) =>
+          set(
+            ['limits', 'depth'],
+            'depth of focus',
+            mode === 'distance' ? { mode, halfDepth: 2 } : mode === 'spot' ? { mode, growth: 1.5 } : { mode },
+          )
+        }
+      />
       {depth.mode === 'distance' && (
-        <NumberField label="Half-depth" unit="mm" quantity="length" value={depth.halfDepth} min={project.limits.heightUncertainty} open onValue={(v) => set(['limits', 'depth', 'halfDepth'], 'half-depth', v)} />
+        <NumberField
+          label="Half-depth"
+          unit="mm"
+          quantity="length"
+          value={depth.halfDepth}
+          min={project.limits.heightUncertainty}
+          open
+          onValue={(v) => set(['limits', 'depth', 'halfDepth'], 'half-depth', v)}
+        />
       )}
-      {depth.mode === 'spot' && <NumberField label="Allowed growth" unit="×" value={depth.growth} min={1} open onValue={(v) => set(['limits', 'depth', 'growth'], 'growth of the spot', v)} />}
-      <NumberField label="Height uncertainty" unit="mm" quantity="length" value={project.limits.heightUncertainty} min={0} onValue={(v) => set(['limits', 'heightUncertainty'], 'height uncertainty', v)} />
+      {depth.mode === 'spot' && (
+        <NumberField
+          label="Allowed growth"
+          unit="×"
+          value={depth.growth}
+          min={1}
+          open
+          onValue={(v) => set(['limits', 'depth', 'growth'], 'growth of the spot', v)}
+        />
+      )}
+      <NumberField
+        label="Height uncertainty"
+        unit="mm"
+        quantity="length"
+        value={project.limits.heightUncertainty}
+        min={0}
+        onValue={(v) => set(['limits', 'heightUncertainty'], 'height uncertainty', v)}
+      />
     </>
   );
 }
 
-const valueAt = (project: Project, path: readonly (string | number)[]): number => path.reduce<unknown>((v, k) => (v as Record<string | number, unknown>)[k], project) as number;
+const valueAt = (project: Project, path: readonly (string | number)[]): number =>
+  path.reduce<unknown>((v, k) => (v as Record<string | number, unknown>)[k], project) as number;

@@ -12,7 +12,8 @@ export function HeightsStep() {
   const { copper, plan } = current(state);
   if (!project) return <p>Open a part first.</p>;
   const { stage, scan } = project;
-  const set = (path: readonly (string | number)[], what: string, value: unknown) => store.act({ kind: 'set', path, what, value });
+  const set = (path: readonly (string | number)[], what: string, value: unknown) =>
+    store.act({ kind: 'set', path, what, value });
   const sign = stage.zMoves === 'head' ? 1 : -1;
   const byHand = setupsOf(project)[state.setup]?.focusHeights !== undefined;
   return (
@@ -22,7 +23,14 @@ export function HeightsStep() {
           <table className="layers">
             <caption>{byHand ? 'Heights set by hand' : 'The fewest layers there are'}</caption>
             <thead>
-              <tr><th scope="col">Layer</th><th scope="col">Set Z to</th><th scope="col">Worst defocus</th><th scope="col"><span className="sr">Alone</span></th></tr>
+              <tr>
+                <th scope="col">Layer</th>
+                <th scope="col">Set Z to</th>
+                <th scope="col">Worst defocus</th>
+                <th scope="col">
+                  <span className="sr">Alone</span>
+                </th>
+              </tr>
             </thead>
             <tbody>
               {plan.layers.map((l, i) => (
@@ -30,28 +38,86 @@ export function HeightsStep() {
                   <th scope="row">{l.index}</th>
                   <td>{signed(sign * l.focusHeight)}</td>
                   <td>{show(l.worstDefocus, 2)}</td>
-                  <td><button type="button" aria-pressed={state.isolated === i} onClick={() => store.isolate(i)}>Alone</button></td>
+                  <td>
+                    <button
+                      type="button"
+                      aria-pressed={state.isolated === i}
+                      onClick={() => store.isolate(i)}
+                    >
+                      Alone
+                    </button>
+                  </td>
                 </tr>
               ))}
             </tbody>
           </table>
-          <p className="dim">{stage.zMoves === 'head' ? 'The head moves; + lifts the head, away from the part.' : 'The stage moves; + lifts the part toward the head.'} All in mm.</p>
-          <p className="row"><button type="button" disabled={!byHand} onClick={() => store.fewest()}>Put the fewest back</button></p>
+          <p className="dim">
+            {stage.zMoves === 'head'
+              ? 'The head moves; + lifts the head, away from the part.'
+              : 'The stage moves; + lifts the part toward the head.'}{' '}
+            All in mm.
+          </p>
+          <p className="row">
+            <button type="button" disabled={!byHand} onClick={() => store.fewest()}>
+              Put the fewest back
+            </button>
+          </p>
           {copper && plan.unreached.length > 0 && (
-            <p className="wrong">Not reached: {[...new Set(plan.unreached.map((u) => copper.elements[u.element]?.id))].join(', ')}.</p>
+            <p className="wrong">
+              Not reached:{' '}
+              {[...new Set(plan.unreached.map((u) => copper.elements[u.element]?.id))].join(', ')}.
+            </p>
           )}
         </>
       ) : (
         <p className="dim">The layers appear as soon as there is copper that the beam can reach.</p>
       )}
       <h3>Stage</h3>
-      <ChoiceField label="What moves in Z" value={stage.zMoves} options={[['stage', 'the stage, with the part'], ['head', 'the head']]} onValue={(v) => set(['stage', 'zMoves'], 'what moves in Z', v)} />
-      <NumberField label="Smallest step" unit="mm" quantity="length" value={stage.step} min={0} onValue={(v) => set(['stage', 'step'], 'step of the stage', v)} />
+      <ChoiceField
+        label="What moves in Z"
+        value={stage.zMoves}
+        options={[
+          ['stage', 'the stage, with the part'],
+          ['head', 'the head'],
+        ]}
+        onValue={(v) => set(['stage', 'zMoves'], 'what moves in Z', v)}
+      />
+      <NumberField
+        label="Smallest step"
+        unit="mm"
+        quantity="length"
+        value={stage.step}
+        min={0}
+        onValue={(v) => set(['stage', 'step'], 'step of the stage', v)}
+      />
       <div className="two">
-        <NumberField label="Lowest" unit="mm" quantity="length" value={stage.range[0]} max={stage.range[1]} open onValue={(v) => set(['stage', 'range', 0], 'range of the stage', v)} />
-        <NumberField label="Highest" unit="mm" quantity="length" value={stage.range[1]} min={stage.range[0]} open onValue={(v) => set(['stage', 'range', 1], 'range of the stage', v)} />
+        <NumberField
+          label="Lowest"
+          unit="mm"
+          quantity="length"
+          value={stage.range[0]}
+          max={stage.range[1]}
+          open
+          onValue={(v) => set(['stage', 'range', 0], 'range of the stage', v)}
+        />
+        <NumberField
+          label="Highest"
+          unit="mm"
+          quantity="length"
+          value={stage.range[1]}
+          min={stage.range[0]}
+          open
+          onValue={(v) => set(['stage', 'range', 1], 'range of the stage', v)}
+        />
       </div>
-      <NumberField label="Stitch" unit="mm" quantity="length" value={scan.stitch} min={0} onValue={(v) => set(['scan', 'stitch'], 'stitch', v)} />
+      <NumberField
+        label="Stitch"
+        unit="mm"
+        quantity="length"
+        value={scan.stitch}
+        min={0}
+        onValue={(v) => set(['scan', 'stitch'], 'stitch', v)}
+      />
     </>
   );
 }

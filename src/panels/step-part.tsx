@@ -16,14 +16,23 @@ export function PartStep() {
       <>
         <p>Open an STL part, or a project made earlier. Both can be dropped on the window.</p>
         <p className="row">
-          <button type="button" onClick={() => run('open')}>Open…</button>
-          <button type="button" onClick={() => run('demo')}>Demonstration</button>
+          <button type="button" onClick={() => run('open')}>
+            Open…
+          </button>
+          <button type="button" onClick={() => run('demo')}>
+            Demonstration
+          </button>
         </p>
       </>
     );
   const setup = setupsOf(project)[at]!;
-  const pose = (next: Pose, what: string) => store.act({ kind: 'set', path: ['setups', at, 'pose'], what, value: next });
-  const move = (k: number, v: number) => pose({ ...setup.pose, move: setup.pose.move.map((m, i) => (i === k ? v : m)) as unknown as Pose['move'] }, 'place on the bench');
+  const pose = (next: Pose, what: string) =>
+    store.act({ kind: 'set', path: ['setups', at, 'pose'], what, value: next });
+  const move = (k: number, v: number) =>
+    pose(
+      { ...setup.pose, move: setup.pose.move.map((m, i) => (i === k ? v : m)) as unknown as Pose['move'] },
+      'place on the bench',
+    );
   const fixed = project.setups === 'auto';
   return (
     <>
@@ -32,17 +41,36 @@ export function PartStep() {
         {part && (
           <>
             <Fact label="Triangles">{part.triangles.toLocaleString('en')}</Fact>
-            <Fact label="Surface">{show(part.area, 0)} mm², {part.closed ? 'closed' : 'open'}</Fact>
+            <Fact label="Surface">
+              {show(part.area, 0)} mm², {part.closed ? 'closed' : 'open'}
+            </Fact>
             {part.pieces > 1 && <Fact label="Pieces">{part.pieces}</Fact>}
             <Fact label="Mended">{mendedWords(part.mended)}</Fact>
           </>
         )}
       </dl>
-      <ChoiceField label="Unit of the file" value={project.part.units} onValue={(v) => store.act({ kind: 'set', path: ['part', 'units'], what: 'unit of the part', value: v })}
-        options={[['mm', 'millimetre'], ['cm', 'centimetre'], ['m', 'metre'], ['um', 'micrometre'], ['inch', 'inch']]} />
+      <ChoiceField
+        label="Unit of the file"
+        value={project.part.units}
+        onValue={(v) =>
+          store.act({ kind: 'set', path: ['part', 'units'], what: 'unit of the part', value: v })
+        }
+        options={[
+          ['mm', 'millimetre'],
+          ['cm', 'centimetre'],
+          ['m', 'metre'],
+          ['um', 'micrometre'],
+          ['inch', 'inch'],
+        ]}
+      />
       <h3>On the bench</h3>
       {setupsOf(project).length > 1 && (
-        <ChoiceField label="Setup" value={String(at)} onValue={(v) => store.setSetup(Number(v))} options={setupsOf(project).map((s, i) => [String(i), s.name] as const)} />
+        <ChoiceField
+          label="Setup"
+          value={String(at)}
+          onValue={(v) => store.setSetup(Number(v))}
+          options={setupsOf(project).map((s, i) => [String(i), s.name] as const)}
+        />
       )}
       {fixed ? (
         <p>The planner chooses how the part stands.</p>
@@ -50,12 +78,25 @@ export function PartStep() {
         <>
           <div className="three">
             {(['X', 'Y', 'Z'] as const).map((name, k) => (
-              <NumberField key={name} label={`Move ${name}`} value={setup.pose.move[k]!} unit="mm" quantity="length" onValue={(v) => move(k, v)} />
+              <NumberField
+                key={name}
+                label={`Move ${name}`}
+                value={setup.pose.move[k]!}
+                unit="mm"
+                quantity="length"
+                onValue={(v) => move(k, v)}
+              />
             ))}
           </div>
           <p className="row">
             {(['X', 'Y', 'Z'] as const).map((name, k) => (
-              <button key={name} type="button" onClick={() => pose(turned(setup.pose, k, 90), `turn about ${name}`)}>Turn 90° about {name}</button>
+              <button
+                key={name}
+                type="button"
+                onClick={() => pose(turned(setup.pose, k, 90), `turn about ${name}`)}
+              >
+                Turn 90° about {name}
+              </button>
             ))}
           </p>
         </>
@@ -64,7 +105,13 @@ export function PartStep() {
   );
 }
 
-function mendedWords(m: { welded: number; degenerate: number; duplicate: number; flipped: number; nonManifoldEdges: number }): string {
+function mendedWords(m: {
+  welded: number;
+  degenerate: number;
+  duplicate: number;
+  flipped: number;
+  nonManifoldEdges: number;
+}): string {
   const told = [
     [m.welded, 'vertices joined'],
     [m.degenerate, 'facets of no area left out'],

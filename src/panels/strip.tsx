@@ -5,8 +5,8 @@ import { plainDepth } from '../store/looks.ts';
 import { heightProfile, niceStep } from '../store/profile.ts';
 import { current } from '../store/state.ts';
 import { setupsOf } from '../store/store.ts';
-import { overview } from '../store/words.ts';
 import { show, signed } from '../store/units.ts';
+import { overview } from '../store/words.ts';
 import { NumberField } from './fields.tsx';
 import { useLook, useSteady, useWindow } from './window.tsx';
 
@@ -40,7 +40,9 @@ function Strip({ project }: { project: Project }) {
   const handMade = setupsOf(project)[state.setup]?.focusHeights;
   // By hand, a height that writes nothing is still there to be dragged back.
   const bands = handMade
-    ? [...handMade].sort((a, b) => a - b).map((height) => ({ height, layer: layers.findIndex((l) => l.focusHeight === height) }))
+    ? [...handMade]
+        .sort((a, b) => a - b)
+        .map((height) => ({ height, layer: layers.findIndex((l) => l.focusHeight === height) }))
     : layers.map((l, layer) => ({ height: l.focusHeight, layer }));
   const [low, high] = profile?.range ?? [-5, 5];
   const margin = Math.max(depth, (high - low) * 0.08) + 0.6;
@@ -95,7 +97,11 @@ function Strip({ project }: { project: Project }) {
     else {
       const by = { ArrowLeft: -1, ArrowRight: 1 }[e.key];
       if (by === undefined) return;
-      store.moveLayer(band, -toStage(-(bands[band]!.height + by * Math.max(step, e.shiftKey ? 1 : 0.1))), null);
+      store.moveLayer(
+        band,
+        -toStage(-(bands[band]!.height + by * Math.max(step, e.shiftKey ? 1 : 0.1))),
+        null,
+      );
     }
     e.preventDefault();
     e.stopPropagation();
@@ -113,24 +119,63 @@ function Strip({ project }: { project: Project }) {
   return (
     <section className="strip" aria-label="Height strip">
       <div className="strip-head">
-        <NumberField label={moves === 'head' ? 'Head offset' : 'Stage offset'} value={shownZ} unit="mm" quantity="length" digits={3} min={stageLow} max={stageHigh} compact
-          onValue={(v) => store.setOffset(moves === 'head' ? -v : v)} />
-        <span className="dim">{moves === 'head' ? 'the head moves, + lifts the head' : 'the stage moves, + lifts the part'}; bench height {signed(focus)} mm is in focus</span>
+        <NumberField
+          label={moves === 'head' ? 'Head offset' : 'Stage offset'}
+          value={shownZ}
+          unit="mm"
+          quantity="length"
+          digits={3}
+          min={stageLow}
+          max={stageHigh}
+          compact
+          onValue={(v) => store.setOffset(moves === 'head' ? -v : v)}
+        />
+        <span className="dim">
+          {moves === 'head' ? 'the head moves, + lifts the head' : 'the stage moves, + lifts the part'}; bench
+          height {signed(focus)} mm is in focus
+        </span>
         <span className="push" />
         <fieldset className="segments">
           <legend className="sr">Show the copper</legend>
-          <button type="button" aria-pressed={!atOffset} onClick={() => store.setShow('layers')}>As planned</button>
-          <button type="button" aria-pressed={atOffset} onClick={() => store.setShow('offset')}>At this offset</button>
+          <button type="button" aria-pressed={!atOffset} onClick={() => store.setShow('layers')}>
+            As planned
+          </button>
+          <button type="button" aria-pressed={atOffset} onClick={() => store.setShow('offset')}>
+            At this offset
+          </button>
         </fieldset>
         {isolated !== null && (
-          <button type="button" onClick={() => store.isolate(null)}>All layers</button>
+          <button type="button" onClick={() => store.isolate(null)}>
+            All layers
+          </button>
         )}
-        <button type="button" disabled={!byHand} onClick={() => store.fewest()} title="Put the plan with the fewest layers back">Fewest</button>
+        <button
+          type="button"
+          disabled={!byHand}
+          onClick={() => store.fewest()}
+          title="Put the plan with the fewest layers back"
+        >
+          Fewest
+        </button>
       </div>
       <div className="strip-plot" ref={box}>
-        <svg width={wide} height={TOP + HIGH + FOOT} role="group" aria-label="Copper by bench height" data-from={from} data-to={to}>
+        {/* biome-ignore lint/a11y/useSemanticElements: a fieldset cannot hold a drawing's parts */}
+        <svg
+          width={wide}
+          height={TOP + HIGH + FOOT}
+          role="group"
+          aria-label="Copper by bench height"
+          data-from={from}
+          data-to={to}
+        >
           <defs>
-            <pattern id="slashes" width="7" height="7" patternUnits="userSpaceOnUse" patternTransform="rotate(35)">
+            <pattern
+              id="slashes"
+              width="7"
+              height="7"
+              patternUnits="userSpaceOnUse"
+              patternTransform="rotate(35)"
+            >
               <rect className="focus-base" width="7" height="7" />
               <rect className="focus-mark" width="2.6" height="7" />
             </pattern>
@@ -139,37 +184,94 @@ function Strip({ project }: { project: Project }) {
           {ticks.map((t) => (
             <g key={t} className="tick">
               <line x1={x(t)} x2={x(t)} y1={TOP + HIGH} y2={TOP + HIGH + 4} />
-              <text x={x(t)} y={TOP + HIGH + 15} textAnchor="middle">{show(t, tick < 1 ? 2 : 0)}</text>
+              <text x={x(t)} y={TOP + HIGH + 15} textAnchor="middle">
+                {show(t, tick < 1 ? 2 : 0)}
+              </text>
             </g>
           ))}
           {profile &&
             [...profile.area].map((a, i) => {
               const zMid = profile.from + (i + 0.5) * profile.bin;
               const tall = (a / most) * (HIGH - 6);
-              const out = atOffset ? Math.abs(zMid + offset) > depth : layers.length > 0 && !layers.some((l) => Math.abs(zMid - l.focusHeight) <= depth + profile.bin / 2);
+              const out = atOffset
+                ? Math.abs(zMid + offset) > depth
+                : layers.length > 0 &&
+                  !layers.some((l) => Math.abs(zMid - l.focusHeight) <= depth + profile.bin / 2);
               return a > 0 ? (
-                <rect key={i} className={out ? 'bar out' : 'bar'} fill={out ? 'url(#slashes)' : undefined}
-                  x={x(profile.from + i * profile.bin)} width={Math.max(1, x(profile.from + profile.bin) - x(profile.from) + 0.3)} y={TOP + HIGH - tall} height={tall} />
+                <rect
+                  key={zMid}
+                  className={out ? 'bar out' : 'bar'}
+                  fill={out ? 'url(#slashes)' : undefined}
+                  x={x(profile.from + i * profile.bin)}
+                  width={Math.max(1, x(profile.from + profile.bin) - x(profile.from) + 0.3)}
+                  y={TOP + HIGH - tall}
+                  height={tall}
+                />
               ) : null;
             })}
           {bands.map((b, i) => (
-            // biome-ignore lint/suspicious/noArrayIndexKey: bands are known by their order, from below
-            <g key={i} className={`band${isolated !== null && isolated === b.layer ? ' alone' : ''}${i % 2 ? ' odd' : ''}${b.layer < 0 ? ' idle' : ''}`} tabIndex={0} role="slider" data-testid={`band-${i + 1}`}
-              aria-label={b.layer < 0 ? 'Height that writes nothing' : `Layer ${layers[b.layer]!.index}, focus height; Enter shows it alone`} aria-valuenow={Number(b.height.toFixed(3))} aria-valuemin={Number(from.toFixed(2))} aria-valuemax={Number(to.toFixed(2))}
+            <g
+              // biome-ignore lint/suspicious/noArrayIndexKey: bands are known by their order, from below
+              key={i}
+              className={`band${isolated !== null && isolated === b.layer ? ' alone' : ''}${i % 2 ? ' odd' : ''}${b.layer < 0 ? ' idle' : ''}`}
+              tabIndex={0}
+              role="slider"
+              data-testid={`band-${i + 1}`}
+              aria-label={
+                b.layer < 0
+                  ? 'Height that writes nothing'
+                  : `Layer ${layers[b.layer]!.index}, focus height; Enter shows it alone`
+              }
+              aria-valuenow={Number(b.height.toFixed(3))}
+              aria-valuemin={Number(from.toFixed(2))}
+              aria-valuemax={Number(to.toFixed(2))}
               aria-valuetext={`${signed(b.height)} mm${isolated !== null && isolated === b.layer ? ', shown alone' : ''}`}
-              onPointerDown={(e) => downBand(e, i)} onPointerMove={moveBand} onPointerUp={upBand} onPointerCancel={upBand} onKeyDown={(e) => keyBand(e, i)}>
-              <rect x={x(b.height - depth)} width={Math.max(2, x(b.height + depth) - x(b.height - depth))} y={TOP} height={HIGH} />
+              onPointerDown={(e) => downBand(e, i)}
+              onPointerMove={moveBand}
+              onPointerUp={upBand}
+              onPointerCancel={upBand}
+              onKeyDown={(e) => keyBand(e, i)}
+            >
+              <rect
+                x={x(b.height - depth)}
+                width={Math.max(2, x(b.height + depth) - x(b.height - depth))}
+                y={TOP}
+                height={HIGH}
+              />
               <line x1={x(b.height)} x2={x(b.height)} y1={TOP} y2={TOP + HIGH} />
-              <text x={x(b.height)} y={TOP + 13} textAnchor="middle">{b.layer < 0 ? '–' : layers[b.layer]!.index}</text>
+              <text x={x(b.height)} y={TOP + 13} textAnchor="middle">
+                {b.layer < 0 ? '–' : layers[b.layer]!.index}
+              </text>
             </g>
           ))}
-          <g className="marker" tabIndex={0} role="slider" aria-label={moves === 'head' ? 'Head offset' : 'Stage offset'} aria-orientation="horizontal"
-            aria-valuenow={Number(shownZ.toFixed(3))} aria-valuemin={stageLow} aria-valuemax={stageHigh} aria-valuetext={`${tag}, in focus at bench height ${signed(focus)} mm`}
-            data-testid="marker" onPointerDown={dragMarker} onPointerMove={dragMarker} onKeyDown={keyMarker}>
+          <g
+            className="marker"
+            tabIndex={0}
+            role="slider"
+            aria-label={moves === 'head' ? 'Head offset' : 'Stage offset'}
+            aria-orientation="horizontal"
+            aria-valuenow={Number(shownZ.toFixed(3))}
+            aria-valuemin={stageLow}
+            aria-valuemax={stageHigh}
+            aria-valuetext={`${tag}, in focus at bench height ${signed(focus)} mm`}
+            data-testid="marker"
+            onPointerDown={dragMarker}
+            onPointerMove={dragMarker}
+            onKeyDown={keyMarker}
+          >
             <rect className="reach" x={markerX - 9} y={0} width={18} height={TOP + HIGH} />
             <line x1={markerX} x2={markerX} y1={TOP - 4} y2={TOP + HIGH} />
-            <rect className="tag" x={Math.max(0, Math.min(wide - 84, markerX - 42))} y={1} width={84} height={18} rx={4} />
-            <text x={Math.max(42, Math.min(wide - 42, markerX))} y={14} textAnchor="middle">{tag}</text>
+            <rect
+              className="tag"
+              x={Math.max(0, Math.min(wide - 84, markerX - 42))}
+              y={1}
+              width={84}
+              height={18}
+              rx={4}
+            />
+            <text x={Math.max(42, Math.min(wide - 42, markerX))} y={14} textAnchor="middle">
+              {tag}
+            </text>
           </g>
         </svg>
       </div>

@@ -3,11 +3,25 @@ import type { Reason } from '../core/reach/result.ts';
 
 export function Swatch({ look }: { look: Reason | 'reached' }) {
   return (
-    <svg className={`swatch look-${look}`} width="22" height="16" viewBox="0 0 22 16" aria-hidden="true" focusable="false">
+    <svg
+      className={`swatch look-${look}`}
+      width="22"
+      height="16"
+      viewBox="0 0 22 16"
+      aria-hidden="true"
+      focusable="false"
+    >
       <rect className="base" x="0.5" y="0.5" width="21" height="15" rx="2" />
-      {look === 'focus' && <path className="mark" d="M-2 17 L8 -1 M4 17 L14 -1 M10 17 L20 -1 M16 17 L26 -1" />}
+      {look === 'focus' && (
+        <path className="mark" d="M-2 17 L8 -1 M4 17 L14 -1 M10 17 L20 -1 M16 17 L26 -1" />
+      )}
       {look === 'incidence' && <path className="mark" d="M1 4 H21 M1 8.5 H21 M1 13 H21" />}
-      {look === 'shade' && <path className="mark round" d="M4 5 h0 M9 5 h0 M14 5 h0 M19 5 h0 M6.5 11 h0 M11.5 11 h0 M16.5 11 h0" />}
+      {look === 'shade' && (
+        <path
+          className="mark round"
+          d="M4 5 h0 M9 5 h0 M14 5 h0 M19 5 h0 M6.5 11 h0 M11.5 11 h0 M16.5 11 h0"
+        />
+      )}
       {look === 'field' && <path className="mark" d="M2 4.5 h6 M12 4.5 h6 M6 11 h6 M16 11 h5" />}
       {look === 'dose' && <rect className="rim" x="2" y="2" width="18" height="12" rx="1" />}
     </svg>

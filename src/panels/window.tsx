@@ -29,7 +29,8 @@ export function useSteady(): State {
   useEffect(() => {
     setState(api.getState());
     return api.subscribe((now, before) => {
-      if ((Object.keys(now) as (keyof State)[]).some((k) => k !== 'hover' && now[k] !== before[k])) setState(now);
+      if ((Object.keys(now) as (keyof State)[]).some((k) => k !== 'hover' && now[k] !== before[k]))
+        setState(now);
     });
   }, [api]);
   return state;

@@ -47,11 +47,17 @@ export function apply(project: Project, act: Act): Project {
       return withElements(project, (list) => list.filter((e) => !gone.has(e.id)));
     }
     case 'move-point':
-      return edit(project, act.id, (e) => withPoints(e, (p) => p.map((q, i) => (i === act.index ? { ...q, at: [...act.at] } : q))));
+      return edit(project, act.id, (e) =>
+        withPoints(e, (p) => p.map((q, i) => (i === act.index ? { ...q, at: [...act.at] } : q))),
+      );
     case 'add-point':
-      return edit(project, act.id, (e) => withPoints(e, (p) => [...p.slice(0, act.index), { at: [...act.at] }, ...p.slice(act.index)]));
+      return edit(project, act.id, (e) =>
+        withPoints(e, (p) => [...p.slice(0, act.index), { at: [...act.at] }, ...p.slice(act.index)]),
+      );
     case 'remove-point':
-      return edit(project, act.id, (e) => withPoints(e, (p) => (p.length > leastPoints(e) ? p.filter((_, i) => i !== act.index) : p)));
+      return edit(project, act.id, (e) =>
+        withPoints(e, (p) => (p.length > leastPoints(e) ? p.filter((_, i) => i !== act.index) : p)),
+      );
     case 'move-pad':
       return edit(project, act.id, (e) => (e.kind === 'pad' ? { ...e, at: [...act.at] } : e));
     case 'edit-element':
@@ -65,7 +71,11 @@ const leastPoints = (e: Element): number => (e.kind === 'region' ? 3 : 2);
 
 function withElements(project: Project, f: (list: Element[]) => Element[]): Project {
   const elements = f(project.circuit.elements);
-  if (elements.length === project.circuit.elements.length && elements.every((e, i) => e === project.circuit.elements[i])) return project;
+  if (
+    elements.length === project.circuit.elements.length &&
+    elements.every((e, i) => e === project.circuit.elements[i])
+  )
+    return project;
   return { ...project, circuit: { ...project.circuit, elements } };
 }
 
@@ -79,7 +89,9 @@ function withPoints(e: Element, f: (points: Place[]) => Place[]): Element {
   const points = e.kind === 'trace' ? e.route : e.outline;
   const after = f(points as Place[]);
   if (after === points) return e;
-  return e.kind === 'trace' ? { ...e, route: after as typeof e.route } : { ...e, outline: after as typeof e.outline };
+  return e.kind === 'trace'
+    ? { ...e, route: after as typeof e.route }
+    : { ...e, outline: after as typeof e.outline };
 }
 
 function setAt(node: unknown, path: readonly (string | number)[], value: unknown): unknown {

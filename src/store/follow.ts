@@ -13,7 +13,11 @@ export interface Follower {
 /** Time after which the copper laid so far is shown, ms; each further wait is twice as long. */
 const FIRST_LOOK = 500;
 
-export function createFollower(api: StoreApi<State>, worker: WorkerClient, fail: (error: unknown, doing: string) => void): Follower {
+export function createFollower(
+  api: StoreApi<State>,
+  worker: WorkerClient,
+  fail: (error: unknown, doing: string) => void,
+): Follower {
   let running: Promise<void> | null = null;
   let beyondDrape = false;
   /** Revision that was followed to its end, well or not. */

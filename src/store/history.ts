@@ -19,7 +19,13 @@ export const noHistory: History = { past: [], future: [] };
 /** Steps kept. Projects share all that did not change, so a step costs little. */
 const DEPTH = 500;
 
-export function record(h: History, name: string, before: Project, after: Project, gesture: string | null): History {
+export function record(
+  h: History,
+  name: string,
+  before: Project,
+  after: Project,
+  gesture: string | null,
+): History {
   if (before === after) return h;
   const last = h.past[h.past.length - 1];
   if (gesture !== null && last?.gesture === gesture)
@@ -30,7 +36,9 @@ export function record(h: History, name: string, before: Project, after: Project
 /** A finished gesture takes no more acts, even under the same name. */
 export const seal = (h: History): History => {
   const last = h.past[h.past.length - 1];
-  return last === undefined || last.gesture === null ? h : { ...h, past: [...h.past.slice(0, -1), { ...last, gesture: null }] };
+  return last === undefined || last.gesture === null
+    ? h
+    : { ...h, past: [...h.past.slice(0, -1), { ...last, gesture: null }] };
 };
 
 export function undo(h: History): { history: History; project: Project; step: Step } | null {

@@ -1,9 +1,10 @@
 /** Every margin of one element as a number, with its worst place. */
-import { REASONS, type Reason } from '../core/reach/result.ts';
+
 import type { Vec3 } from '../core/base/vec.ts';
 import type { Limits, Material } from '../core/project/schema.ts';
-import { heightAt } from './looks.ts';
+import { REASONS, type Reason } from '../core/reach/result.ts';
 import type { CopperPicture, PlanPicture, ReachPicture } from '../worker/pictures.ts';
+import { heightAt } from './looks.ts';
 
 export interface Margin {
   check: Reason;
@@ -53,20 +54,66 @@ export function marginsOf(
         continue;
       }
       const d = Math.abs(heightAt(copper, heights, t) - layer.focusHeight);
-      if (d / reach.usable[t] > share) [share, at, value, limit] = [d / reach.usable[t], t, d, reach.usable[t]];
+      if (d / reach.usable[t] > share)
+        [share, at, value, limit] = [d / reach.usable[t], t, d, reach.usable[t]];
     }
-    out.push({ check: 'focus', label: 'Out of focus by', ok, value, limit, unit: 'mm', share: Math.max(0, share), at });
+    out.push({
+      check: 'focus',
+      label: 'Out of focus by',
+      ok,
+      value,
+      limit,
+      unit: 'mm',
+      share: Math.max(0, share),
+      at,
+    });
   }
   const inc = worst((t) => reach.incidence[t]);
-  out.push({ check: 'incidence', label: 'Incidence', ok: !fails('incidence'), value: inc.value, limit: limits.maxIncidence, unit: '°', share: inc.value / limits.maxIncidence, at: inc.at });
+  out.push({
+    check: 'incidence',
+    label: 'Incidence',
+    ok: !fails('incidence'),
+    value: inc.value,
+    limit: limits.maxIncidence,
+    unit: '°',
+    share: inc.value / limits.maxIncidence,
+    at: inc.at,
+  });
   const shade = worst((t) => reach.blocked[t]);
   const most = limits.cone ? limits.maxBlocked : 0;
-  out.push({ check: 'shade', label: 'Beam blocked', ok: !fails('shade'), value: 100 * shade.value, limit: 100 * most, unit: '%', share: most > 0 ? shade.value / most : shade.value > 0 ? 2 : 0, at: shade.at });
+  out.push({
+    check: 'shade',
+    label: 'Beam blocked',
+    ok: !fails('shade'),
+    value: 100 * shade.value,
+    limit: 100 * most,
+    unit: '%',
+    share: most > 0 ? shade.value / most : shade.value > 0 ? 2 : 0,
+    at: shade.at,
+  });
   const field = worst((t) => reach.field[t]);
-  out.push({ check: 'field', label: 'Way to the field’s edge', ok: !fails('field'), value: 100 * field.value, limit: 100, unit: '%', share: field.value, at: field.at });
+  out.push({
+    check: 'field',
+    label: 'Way to the field’s edge',
+    ok: !fails('field'),
+    value: 100 * field.value,
+    limit: 100,
+    unit: '%',
+    share: field.value,
+    at: field.at,
+  });
   const need = material.activationFluence * material.doseMargin;
   const low = worst((t) => -reach.fluence[t]);
-  out.push({ check: 'dose', label: 'Least dose', ok: !fails('dose'), value: -low.value, limit: need, unit: 'J/cm²', share: need / -low.value, at: low.at });
+  out.push({
+    check: 'dose',
+    label: 'Least dose',
+    ok: !fails('dose'),
+    value: -low.value,
+    limit: need,
+    unit: 'J/cm²',
+    share: need / -low.value,
+    at: low.at,
+  });
   return out;
 }
 

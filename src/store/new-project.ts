@@ -43,7 +43,15 @@ export function newProject(partFile: string, bounds: readonly [Vec3, Vec3] | nul
       proof: { covered: 0.995, strayTolerance: 0.05, stray: 0.001 },
     },
     stage: { step: 0.01, range: [-30, 30], zMoves: 'stage' },
-    scan: { linePitch: 0.03, markSpeed: 800, jumpSpeed: 3000, jumpDelay_us: 300, markDelay_us: 150, stitch: 0.2, passes: 1 },
+    scan: {
+      linePitch: 0.03,
+      markSpeed: 800,
+      jumpSpeed: 3000,
+      jumpDelay_us: 300,
+      markDelay_us: 150,
+      stitch: 0.2,
+      passes: 1,
+    },
     copper: {
       thickness_um: 3,
       depositFactor: 1.2,
@@ -54,7 +62,12 @@ export function newProject(partFile: string, bounds: readonly [Vec3, Vec3] | nul
       temperatureRise: 10,
       density: 8.89,
     },
-    setups: [{ name: 'top', pose: { rotate: [0, 0, 0, 1], move: [round(middle(0)), round(middle(1)), round(middle(2))] } }],
+    setups: [
+      {
+        name: 'top',
+        pose: { rotate: [0, 0, 0, 1], move: [round(middle(0)), round(middle(1)), round(middle(2))] },
+      },
+    ],
     circuit: { elements: [], drapes: [] },
   };
 }

@@ -1,7 +1,7 @@
 /** The window's whole state: the document, what was derived from it, and what the person is doing. */
 import type { Vec3 } from '../core/base/vec.ts';
-import type { PadShape, Project } from '../core/project/schema.ts';
 import type { Report } from '../core/project/report.ts';
+import type { PadShape, Project } from '../core/project/schema.ts';
 import type { CopperPicture, PartPicture, PlanPicture, Probe, ReachPicture } from '../worker/pictures.ts';
 import { type History, noHistory } from './history.ts';
 import type { Show } from './looks.ts';
@@ -125,8 +125,13 @@ export const firstState: State = {
 export const isUnsaved = (s: State): boolean => s.project !== null && s.project !== s.origin.saved;
 
 /** Reach and plan that belong to the copper now shown; late ones count as none. */
-export function current(s: State): { copper: CopperPicture | null; reach: ReachPicture | null; plan: PlanPicture | null } {
+export function current(s: State): {
+  copper: CopperPicture | null;
+  reach: ReachPicture | null;
+  plan: PlanPicture | null;
+} {
   const copper = s.copper?.value ?? null;
-  const fits = <T>(d: Derived<T[]> | null): T | null => (d && s.copper && d.revision === s.copper.revision ? (d.value[s.setup] ?? null) : null);
+  const fits = <T>(d: Derived<T[]> | null): T | null =>
+    d && s.copper && d.revision === s.copper.revision ? (d.value[s.setup] ?? null) : null;
   return { copper, reach: fits(s.reach), plan: fits(s.plan) };
 }

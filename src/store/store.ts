@@ -1,9 +1,9 @@
 /** The store: state, acts with undo, drawing, and the derived results that follow the document. No React here. */
-import { createStore as zustandStore, type StoreApi } from 'zustand/vanilla';
+import { type StoreApi, createStore as zustandStore } from 'zustand/vanilla';
 import type { Vec3 } from '../core/base/vec.ts';
 import type { Element, Project, Setup } from '../core/project/schema.ts';
-import type { PartPicture, Probe } from '../worker/pictures.ts';
 import { type WorkerClient, WorkFailure, wasStopped } from '../worker/client.ts';
+import type { PartPicture, Probe } from '../worker/pictures.ts';
 import type { Ray } from '../worker/session.ts';
 import { type Act, apply, freeId, nameOf } from './document.ts';
 import { createFollower } from './follow.ts';
@@ -36,12 +36,20 @@ export function createStore(workers: Workers) {
   function fail(error: unknown, doing: string): void {
     if (wasStopped(error)) return;
     if (error instanceof WorkFailure && error.failure.kind === 'input') {
-      for (const p of error.failure.problems.slice(0, 4)) notify('problem', `${p.file}${p.place ? `, ${p.place}` : ''}: ${p.problem}`, p.mend);
+      for (const p of error.failure.problems.slice(0, 4))
+        notify('problem', `${p.file}${p.place ? `, ${p.place}` : ''}: ${p.problem}`, p.mend);
       return;
     }
     const news = (error as { news?: { problem: string; mend: string } }).news;
-    if (news) return notify('problem', news.problem, news.mend);
-    notify('fault', `${doing} failed by a mistake of this program: ${(error as Error).message}`, 'your work is kept; save it under another name');
+    if (news) {
+      notify('problem', news.problem, news.mend);
+      return;
+    }
+    notify(
+      'fault',
+      `${doing} failed by a mistake of this program: ${(error as Error).message}`,
+      'your work is kept; save it under another name',
+    );
   }
 
   /** The document after an act. `gesture` joins the acts of one drag into one step. */
@@ -83,7 +91,10 @@ export function createStore(workers: Workers) {
     const argument = { bytes, file: project.part.file, units: project.part.units };
     const done = busy('Reading the part');
     try {
-      const [picture] = await Promise.all([workers.heavy.call('openPart', argument, done.hear), workers.live.call('openPart', argument)]);
+      const [picture] = await Promise.all([
+        workers.heavy.call('openPart', argument, done.hear),
+        workers.live.call('openPart', argument),
+      ]);
       return picture;
     } finally {
       done.end();
@@ -94,7 +105,8 @@ export function createStore(workers: Workers) {
     const mine = { what, share: null, since: performance.now() };
     set({ busy: mine });
     return {
-      hear: (p: { done: number; of: number }) => set({ busy: { ...mine, share: p.of > 0 ? p.done / p.of : null } }),
+      hear: (p: { done: number; of: number }) =>
+        set({ busy: { ...mine, share: p.of > 0 ? p.done / p.of : null } }),
       end: () => set((s) => (s.busy?.since === mine.since ? { busy: null } : s)),
     };
   }
@@ -131,7 +143,10 @@ export function createStore(workers: Workers) {
   }
 
   function setTool(kind: Tool['kind']): void {
-    set({ tool: kind === 'trace' ? { kind, route: [], runs: [], live: null } : { kind }, selection: kind === 'look' ? get().selection : [] });
+    set({
+      tool: kind === 'trace' ? { kind, route: [], runs: [], live: null } : { kind },
+      selection: kind === 'look' ? get().selection : [],
+    });
   }
 
   // --- drawing ---------------------------------------------------------------------------------
@@ -187,7 +202,10 @@ export function createStore(workers: Workers) {
 
   function hoverAt(probe: Probe | null): void {
     const { copper } = current(get());
-    if (!probe) return set({ hover: null });
+    if (!probe) {
+      set({ hover: null });
+      return;
+    }
     const triangle = copper ? copperAt(copper, probe.face, probe.point) : -1;
     set({ hover: { probe, triangle, element: triangle < 0 ? -1 : copper!.element[triangle]! } });
   }
@@ -226,14 +244,31 @@ export function createStore(workers: Workers) {
       const hit = get().hover;
       const element = hit && hit.element >= 0 ? s.copper?.value.elements[hit.element] : undefined;
       if (!element) return add ? undefined : select([]);
-      if (add) return select(s.selection.includes(element.id) ? s.selection.filter((id) => id !== element.id) : [...s.selection, element.id]);
-      if (s.selection.length === 1 && s.selection[0] === element.id && element.kind === 'trace' && element.path)
+      if (add)
+        return select(
+          s.selection.includes(element.id)
+            ? s.selection.filter((id) => id !== element.id)
+            : [...s.selection, element.id],
+        );
+      if (
+        s.selection.length === 1 &&
+        s.selection[0] === element.id &&
+        element.kind === 'trace' &&
+        element.path
+      )
         return insertPoint(element.id, element.path, probe!.point);
       return select([element.id]);
     }
     if (!probe) return;
     if (s.tool.kind === 'pad') {
-      const element: Element = { id: freeId(s.project, 'p'), kind: 'pad', net: s.pen.net, at: round3(probe.point), shape: s.pen.shape, turn: 0 };
+      const element: Element = {
+        id: freeId(s.project, 'p'),
+        kind: 'pad',
+        net: s.pen.net,
+        at: round3(probe.point),
+        shape: s.pen.shape,
+        turn: 0,
+      };
       act({ kind: 'add-element', element });
       return;
     }
@@ -247,10 +282,20 @@ export function createStore(workers: Workers) {
     if (!last) return set({ tool: { ...tool, route: [round3(to)], live: null } });
     if (Math.hypot(last[0] - to[0], last[1] - to[1], last[2] - to[2]) < SAME_PLACE) return;
     const known = tool.live && tool.live.to === to ? tool.live : null;
-    const run = known ?? (await workers.live.call('run', { from: last, to }).catch((error) => (fail(error, 'Finding the way'), null)));
+    const run =
+      known ??
+      (await workers.live.call('run', { from: last, to }).catch((error: unknown) => {
+        fail(error, 'Finding the way');
+        return null;
+      }));
     const now = get().tool;
     if (!run || now.kind !== 'trace' || now.route !== tool.route) return;
-    if (!run.points) return notify('problem', 'There is no way over the surface to this place', 'choose a place on the same piece of the part');
+    if (!run.points)
+      return notify(
+        'problem',
+        'There is no way over the surface to this place',
+        'choose a place on the same piece of the part',
+      );
     set({ tool: { ...now, route: [...now.route, round3(to)], runs: [...now.runs, run.points], live: null } });
   }
 
@@ -325,7 +370,9 @@ export function createStore(workers: Workers) {
           const round = e.kind === 'region';
           const before = points[index - 1] ?? (round ? points[points.length - 1] : undefined);
           const after = points[index + 1] ?? (round ? points[0] : undefined);
-          const runs = await Promise.all([before, after].flatMap((p) => (p ? [workers.live.call('run', { from: p, to: at })] : [])));
+          const runs = await Promise.all(
+            [before, after].flatMap((p) => (p ? [workers.live.call('run', { from: p, to: at })] : [])),
+          );
           set({ preview: runs.flatMap((r) => (r.points ? [r.points] : [])) });
         }
       }
@@ -378,7 +425,8 @@ export function createStore(workers: Workers) {
     isolate(layer: number | null) {
       const s = get();
       const { plan } = current(s);
-      if (layer === null || s.isolated === layer || !plan?.layers[layer]) set({ isolated: null, show: 'layers' });
+      if (layer === null || s.isolated === layer || !plan?.layers[layer])
+        set({ isolated: null, show: 'layers' });
       else set({ isolated: layer, offset: -plan.layers[layer].focusHeight, show: 'layers' });
     },
     /** Puts a layer at a height chosen by hand; the project keeps all heights of the setup from then on. */
@@ -386,19 +434,34 @@ export function createStore(workers: Workers) {
       const s = get();
       const { plan } = current(s);
       if (!plan || !s.project || s.project.setups === 'auto') return;
-      const heights = [...(s.project.setups[s.setup]?.focusHeights ?? plan.layers.map((l) => l.focusHeight))].sort((a, b) => a - b);
+      const heights = [
+        ...(s.project.setups[s.setup]?.focusHeights ?? plan.layers.map((l) => l.focusHeight)),
+      ].sort((a, b) => a - b);
       const old = heights[layer];
       if (old === undefined) return;
       // Layers are numbered from below: one does not pass its neighbour, and so keeps its number.
       const least = Math.max(s.project.stage.step, 0.01);
       const [below, above] = [heights[layer - 1] ?? -Infinity, heights[layer + 1] ?? Infinity];
       heights[layer] = Math.round(Math.max(below + least, Math.min(above - least, height)) * 1e4) / 1e4;
-      act({ kind: 'set', path: ['setups', s.setup, 'focusHeights'], what: `height of layer ${layer + 1}`, value: heights }, gesture);
+      act(
+        {
+          kind: 'set',
+          path: ['setups', s.setup, 'focusHeights'],
+          what: `height of layer ${layer + 1}`,
+          value: heights,
+        },
+        gesture,
+      );
     },
     /** Lets the planner choose the heights again. */
     fewest() {
       const s = get();
-      act({ kind: 'set', path: ['setups', s.setup, 'focusHeights'], what: 'layers to the fewest', value: undefined });
+      act({
+        kind: 'set',
+        path: ['setups', s.setup, 'focusHeights'],
+        what: 'layers to the fewest',
+        value: undefined,
+      });
     },
     point,
     press: (ray: Ray, snap: number, add: boolean) => inTurn(() => press(ray, snap, add)),
@@ -408,12 +471,29 @@ export function createStore(workers: Workers) {
     drag,
     endDrag,
     /** Opens a project text. The part's bytes may be missing: then the project is shown without it. */
-    async openProject(text: string, name: string, ref: string | null, part: { ref: string | null; bytes: Uint8Array } | null, saved = true): Promise<boolean> {
+    async openProject(
+      text: string,
+      name: string,
+      ref: string | null,
+      part: { ref: string | null; bytes: Uint8Array } | null,
+      saved = true,
+    ): Promise<boolean> {
       try {
         const { project, unknown } = await workers.heavy.call('readProject', { text, file: name });
-        const origin: Origin = { ref, name, text: saved ? text : null, saved: saved ? project : null, partRef: part?.ref ?? null, partBytes: null };
+        const origin: Origin = {
+          ref,
+          name,
+          text: saved ? text : null,
+          saved: saved ? project : null,
+          partRef: part?.ref ?? null,
+          partBytes: null,
+        };
         const shown = await show(project, origin, part?.bytes ?? null);
-        if (shown && unknown.length > 0) notify('done', `Fields that this program does not know are kept: ${unknown.slice(0, 5).join(', ')}`);
+        if (shown && unknown.length > 0)
+          notify(
+            'done',
+            `Fields that this program does not know are kept: ${unknown.slice(0, 5).join(', ')}`,
+          );
         return shown;
       } catch (error) {
         fail(error, 'Opening');
@@ -421,9 +501,19 @@ export function createStore(workers: Workers) {
       }
     },
     /** A new project on a part. */
-    async openPart(name: string, part: { file: string; ref: string | null; bytes: Uint8Array }): Promise<boolean> {
+    async openPart(
+      name: string,
+      part: { file: string; ref: string | null; bytes: Uint8Array },
+    ): Promise<boolean> {
       const empty = newProject(part.file, null);
-      const origin: Origin = { ref: null, name: `${empty.name}.drape.json`, text: null, saved: null, partRef: part.ref, partBytes: null };
+      const origin: Origin = {
+        ref: null,
+        name: `${empty.name}.drape.json`,
+        text: null,
+        saved: null,
+        partRef: part.ref,
+        partBytes: null,
+      };
       const mine = opening + 1;
       if (!(await show(empty, { ...origin, name: origin.name || name }, part.bytes))) return false;
       const bounds = get().part?.bounds;
@@ -457,7 +547,11 @@ export function createStore(workers: Workers) {
       try {
         return await workers.heavy.call(
           'exportFiles',
-          { projectFile: s.origin.name, projectText, part: { file: s.project.part.file, bytes: s.origin.partBytes } },
+          {
+            projectFile: s.origin.name,
+            projectText,
+            part: { file: s.project.part.file, bytes: s.origin.partBytes },
+          },
           done.hear,
         );
       } finally {
@@ -474,7 +568,9 @@ export function createStore(workers: Workers) {
 const SAME_PLACE = 0.02;
 
 export const setupsOf = (project: Project): Setup[] =>
-  project.setups === 'auto' ? [{ name: 'auto', pose: { rotate: [0, 0, 0, 1], move: [0, 0, 0] } }] : project.setups;
+  project.setups === 'auto'
+    ? [{ name: 'auto', pose: { rotate: [0, 0, 0, 1], move: [0, 0, 0] } }]
+    : project.setups;
 
 const round3 = (p: Vec3): [number, number, number] => [r(p[0]), r(p[1]), r(p[2])];
 /** To 0.1 µm: far below what a bench can hold, and project files stay readable. */

@@ -14,7 +14,11 @@ export function turned(pose: Pose, axis: number, degrees: number): Pose {
     y + w * t[1] + c * t[0] - a * t[2],
     z + w * t[2] + a * t[1] - b * t[0],
   ];
-  return { ...pose, rotate: rounded(times(q, pose.rotate)), move: move.map((v) => Math.round(v * 1e6) / 1e6 + 0) as unknown as Pose['move'] };
+  return {
+    ...pose,
+    rotate: rounded(times(q, pose.rotate)),
+    move: move.map((v) => Math.round(v * 1e6) / 1e6 + 0) as unknown as Pose['move'],
+  };
 }
 
 type Quaternion = readonly [number, number, number, number];

@@ -3,7 +3,21 @@
 export type Quantity = 'length' | 'angle' | 'plain';
 
 const FACTORS: Record<Quantity, Record<string, number>> = {
-  length: { '': 1, mm: 1, cm: 10, m: 1000, um: 1e-3, 'µm': 1e-3, 'μm': 1e-3, nm: 1e-6, in: 25.4, inch: 25.4, '"': 25.4, mil: 0.0254, thou: 0.0254 },
+  length: {
+    '': 1,
+    mm: 1,
+    cm: 10,
+    m: 1000,
+    um: 1e-3,
+    µm: 1e-3,
+    μm: 1e-3,
+    nm: 1e-6,
+    in: 25.4,
+    inch: 25.4,
+    '"': 25.4,
+    mil: 0.0254,
+    thou: 0.0254,
+  },
   angle: { '': 1, deg: 1, '°': 1, rad: 180 / Math.PI },
   plain: { '': 1 },
 };
@@ -21,8 +35,13 @@ export function readNumber(text: string, quantity: Quantity, own = ''): Typed {
   const unit = match[2]!;
   const factor = unit === own ? 1 : (FACTORS[quantity][unit] ?? FACTORS[quantity][unit.toLowerCase()]);
   if (factor === undefined) {
-    const known = [own, ...Object.keys(FACTORS[quantity])].filter((u) => u !== '' && !/[μ"]|inch|thou/.test(u));
-    return { problem: `"${unit}" is no unit for this` + (known.length ? `; use ${[...new Set(known)].join(', ')}` : '') };
+    const known = [own, ...Object.keys(FACTORS[quantity])].filter(
+      (u) => u !== '' && !/[μ"]|inch|thou/.test(u),
+    );
+    return {
+      problem:
+        `"${unit}" is no unit for this` + (known.length ? `; use ${[...new Set(known)].join(', ')}` : ''),
+    };
   }
   // Short decimals stay short: 0.02 in is 0.508 mm, not 0.5079999999999999.
   return { value: Number((number * factor).toPrecision(12)) };
@@ -31,7 +50,10 @@ export function readNumber(text: string, quantity: Quantity, own = ''): Typed {
 /** A number for reading: at most `digits` decimals, no trailing zeros, a true minus sign. */
 export function show(value: number, digits = 2): string {
   if (!Number.isFinite(value)) return '–';
-  const text = value.toFixed(digits).replace(/(\.\d*?)0+$/, '$1').replace(/\.$/, '');
+  const text = value
+    .toFixed(digits)
+    .replace(/(\.\d*?)0+$/, '$1')
+    .replace(/\.$/, '');
   return (text === '-0' ? '0' : text).replace('-', '−');
 }
 

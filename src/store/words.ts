@@ -27,17 +27,29 @@ interface Overview {
   lost: number;
 }
 
-const known = new WeakMap<CopperPicture, { setup: number; reach: ReachPicture | null; plan: PlanPicture | null; value: Overview }>();
+const known = new WeakMap<
+  CopperPicture,
+  { setup: number; reach: ReachPicture | null; plan: PlanPicture | null; value: Overview }
+>();
 
 /** Sums over all copper as planned; worked out once for each result. */
-export function overview(copper: CopperPicture, setup: number, reach: ReachPicture | null, plan: PlanPicture | null): Overview {
+export function overview(
+  copper: CopperPicture,
+  setup: number,
+  reach: ReachPicture | null,
+  plan: PlanPicture | null,
+): Overview {
   const before = known.get(copper);
   if (before && before.setup === setup && before.reach === reach && before.plan === plan) return before.value;
   let lost = 0;
   if (plan) for (let t = 0; t < copper.area.length; t++) if (plan.layerOf[t] === -1) lost += copper.area[t];
   let steep = 0;
   if (reach) for (const a of reach.incidence) steep = Math.max(steep, a);
-  const value = { counts: countLooks(copper, setup, reach, plan, { show: 'layers', offset: 0, depth: 0 }), steep, lost };
+  const value = {
+    counts: countLooks(copper, setup, reach, plan, { show: 'layers', offset: 0, depth: 0 }),
+    steep,
+    lost,
+  };
   known.set(copper, { setup, reach, plan, value });
   return value;
 }
@@ -46,7 +58,14 @@ export function stepWords(s: State): Record<StepName, StepWords> {
   const { project, part } = s;
   const none: StepWords = { words: 'Nothing yet', mark: 'open' };
   if (!project)
-    return { part: { words: 'Open a part or a project', mark: 'open' }, circuit: none, head: none, reach: none, heights: none, files: none };
+    return {
+      part: { words: 'Open a part or a project', mark: 'open' },
+      circuit: none,
+      head: none,
+      reach: none,
+      heights: none,
+      files: none,
+    };
   const { copper, reach, plan } = current(s);
   const elements = project.circuit.elements;
   const count = (kind: string, word: string) => {
@@ -56,19 +75,25 @@ export function stepWords(s: State): Record<StepName, StepWords> {
   const drawn = [...count('trace', 'trace'), ...count('pad', 'pad'), ...count('region', 'region')];
   const troubles = (copper?.problems.length ?? 0) + (copper?.findings.length ?? 0);
 
-  const size = part ? [0, 1, 2].map((k) => show(part.bounds[1][k as 0] - part.bounds[0][k as 0], 1)).join(' × ') + ' mm' : '';
+  const size = part
+    ? [0, 1, 2].map((k) => show(part.bounds[1][k as 0] - part.bounds[0][k as 0], 1)).join(' × ') + ' mm'
+    : '';
   const mended = part ? part.mended.degenerate + part.mended.duplicate + part.mended.flipped : 0;
   return {
     part: part
       ? {
-          words: size + (part.closed ? '' : ', open surface') + (mended > 0 ? `, ${mended} facets mended` : ''),
+          words:
+            size + (part.closed ? '' : ', open surface') + (mended > 0 ? `, ${mended} facets mended` : ''),
           mark: part.closed && part.mended.nonManifoldEdges === 0 ? 'good' : 'look',
         }
       : { words: 'The part is missing', mark: 'look' },
     circuit:
       drawn.length === 0
         ? { words: 'Nothing drawn yet', mark: 'open' }
-        : { words: drawn.join(', ') + (troubles ? `; ${troubles} cannot be laid` : ''), mark: troubles ? 'look' : 'good' },
+        : {
+            words: drawn.join(', ') + (troubles ? `; ${troubles} cannot be laid` : ''),
+            mark: troubles ? 'look' : 'good',
+          },
     head: {
       words: `${show(project.head.focalLength, 1)} mm lens, field ${show(project.head.field[0], 0)} × ${show(project.head.field[1], 0)} mm`,
       mark: 'good',
@@ -86,12 +111,15 @@ export function stepWords(s: State): Record<StepName, StepWords> {
   };
 
   function reachWords(): StepWords {
-    if (!copper || !reach || copper.area.length === 0) return { words: elements.length ? 'Not looked yet' : 'Nothing yet', mark: 'open' };
+    if (!copper || !reach || copper.area.length === 0)
+      return { words: elements.length ? 'Not looked yet' : 'Nothing yet', mark: 'open' };
     const { counts, steep } = overview(copper, s.setup, reach, plan);
     const steepest = show(steep, 0);
     const bad = REASONS.filter((r) => r !== 'focus' && counts[r].elements.length > 0);
     if (bad.length === 0) return { words: `All reached, steepest ${steepest}°`, mark: 'good' };
-    const told = bad.map((r) => `${counts[r].elements.length} ${REASON_WORDS[r][counts[r].elements.length === 1 ? 0 : 1]}`);
+    const told = bad.map(
+      (r) => `${counts[r].elements.length} ${REASON_WORDS[r][counts[r].elements.length === 1 ? 0 : 1]}`,
+    );
     return { words: `${told.join(', ')}; steepest ${steepest}°`, mark: 'look' };
   }
 
@@ -108,6 +136,9 @@ export function stepWords(s: State): Record<StepName, StepWords> {
     const proof = e.report.proof;
     return e.report.ok
       ? { words: `${e.files} files written, proof holds`, mark: 'good' }
-      : { words: `${e.files} files written; ${proof && !proof.ok ? 'the proof fails' : 'a check fails'}`, mark: 'look' };
+      : {
+          words: `${e.files} files written; ${proof && !proof.ok ? 'the proof fails' : 'a check fails'}`,
+          mark: 'look',
+        };
   }
 }

@@ -33,7 +33,10 @@ export function orbited(eye: Eye, dx: number, dy: number): Eye {
 export function panned(eye: Eye, dx: number, dy: number, height: number): Eye {
   const { right, up } = axesOf(eye);
   const k = (2 * eye.half) / height;
-  return { ...eye, target: [0, 1, 2].map((i) => eye.target[i]! - right[i]! * dx * k + up[i]! * dy * k) as unknown as Vec3 };
+  return {
+    ...eye,
+    target: [0, 1, 2].map((i) => eye.target[i]! - right[i]! * dx * k + up[i]! * dy * k) as unknown as Vec3,
+  };
 }
 
 /** Zooms so that what lies under the pointer stays there. @param x,y  -1 … 1 from the middle, y up */
@@ -41,7 +44,13 @@ export function zoomed(eye: Eye, factor: number, x: number, y: number, aspect: n
   const half = Math.max(0.05, Math.min(5000, eye.half * factor));
   const { right, up } = axesOf(eye);
   const d = eye.half - half;
-  return { ...eye, half, target: [0, 1, 2].map((i) => eye.target[i]! + right[i]! * x * aspect * d + up[i]! * y * d) as unknown as Vec3 };
+  return {
+    ...eye,
+    half,
+    target: [0, 1, 2].map(
+      (i) => eye.target[i]! + right[i]! * x * aspect * d + up[i]! * y * d,
+    ) as unknown as Vec3,
+  };
 }
 
 /** Shows a ball. */
@@ -75,11 +84,19 @@ export function lookingAt(eye: Eye, place: Vec3, normal: Vec3): Eye {
 }
 
 /** Ray through a place of the viewport. */
-export function rayThrough(eye: Eye, x: number, y: number, aspect: number, far: number): { origin: Vec3; direction: Vec3 } {
+export function rayThrough(
+  eye: Eye,
+  x: number,
+  y: number,
+  aspect: number,
+  far: number,
+): { origin: Vec3; direction: Vec3 } {
   const { right, up, back } = axesOf(eye);
   const [a, b] = [x * eye.half * aspect, y * eye.half];
   return {
-    origin: [0, 1, 2].map((i) => eye.target[i]! + right[i]! * a + up[i]! * b + back[i]! * far) as unknown as Vec3,
+    origin: [0, 1, 2].map(
+      (i) => eye.target[i]! + right[i]! * a + up[i]! * b + back[i]! * far,
+    ) as unknown as Vec3,
     direction: [-back[0], -back[1], -back[2]],
   };
 }

@@ -24,7 +24,11 @@ export function partMaterial(): ShaderMaterial {
     polygonOffset: true,
     polygonOffsetFactor: 1,
     polygonOffsetUnits: 2,
-    uniforms: { uColor: { value: new Color() }, uCut: { value: new Vector4(0, 0, 0, 1) }, uInside: { value: new Color('#8a8378') } },
+    uniforms: {
+      uColor: { value: new Color() },
+      uCut: { value: new Vector4(0, 0, 0, 1) },
+      uInside: { value: new Color('#8a8378') },
+    },
     vertexShader: /* glsl */ `
       varying vec3 vNormal;
       varying vec3 vUp;

@@ -47,7 +47,13 @@ export function createScene(canvas: HTMLCanvasElement) {
   const partEdges = new LineSegments(new BufferGeometry(), edgeMat);
   const copperMesh = new Mesh(new BufferGeometry(), copperMat);
   const fat = (width: number, depthTest = true) =>
-    new LineMaterial({ linewidth: width, depthTest, polygonOffset: true, polygonOffsetFactor: 0, polygonOffsetUnits: -2500 });
+    new LineMaterial({
+      linewidth: width,
+      depthTest,
+      polygonOffset: true,
+      polygonOffsetFactor: 0,
+      polygonOffsetUnits: -2500,
+    });
   const rimMat = surfaceLineMaterial();
   const outlines = new LineSegments(new BufferGeometry(), rimMat);
   const doseLines = new LineSegments2(new LineSegmentsGeometry(), fat(3));
@@ -65,11 +71,21 @@ export function createScene(canvas: HTMLCanvasElement) {
   const bench = new Group();
   const squareMat = new LineBasicMaterial();
   const square = new LineSegments(new BufferGeometry(), squareMat);
-  const planeMat = new MeshBasicMaterial({ transparent: true, opacity: 0.09, side: DoubleSide, depthWrite: false });
+  const planeMat = new MeshBasicMaterial({
+    transparent: true,
+    opacity: 0.09,
+    side: DoubleSide,
+    depthWrite: false,
+  });
   const plane = new Mesh(new PlaneGeometry(1, 1), planeMat);
   const lensMat = new LineBasicMaterial({ transparent: true, opacity: 0.9 });
   const lens = new LineSegments(new BufferGeometry(), lensMat);
-  const glassMat = new MeshBasicMaterial({ transparent: true, opacity: 0.12, side: DoubleSide, depthWrite: false });
+  const glassMat = new MeshBasicMaterial({
+    transparent: true,
+    opacity: 0.12,
+    side: DoubleSide,
+    depthWrite: false,
+  });
   const glass = new Mesh(new BufferGeometry(), glassMat);
   bench.add(square, plane, lens, glass);
   scene.add(bench, beam);
@@ -115,12 +131,18 @@ export function createScene(canvas: HTMLCanvasElement) {
     g.setIndex(new BufferAttribute(copper.corners, 1));
     const n = copper.positions.length / 3;
     g.setAttribute('aHeight', new BufferAttribute(copper.heights[setup] ?? copper.heights[0]!, 1));
-    for (const name of ['aUsable', 'aFails', 'aLayer']) g.setAttribute(name, new BufferAttribute(new Float32Array(n), 1));
+    for (const name of ['aUsable', 'aFails', 'aLayer'])
+      g.setAttribute(name, new BufferAttribute(new Float32Array(n), 1));
     copperMesh.geometry = g;
     setRims(segmentsOf(copper.elements.flatMap((e) => e.outline)));
   }
 
-  function setReach(copper: CopperPicture, reach: ReachPicture | null, plan: PlanPicture | null, depth: number): void {
+  function setReach(
+    copper: CopperPicture,
+    reach: ReachPicture | null,
+    plan: PlanPicture | null,
+    depth: number,
+  ): void {
     const g = copperMesh.geometry;
     const spread = (name: string, value: (t: number) => number) => {
       const a = g.getAttribute(name) as BufferAttribute | undefined;
@@ -138,13 +160,21 @@ export function createScene(canvas: HTMLCanvasElement) {
     spread('aUsable', reach ? (t) => reach.usable[t]! : () => depth);
     spread('aFails', reach ? (t) => reach.fails[t]! : () => 0);
     spread('aLayer', plan ? (t) => plan.layerOf[t]! : () => 0);
-    const doses = reach ? copper.elements.filter((e) => reach.fails.subarray(e.first, e.first + e.count).some((f) => (f & 16) !== 0)) : [];
+    const doses = reach
+      ? copper.elements.filter((e) =>
+          reach.fails.subarray(e.first, e.first + e.count).some((f) => (f & 16) !== 0),
+        )
+      : [];
     setSegments(doseLines, segmentsOf(doses.flatMap((e) => e.outline)));
   }
 
   function setPose(setup: Setup): void {
     const [x, y, z, w] = setup.pose.rotate;
-    part.matrix.compose(new Vector3(...setup.pose.move), new Quaternion(x, y, z, w).normalize(), new Vector3(1, 1, 1));
+    part.matrix.compose(
+      new Vector3(...setup.pose.move),
+      new Quaternion(x, y, z, w).normalize(),
+      new Vector3(1, 1, 1),
+    );
     part.matrixWorldNeedsUpdate = true;
   }
 
@@ -153,13 +183,24 @@ export function createScene(canvas: HTMLCanvasElement) {
     const t = Math.min(fx, fy) * 0.06;
     // The square, a cross on the axis, and an arrow along +X and +Y so that a mirrored field is seen at once.
     const lines = [
-      [-fx, -fy, fx, -fy], [fx, -fy, fx, fy], [fx, fy, -fx, fy], [-fx, fy, -fx, -fy],
-      [-t, 0, t, 0], [0, -t, 0, t],
-      [fx, 0, fx + 2 * t, 0], [fx + 2 * t, 0, fx + t, t / 2], [fx + 2 * t, 0, fx + t, -t / 2],
-      [0, fy, 0, fy + t], [0, fy + t, t / 2, fy + t / 2], [0, fy + t, -t / 2, fy + t / 2],
+      [-fx, -fy, fx, -fy],
+      [fx, -fy, fx, fy],
+      [fx, fy, -fx, fy],
+      [-fx, fy, -fx, -fy],
+      [-t, 0, t, 0],
+      [0, -t, 0, t],
+      [fx, 0, fx + 2 * t, 0],
+      [fx + 2 * t, 0, fx + t, t / 2],
+      [fx + 2 * t, 0, fx + t, -t / 2],
+      [0, fy, 0, fy + t],
+      [0, fy + t, t / 2, fy + t / 2],
+      [0, fy + t, -t / 2, fy + t / 2],
     ];
     square.geometry.dispose();
-    square.geometry = geometryOf(Float32Array.from(lines.flatMap(([a, b, c, d]) => [a!, b!, 0, c!, d!, 0])), null);
+    square.geometry = geometryOf(
+      Float32Array.from(lines.flatMap(([a, b, c, d]) => [a!, b!, 0, c!, d!, 0])),
+      null,
+    );
     plane.scale.set(head.field[0], head.field[1], 1);
     const body = new CylinderGeometry(head.bodyDiameter / 2, head.bodyDiameter / 2, 40, 48, 1, true);
     body.applyMatrix4(new Matrix4().makeRotationX(Math.PI / 2)).translate(0, 0, head.workingDistance + 20);
@@ -170,11 +211,19 @@ export function createScene(canvas: HTMLCanvasElement) {
   }
 
   /** @param look  what to show of the bench */
-  function setView(look: { offset: number; atOffset: boolean; alone: number; plane: boolean; lens: boolean; cut: [number, number, number, number] | null }): void {
+  function setView(look: {
+    offset: number;
+    atOffset: boolean;
+    alone: number;
+    plane: boolean;
+    lens: boolean;
+    cut: [number, number, number, number] | null;
+  }): void {
     copperMat.uniforms['uOffset']!.value = look.offset;
     copperMat.uniforms['uAtOffset']!.value = look.atOffset ? 1 : 0;
     copperMat.uniforms['uAlone']!.value = look.alone;
-    for (const m of [copperMat, partMat, rimMat]) m.uniforms['uCut']!.value.set(...(look.cut ?? [0, 0, 0, 1]));
+    for (const m of [copperMat, partMat, rimMat])
+      m.uniforms['uCut']!.value.set(...(look.cut ?? [0, 0, 0, 1]));
     bench.position.z = -look.offset;
     square.visible = plane.visible = look.plane;
     lens.visible = glass.visible = look.lens;
@@ -212,9 +261,14 @@ export function createScene(canvas: HTMLCanvasElement) {
     const { right, up, back } = axesOf(eye);
     const m = new Matrix4().makeBasis(new Vector3(...right), new Vector3(...up), new Vector3(...back));
     camera.quaternion.setFromRotationMatrix(m);
-    camera.position.set(eye.target[0] + back[0] * FAR, eye.target[1] + back[1] * FAR, eye.target[2] + back[2] * FAR);
+    camera.position.set(
+      eye.target[0] + back[0] * FAR,
+      eye.target[1] + back[1] * FAR,
+      eye.target[2] + back[2] * FAR,
+    );
     camera.updateProjectionMatrix();
-    for (const l of [doseLines, chosen, live, beam]) (l.material as LineMaterial).resolution.set(width, height);
+    for (const l of [doseLines, chosen, live, beam])
+      (l.material as LineMaterial).resolution.set(width, height);
     renderer.render(scene, camera);
   }
 
@@ -230,7 +284,8 @@ export function createScene(canvas: HTMLCanvasElement) {
     setChosen: (loops: readonly Float32Array[]) => setSegments(chosen, segmentsOf(loops)),
     setLive: (runs: readonly Float32Array[]) => setSegments(live, segmentsOf(runs)),
     /** The beam to a place, bench frame, or nothing. */
-    setBeam: (from: Vec3 | null, to: Vec3 | null) => setSegments(beam, from && to ? Float32Array.of(...from, ...to) : new Float32Array(0)),
+    setBeam: (from: Vec3 | null, to: Vec3 | null) =>
+      setSegments(beam, from && to ? Float32Array.of(...from, ...to) : new Float32Array(0)),
     draw,
     dispose: () => renderer.dispose(),
   };
@@ -241,7 +296,6 @@ function segmentsOf(lines: readonly Float32Array[]): Float32Array {
   const total = lines.reduce((n, l) => n + Math.max(0, l.length / 3 - 1), 0);
   const out = new Float32Array(6 * total);
   let o = 0;
-  for (const l of lines)
-    for (let i = 0; i + 5 < l.length; i += 3, o += 6) out.set(l.subarray(i, i + 6), o);
+  for (const l of lines) for (let i = 0; i + 5 < l.length; i += 3, o += 6) out.set(l.subarray(i, i + 6), o);
   return out;
 }

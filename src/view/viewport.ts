@@ -1,11 +1,24 @@
 /** The viewport: draws the store, and turns mouse and keys into acts. Draws only when something changed. */
-import { poseFrame } from '../core/base/pose.ts';
+
 import { partPoint } from '../core/base/brands.ts';
+import { poseFrame } from '../core/base/pose.ts';
 import type { Vec3 } from '../core/base/vec.ts';
 import { plainDepth } from '../store/looks.ts';
 import { current, type State } from '../store/state.ts';
-import { setupsOf, type Store } from '../store/store.ts';
-import { between, type Eye, fitted, lookingAt, orbited, panned, rayThrough, seenAt, VIEWS, type ViewName, zoomed } from './eye.ts';
+import { type Store, setupsOf } from '../store/store.ts';
+import {
+  between,
+  type Eye,
+  fitted,
+  lookingAt,
+  orbited,
+  panned,
+  rayThrough,
+  seenAt,
+  VIEWS,
+  type ViewName,
+  zoomed,
+} from './eye.ts';
 import { SCHEMES } from './palette.ts';
 import { createScene } from './scene.ts';
 
@@ -70,7 +83,10 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
 
   /** Glides where motion is welcome, jumps where it is not. */
   function glide(next: Eye): void {
-    if (still.matches) return move(next);
+    if (still.matches) {
+      move(next);
+      return;
+    }
     const from = eye;
     const begin = performance.now();
     const step = () => {
@@ -94,7 +110,7 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
       scene.setPart(s.part);
       if (s.part) {
         if (s.project) scene.setPose(setup(s)!);
-        fit(false);
+        fitView(false);
       }
     }
     if (changed((x) => setup(x))) {
@@ -104,21 +120,35 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
     const copperChanged = changed((x) => x.copper) || changed((x) => x.setup);
     const { copper, reach, plan } = current(s);
     if (copperChanged) scene.setCopper(copper, s.setup);
-    if (copper && s.project && (copperChanged || changed((x) => x.reach) || changed((x) => x.plan) || changed((x) => x.project?.limits)))
+    if (
+      copper &&
+      s.project &&
+      (copperChanged ||
+        changed((x) => x.reach) ||
+        changed((x) => x.plan) ||
+        changed((x) => x.project?.limits))
+    )
       scene.setReach(copper, reach, plan, plainDepth(s.project.limits));
     if (copperChanged || changed((x) => x.selection)) {
       const ids = new Set(s.selection);
       scene.setChosen((copper?.elements ?? []).filter((e) => ids.has(e.id)).flatMap((e) => e.outline));
     }
     if (changed((x) => x.tool) || changed((x) => x.preview))
-      scene.setLive(s.tool.kind === 'trace' ? [...s.tool.runs, ...(s.tool.live?.points ? [s.tool.live.points] : [])] : s.preview);
+      scene.setLive(
+        s.tool.kind === 'trace'
+          ? [...s.tool.runs, ...(s.tool.live?.points ? [s.tool.live.points] : [])]
+          : s.preview,
+      );
     const nothingElse = !visible;
     if (changed((x) => x.hover) || changed((x) => x.offset)) {
       const frame = frameOf(s);
       const p = s.hover && flags.lens ? frame.point(partPoint(s.hover.probe.point)) : null;
       const [px, py] = s.project?.head.pivot ?? [null, null];
       const up = (s.project?.head.workingDistance ?? 0) - s.offset;
-      scene.setBeam(p, p ? [p[0] - (px ? (p[0] / px) * up : 0), p[1] - (py ? (p[1] / py) * up : 0), up] : null);
+      scene.setBeam(
+        p,
+        p ? [p[0] - (px ? (p[0] / px) * up : 0), p[1] - (py ? (p[1] / py) * up : 0), up] : null,
+      );
     }
     if (nothingElse && !flags.lens && before?.offset === s.offset) visible = false;
     if (changed((x) => x.show) || changed((x) => x.isolated) || visible) {
@@ -152,7 +182,7 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
 
   // --- looking -----------------------------------------------------------------------------------
 
-  function fit(smooth = true): void {
+  function fitView(smooth = true): void {
     const s = get();
     if (!s.part) return;
     const frame = frameOf(s);
@@ -160,13 +190,17 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
     const corners = [0, 1, 2, 3, 4, 5, 6, 7].map((i) =>
       frame.point(partPoint([i & 1 ? hi[0] : lo[0], i & 2 ? hi[1] : lo[1], i & 4 ? hi[2] : lo[2]])),
     );
-    const middle = [0, 1, 2].map((k) => (Math.min(...corners.map((c) => c[k]!)) + Math.max(...corners.map((c) => c[k]!))) / 2) as unknown as Vec3;
+    const middle = [0, 1, 2].map(
+      (k) => (Math.min(...corners.map((c) => c[k]!)) + Math.max(...corners.map((c) => c[k]!))) / 2,
+    ) as unknown as Vec3;
     // As tight as the box allows from where the eye stands.
     const flat = fitted(eye, middle, 1, 1);
-    const reach = Math.max(...corners.map((c) => {
-      const [x, y] = seenAt({ ...flat, half: 1 }, c, 1);
-      return Math.max(Math.abs(x) / (width / height), Math.abs(y));
-    }));
+    const reach = Math.max(
+      ...corners.map((c) => {
+        const [x, y] = seenAt({ ...flat, half: 1 }, c, 1);
+        return Math.max(Math.abs(x) / (width / height), Math.abs(y));
+      }),
+    );
     const next = { ...eye, target: middle, half: Math.max(0.5, reach * 1.15) };
     if (smooth) glide(next);
     else move(next);
@@ -180,7 +214,10 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
   function rayAt(x: number, y: number) {
     const ray = rayThrough(eye, ...place(x, y), width / height, 1500);
     const frame = frameOf(get());
-    return { origin: frame.pointToPart(ray.origin as never), direction: frame.directionToPart(ray.direction) };
+    return {
+      origin: frame.pointToPart(ray.origin as never),
+      direction: frame.directionToPart(ray.direction),
+    };
   }
 
   const mmPerPixel = () => (2 * eye.half) / height;
@@ -259,7 +296,14 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
     const [x, y] = local(e);
     const handle = e.button === 0 ? handleAt(x, y) : -1;
     grip = {
-      id: e.pointerId, x, y, lastX: x, lastY: y, button: e.button, moved: false, handle,
+      id: e.pointerId,
+      x,
+      y,
+      lastX: x,
+      lastY: y,
+      button: e.button,
+      moved: false,
+      handle,
       pan: e.button === 1 || e.button === 2 || e.shiftKey,
       element: get().selection[0] ?? '',
     };
@@ -293,7 +337,8 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
       return;
     }
     if (g.button !== 0 || g.handle >= 0) return;
-    const twice = performance.now() - lastClick.time < 350 && Math.hypot(x - lastClick.x, y - lastClick.y) < STILL;
+    const twice =
+      performance.now() - lastClick.time < 350 && Math.hypot(x - lastClick.x, y - lastClick.y) < STILL;
     lastClick = { time: performance.now(), x, y };
     // The second click of a double click stands where the first stood: it ends the trace and adds no place.
     if (twice && get().tool.kind === 'trace') return void store.finish();
@@ -362,7 +407,7 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
     const first = width === 1;
     width = canvas.clientWidth;
     height = canvas.clientHeight;
-    if (first) fit(false);
+    if (first) fitView(false);
     // At once, so that a resized canvas is never seen empty.
     paint();
   });
@@ -372,7 +417,7 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
   follow(get());
 
   return {
-    fit: () => fit(),
+    fit: () => fitView(),
     look(name) {
       glide({ ...eye, ...VIEWS[name] });
     },

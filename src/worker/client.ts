@@ -11,7 +11,11 @@ export interface Progress {
 
 export interface WorkerClient {
   /** @throws WorkFailure */
-  call<K extends CallName>(name: K, argument: CallArgument<K>, hear?: (p: Progress) => void): Promise<CallResult<K>>;
+  call<K extends CallName>(
+    name: K,
+    argument: CallArgument<K>,
+    hear?: (p: Progress) => void,
+  ): Promise<CallResult<K>>;
   /** Stops every call made so far, at its next step. */
   stopAll(): void;
 }
@@ -19,7 +23,13 @@ export interface WorkerClient {
 export class WorkFailure extends Error {
   readonly failure: Failure;
   constructor(failure: Failure) {
-    super(failure.kind === 'input' ? failure.problems.map((p) => p.problem).join('; ') : failure.kind === 'fault' ? failure.message : 'stopped');
+    super(
+      failure.kind === 'input'
+        ? failure.problems.map((p) => p.problem).join('; ')
+        : failure.kind === 'fault'
+          ? failure.message
+          : 'stopped',
+    );
     this.name = 'WorkFailure';
     this.failure = failure;
   }
@@ -27,7 +37,8 @@ export class WorkFailure extends Error {
 
 export const problemsOf = (error: unknown): InputProblem[] | null =>
   error instanceof WorkFailure && error.failure.kind === 'input' ? error.failure.problems : null;
-export const wasStopped = (error: unknown): boolean => error instanceof WorkFailure && error.failure.kind === 'cancelled';
+export const wasStopped = (error: unknown): boolean =>
+  error instanceof WorkFailure && error.failure.kind === 'cancelled';
 
 /** What a Worker is, as far as we need it. */
 export interface Port {
@@ -37,8 +48,17 @@ export interface Port {
 }
 
 export function workerClient(port: Port): WorkerClient {
-  const flag = new Int32Array(typeof SharedArrayBuffer === 'undefined' ? new ArrayBuffer(4) : new SharedArrayBuffer(4));
-  const open = new Map<number, { done(value: unknown): void; failed(error: WorkFailure): void; hear?: ((p: Progress) => void) | undefined }>();
+  const flag = new Int32Array(
+    typeof SharedArrayBuffer === 'undefined' ? new ArrayBuffer(4) : new SharedArrayBuffer(4),
+  );
+  const open = new Map<
+    number,
+    {
+      done(value: unknown): void;
+      failed(error: WorkFailure): void;
+      hear?: ((p: Progress) => void) | undefined;
+    }
+  >();
   let last = 0;
   port.postMessage({ kind: 'stop-flag', flag });
   port.onmessage = ({ data }) => {
@@ -50,7 +70,11 @@ export function workerClient(port: Port): WorkerClient {
     else call.failed(new WorkFailure(data.failure));
   };
   port.onerror = (event) => {
-    const failure: Failure = { kind: 'fault', message: event.message ?? 'the worker could not start', stack: '' };
+    const failure: Failure = {
+      kind: 'fault',
+      message: event.message ?? 'the worker could not start',
+      stack: '',
+    };
     for (const call of open.values()) call.failed(new WorkFailure(failure));
     open.clear();
   };

@@ -10,7 +10,8 @@ export function creases(mesh: SurfaceMesh): Float32Array {
   const out: number[] = [];
   for (let h = 0; h < t.length; h++) {
     const g = twin[h];
-    if (g >= 0 && (g < h || dot(faceNormal(mesh, faceOf(h)), faceNormal(mesh, faceOf(g))) >= CREASE)) continue;
+    if (g >= 0 && (g < h || dot(faceNormal(mesh, faceOf(h)), faceNormal(mesh, faceOf(g))) >= CREASE))
+      continue;
     const [a, b] = [3 * t[h], 3 * t[next(h)]];
     out.push(x[a], x[a + 1], x[a + 2], x[b], x[b + 1], x[b + 2]);
   }

@@ -1,11 +1,12 @@
 /** What the window's worker hands back: flat arrays ready to draw and to ask. Lengths mm, angles degrees. */
-import type { Vec3 } from '../core/base/vec.ts';
+
 import type { InputProblem } from '../core/base/news.ts';
+import type { Vec3 } from '../core/base/vec.ts';
 import type { ElementKind } from '../core/drape/copper.ts';
 import type { DrapeFinding } from '../core/drape/element.ts';
 import type { Mended } from '../core/mesh/surface-mesh.ts';
-import type { Reason } from '../core/reach/result.ts';
 import type { Report } from '../core/project/report.ts';
+import type { Reason } from '../core/reach/result.ts';
 
 export interface PartPicture {
   /** Part frame, 9 a face: corners are not shared, so that creases stay sharp. */

@@ -5,24 +5,34 @@ import { poseFrame } from '../core/base/pose.ts';
 import type { RunContext } from '../core/base/run-context.ts';
 import { addScaled, at3, dot, normalize, type Vec3 } from '../core/base/vec.ts';
 import type { Copper, CopperElement } from '../core/drape/copper.ts';
-import type { Draped, DrapeFinding } from '../core/drape/element.ts';
 import { type Draper, drapeElement, prepareDraper } from '../core/drape/drape.ts';
+import type { Draped, DrapeFinding } from '../core/drape/element.ts';
 import { shortestWith } from '../core/geodesic/shortest.ts';
+import { layerOfSamples } from '../core/layers/assign.ts';
+import type { SetupPlan } from '../core/layers/plan.ts';
+import { canGo, planLayers } from '../core/layers/plan-layers.ts';
 import type { SurfaceQueries } from '../core/mesh/queries.ts';
 import type { SurfaceMesh } from '../core/mesh/surface-mesh.ts';
 import { barycentric, type SurfacePoint } from '../core/mesh/surface-point.ts';
 import { type CornerNormals, normalAt } from '../core/part/normals.ts';
 import { loadPart, type Part, type Units } from '../core/part/part.ts';
-import { readProject, writeProject } from '../core/project/read.ts';
-import type { Element, Head, Project, Setup } from '../core/project/schema.ts';
-import { creases } from './creases.ts';
-import { layerOfSamples } from '../core/layers/assign.ts';
-import type { SetupPlan } from '../core/layers/plan.ts';
-import { canGo, planLayers } from '../core/layers/plan-layers.ts';
 import { runJob, setupsOf } from '../core/pipeline.ts';
+import { readProject, writeProject } from '../core/project/read.ts';
+import type { Head, Project, Setup } from '../core/project/schema.ts';
 import { checkReach } from '../core/reach/reach.ts';
 import type { SetupReach } from '../core/reach/result.ts';
-import { type CopperPicture, ELSEWHERE, type ElementPicture, type ExportResult, type LiveRun, type PartPicture, type PlanPicture, type Probe, type ReachPicture } from './pictures.ts';
+import { creases } from './creases.ts';
+import {
+  type CopperPicture,
+  ELSEWHERE,
+  type ElementPicture,
+  type ExportResult,
+  type LiveRun,
+  type PartPicture,
+  type PlanPicture,
+  type Probe,
+  type ReachPicture,
+} from './pictures.ts';
 import { createPool } from './pool.ts';
 import { standAlone } from './stand-alone.ts';
 import { tasks } from './tasks.ts';
@@ -108,7 +118,8 @@ export function createSession() {
             pending++;
             return;
           }
-          const known = laid.get(key) ?? drapeElement(draper!, element, `$.circuit.elements[${i}]`, a.project.name);
+          const known =
+            laid.get(key) ?? drapeElement(draper!, element, `$.circuit.elements[${i}]`, a.project.name);
           laid.set(key, known);
           if (known.element) elements.push(known.element);
           findings.push(...known.findings);
@@ -131,7 +142,8 @@ export function createSession() {
       const setups = setupsOf(p, p.name);
       // Heights chosen by hand change the plan, not the reach: while a layer is dragged nothing is looked at twice.
       const key = JSON.stringify([p.head, p.material, p.limits, setups.map((s) => s.pose)]);
-      if (reached?.copper !== c || reached.key !== key) reached = { key, copper: c, value: checkReach(p, setups, needPart(), c, ctx) };
+      if (reached?.copper !== c || reached.key !== key)
+        reached = { key, copper: c, value: checkReach(p, setups, needPart(), c, ctx) };
       return reached.value.map((r) => reachPicture(r, p));
     },
 
@@ -140,17 +152,30 @@ export function createSession() {
       const { project: p, copper: c } = needCopper();
       if (!reached) throw new Fault('layers are planned after reach');
       const reach = reached.value;
-      return planLayers(p, setupsOf(p, p.name), c, reach, ctx).map((plan) => planPicture(plan, c, reach[plan.setup]));
+      return planLayers(p, setupsOf(p, p.name), c, reach, ctx).map((plan) =>
+        planPicture(plan, c, reach[plan.setup]),
+      );
     },
 
     /** The files that the command line would write with --no-timing, as bytes. */
-    async exportFiles(a: { projectFile: string; projectText: string; part: { file: string; bytes: Uint8Array } }, ctx: RunContext): Promise<ExportResult> {
+    async exportFiles(
+      a: { projectFile: string; projectText: string; part: { file: string; bytes: Uint8Array } },
+      ctx: RunContext,
+    ): Promise<ExportResult> {
       const { project: p, unknown } = readProject(a.projectText, a.projectFile);
       const pool = createPool(1, tasks, () => {
         throw new Fault('one thread needs no other');
       });
-      const { report, files } = await runJob({ project: p, projectFile: a.projectFile, projectText: a.projectText, unknown, part: a.part }, { seed: DEFAULT_SEED }, ctx, pool);
-      return { report, files: standAlone(files, report, { projectText: a.projectText, part: a.part, others: [] }) };
+      const { report, files } = await runJob(
+        { project: p, projectFile: a.projectFile, projectText: a.projectText, unknown, part: a.part },
+        { seed: DEFAULT_SEED },
+        ctx,
+        pool,
+      );
+      return {
+        report,
+        files: standAlone(files, report, { projectText: a.projectText, part: a.part, others: [] }),
+      };
     },
 
     /** What the ray meets first, in the setup's bench. */
@@ -165,13 +190,17 @@ export function createSession() {
       const { mesh, queries } = needPart();
       const [from, to] = [surfacePoint(mesh, queries, a.from), surfacePoint(mesh, queries, a.to)];
       const path = shortestWith(draper!.solver, from, to);
-      return path === null ? { points: null, length: 0 } : { points: Float32Array.from(path.points), length: path.length };
+      return path === null
+        ? { points: null, length: 0 }
+        : { points: Float32Array.from(path.points), length: path.length };
     },
   };
 }
 
 export const posesOf = (project: Project): Setup[] =>
-  project.setups === 'auto' ? [{ name: 'auto', pose: { rotate: [0, 0, 0, 1], move: [0, 0, 0] } }] : project.setups;
+  project.setups === 'auto'
+    ? [{ name: 'auto', pose: { rotate: [0, 0, 0, 1], move: [0, 0, 0] } }]
+    : project.setups;
 
 function surfacePoint(mesh: SurfaceMesh, queries: SurfaceQueries, p: Vec3): SurfacePoint {
   const hit = queries.nearest(p);
@@ -182,11 +211,23 @@ function surfacePoint(mesh: SurfaceMesh, queries: SurfaceQueries, p: Vec3): Surf
 /** µm-sized step off the surface, so that a ray does not meet the face it starts on (model.md §4). */
 const LIFT = 1e-3;
 
-function probeAt(mesh: SurfaceMesh, queries: SurfaceQueries, normals: CornerNormals, point: Vec3, face: number, setup: Setup, head: Head): Probe {
+function probeAt(
+  mesh: SurfaceMesh,
+  queries: SurfaceQueries,
+  normals: CornerNormals,
+  point: Vec3,
+  face: number,
+  setup: Setup,
+  head: Head,
+): Probe {
   const frame = poseFrame(setup.pose);
   const bench = frame.point(partPoint(point));
   const normal = normalAt(mesh, normals, face, point);
-  const u = normalize([head.pivot[0] ? -bench[0] / head.pivot[0] : 0, head.pivot[1] ? -bench[1] / head.pivot[1] : 0, 1]);
+  const u = normalize([
+    head.pivot[0] ? -bench[0] / head.pivot[0] : 0,
+    head.pivot[1] ? -bench[1] / head.pivot[1] : 0,
+    1,
+  ]);
   const toward = frame.directionToPart(u);
   const blocked = queries.firstHit(addScaled(point, normal, LIFT), toward);
   return {
@@ -199,7 +240,11 @@ function probeAt(mesh: SurfaceMesh, queries: SurfaceQueries, normals: CornerNorm
   };
 }
 
-function copperPicture(copper: Copper, part: Part, setups: Setup[]): Omit<CopperPicture, 'problems' | 'findings' | 'pending'> {
+function copperPicture(
+  copper: Copper,
+  part: Part,
+  setups: Setup[],
+): Omit<CopperPicture, 'problems' | 'findings' | 'pending'> {
   const triangles = copper.elements.reduce((n, e) => n + e.copper.triangles.length / 3, 0);
   const vertices = copper.elements.reduce((n, e) => n + e.copper.positions.length / 3, 0);
   const positions = new Float32Array(3 * vertices);
@@ -275,7 +320,10 @@ function reachPicture(r: SetupReach, project: Project): ReachPicture {
     for (let i = 0; i < e.height.length; i++, t++) {
       out.incidence[t] = (e.incidence[i] * 180) / Math.PI;
       out.blocked[t] = e.blocked[i];
-      out.field[t] = Math.max(Math.abs(e.command[2 * i]) / (fx / 2), Math.abs(e.command[2 * i + 1]) / (fy / 2));
+      out.field[t] = Math.max(
+        Math.abs(e.command[2 * i]) / (fx / 2),
+        Math.abs(e.command[2 * i + 1]) / (fy / 2),
+      );
       out.fluence[t] = e.fluence[i];
       out.usable[t] = e.usable[i];
       out.fails[t] = e.fails[i];
@@ -290,12 +338,21 @@ function planPicture(plan: SetupPlan, copper: Copper, reach: SetupReach): PlanPi
   let t = 0;
   copper.elements.forEach((e, i) => {
     const r = reach.elements[i];
-    if (mine.has(i)) layerOf.set(layerOfSamples(plan, e, i, r, (k) => canGo(r, k)), t);
+    if (mine.has(i))
+      layerOf.set(
+        layerOfSamples(plan, e, i, r, (k) => canGo(r, k)),
+        t,
+      );
     t += r.height.length;
   });
   return {
     setup: plan.setup,
-    layers: plan.layers.map((l) => ({ index: l.index, focusHeight: l.focusHeight, worstDefocus: l.worstDefocus, elements: new Set(l.runs.map((x) => x.element)).size })),
+    layers: plan.layers.map((l) => ({
+      index: l.index,
+      focusHeight: l.focusHeight,
+      worstDefocus: l.worstDefocus,
+      elements: new Set(l.runs.map((x) => x.element)).size,
+    })),
     layerOf,
     unreached: plan.unreached.map((u) => ({ element: u.element, length: u.length, reason: u.reason })),
   };

@@ -52,6 +52,7 @@ function failureOf(error: unknown): Failure {
 function buffersIn(value: unknown, found = new Set<ArrayBuffer>()): ArrayBuffer[] {
   if (ArrayBuffer.isView(value)) {
     if (value.buffer instanceof ArrayBuffer) found.add(value.buffer);
-  } else if (typeof value === 'object' && value !== null) for (const v of Object.values(value)) buffersIn(v, found);
+  } else if (typeof value === 'object' && value !== null)
+    for (const v of Object.values(value)) buffersIn(v, found);
   return [...found];
 }

@@ -7,7 +7,9 @@ export type CallName = keyof Session;
 export type CallArgument<K extends CallName> = Parameters<Session[K]>[0];
 export type CallResult<K extends CallName> = Awaited<ReturnType<Session[K]>>;
 
-export type ToWorker = { kind: 'stop-flag'; flag: Int32Array } | { kind: 'call'; job: number; name: CallName; argument: unknown };
+export type ToWorker =
+  | { kind: 'stop-flag'; flag: Int32Array }
+  | { kind: 'call'; job: number; name: CallName; argument: unknown };
 
 export type Failure =
   | { kind: 'input'; problems: InputProblem[] }

@@ -15,24 +15,39 @@ const bytes = (s: string) => new TextEncoder().encode(s);
 
 describe('messages', () => {
   test('plain data with byte arrays comes out as it went in', () => {
-    const value = { a: [1, 'ä', null, { b: Uint8Array.of(1, 2, 3) }], c: Uint8Array.of(), d: { e: Uint8Array.of(255) }, f: true };
+    const value = {
+      a: [1, 'ä', null, { b: Uint8Array.of(1, 2, 3) }],
+      c: Uint8Array.of(),
+      d: { e: Uint8Array.of(255) },
+      f: true,
+    };
     expect(unpack(pack(value))).toEqual(value);
   });
 
   test('a message cut short is refused', () => {
     const m = pack({ a: Uint8Array.of(1, 2, 3, 4) });
-    for (const n of [m.length - 1, 6]) expect(() => unpack(m.subarray(0, n))).toThrowError(expect.objectContaining({ name: expect.stringMatching(/RangeError|SyntaxError/) }));
+    for (const n of [m.length - 1, 6])
+      expect(() => unpack(m.subarray(0, n))).toThrowError(
+        expect.objectContaining({ name: expect.stringMatching(/RangeError|SyntaxError/) }),
+      );
   });
 });
 
 describe('requests', () => {
   const file = { path: 'top/layer-01.svg', bytes: Uint8Array.of(1) };
   test('an export below its folder is taken', () => {
-    expect(requestSchema.safeParse({ ask: 'export', suggested: 'dome-scan', files: [file] }).success).toBe(true);
+    expect(requestSchema.safeParse({ ask: 'export', suggested: 'dome-scan', files: [file] }).success).toBe(
+      true,
+    );
   });
-  test.each(['../x', '/etc/x', 'a/../../x', 'C:/x', 'a\\b', '.hidden', 'a//b', 'a/./b', 'a/\u0000b'])('a path "%s" is refused', (path) => {
-    expect(requestSchema.safeParse({ ask: 'export', suggested: 'scan', files: [{ ...file, path }] }).success).toBe(false);
-  });
+  test.each(['../x', '/etc/x', 'a/../../x', 'C:/x', 'a\\b', '.hidden', 'a//b', 'a/./b', 'a/\u0000b'])(
+    'a path "%s" is refused',
+    (path) => {
+      expect(
+        requestSchema.safeParse({ ask: 'export', suggested: 'scan', files: [{ ...file, path }] }).success,
+      ).toBe(false);
+    },
+  );
   test('what is not in the list, or has more in it, is refused', () => {
     expect(requestSchema.safeParse({ ask: 'run', command: 'ls' }).success).toBe(false);
     expect(requestSchema.safeParse({ ask: 'start', more: 1 }).success).toBe(false);
@@ -52,14 +67,21 @@ describe('files', () => {
 
   test('a save that cannot be made leaves the old file and says what to do', async () => {
     const dir = folder();
-    await expect(saveWhole(join(dir, 'no', 'a.json'), 'x')).rejects.toMatchObject({ name: 'HostError', news: { mend: 'save to another place' } });
+    await expect(saveWhole(join(dir, 'no', 'a.json'), 'x')).rejects.toMatchObject({
+      name: 'HostError',
+      news: { mend: 'save to another place' },
+    });
     expect(readdirSync(dir)).toEqual([]);
   });
 
   test('an export replaces an earlier one whole: a layer that is no more is gone', async () => {
     const dir = join(folder(), 'scan');
     const report = { path: 'report.json', bytes: bytes('{"format":"beamdrape-report"}') };
-    await putFolder(dir, [report, { path: 'top/layer-01.svg', bytes: bytes('1') }, { path: 'top/layer-02.svg', bytes: bytes('2') }]);
+    await putFolder(dir, [
+      report,
+      { path: 'top/layer-01.svg', bytes: bytes('1') },
+      { path: 'top/layer-02.svg', bytes: bytes('2') },
+    ]);
     await putFolder(dir, [report, { path: 'top/layer-01.svg', bytes: bytes('new') }]);
     expect(readdirSync(join(dir, 'top'))).toEqual(['layer-01.svg']);
     expect(readFileSync(join(dir, 'top/layer-01.svg'), 'utf8')).toBe('new');
@@ -70,7 +92,9 @@ describe('files', () => {
     const dir = join(folder(), 'scan');
     mkdirSync(dir);
     writeFileSync(join(dir, 'mine.txt'), 'x');
-    await expect(putFolder(dir, [{ path: 'report.json', bytes: bytes('{}') }])).rejects.toMatchObject({ news: { problem: expect.stringContaining('other things') } });
+    await expect(putFolder(dir, [{ path: 'report.json', bytes: bytes('{}') }])).rejects.toMatchObject({
+      news: { problem: expect.stringContaining('other things') },
+    });
     expect(readdirSync(dir)).toEqual(['mine.txt']);
   });
 });
@@ -83,9 +107,18 @@ describe('pages', () => {
   writeFileSync(join(root, 'outside.html'), 'no');
   const at = async (path: string) => (await pageAt(join(root, 'pages'), path)).status;
   test('are served from their folder, by a closed list of kinds', async () => {
-    expect([await at('/'), await at('/index.html'), await at('/secret.key'), await at('/none.html')]).toEqual([200, 200, 404, 404]);
+    expect([await at('/'), await at('/index.html'), await at('/secret.key'), await at('/none.html')]).toEqual(
+      [200, 200, 404, 404],
+    );
   });
-  test.each(['/../outside.html', '/%2e%2e/outside.html', '/..%2foutside.html', '/..%5coutside.html', '/%zz', '/%00'])('%s is refused', async (path) => {
+  test.each([
+    '/../outside.html',
+    '/%2e%2e/outside.html',
+    '/..%2foutside.html',
+    '/..%5coutside.html',
+    '/%zz',
+    '/%00',
+  ])('%s is refused', async (path) => {
     expect([400, 403]).toContain(await at(path));
   });
   test('every answer carries the policy, refusals too', async () => {
@@ -105,7 +138,12 @@ describe('the desk', () => {
   const make = (startFile: string | null = null) =>
     createDesk(
       state,
-      { open: async () => answers.open ?? null, place: async () => answers.place ?? null, folder: async () => answers.folder ?? null, list: async () => [] },
+      {
+        open: async () => answers.open ?? null,
+        place: async () => answers.place ?? null,
+        folder: async () => answers.folder ?? null,
+        list: async () => [],
+      },
       { title() {}, menu() {}, close() {} },
       startFile,
     );
@@ -132,7 +170,9 @@ describe('the desk', () => {
     expect(opened.part?.file).toBe('parts/a.stl');
     expect(new TextDecoder().decode(opened.part?.bytes)).toBe('solid');
     expect(JSON.stringify({ ...opened, part: { ...opened.part, bytes: null } })).not.toContain(dir);
-    expect(await value<{ name: string }[]>({ ask: 'recent' })).toEqual([expect.objectContaining({ name: 'job.drape.json', folder: dir })]);
+    expect(await value<{ name: string }[]>({ ask: 'recent' })).toEqual([
+      expect.objectContaining({ name: 'job.drape.json', folder: dir }),
+    ]);
   });
 
   test('a project that names something else than an .stl as its part gets nothing of it', async () => {
@@ -148,7 +188,10 @@ describe('the desk', () => {
       { ask: 'save', ref: 'guess', text: 'x', part: null },
       { ask: 'open-recent', ref: join(dir, 'job.drape.json') },
     ])
-      expect(await desk.answer(request)).toMatchObject({ ok: false, problem: expect.stringContaining('never chosen') });
+      expect(await desk.answer(request)).toMatchObject({
+        ok: false,
+        problem: expect.stringContaining('never chosen'),
+      });
   });
 
   test('saved in another folder, the project is told how it must name its part', async () => {
@@ -156,7 +199,12 @@ describe('the desk', () => {
     const opened = await value<OpenedProject>({ ask: 'open' });
     mkdirSync(join(dir, 'jobs', 'today'), { recursive: true });
     answers.place = join(dir, 'jobs', 'today', 'x');
-    const place = await value<Place>({ ask: 'choose-place', suggested: 'x', partRef: opened.part!.ref, partName: 'parts/a.stl' });
+    const place = await value<Place>({
+      ask: 'choose-place',
+      suggested: 'x',
+      partRef: opened.part!.ref,
+      partName: 'parts/a.stl',
+    });
     expect(place).toMatchObject({ name: 'x.drape.json', partFile: '../../parts/a.stl', writePart: false });
     await value({ ask: 'save', ref: place.ref, text: 'text', part: null });
     expect(readFileSync(join(dir, 'jobs', 'today', 'x.drape.json'), 'utf8')).toBe('text');
@@ -164,9 +212,19 @@ describe('the desk', () => {
 
   test('a part without a file is saved beside its project', async () => {
     answers.place = join(dir, 'new.drape.json');
-    const place = await value<Place>({ ask: 'choose-place', suggested: 'x', partRef: null, partName: 'dropped.stl' });
+    const place = await value<Place>({
+      ask: 'choose-place',
+      suggested: 'x',
+      partRef: null,
+      partName: 'dropped.stl',
+    });
     expect(place.writePart).toBe(true);
-    await value({ ask: 'save', ref: place.ref, text: '{}', part: { file: 'dropped.stl', bytes: bytes('solid') } });
+    await value({
+      ask: 'save',
+      ref: place.ref,
+      text: '{}',
+      part: { file: 'dropped.stl', bytes: bytes('solid') },
+    });
     expect(readFileSync(join(dir, 'dropped.stl'), 'utf8')).toBe('solid');
   });
 
@@ -180,7 +238,14 @@ describe('the desk', () => {
   });
 
   test('work kept by a program that is gone is offered; by one that runs it is not', async () => {
-    const entry = { name: 'job.drape.json', ref: null, text: '{"a":1}', partFile: 'p.stl', partRef: null, partBytes: bytes('solid') };
+    const entry = {
+      name: 'job.drape.json',
+      ref: null,
+      text: '{"a":1}',
+      partFile: 'p.stl',
+      partRef: null,
+      partBytes: bytes('solid'),
+    };
     await value({ ask: 'journal', entry });
     desk = make();
     // This process is alive: its work is its own.
@@ -188,7 +253,8 @@ describe('the desk', () => {
     const journal = join(state, 'journal');
     // A process number that cannot be one: the program that kept this has ended.
     const { renameSync } = await import('node:fs');
-    for (const f of readdirSync(journal)) renameSync(join(journal, f), join(journal, f.replace(/^\d+/, '4194999')));
+    for (const f of readdirSync(journal))
+      renameSync(join(journal, f), join(journal, f.replace(/^\d+/, '4194999')));
     const { lost } = await value<StartNews>({ ask: 'start' });
     expect(lost).toEqual([expect.objectContaining({ name: 'job.drape.json' })]);
     const back = await value<OpenedProject>({ ask: 'recover', id: lost[0]!.id, take: true });
@@ -198,7 +264,10 @@ describe('the desk', () => {
   });
 
   test('an entry is taken out of the journal when the work is saved', async () => {
-    await value({ ask: 'journal', entry: { name: 'x', ref: null, text: '{}', partFile: 'p.stl', partRef: null, partBytes: null } });
+    await value({
+      ask: 'journal',
+      entry: { name: 'x', ref: null, text: '{}', partFile: 'p.stl', partRef: null, partBytes: null },
+    });
     expect(readdirSync(join(state, 'journal'))).toHaveLength(1);
     await value({ ask: 'journal', entry: null });
     expect(readdirSync(join(state, 'journal'))).toEqual([]);

@@ -3,11 +3,13 @@ import { type ChildProcess, spawn } from 'node:child_process';
 import { existsSync, readdirSync, readFileSync } from 'node:fs';
 import { request } from 'node:http';
 import { dirname, join } from 'node:path';
-import { afterAll, beforeAll, expect, test } from 'vitest';
 import { type Browser, chromium, type Page } from 'playwright-core';
+import { afterAll, beforeAll, expect, test } from 'vitest';
 import { domeFolder, freshFolder, planned, ROOT, step, tally } from './open-window.ts';
 
-const BROWSER = ['/usr/bin/chromium', '/usr/bin/chromium-browser', '/usr/bin/google-chrome'].find((f) => existsSync(f));
+const BROWSER = ['/usr/bin/chromium', '/usr/bin/chromium-browser', '/usr/bin/google-chrome'].find((f) =>
+  existsSync(f),
+);
 
 let server: ChildProcess;
 let url: string;
@@ -21,10 +23,14 @@ beforeAll(async () => {
   if (!BROWSER) throw new Error('no browser for this test: install chromium');
   file = domeFolder();
   const home = freshFolder();
-  server = spawn(process.execPath, [join(ROOT, 'out/cli/cli.mjs'), 'window', file, '--browser', '--no-open'], {
-    env: { ...process.env, HOME: home, XDG_CONFIG_HOME: home },
-    stdio: ['ignore', 'pipe', 'pipe'],
-  });
+  server = spawn(
+    process.execPath,
+    [join(ROOT, 'out/cli/cli.mjs'), 'window', file, '--browser', '--no-open'],
+    {
+      env: { ...process.env, HOME: home, XDG_CONFIG_HOME: home },
+      stdio: ['ignore', 'pipe', 'pipe'],
+    },
+  );
   server.stderr!.on('data', (d) => said.push(String(d)));
   url = await new Promise<string>((found, failed) => {
     server.stdout!.on('data', (d) => {
@@ -33,7 +39,10 @@ beforeAll(async () => {
     });
     server.once('exit', (code) => failed(new Error(`ended with ${code}: ${said.join('')}`)));
   });
-  browser = await chromium.launch({ executablePath: BROWSER, args: ['--no-sandbox', '--use-angle=swiftshader', '--enable-unsafe-swiftshader'] });
+  browser = await chromium.launch({
+    executablePath: BROWSER,
+    args: ['--no-sandbox', '--use-angle=swiftshader', '--enable-unsafe-swiftshader'],
+  });
   page = await browser.newPage({ viewport: { width: 1280, height: 860 } });
   page.on('pageerror', (e) => faults.push(e.message));
   await page.goto(url);
@@ -79,7 +88,9 @@ test('menus stand in the window; an act is named there; the save lands in the fo
   await net.fill('BROWSER');
   await net.press('Enter');
   await page.getByRole('button', { name: 'Edit', exact: true }).click();
-  await expect.poll(() => page.getByRole('menuitem').first().textContent()).toContain('Undo change net of p1');
+  await expect
+    .poll(() => page.getByRole('menuitem').first().textContent())
+    .toContain('Undo change net of p1');
   await page.keyboard.press('Escape');
   await page.getByRole('button', { name: 'File', exact: true }).click();
   await page.getByRole('menuitem', { name: 'Save Ctrl+S', exact: true }).click();
@@ -91,7 +102,9 @@ test('a name that leaves the folder is refused, and "Save as" with a plain one i
   const entry = page.getByRole('textbox', { name: 'File name' });
   await entry.fill('../out.drape.json');
   await entry.press('Enter');
-  await expect.poll(() => page.locator('.notice').allTextContents()).toContainEqual(expect.stringContaining('not a plain file name'));
+  await expect
+    .poll(() => page.locator('.notice').allTextContents())
+    .toContainEqual(expect.stringContaining('not a plain file name'));
   await page.keyboard.press('Control+Shift+S');
   await entry.fill('second.drape.json');
   await entry.press('Enter');

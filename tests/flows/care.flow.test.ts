@@ -3,7 +3,15 @@ import { readFileSync, writeFileSync } from 'node:fs';
 import { createRequire } from 'node:module';
 import { dirname, join } from 'node:path';
 import { afterEach, describe, expect, test } from 'vitest';
-import { domeFolder, freshFolder, type OpenWindow, openWindow, planned, step, stubDialogs } from './open-window.ts';
+import {
+  domeFolder,
+  freshFolder,
+  type OpenWindow,
+  openWindow,
+  planned,
+  step,
+  stubDialogs,
+} from './open-window.ts';
 
 let open: OpenWindow[] = [];
 afterEach(async () => {
@@ -30,7 +38,9 @@ describe('first start', () => {
   test('opens the demonstration with three hints, and a hint put away stays away', async () => {
     const user = freshFolder();
     const first = await window(null, user);
-    await expect.poll(() => first.page.locator('.facts h2').textContent(), { timeout: 30_000 }).toBe('touch dial');
+    await expect
+      .poll(() => first.page.locator('.facts h2').textContent(), { timeout: 30_000 })
+      .toBe('touch dial');
     await expect.poll(() => first.page.locator('.hint').count()).toBe(3);
     await first.page.locator('.hint button').first().click();
     await expect.poll(() => first.page.locator('.hint').count()).toBe(2);
@@ -67,10 +77,14 @@ describe('unsaved work', () => {
     const w = await window(domeFolder());
     await planned(w.page);
     await change(w, 'X');
-    await expect.poll(() => w.app.evaluate(({ BrowserWindow }) => BrowserWindow.getAllWindows()[0]!.getTitle())).toMatch(/^• /);
+    await expect
+      .poll(() => w.app.evaluate(({ BrowserWindow }) => BrowserWindow.getAllWindows()[0]!.getTitle()))
+      .toMatch(/^• /);
     await w.page.getByTestId('view').focus();
     await w.page.keyboard.press('Control+z');
-    await expect.poll(() => w.app.evaluate(({ BrowserWindow }) => BrowserWindow.getAllWindows()[0]!.getTitle())).not.toMatch(/^• /);
+    await expect
+      .poll(() => w.app.evaluate(({ BrowserWindow }) => BrowserWindow.getAllWindows()[0]!.getTitle()))
+      .not.toMatch(/^• /);
   });
 
   test('survives a crash: the next start offers it back', async () => {
@@ -89,7 +103,9 @@ describe('unsaved work', () => {
     await planned(next.page);
     await step(next.page, 'circuit');
     await expect.poll(() => next.page.locator('.elements button').first().textContent()).toContain('LOST');
-    await expect.poll(() => next.app.evaluate(({ BrowserWindow }) => BrowserWindow.getAllWindows()[0]!.getTitle())).toMatch(/^• dome/);
+    await expect
+      .poll(() => next.app.evaluate(({ BrowserWindow }) => BrowserWindow.getAllWindows()[0]!.getTitle()))
+      .toMatch(/^• dome/);
     expect(JSON.parse(readFileSync(file, 'utf8')).circuit.elements[0].net).toBe('A');
   });
 });
@@ -105,12 +121,16 @@ describe('bad files', () => {
     await planned(w.page);
     await stubDialogs(w.app, { open: bad });
     await w.page.keyboard.press('Control+o');
-    await expect.poll(() => w.page.locator('.notice').allTextContents()).toContainEqual(expect.stringContaining('$.circuit.elements[2].width'));
+    await expect
+      .poll(() => w.page.locator('.notice').allTextContents())
+      .toContainEqual(expect.stringContaining('$.circuit.elements[2].width'));
     expect(await w.page.locator('.facts h2').textContent()).toBe('lumpy dome');
     writeFileSync(join(dirname(file), 'noise.stl'), 'this is no part');
     await stubDialogs(w.app, { open: join(dirname(file), 'noise.stl') });
     await w.page.keyboard.press('Control+o');
-    await expect.poll(() => w.page.locator('.notice').allTextContents()).toContainEqual(expect.stringContaining('noise.stl'));
+    await expect
+      .poll(() => w.page.locator('.notice').allTextContents())
+      .toContainEqual(expect.stringContaining('noise.stl'));
     expect(w.faults).toEqual([]);
   });
 });
@@ -119,7 +139,12 @@ describe('what the page may not do', () => {
   test('no Node, no eval, no navigation, no other window, no network, no file that was not chosen', async () => {
     const w = await window(domeFolder());
     await planned(w.page);
-    expect(await w.page.evaluate(() => [typeof (globalThis as { require?: unknown }).require, typeof (globalThis as { process?: unknown }).process])).toEqual(['undefined', 'undefined']);
+    expect(
+      await w.page.evaluate(() => [
+        typeof (globalThis as { require?: unknown }).require,
+        typeof (globalThis as { process?: unknown }).process,
+      ]),
+    ).toEqual(['undefined', 'undefined']);
     expect(await w.page.evaluate(() => crossOriginIsolated)).toBe(true);
     const refused = await w.page.evaluate(
       () =>
@@ -137,41 +162,75 @@ describe('what the page may not do', () => {
     );
     expect(refused).toBe('EvalError');
     expect(await w.page.evaluate(() => globalThis.open('https://example.org'))).toBeNull();
-    expect(await w.page.evaluate(() => fetch('https://example.org').then(() => 'reached', () => 'refused'))).toBe('refused');
-    expect(await w.page.evaluate(() => fetch('app://main/..%2fmain%2fmain.cjs').then((r) => r.status))).toBe(403);
+    expect(
+      await w.page.evaluate(() =>
+        fetch('https://example.org').then(
+          () => 'reached',
+          () => 'refused',
+        ),
+      ),
+    ).toBe('refused');
+    expect(await w.page.evaluate(() => fetch('app://main/..%2fmain%2fmain.cjs').then((r) => r.status))).toBe(
+      403,
+    );
     await w.page.evaluate(() => {
       location.href = 'https://example.org';
     });
     await w.page.waitForTimeout(300);
     expect(w.page.url()).toBe('app://main/index.html');
     const asked = await w.page.evaluate(() => {
-      const bridge = (globalThis as unknown as { beamdrape: { ask(r: unknown): Promise<unknown> } }).beamdrape;
-      return Promise.all([bridge.ask({ ask: 'open-recent', ref: '/etc/passwd' }), bridge.ask({ ask: 'save', ref: 'made-up', text: 'x', part: null }), bridge.ask({ ask: 'run', command: 'ls' })]);
+      const bridge = (globalThis as unknown as { beamdrape: { ask(r: unknown): Promise<unknown> } })
+        .beamdrape;
+      return Promise.all([
+        bridge.ask({ ask: 'open-recent', ref: '/etc/passwd' }),
+        bridge.ask({ ask: 'save', ref: 'made-up', text: 'x', part: null }),
+        bridge.ask({ ask: 'run', command: 'ls' }),
+      ]);
     });
-    expect(asked).toEqual([expect.objectContaining({ ok: false }), expect.objectContaining({ ok: false }), expect.objectContaining({ ok: false })]);
+    expect(asked).toEqual([
+      expect.objectContaining({ ok: false }),
+      expect.objectContaining({ ok: false }),
+      expect.objectContaining({ ok: false }),
+    ]);
   });
 });
 
 describe('access', () => {
   const axe = readFileSync(createRequire(import.meta.url).resolve('axe-core/axe.min.js'), 'utf8');
 
-  test.each(['light', 'dark'] as const)('axe finds nothing in the %s window, in any step', async (colorScheme) => {
-    const w = await window(domeFolder());
-    await planned(w.page);
-    await w.page.emulateMedia({ colorScheme, reducedMotion: 'reduce' });
-    await w.page.evaluate(axe);
-    for (const name of ['part', 'circuit', 'head', 'reach', 'heights', 'files']) {
-      await step(w.page, name);
-      if (name === 'circuit') await w.page.locator('.elements button').nth(2).click();
-      if (name === 'heights') await w.page.getByTestId('marker').press('PageUp');
-      const found = await w.page.evaluate(async () => {
-        const run = (globalThis as unknown as { axe: { run(o: unknown): Promise<{ violations: { id: string; nodes: { html: string; failureSummary: string }[] }[] }> } }).axe;
-        const { violations } = await run.run({ runOnly: ['wcag2a', 'wcag2aa', 'wcag21a', 'wcag21aa', 'wcag22aa', 'best-practice'] });
-        return violations.map((v) => `${v.id}: ${v.nodes.map((n) => `${n.html.slice(0, 160)} ${n.failureSummary.slice(0, 200)}`).join(' | ')}`);
-      });
-      expect(found, name).toEqual([]);
-    }
-  });
+  test.each(['light', 'dark'] as const)(
+    'axe finds nothing in the %s window, in any step',
+    async (colorScheme) => {
+      const w = await window(domeFolder());
+      await planned(w.page);
+      await w.page.emulateMedia({ colorScheme, reducedMotion: 'reduce' });
+      await w.page.evaluate(axe);
+      for (const name of ['part', 'circuit', 'head', 'reach', 'heights', 'files']) {
+        await step(w.page, name);
+        if (name === 'circuit') await w.page.locator('.elements button').nth(2).click();
+        if (name === 'heights') await w.page.getByTestId('marker').press('PageUp');
+        const found = await w.page.evaluate(async () => {
+          const run = (
+            globalThis as unknown as {
+              axe: {
+                run(o: unknown): Promise<{
+                  violations: { id: string; nodes: { html: string; failureSummary: string }[] }[];
+                }>;
+              };
+            }
+          ).axe;
+          const { violations } = await run.run({
+            runOnly: ['wcag2a', 'wcag2aa', 'wcag21a', 'wcag21aa', 'wcag22aa', 'best-practice'],
+          });
+          return violations.map(
+            (v) =>
+              `${v.id}: ${v.nodes.map((n) => `${n.html.slice(0, 160)} ${n.failureSummary.slice(0, 200)}`).join(' | ')}`,
+          );
+        });
+        expect(found, name).toEqual([]);
+      }
+    },
+  );
 
   test('Tab reaches journey, viewport, tools, facts, strip and marker, each with a visible ring', async () => {
     const w = await window(domeFolder());
@@ -185,8 +244,13 @@ describe('access', () => {
         const style = getComputedStyle(e);
         const around = getComputedStyle(e.closest('.entry') ?? e);
         return {
-          where: e.closest('.journey, .tools, .facts, .strip, .legend, .hints, canvas')?.className || e.tagName.toLowerCase(),
-          ring: style.outlineStyle !== 'none' || around.outlineStyle !== 'none' || getComputedStyle(inner).strokeWidth === '3px',
+          where:
+            e.closest('.journey, .tools, .facts, .strip, .legend, .hints, canvas')?.className ||
+            e.tagName.toLowerCase(),
+          ring:
+            style.outlineStyle !== 'none' ||
+            around.outlineStyle !== 'none' ||
+            getComputedStyle(inner).strokeWidth === '3px',
         };
       });
       seen.add(where);

@@ -18,7 +18,8 @@ export function domeStl(rings = 30, spokes = 72): Uint8Array {
   const facets: [number, number, number][][] = [];
   for (let j = 0; j < spokes; j++) {
     facets.push([at(0, 0), at(1, j), at(1, j + 1)]);
-    for (let i = 1; i < rings; i++) facets.push([at(i, j), at(i + 1, j), at(i + 1, j + 1)], [at(i, j), at(i + 1, j + 1), at(i, j + 1)]);
+    for (let i = 1; i < rings; i++)
+      facets.push([at(i, j), at(i + 1, j), at(i + 1, j + 1)], [at(i, j), at(i + 1, j + 1), at(i, j + 1)]);
     const [a, b] = [at(rings, j), at(rings, j + 1)];
     const down = (p: [number, number, number]): [number, number, number] => [p[0], p[1], -3];
     facets.push([a, down(a), down(b)], [a, down(b), b], [[0, 0, -3], down(b), down(a)]);
@@ -26,14 +27,27 @@ export function domeStl(rings = 30, spokes = 72): Uint8Array {
   const bytes = new Uint8Array(84 + 50 * facets.length);
   const view = new DataView(bytes.buffer);
   view.setUint32(80, facets.length, true);
-  facets.forEach((f, i) => f.forEach((p, c) => p.forEach((v, k) => view.setFloat32(84 + 50 * i + 12 + 12 * c + 4 * k, v, true))));
+  for (const [i, f] of facets.entries())
+    for (const [c, p] of f.entries())
+      for (const [k, v] of p.entries()) view.setFloat32(84 + 50 * i + 12 + 12 * c + 4 * k, v, true);
   return bytes;
 }
 
 export function domeProject(partFile = 'dome.stl'): Project {
-  const p = newProject(partFile, [[-20, -20, -3], [20, 20, 15]]);
-  const on = (x: number, y: number) => ({ at: [x, y, Math.round(domeHeight(x, y) * 1e4) / 1e4] as [number, number, number] });
-  const trace = (id: string, net: string, ...route: [number, number][]) => ({ id, kind: 'trace' as const, net, width: 0.8, route: route.map(([x, y]) => on(x, y)) });
+  const p = newProject(partFile, [
+    [-20, -20, -3],
+    [20, 20, 15],
+  ]);
+  const on = (x: number, y: number) => ({
+    at: [x, y, Math.round(domeHeight(x, y) * 1e4) / 1e4] as [number, number, number],
+  });
+  const trace = (id: string, net: string, ...route: [number, number][]) => ({
+    id,
+    kind: 'trace' as const,
+    net,
+    width: 0.8,
+    route: route.map(([x, y]) => on(x, y)),
+  });
   p.name = 'lumpy dome';
   p.circuit.elements = [
     { id: 'p1', kind: 'pad', net: 'A', ...on(-15, -4), shape: { circle: 2 }, turn: 0 },

@@ -8,7 +8,17 @@ import { barycentric } from '../../src/core/mesh/surface-point.ts';
 import { loadPart } from '../../src/core/part/part.ts';
 import type { Project } from '../../src/core/project/schema.ts';
 import { domeHeight, domeStl } from './dome.ts';
-import { choose, domeFolder, freshFolder, menuLabel, type OpenWindow, openWindow, planned, step, stubDialogs } from './open-window.ts';
+import {
+  choose,
+  domeFolder,
+  freshFolder,
+  menuLabel,
+  type OpenWindow,
+  openWindow,
+  planned,
+  step,
+  stubDialogs,
+} from './open-window.ts';
 
 let w: OpenWindow;
 let file: string;
@@ -24,7 +34,10 @@ beforeAll(async () => {
 });
 afterAll(() => w?.close());
 
-const at = (dx: number, dy: number): [number, number] => [box.x + box.width / 2 + dx, box.y + box.height / 2 + dy];
+const at = (dx: number, dy: number): [number, number] => [
+  box.x + box.width / 2 + dx,
+  box.y + box.height / 2 + dy,
+];
 const listed = () => w.page.locator('.elements .id').allTextContents();
 const saved = async (): Promise<Project> => {
   await choose(w.app, 'save');
@@ -78,8 +91,15 @@ describe('drawing with the mouse', () => {
       const hit = part.queries.nearest(p)!;
       return { face: hit.face, bary: barycentric(part.mesh, hit.face, hit.point) };
     };
-    const length = shortestPath(part.mesh, surface(a!), surface(b!))!.length + shortestPath(part.mesh, surface(b!), surface(c!))!.length;
-    const shown = Number((await w.page.locator('.elements button', { hasText: 't4' }).locator('.count').textContent())!.replace(' mm', ''));
+    const length =
+      shortestPath(part.mesh, surface(a!), surface(b!))!.length +
+      shortestPath(part.mesh, surface(b!), surface(c!))!.length;
+    const shown = Number(
+      (await w.page.locator('.elements button', { hasText: 't4' }).locator('.count').textContent())!.replace(
+        ' mm',
+        '',
+      ),
+    );
     expect(Math.abs(shown - length)).toBeLessThan(0.06);
   });
 
@@ -175,7 +195,9 @@ describe('files', () => {
     writeFileSync(source, JSON.stringify(odd));
     await stubDialogs(w.app, { open: source, save: join(dirname(file), 'again.drape.json') });
     await w.page.keyboard.press('Control+o');
-    await expect.poll(() => w.page.locator('.notice').allTextContents()).toContainEqual(expect.stringContaining('$.shopNote'));
+    await expect
+      .poll(() => w.page.locator('.notice').allTextContents())
+      .toContainEqual(expect.stringContaining('$.shopNote'));
     await planned(w.page);
     await w.page.keyboard.press('Control+Shift+S');
     await w.page.waitForTimeout(800);

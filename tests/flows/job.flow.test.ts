@@ -4,7 +4,16 @@ import { dirname, join, relative } from 'node:path';
 import { afterAll, beforeAll, describe, expect, test } from 'vitest';
 import type { Project } from '../../src/core/project/schema.ts';
 import { runCli } from '../helpers/cli.ts';
-import { choose, domeFolder, type OpenWindow, openWindow, planned, step, stubDialogs, tally } from './open-window.ts';
+import {
+  choose,
+  domeFolder,
+  type OpenWindow,
+  openWindow,
+  planned,
+  step,
+  stubDialogs,
+  tally,
+} from './open-window.ts';
 
 let w: OpenWindow;
 let file: string;
@@ -98,7 +107,9 @@ describe('the height strip', () => {
     await w.page.mouse.down();
     await w.page.mouse.move(box.x + 8 - 60, box.y + 60, { steps: 6 });
     await w.page.mouse.up();
-    await expect.poll(() => w.page.locator('.strip-foot').textContent(), { timeout: 30_000 }).toMatch(/mm² of copper is not reached/);
+    await expect
+      .poll(() => w.page.locator('.strip-foot').textContent(), { timeout: 30_000 })
+      .toMatch(/mm² of copper is not reached/);
     expect((await tally(w.page)).red).toBeGreaterThan(30);
     await w.page.getByRole('button', { name: 'Fewest', exact: true }).click();
     await expect.poll(rows, { timeout: 30_000 }).toEqual(fewest);
@@ -111,7 +122,9 @@ describe('the height strip', () => {
     const before = Number(await marker.getAttribute('aria-valuenow'));
     await w.page.keyboard.press('ArrowRight');
     // To the right is a higher focus: the stage goes down.
-    await expect.poll(async () => Number(await marker.getAttribute('aria-valuenow'))).toBeCloseTo(before - 0.1, 6);
+    await expect
+      .poll(async () => Number(await marker.getAttribute('aria-valuenow')))
+      .toBeCloseTo(before - 0.1, 6);
   });
 });
 
@@ -138,7 +151,9 @@ describe('the files', () => {
     await stubDialogs(w.app, { open: folder });
     await w.page.getByTestId('view').focus();
     await choose(w.app, 'export');
-    await expect.poll(() => w.page.locator('[data-step=files]').textContent(), { timeout: 150_000 }).toMatch(/files written/);
+    await expect
+      .poll(() => w.page.locator('[data-step=files]').textContent(), { timeout: 150_000 })
+      .toMatch(/files written/);
     const run = await runCli(['run', file, '--out', join(folder, 'cli'), '--no-timing']);
     expect(run.stderr).not.toMatch(/fault/);
     const ours = filesIn(join(folder, 'lumpy-dome-scan'));
@@ -149,11 +164,25 @@ describe('the files', () => {
   }, 240_000);
 
   test('the Files step gives each layer the Z to set, with the cautions', async () => {
-    const report = JSON.parse(readFileSync(join(dirname(file), 'lumpy-dome-scan', 'report.json'), 'utf8')) as { setups: { layers: { zOffset: number }[] }[] };
-    const shown = await w.page.locator('[aria-label="What was written"] tbody td:first-of-type').allTextContents();
-    expect(shown.map((t) => Number(t.replace('−', '-').replace(' mm', '')))).toEqual(report.setups[0]!.layers.map((l) => Number(l.zOffset.toFixed(2))));
+    const report = JSON.parse(
+      readFileSync(join(dirname(file), 'lumpy-dome-scan', 'report.json'), 'utf8'),
+    ) as { setups: { layers: { zOffset: number }[] }[] };
+    const shown = await w.page
+      .locator('[aria-label="What was written"] tbody td:first-of-type')
+      .allTextContents();
+    expect(shown.map((t) => Number(t.replace('−', '-').replace(' mm', '')))).toEqual(
+      report.setups[0]!.layers.map((l) => Number(l.zOffset.toFixed(2))),
+    );
     const words = (await w.page.locator('.caution').textContent())!;
-    for (const part of ['class 4', 'IEC 60825-1', 'laser safety officer', 'caustic', 'formaldehyde', 'No number here is a safety limit']) expect(words).toContain(part);
+    for (const part of [
+      'class 4',
+      'IEC 60825-1',
+      'laser safety officer',
+      'caustic',
+      'formaldehyde',
+      'No number here is a safety limit',
+    ])
+      expect(words).toContain(part);
   });
 
   test('another folder with other things in it is not overwritten', async () => {
@@ -166,7 +195,9 @@ describe('the files', () => {
     writeFileSync(join(other, 'lumpy-dome-scan', 'thesis.txt'), 'mine');
     await stubDialogs(w.app, { open: other });
     await choose(w.app, 'export');
-    await expect.poll(() => w.page.locator('.notice').allTextContents(), { timeout: 150_000 }).toContainEqual(expect.stringContaining('holds other things'));
+    await expect
+      .poll(() => w.page.locator('.notice').allTextContents(), { timeout: 150_000 })
+      .toContainEqual(expect.stringContaining('holds other things'));
     expect(readdirSync(join(other, 'lumpy-dome-scan'))).toEqual(['thesis.txt']);
     expect(statSync(file).mtimeMs).toBe(before);
   }, 200_000);

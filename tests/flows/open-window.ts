@@ -57,7 +57,8 @@ export async function openWindow(file: string | null, user = freshFolder()): Pro
 export async function planned(page: Page): Promise<void> {
   await page.waitForFunction(
     () =>
-      /\d layer/.test(document.querySelector('[data-step=heights]')?.textContent ?? '') && !document.querySelector('.busy'),
+      /\d layer/.test(document.querySelector('[data-step=heights]')?.textContent ?? '') &&
+      !document.querySelector('.busy'),
     null,
     { timeout: 90_000 },
   );
@@ -69,10 +70,19 @@ export async function step(page: Page, name: string): Promise<void> {
 }
 
 /** Answers the system's dialogs of the window's process. */
-export async function stubDialogs(app: ElectronApplication, answers: { open?: string; save?: string }): Promise<void> {
+export async function stubDialogs(
+  app: ElectronApplication,
+  answers: { open?: string; save?: string },
+): Promise<void> {
   await app.evaluate(({ dialog }, a) => {
-    dialog.showOpenDialog = (async () => ({ canceled: a.open === undefined, filePaths: a.open === undefined ? [] : [a.open] })) as typeof dialog.showOpenDialog;
-    dialog.showSaveDialog = (async () => ({ canceled: a.save === undefined, filePath: a.save ?? '' })) as typeof dialog.showSaveDialog;
+    dialog.showOpenDialog = (async () => ({
+      canceled: a.open === undefined,
+      filePaths: a.open === undefined ? [] : [a.open],
+    })) as typeof dialog.showOpenDialog;
+    dialog.showSaveDialog = (async () => ({
+      canceled: a.save === undefined,
+      filePath: a.save ?? '',
+    })) as typeof dialog.showSaveDialog;
   }, answers);
 }
 
@@ -95,7 +105,8 @@ export async function tally(page: Page): Promise<Tally> {
   // What lies over the viewport has the same colours.
   const over = (visibility: string) =>
     page.evaluate((v) => {
-      for (const e of document.querySelectorAll<HTMLElement>('.stage > :not(.viewport)')) e.style.visibility = v;
+      for (const e of document.querySelectorAll<HTMLElement>('.stage > :not(.viewport)'))
+        e.style.visibility = v;
     }, visibility);
   await over('hidden');
   const shot = (await page.getByTestId('view').screenshot()).toString('base64');

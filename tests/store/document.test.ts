@@ -23,7 +23,13 @@ const routeOf = (p: Project, id: string) => {
 
 describe('acts', () => {
   const acts: [Act, string][] = [
-    [{ kind: 'add-element', element: { id: 'p9', kind: 'pad', net: '', at: [1, 2, 3], shape: { circle: 1 }, turn: 0 } }, 'place pad p9'],
+    [
+      {
+        kind: 'add-element',
+        element: { id: 'p9', kind: 'pad', net: '', at: [1, 2, 3], shape: { circle: 1 }, turn: 0 },
+      },
+      'place pad p9',
+    ],
     [{ kind: 'delete', ids: ['t1', 'p2'] }, 'delete 2 elements'],
     [{ kind: 'move-point', id: 't2', index: 1, at: [9, 8, 7] }, 'move point 2 of t2'],
     [{ kind: 'add-point', id: 't1', index: 1, at: [1, 1, 1] }, 'add point to t1'],
@@ -49,13 +55,20 @@ describe('acts', () => {
     expect(apply(two, { kind: 'remove-point', id: 't1', index: 0 })).toBe(two);
     expect(apply(p, { kind: 'delete', ids: ['nobody'] })).toBe(p);
     expect(apply(p, { kind: 'move-pad', id: 't1', at: [0, 0, 0] })).toBe(p);
-    expect(apply(p, { kind: 'set', path: ['head', 'focalLength'], what: 'x', value: p.head.focalLength })).toBe(p);
+    expect(
+      apply(p, { kind: 'set', path: ['head', 'focalLength'], what: 'x', value: p.head.focalLength }),
+    ).toBe(p);
   });
 
   test('a point is put in at its place and only there', () => {
     const p = frozen();
     const [a, b, c] = routeOf(p, 't2');
-    expect(routeOf(apply(p, { kind: 'add-point', id: 't2', index: 2, at: [1, 2, 3] }), 't2')).toEqual([a, b, [1, 2, 3], c]);
+    expect(routeOf(apply(p, { kind: 'add-point', id: 't2', index: 2, at: [1, 2, 3] }), 't2')).toEqual([
+      a,
+      b,
+      [1, 2, 3],
+      c,
+    ]);
   });
 
   test('what an act does not touch stays the same object, so that undo costs little', () => {
@@ -128,7 +141,17 @@ describe('undo and redo', () => {
       const e = p.circuit.elements[dice(p.circuit.elements.length)];
       const act: Act =
         !e || dice(4) === 0
-          ? { kind: 'add-element', element: { id: freeId(p, 'p'), kind: 'pad', net: '', at: [i, 0, 0], shape: { circle: 1 }, turn: 0 } }
+          ? {
+              kind: 'add-element',
+              element: {
+                id: freeId(p, 'p'),
+                kind: 'pad',
+                net: '',
+                at: [i, 0, 0],
+                shape: { circle: 1 },
+                turn: 0,
+              },
+            }
           : dice(3) === 0
             ? { kind: 'delete', ids: [e.id] }
             : { kind: 'edit-element', id: e.id, what: 'net', change: { net: `N${i}` } };

@@ -29,7 +29,8 @@ describe('what the copper looks like', () => {
     // The plane stands at bench height -offset (model.md §1): the sign is what this checks.
     for (const offset of [-6, -2, 1]) {
       let inFocus = 0;
-      for (let t = 0; t < copper.area.length; t++) if (Math.abs(heightAt(copper, heights, t) - -offset) <= 1.7 + 1e-6) inFocus += copper.area[t]!;
+      for (let t = 0; t < copper.area.length; t++)
+        if (Math.abs(heightAt(copper, heights, t) - -offset) <= 1.7 + 1e-6) inFocus += copper.area[t]!;
       const counts = countLooks(copper, 0, reach, plan, { show: 'offset', offset, depth });
       expect(counts.reached.area).toBeCloseTo(inFocus, 3);
       expect(inFocus).toBeGreaterThan(0.2);
@@ -43,7 +44,12 @@ describe('what the copper looks like', () => {
   });
 
   test('a reason that no offset mends is told before focus', () => {
-    const worse = { ...reach, fails: reach.fails.map((f, t) => (t === 5 ? f | (1 << REASONS.indexOf('shade')) | (1 << REASONS.indexOf('incidence')) : f)) };
+    const worse = {
+      ...reach,
+      fails: reach.fails.map((f, t) =>
+        t === 5 ? f | (1 << REASONS.indexOf('shade')) | (1 << REASONS.indexOf('incidence')) : f,
+      ),
+    };
     expect(reasonAt(copper, 5, heights, worse, plan, { show: 'offset', offset: 99, depth })).toBe('shade');
     expect(reasonAt(copper, 6, heights, worse, plan, { show: 'offset', offset: 99, depth })).toBe('focus');
   });
@@ -54,7 +60,9 @@ describe('the profile', () => {
     const p = heightProfile(copper, 0)!;
     expect(p.area.reduce((a, b) => a + b, 0)).toBeCloseTo(total, 3);
     // Oracle: sort triangles by their middle; half of the copper lies below the same height.
-    const byHeight = [...copper.area.keys()].sort((a, b) => heightAt(copper, heights, a) - heightAt(copper, heights, b));
+    const byHeight = [...copper.area.keys()].sort(
+      (a, b) => heightAt(copper, heights, a) - heightAt(copper, heights, b),
+    );
     let sum = 0;
     const middle = byHeight.find((t) => (sum += copper.area[t]!) > total / 2)!;
     let below = 0;
@@ -63,7 +71,9 @@ describe('the profile', () => {
   });
 
   test('bins have widths that a person reads easily', () => {
-    expect([0.013, 0.02, 0.3, 7, 10].map(niceStep).map((x) => Number(x.toPrecision(6)))).toEqual([0.02, 0.02, 0.5, 10, 10]);
+    expect([0.013, 0.02, 0.3, 7, 10].map(niceStep).map((x) => Number(x.toPrecision(6)))).toEqual([
+      0.02, 0.02, 0.5, 10, 10,
+    ]);
   });
 });
 

@@ -15,7 +15,10 @@ beforeEach(async () => {
   heavy = fakeWorker();
   live = fakeWorker();
   store = createStore({ heavy: heavy.client, live: live.client });
-  await store.openProject(writeProject(domeProject()), 'dome.drape.json', 'ref', { ref: 'part', bytes: domeStl(20, 40) });
+  await store.openProject(writeProject(domeProject()), 'dome.drape.json', 'ref', {
+    ref: 'part',
+    bytes: domeStl(20, 40),
+  });
   await store.settled();
 });
 
@@ -60,7 +63,9 @@ describe('following the document', () => {
   test('an element that cannot be laid is named, and the others stay', async () => {
     store.act({ kind: 'move-pad', id: 'p1', at: [0, 0, 60] });
     await store.settled();
-    expect(s().copper!.value.problems).toEqual([expect.objectContaining({ code: 'far-from-surface', place: '$.circuit.elements[0].at' })]);
+    expect(s().copper!.value.problems).toEqual([
+      expect.objectContaining({ code: 'far-from-surface', place: '$.circuit.elements[0].at' }),
+    ]);
     expect(s().copper!.value.elements.map((e) => e.id)).toEqual(['p2', 't1', 't2', 't3']);
     expect(stepWords(s()).circuit.words).toContain('1 cannot be laid');
   });
@@ -74,7 +79,10 @@ describe('following the document', () => {
     expect(moved.layers.slice(1).map((l) => l.focusHeight)).toEqual(fewest.slice(1));
     expect(moved.unreached.length).toBeGreaterThan(0);
     expect([...moved.layerOf]).toContain(-1);
-    expect(stepWords(s()).heights).toMatchObject({ mark: 'look', words: expect.stringContaining('left out') });
+    expect(stepWords(s()).heights).toMatchObject({
+      mark: 'look',
+      words: expect.stringContaining('left out'),
+    });
     expect(s().history.past.at(-1)!.name).toBe('change height of layer 1');
     store.fewest();
     await store.settled();
@@ -93,7 +101,11 @@ describe('following the document', () => {
 describe('drawing', () => {
   test('clicks lie on the surface in the order they were made, though each waits for its place', async () => {
     store.setTool('trace');
-    const clicks: [number, number][] = [[-6, -9], [3, -8], [9, -2]];
+    const clicks: [number, number][] = [
+      [-6, -9],
+      [3, -8],
+      [9, -2],
+    ];
     for (const [x, y] of clicks) void store.press(down(x, y), 0.5, false);
     await store.finish();
     const t4 = element('t4');

@@ -3,7 +3,10 @@ import { partPoint } from '../../src/core/base/brands.ts';
 import { type Pose, poseFrame } from '../../src/core/base/pose.ts';
 import { turned } from '../../src/store/turns.ts';
 
-const start: Pose = { rotate: [0.18257418583505536, 0.3651483716701107, 0.5477225575051661, 0.7302967433402214], move: [3, -7, 2] };
+const start: Pose = {
+  rotate: [0.18257418583505536, 0.3651483716701107, 0.5477225575051661, 0.7302967433402214],
+  move: [3, -7, 2],
+};
 const p = partPoint([1.5, -2.25, 4]);
 
 test.each([
@@ -15,12 +18,12 @@ test.each([
   const before = poseFrame(start).point(p);
   const after = poseFrame(turned(start, axis, 90)).point(p);
   const want = expected(before) as number[];
-  after.forEach((v, k) => expect(v).toBeCloseTo(want[k]!, 5));
+  for (const [k, v] of after.entries()) expect(v).toBeCloseTo(want[k]!, 5);
 });
 
 test('four quarter turns change nothing', () => {
   let pose = start;
   for (let i = 0; i < 4; i++) pose = turned(pose, 1, 90);
   const [a, b] = [poseFrame(start).point(p), poseFrame(pose).point(p)];
-  a.forEach((v, k) => expect(b[k]).toBeCloseTo(v, 5));
+  for (const [k, v] of a.entries()) expect(b[k]).toBeCloseTo(v, 5);
 });

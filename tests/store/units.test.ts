@@ -19,9 +19,12 @@ test.each([
   expect(readNumber(text, 'length', 'mm')).toEqual({ value: mm });
 });
 
-test.each(['', 'abc', '1.2.3', '5 kg', '1 in in', '--2', '1,000.5', 'NaN', 'Infinity'])('"%s" is refused with words', (text) => {
-  expect(readNumber(text, 'length', 'mm')).toHaveProperty('problem', expect.stringMatching(/\w/));
-});
+test.each(['', 'abc', '1.2.3', '5 kg', '1 in in', '--2', '1,000.5', 'NaN', 'Infinity'])(
+  '"%s" is refused with words',
+  (text) => {
+    expect(readNumber(text, 'length', 'mm')).toHaveProperty('problem', expect.stringMatching(/\w/));
+  },
+);
 
 test('angles take degrees and radians, plain numbers their own unit and no other', () => {
   expect(readNumber('90°', 'angle', '°')).toEqual({ value: 90 });
@@ -32,6 +35,8 @@ test('angles take degrees and radians, plain numbers their own unit and no other
 });
 
 test('numbers are shown short, with a true minus and no minus zero', () => {
-  expect([show(1.5, 2), show(2, 2), show(-0.001, 2), show(-1.25, 2), show(100, 0), show(Number.NaN)]).toEqual(['1.5', '2', '0', '−1.25', '100', '–']);
+  expect([show(1.5, 2), show(2, 2), show(-0.001, 2), show(-1.25, 2), show(100, 0), show(Number.NaN)]).toEqual(
+    ['1.5', '2', '0', '−1.25', '100', '–'],
+  );
   expect([signed(3.2), signed(-1), signed(0), signed(-0.001)]).toEqual(['+3.20', '−1.00', '0.00', '0.00']);
 });

@@ -1,29 +1,48 @@
 import { describe, expect, test } from 'vitest';
 import type { Vec3 } from '../../src/core/base/vec.ts';
-import { axesOf, between, type Eye, fitted, lookingAt, orbited, panned, rayThrough, seenAt, VIEWS, zoomed } from '../../src/view/eye.ts';
+import {
+  axesOf,
+  between,
+  type Eye,
+  fitted,
+  lookingAt,
+  orbited,
+  panned,
+  rayThrough,
+  seenAt,
+  VIEWS,
+  zoomed,
+} from '../../src/view/eye.ts';
 
 const eye: Eye = { target: [3, -5, 2], yaw: 0.7, pitch: 0.4, half: 20 };
 const aspect = 1.6;
 const dot = (a: Vec3, b: Vec3) => a[0] * b[0] + a[1] * b[1] + a[2] * b[2];
 
 describe('the eye', () => {
-  test.each(Object.keys(VIEWS) as (keyof typeof VIEWS)[])('%s has right-handed axes of unit length', (name) => {
-    const { right, up, back } = axesOf({ ...eye, ...VIEWS[name] });
-    for (const v of [right, up, back]) expect(dot(v, v)).toBeCloseTo(1, 12);
-    expect(right[1] * up[2] - right[2] * up[1]).toBeCloseTo(back[0], 12);
-    expect(right[2] * up[0] - right[0] * up[2]).toBeCloseTo(back[1], 12);
-    expect(right[0] * up[1] - right[1] * up[0]).toBeCloseTo(back[2], 12);
-  });
+  test.each(Object.keys(VIEWS) as (keyof typeof VIEWS)[])(
+    '%s has right-handed axes of unit length',
+    (name) => {
+      const { right, up, back } = axesOf({ ...eye, ...VIEWS[name] });
+      for (const v of [right, up, back]) expect(dot(v, v)).toBeCloseTo(1, 12);
+      expect(right[1] * up[2] - right[2] * up[1]).toBeCloseTo(back[0], 12);
+      expect(right[2] * up[0] - right[0] * up[2]).toBeCloseTo(back[1], 12);
+      expect(right[0] * up[1] - right[1] * up[0]).toBeCloseTo(back[2], 12);
+    },
+  );
 
   test('the beam’s eye looks down with +X to the right and +Y up: nothing is mirrored', () => {
     const { right, up, back } = axesOf({ ...eye, ...VIEWS.beam });
-    right.forEach((v, k) => expect(v).toBeCloseTo([1, 0, 0][k]!, 12));
-    up.forEach((v, k) => expect(v).toBeCloseTo([0, 1, 0][k]!, 12));
-    back.forEach((v, k) => expect(v).toBeCloseTo([0, 0, 1][k]!, 12));
+    for (const [k, v] of right.entries()) expect(v).toBeCloseTo([1, 0, 0][k]!, 12);
+    for (const [k, v] of up.entries()) expect(v).toBeCloseTo([0, 1, 0][k]!, 12);
+    for (const [k, v] of back.entries()) expect(v).toBeCloseTo([0, 0, 1][k]!, 12);
   });
 
   test('a ray through a place of the viewport passes what is seen there', () => {
-    for (const [x, y] of [[0, 0], [0.8, -0.3], [-1, 1]] as const) {
+    for (const [x, y] of [
+      [0, 0],
+      [0.8, -0.3],
+      [-1, 1],
+    ] as const) {
       const { origin, direction } = rayThrough(eye, x, y, aspect, 500);
       const p = [0, 1, 2].map((k) => origin[k]! + 470 * direction[k]!) as unknown as Vec3;
       const [a, b] = seenAt(eye, p, aspect);
@@ -66,7 +85,7 @@ describe('the eye', () => {
   test('looking at a place puts it in the middle, seen along its normal', () => {
     const n: Vec3 = [0.48, -0.64, 0.6];
     const e = lookingAt(eye, [7, 8, 9], n);
-    axesOf(e).back.forEach((v, k) => expect(v).toBeCloseTo(n[k]!, 9));
+    for (const [k, v] of axesOf(e).back.entries()) expect(v).toBeCloseTo(n[k]!, 9);
     expect(seenAt(e, [7, 8, 9], aspect).map((v) => Math.abs(v))).toEqual([0, 0]);
   });
 

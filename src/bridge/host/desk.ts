@@ -6,7 +6,16 @@ import { randomBytes } from 'node:crypto';
 import { existsSync, mkdirSync, readdirSync, readFileSync } from 'node:fs';
 import { rm } from 'node:fs/promises';
 import { basename, dirname, join, relative, resolve, sep } from 'node:path';
-import { HostError, type LostWork, type Opened, type OpenedProject, type PartFile, type Place, type RecentFile, type StartNews } from '../host.ts';
+import {
+  HostError,
+  type LostWork,
+  type Opened,
+  type OpenedProject,
+  type PartFile,
+  type Place,
+  type RecentFile,
+  type StartNews,
+} from '../host.ts';
 import { type Reply, type Request, requestSchema } from '../requests.ts';
 import { putFolder, readWhole, saveWhole } from './files.ts';
 
@@ -55,7 +64,8 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
   };
   const pathOf = (ref: string): string => {
     const path = refs.get(ref);
-    if (path === undefined) throw new HostError({ problem: 'this place was never chosen', mend: 'choose it in a dialog' });
+    if (path === undefined)
+      throw new HostError({ problem: 'this place was never chosen', mend: 'choose it in a dialog' });
     return path;
   };
 
@@ -71,7 +81,8 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
       return { started: false, dismissed: [], recent: [] };
     }
   };
-  const change = (f: (s: Settings) => Settings) => saveWhole(settingsFile, JSON.stringify(f(settings()), null, 2) + '\n');
+  const change = (f: (s: Settings) => Settings) =>
+    saveWhole(settingsFile, JSON.stringify(f(settings()), null, 2) + '\n');
   const remember = (path: string) =>
     change((s) => ({ ...s, recent: [path, ...s.recent.filter((p) => p !== path)].slice(0, RECENT) }));
   const recent = (): RecentFile[] =>
@@ -86,14 +97,26 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
       return { kind: 'part', name: basename(path), part: { file: basename(path), ref: refOf(path), bytes } };
     }
     if (!/\.json$/i.test(path))
-      throw new HostError({ problem: `${basename(path)} is neither a part nor a project`, mend: 'open an .stl or a .drape.json file' });
+      throw new HostError({
+        problem: `${basename(path)} is neither a part nor a project`,
+        mend: 'open an .stl or a .drape.json file',
+      });
     const text = new TextDecoder().decode(await readWhole(path));
     await remember(path);
-    return { kind: 'project', ref: refOf(path), name: basename(path), text, ...(await partOf(text, dirname(path))) };
+    return {
+      kind: 'project',
+      ref: refOf(path),
+      name: basename(path),
+      text,
+      ...(await partOf(text, dirname(path))),
+    };
   }
 
   /** The part that a project names. What is wrong with the project itself is for its reader to say. */
-  async function partOf(text: string, folder: string): Promise<{ part: PartFile | null; partProblem?: string }> {
+  async function partOf(
+    text: string,
+    folder: string,
+  ): Promise<{ part: PartFile | null; partProblem?: string }> {
     const file = partFileIn(text);
     if (file === null) return { part: null, partProblem: 'the project names no part' };
     if (!/\.stl$/i.test(file)) return { part: null, partProblem: `"${file}" is not an .stl file` };
@@ -107,10 +130,16 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
 
   function lost(): LostWork[] {
     return readdirSync(journalFolder)
-      .filter((f) => f.endsWith('.json') && join(journalFolder, f) !== journalFile && !alive(Number(f.split('-')[0])))
+      .filter(
+        (f) =>
+          f.endsWith('.json') && join(journalFolder, f) !== journalFile && !alive(Number(f.split('-')[0])),
+      )
       .flatMap((f) => {
         try {
-          const entry = JSON.parse(readFileSync(join(journalFolder, f), 'utf8')) as { name: string; when: string };
+          const entry = JSON.parse(readFileSync(join(journalFolder, f), 'utf8')) as {
+            name: string;
+            when: string;
+          };
           return [{ id: f, name: entry.name, when: entry.when }];
         } catch {
           return [];
@@ -120,19 +149,28 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
   }
 
   async function recover(id: string, take: boolean): Promise<OpenedProject | null> {
-    if (!lost().some((l) => l.id === id)) throw new HostError({ problem: 'there is no such work', mend: 'open the saved project instead' });
+    if (!lost().some((l) => l.id === id))
+      throw new HostError({ problem: 'there is no such work', mend: 'open the saved project instead' });
     const path = join(journalFolder, id);
     const side = path.replace(/\.json$/, '.part');
     let back: OpenedProject | null = null;
     if (take) {
-      const e = JSON.parse(readFileSync(path, 'utf8')) as { name: string; path: string | null; text: string; partFile: string; partPath: string | null };
+      const e = JSON.parse(readFileSync(path, 'utf8')) as {
+        name: string;
+        path: string | null;
+        text: string;
+        partFile: string;
+        partPath: string | null;
+      };
       const partPath = e.partPath ?? (existsSync(side) ? side : null);
       back = {
         kind: 'project',
         ref: e.path ? refOf(e.path) : null,
         name: e.name,
         text: e.text,
-        part: partPath ? { file: e.partFile, ref: e.partPath ? refOf(e.partPath) : null, bytes: await readWhole(partPath) } : null,
+        part: partPath
+          ? { file: e.partFile, ref: e.partPath ? refOf(e.partPath) : null, bytes: await readWhole(partPath) }
+          : null,
       };
     }
     await rm(path, { force: true });
@@ -193,7 +231,8 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
         const place: Place = {
           ref: refOf(path),
           name: basename(path),
-          partFile: partPath === null ? basename(r.partName) : relative(dirname(path), partPath).split(sep).join('/'),
+          partFile:
+            partPath === null ? basename(r.partName) : relative(dirname(path), partPath).split(sep).join('/'),
           writePart: partPath === null,
         };
         return place;
@@ -202,7 +241,11 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
         const path = pathOf(r.ref);
         if (r.part) {
           const beside = join(dirname(path), basename(r.part.file));
-          if (!/\.stl$/i.test(beside)) throw new HostError({ problem: `"${r.part.file}" is not an .stl file`, mend: 'give the part such a name' });
+          if (!/\.stl$/i.test(beside))
+            throw new HostError({
+              problem: `"${r.part.file}" is not an .stl file`,
+              mend: 'give the part such a name',
+            });
           await saveWhole(beside, r.part.bytes);
         }
         await saveWhole(path, r.text);
@@ -217,18 +260,23 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
         return folder;
       }
       case 'journal':
-        return (await journal(r.entry), null);
+        await journal(r.entry);
+        return null;
       case 'recent':
         return recent();
       case 'dismiss':
-        return (await change((s) => ({ ...s, dismissed: [...new Set([...s.dismissed, r.what])] })), null);
+        await change((s) => ({ ...s, dismissed: [...new Set([...s.dismissed, r.what])] }));
+        return null;
       case 'title':
-        return (frame.title(r.name, r.unsaved), null);
+        frame.title(r.name, r.unsaved);
+        return null;
       case 'menu':
-        return (frame.menu(r.menus), null);
+        frame.menu(r.menus);
+        return null;
       case 'close':
         await journal(null);
-        return (frame.close(), null);
+        frame.close();
+        return null;
     }
   }
 
@@ -237,7 +285,11 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
     async answer(raw) {
       const request = requestSchema.safeParse(raw);
       if (!request.success)
-        return { ok: false, problem: 'the host was asked something it does not know', mend: 'this is a mistake of the program' };
+        return {
+          ok: false,
+          problem: 'the host was asked something it does not know',
+          mend: 'this is a mistake of the program',
+        };
       try {
         return { ok: true, value: await meet(request.data) };
       } catch (error) {

@@ -36,9 +36,15 @@ export async function readWhole(path: string): Promise<Uint8Array> {
  * Puts a set of files into a folder as a whole: into a fresh folder beside it, then in its place.
  * @throws HostError when something else than an earlier export lies there
  */
-export async function putFolder(folder: string, files: readonly { path: string; bytes: Uint8Array }[]): Promise<void> {
+export async function putFolder(
+  folder: string,
+  files: readonly { path: string; bytes: Uint8Array }[],
+): Promise<void> {
   if (existsSync(folder) && !(await isExport(folder)))
-    throw new HostError({ problem: `${folder} holds other things`, mend: 'choose another folder, or move them away' });
+    throw new HostError({
+      problem: `${folder} holds other things`,
+      mend: 'choose another folder, or move them away',
+    });
   const mark = randomBytes(4).toString('hex');
   const fresh = `${folder}.${mark}.new`;
   const old = `${folder}.${mark}.old`;
@@ -76,7 +82,13 @@ async function isExport(folder: string): Promise<boolean> {
 function cannot(what: 'read' | 'write', path: string, error: unknown): HostError {
   const code = (error as { code?: string }).code;
   const why =
-    code === 'ENOENT' ? 'it is not there' : code === 'EACCES' || code === 'EPERM' ? 'it is not allowed' : code === 'ENOSPC' ? 'the disk is full' : (error as Error).message;
+    code === 'ENOENT'
+      ? 'it is not there'
+      : code === 'EACCES' || code === 'EPERM'
+        ? 'it is not allowed'
+        : code === 'ENOSPC'
+          ? 'the disk is full'
+          : (error as Error).message;
   return new HostError({
     problem: `cannot ${what} ${path}: ${why}`,
     mend: what === 'read' ? 'check that it is still there' : 'save to another place',

@@ -49,7 +49,11 @@ export async function pageAt(root: string, path: string): Promise<Page> {
   const kind = KINDS[extname(file).toLowerCase()];
   if (kind === undefined) return refuse(404);
   try {
-    return { status: 200, headers: { ...HEADERS, 'Content-Type': kind }, body: new Uint8Array(await readFile(file)) };
+    return {
+      status: 200,
+      headers: { ...HEADERS, 'Content-Type': kind },
+      body: new Uint8Array(await readFile(file)),
+    };
   } catch {
     return refuse(404);
   }

@@ -36,7 +36,12 @@ export async function serve(options: ServeOptions): Promise<Served> {
   const ended = new Promise<void>((done) => {
     end = done;
   });
-  const desk = createDesk(options.state, dialogsIn(options.folder), { title() {}, menu() {}, close: () => setTimeout(end, 200) }, options.startFile);
+  const desk = createDesk(
+    options.state,
+    dialogsIn(options.folder),
+    { title() {}, menu() {}, close: () => setTimeout(end, 200) },
+    options.startFile,
+  );
   const server = createServer((request, response) => {
     answer(request, response).catch(() => {
       if (!response.headersSent) response.writeHead(500, HEADERS);
@@ -51,7 +56,11 @@ export async function serve(options: ServeOptions): Promise<Served> {
     const url = new URL(request.url ?? '/', `http://127.0.0.1:${port}`);
     if (request.method === 'GET' && url.pathname === '/' && url.searchParams.has('key')) {
       if (!same(url.searchParams.get('key') ?? '', key)) return refuse(response, 403);
-      response.writeHead(303, { ...HEADERS, Location: '/', 'Set-Cookie': `beamdrape=${key}; HttpOnly; SameSite=Strict; Path=/` });
+      response.writeHead(303, {
+        ...HEADERS,
+        Location: '/',
+        'Set-Cookie': `beamdrape=${key}; HttpOnly; SameSite=Strict; Path=/`,
+      });
       response.end();
       return;
     }
@@ -114,7 +123,10 @@ function dialogsIn(folder: string): Dialogs {
   const inFolder = (named: string | undefined): string | null => {
     if (named === undefined) return null;
     if (/[\\/\0]/.test(named) || named.startsWith('.'))
-      throw new HostError({ problem: `"${named}" is not a plain file name`, mend: `give a name in ${folder}` });
+      throw new HostError({
+        problem: `"${named}" is not a plain file name`,
+        mend: `give a name in ${folder}`,
+      });
     return join(folder, named);
   };
   return {

@@ -17,9 +17,15 @@ export async function startWindow(args: readonly string[]): Promise<number> {
   const wrong = args.find((a) => a.startsWith('-') && !known.has(a));
   const files = args.filter((a) => !a.startsWith('-'));
   if (wrong !== undefined || files.length > 1)
-    return say(wrong ? `window: there is no option ${wrong}; use [FILE] [--browser] [--no-open].` : 'window: give one file at most.', 2);
+    return say(
+      wrong
+        ? `window: there is no option ${wrong}; use [FILE] [--browser] [--no-open].`
+        : 'window: give one file at most.',
+      2,
+    );
   const file = files[0] === undefined ? null : resolve(files[0]);
-  if (file !== null && !existsSync(file)) return say(`${files[0]}: there is no such file; check its name.`, 2);
+  if (file !== null && !existsSync(file))
+    return say(`${files[0]}: there is no such file; check its name.`, 2);
   const out = builtFolder();
   if (out === null) return say('The window is not built; run "npm run build" first.', 2);
 
@@ -28,14 +34,22 @@ export async function startWindow(args: readonly string[]): Promise<number> {
     say(`Opening a desktop window (${desktop.how}).`);
     return runDesktop(desktop.exe, dirname(out), file);
   }
-  const served = await serve({ pages: join(out, 'renderer'), state: stateFolder(), folder: file ? dirname(file) : process.cwd(), startFile: file });
+  const served = await serve({
+    pages: join(out, 'renderer'),
+    state: stateFolder(),
+    folder: file ? dirname(file) : process.cwd(),
+    startFile: file,
+  });
   const opener = args.includes('--no-open') ? null : openerOf();
   say(`Opening in a browser, because ${desktop.reason}.`);
   say(`Files are read and saved in ${file ? dirname(file) : process.cwd()}.`);
   if (opener === null || !launch(opener, served.url)) say('Open this address in a browser on this computer:');
   process.stdout.write(served.url + '\n');
   say('Ctrl+C ends it.');
-  await Promise.race([served.ended, new Promise<void>((stop) => process.once('SIGINT', stop).once('SIGTERM', stop))]);
+  await Promise.race([
+    served.ended,
+    new Promise<void>((stop) => process.once('SIGINT', stop).once('SIGTERM', stop)),
+  ]);
   await served.close();
   return 0;
 }
@@ -60,9 +74,14 @@ function desktopRuntime(out: string): Desktop {
   if (process.platform === 'linux' && !process.env['DISPLAY'] && !process.env['WAYLAND_DISPLAY'])
     return { reason: 'this session has no screen for a desktop window' };
   const named = process.env['ELECTRON_EXE'];
-  if (named) return existsSync(named) ? { exe: named, how: 'the runtime that ELECTRON_EXE names' } : { reason: 'ELECTRON_EXE names a file that is not there' };
+  if (named)
+    return existsSync(named)
+      ? { exe: named, how: 'the runtime that ELECTRON_EXE names' }
+      : { reason: 'ELECTRON_EXE names a file that is not there' };
   try {
-    const folder = dirname(createRequire(join(dirname(out), 'package.json')).resolve('electron/package.json'));
+    const folder = dirname(
+      createRequire(join(dirname(out), 'package.json')).resolve('electron/package.json'),
+    );
     const exe = join(folder, 'dist', readFileSync(join(folder, 'path.txt'), 'utf8').trim());
     if (existsSync(exe)) return { exe, how: 'the installed Electron' };
   } catch {
@@ -77,7 +96,9 @@ function runDesktop(exe: string, app: string, file: string | null): Promise<numb
     say('Running as root: the system sandbox cannot be used, so it is switched off.');
     flags.push('--no-sandbox');
   }
-  const child = spawn(exe, [...flags, app, ...(file ? [file] : [])], { stdio: ['ignore', 'inherit', 'ignore'] });
+  const child = spawn(exe, [...flags, app, ...(file ? [file] : [])], {
+    stdio: ['ignore', 'inherit', 'ignore'],
+  });
   return new Promise((done) => {
     child.once('error', (error) => done(say(`The desktop window could not be opened: ${error.message}.`, 3)));
     child.once('exit', (code) => done(code === 0 || code === null ? 0 : 3));
@@ -101,7 +122,8 @@ function openerOf(): string[] | null {
 }
 
 function launch(opener: readonly string[], url: string): boolean {
-  if (process.platform === 'linux' && !process.env['DISPLAY'] && !process.env['WAYLAND_DISPLAY']) return false;
+  if (process.platform === 'linux' && !process.env['DISPLAY'] && !process.env['WAYLAND_DISPLAY'])
+    return false;
   const child = spawn(opener[0]!, [...opener.slice(1), url], { stdio: 'ignore', detached: true });
   child.on('error', () => {});
   child.unref();

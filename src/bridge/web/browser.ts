@@ -16,10 +16,18 @@ export function browserHost(person: AskPerson): Host {
   const send = async (request: Request): Promise<Reply> => {
     const response = await fetch('/ask', { method: 'POST', body: pack(request) });
     if (!response.ok)
-      return { ok: false, problem: `the server refused (${response.status})`, mend: 'open the address with its key again' };
+      return {
+        ok: false,
+        problem: `the server refused (${response.status})`,
+        mend: 'open the address with its key again',
+      };
     return unpack(new Uint8Array(await response.arrayBuffer())) as Reply;
   };
-  const ask = askThrough((r) => send(r).catch((): Reply => ({ ok: false, problem: 'the server does not answer', mend: 'start the program again' })));
+  const ask = askThrough((r) =>
+    send(r).catch(
+      (): Reply => ({ ok: false, problem: 'the server does not answer', mend: 'start the program again' }),
+    ),
+  );
   const listeners = new Set<(event: HostEvent) => void>();
   let unsaved = false;
   addEventListener('beforeunload', (event) => {

@@ -16,7 +16,8 @@ export function desktopHost(preload: Preload): Host {
     ...common(ask),
     kind: 'desktop',
     open: () => ask({ ask: 'open' }),
-    openDropped: async (files) => valueOf<Opened | null>(await preload.dropped([...files])) ?? openDropped(files),
+    openDropped: async (files) =>
+      taken<Opened | null>(await preload.dropped([...files])) ?? openDropped(files),
     choosePlace: (suggested, partRef, partName) => ask({ ask: 'choose-place', suggested, partRef, partName }),
     exportFiles: (suggested, files) => ask({ ask: 'export', suggested, files: [...files] }),
     listen: (hear) => preload.listen(hear),
@@ -28,9 +29,9 @@ export type Ask = <T>(request: Request) => Promise<T>;
 export const askThrough =
   (send: (request: Request) => Promise<Reply>): Ask =>
   async <T>(request: Request) =>
-    valueOf<T>(await send(request));
+    taken<T>(await send(request));
 
-function valueOf<T>(reply: Reply): T {
+function taken<T>(reply: Reply): T {
   if (!reply.ok) throw new HostError({ problem: reply.problem, mend: reply.mend });
   return reply.value as T;
 }
@@ -40,7 +41,8 @@ export function common(ask: Ask) {
   return {
     start: () => ask<Awaited<ReturnType<Host['start']>>>({ ask: 'start' }),
     openRecent: (ref: string) => ask<Awaited<ReturnType<Host['openRecent']>>>({ ask: 'open-recent', ref }),
-    recover: (id: string, take: boolean) => ask<Awaited<ReturnType<Host['recover']>>>({ ask: 'recover', id, take }),
+    recover: (id: string, take: boolean) =>
+      ask<Awaited<ReturnType<Host['recover']>>>({ ask: 'recover', id, take }),
     save: (r: Parameters<Host['save']>[0]) => ask<void>({ ask: 'save', ...r }),
     journal: (entry: Parameters<Host['journal']>[0]) => ask<void>({ ask: 'journal', entry }),
     recent: () => ask<Awaited<ReturnType<Host['recent']>>>({ ask: 'recent' }),

@@ -17,8 +17,16 @@ export async function openDropped(files: readonly File[]): Promise<Opened | null
       ...(part ? {} : { partProblem: 'drop the project together with its part' }),
     };
   }
-  if (part) return { kind: 'part', name: part.name, part: { file: part.name, ref: null, bytes: await bytesOf(part) } };
+  if (part)
+    return {
+      kind: 'part',
+      name: part.name,
+      part: { file: part.name, ref: null, bytes: await bytesOf(part) },
+    };
   if (files.length > 0)
-    throw new HostError({ problem: `${files[0]!.name} is neither a part nor a project`, mend: 'drop an .stl or a .drape.json file' });
+    throw new HostError({
+      problem: `${files[0]!.name} is neither a part nor a project`,
+      mend: 'drop an .stl or a .drape.json file',
+    });
   return null;
 }
