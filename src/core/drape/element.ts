@@ -6,8 +6,8 @@ import { alongLine, type ClippedPatch, clipBelow, levelLines, patchArea } from '
 import { type FieldValue, refine } from './refine.ts';
 
 /** How straight a field must be along patch edges at the outline, mm, and where halving them ends: a sharp corner is cut by less than this. */
-export const TRUE_TO = 0.002;
-export const FINE = 0.02;
+export const TRUE_TO = 0.0005;
+export const FINE = 0.012;
 /** Fields are known this far past the outline, mm: as far as patch triangles that hold copper reach. */
 export const MARGIN = 0.1;
 
@@ -28,7 +28,11 @@ export function layOut(mesh: SurfaceMesh, faces: Iterable<number>, evaluate: (fa
   const copper = clipBelow(field, field.edge, 0);
   const outline = levelLines(field, field.edge, 0).map((line) => {
     const points = alongLine(line, field.positions, 3);
-    return line.closed ? Float64Array.of(...points, points[0], points[1], points[2]) : points;
+    if (!line.closed) return points;
+    const loop = new Float64Array(points.length + 3);
+    loop.set(points);
+    loop.set(points.subarray(0, 3), points.length);
+    return loop;
   });
   return { field, copper, outline, area: patchArea(copper) };
 }

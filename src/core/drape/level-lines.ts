@@ -75,7 +75,7 @@ export function levelLines(patch: Patch, values: Float64Array, level: number, on
       list.push(k);
       done[k] = 1;
       k = following[k];
-    } while (k >= 0 && k !== start);
+    } while (k >= 0 && !done[k]);
     lines.push({
       ends: Uint32Array.from(list.flatMap((i) => [ends[2 * i], ends[2 * i + 1]])),
       share: Float64Array.from(list, (i) => (level - values[ends[2 * i]]) / (values[ends[2 * i + 1]] - values[ends[2 * i]])),

@@ -39,7 +39,7 @@ export function drapePad(solver: WindowSolver, pad: Pad, centre: Place): Draped 
     field.faces,
     (f, p) => {
       const seen = field.nearest(f, p);
-      if (!seen || seen.distance > reach) return { edge: heldDistance(null, reach, far(p)) - circumradius(shape), hatch: 0, along: 0 };
+      if (!seen || seen.distance > reach) return { edge: heldDistance(null, reach, () => far(p)) - circumradius(shape), hatch: 0, along: 0 };
       const angle = polarAngle(seen) - turn;
       const u = seen.distance * Math.cos(angle);
       const v = seen.distance * Math.sin(angle);

@@ -4,7 +4,8 @@ import type { WindowSolver } from '../geodesic/windows.ts';
 import { faceNormal } from '../mesh/surface-point.ts';
 import type { Region } from '../project/schema.ts';
 import { type Band, band } from './band.ts';
-import { type Draped, MARGIN, layOut } from './element.ts';
+import { type Draped, layOut } from './element.ts';
+import { boxBound, heldDistance } from './lower-bound.ts';
 import { AREA_STEP } from './pad.ts';
 import { joinRoute, type Place } from './route.ts';
 
@@ -22,8 +23,9 @@ export function drapeRegion(solver: WindowSolver, baseline: WindowSolver, region
   const { path } = route;
   if (path.faces.length < 2) return { element: null, findings: [{ rule: 'no-copper', element: region.id, at: places[0].point, text: 'the outline encloses nothing' }] };
   const depth = (path.length / (2 * Math.PI)) * DEPTH;
-  const outside = MARGIN;
-  const rim = band(solver, path, { left: depth, right: outside, closed: true, stops: route.stops });
+  const far = boxBound(path.points);
+  // As far outside as inside: at a sharp corner the side that is nearer must be heard on both of its sides.
+  const rim = band(solver, path, { left: depth, right: depth, closed: true, stops: route.stops });
   // Fill lines run along the longest line from corner to corner, and keep their distance from it.
   const lay = (reach: number) => {
     const hatch = hatchBand(baseline, corners, reach);
@@ -33,7 +35,7 @@ export function drapeRegion(solver: WindowSolver, baseline: WindowSolver, region
       rim.faces,
       (face, p) => {
         const at = rim.at(face, p);
-        if (!at || (at.across <= 0 && at.distance > outside)) return { edge: outside, hatch: 0, along: 0 };
+        if (!at || at.distance > depth) return { edge: heldDistance(null, depth, () => far(p)), hatch: 0, along: 0 };
         const h = hatch?.at(face, p);
         if (!h && at.across > 0) blind = true;
         return { edge: at.across > 0 ? -at.distance : at.distance, hatch: h ? h.across : 0, along: 0 };

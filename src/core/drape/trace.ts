@@ -29,7 +29,7 @@ export function drapeTrace(solver: WindowSolver, trace: Trace, places: readonly 
     field.faces,
     (face, p) => {
       const at = field.at(face, p);
-      const edge = heldDistance(at?.distance ?? null, reach, far(p)) - half;
+      const edge = heldDistance(at?.distance ?? null, reach, () => far(p)) - half;
       return at ? { edge, hatch: at.across, along: at.along } : { edge, hatch: 0, along: 0 };
     },
     traceStep(trace.width),

@@ -79,22 +79,30 @@ export function traceBack(solver: WindowSolver, arrival: Arrival, to: SurfacePoi
   return gather(points, faces);
 }
 
-/** Drops pieces of no length and adds the rest up. */
+/** A piece shorter than this share of the path is a crossing met twice (targets on edges): its direction would mean nothing. */
+const NO_PIECE = 1e-10;
+
+/** Drops pieces of no length, keeps both ends, and adds the rest up. */
 function gather(points: Vec3[], faces: number[]): GeodesicPath {
+  const last = points.length - 1;
+  let whole = 0;
+  for (let i = 0; i < last; i++) whole += distance(points[i], points[i + 1]);
   const keep: Vec3[] = [points[0]];
   const inFace: number[] = [];
-  let length = 0;
-  for (let i = 1; i < points.length; i++) {
-    const d = distance(keep[keep.length - 1], points[i]);
-    if (d === 0 && (i < points.length - 1 || keep.length > 1)) continue;
+  for (let i = 1; i <= last; i++) {
+    if (distance(keep[keep.length - 1], points[i]) <= NO_PIECE * whole) {
+      if (i < last) continue;
+      if (keep.length > 1) {
+        // The end stands for the crossing just before it.
+        keep[keep.length - 1] = points[last];
+        continue;
+      }
+    }
     keep.push(points[i]);
     inFace.push(faces[i - 1]);
-    length += d;
   }
-  if (keep.length === 1) {
-    keep.push(points[points.length - 1]);
-    inFace.push(faces[0]);
-  }
+  let length = 0;
+  for (let i = 0; i + 1 < keep.length; i++) length += distance(keep[i], keep[i + 1]);
   return { points: Float64Array.from(keep.flat()), faces: Int32Array.from(inFace), length };
 }
 

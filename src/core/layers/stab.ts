@@ -95,5 +95,19 @@ export function fewestHeights(demands: readonly Demand[], grid: HeightGrid): Few
     if (stabRight(tightest(d), count)) good = d;
     else bad = d;
   }
-  return { count, worst: good, intervals: tightest(good) };
+  // The bound that bisection ends at is a hair off: the plan it allows has a largest defocus of its own.
+  const worst = largestDefocus(demands, tightest(good), stabRight(tightest(good), count)!);
+  return { count, worst, intervals: tightest(worst) };
+}
+
+/** Largest |defocus| when each demand takes the best of the heights in its interval. */
+function largestDefocus(demands: readonly Demand[], intervals: readonly (readonly [number, number])[], heights: readonly number[]): number {
+  let worst = 0;
+  demands.forEach((x, i) => {
+    const [lo, hi] = intervals[i];
+    let best = Infinity;
+    for (const h of heights) if (h >= lo && h <= hi) best = Math.min(best, Math.max(x.high - h, h - x.low));
+    worst = Math.max(worst, best);
+  });
+  return worst;
 }

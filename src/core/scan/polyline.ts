@@ -22,8 +22,13 @@ export function surfaceLine(line: LevelLine, positions: Float64Array): SurfaceLi
 /** Values of a vertex field along a level line, one a point of its surface line. */
 export const lineValues = (line: LevelLine, values: Float64Array): Float64Array => closeUp(alongLine(line, values, 1), line.closed, 1);
 
-const closeUp = (flat: Float64Array, closed: boolean, stride: number): Float64Array =>
-  closed ? Float64Array.of(...flat, ...flat.subarray(0, stride)) : flat;
+function closeUp(flat: Float64Array, closed: boolean, stride: number): Float64Array {
+  if (!closed) return flat;
+  const out = new Float64Array(flat.length + stride);
+  out.set(flat);
+  out.set(flat.subarray(0, stride), flat.length);
+  return out;
+}
 
 /** The parts of a line where every condition holds, cut by linear interpolation. A closed line that is cut opens at the cut. */
 export function cutLine(line: SurfaceLine, conditions: readonly Keep[]): SurfaceLine[] {
@@ -61,7 +66,8 @@ export function cutLine(line: SurfaceLine, conditions: readonly Keep[]): Surface
   // A closed line's last part runs on into its first.
   if (line.closed && out.length > 1 && inside(0)) {
     const first = out.shift()!;
-    out[out.length - 1].push(...first.slice(3));
+    const last = out[out.length - 1];
+    for (let i = 3; i < first.length; i++) last.push(first[i]);
   }
   return out.map((p) => ({ points: Float64Array.from(p), closed: false }));
 }
