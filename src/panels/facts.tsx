@@ -248,14 +248,16 @@ function MarginRow({ margin: m, onShow }: { margin: Margin; onShow(): void }) {
   const share = Math.max(0, Math.min(1, m.share));
   return (
     <div className={m.ok ? 'margin' : 'margin bad'}>
-      <span className="margin-name">
-        {m.ok ? '' : '✕ '}
-        {m.label}
-      </span>
-      <span className="margin-value">
-        {show(m.value, 2)}{' '}
-        <span className="dim">
-          of {show(m.limit, 2)} {m.unit}
+      <span className="margin-head">
+        <span className="margin-name">
+          {m.ok ? '' : '✕ '}
+          {m.label}
+        </span>
+        <span className="margin-value">
+          {show(m.value, 2)}{' '}
+          <span className="dim">
+            of {show(m.limit, 2)} {m.unit}
+          </span>
         </span>
       </span>
       <span className="bar" aria-hidden="true">

@@ -1,8 +1,38 @@
 /** Files: the scan settings, writing, and what to do at the bench, with the cautions that belong to it. */
+import type { Report } from '../core/project/report.ts';
 import { isUnsaved } from '../store/state.ts';
 import { show, signed } from '../store/units.ts';
 import { NumberField } from './fields.tsx';
 import { useSteady, useWindow } from './window.tsx';
+
+const CHECKS = ['focus', 'incidence', 'shade', 'field', 'dose'] as const;
+
+/** Which checks fail, and for whom; a click selects them. */
+function Failing({ report }: { report: Report }) {
+  const { store } = useWindow();
+  const rows = [
+    ...CHECKS.map((c) => ({
+      what: c as string,
+      ids: report.elements.filter((e) => !e[c].ok).map((e) => e.id),
+    })),
+    ...report.rules.map((r) => ({
+      what: `${r.rule} ${show(r.value, 2)} of ${show(r.limit, 2)} mm (${r.level})`,
+      ids: r.elements,
+    })),
+  ].filter((r) => r.ids.length > 0);
+  if (rows.length === 0) return null;
+  return (
+    <ul className="failing" aria-label="Checks that fail">
+      {rows.map((r) => (
+        <li key={r.what + r.ids.join()}>
+          <button type="button" onClick={() => store.select(r.ids)}>
+            {r.what}: {r.ids.join(', ')}
+          </button>
+        </li>
+      ))}
+    </ul>
+  );
+}
 
 export function FilesStep() {
   const { store, run } = useWindow();
@@ -49,6 +79,13 @@ export function FilesStep() {
             {report.proof &&
               `Read back: ${show(100 * report.proof.covered, 2)} % covered, ${show(report.proof.stray_mm2, 3)} mm² stray, ${report.proof.opens.length} opens, ${report.proof.shorts.length} shorts.`}
           </p>
+          {report.collisions.map((c) => (
+            <p key={`${c.setup} ${c.layer}`} className="wrong">
+              In setup “{c.setup}”, layer {c.layer}, the part would stand {show(c.height, 1)} mm above the
+              focal plane under the lens body. No scan files were written.
+            </p>
+          ))}
+          <Failing report={report} />
           {report.setups.map((s) => (
             <table key={s.name} className="layers">
               <caption>Setup “{s.name}”, in this order</caption>

@@ -77,7 +77,7 @@ export function HeightsStep() {
         label="What moves in Z"
         value={stage.zMoves}
         options={[
-          ['stage', 'the stage, with the part'],
+          ['stage', 'the stage'],
           ['head', 'the head'],
         ]}
         onValue={(v) => set(['stage', 'zMoves'], 'what moves in Z', v)}

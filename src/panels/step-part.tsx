@@ -63,7 +63,7 @@ export function PartStep() {
           ['inch', 'inch'],
         ]}
       />
-      <h3>On the bench</h3>
+      <h3>On the bench, mm</h3>
       {setupsOf(project).length > 1 && (
         <ChoiceField
           label="Setup"

@@ -65,6 +65,13 @@ export function ReachStep() {
             </div>
           );
         })}
+      {copper && copper.elements.length > 0 && !plan && !state.busy && (
+        <p className="row">
+          <button type="button" onClick={() => store.again()}>
+            Look again
+          </button>
+        </p>
+      )}
       <h3>Limits</h3>
       <NumberField
         label="Steepest incidence"

@@ -5,11 +5,9 @@ export function Tools() {
   const { store, run } = useWindow();
   const tool = useLook((s) => s.tool);
   const part = useLook((s) => s.part);
-  const offset = useLook((s) => s.history.past.length + s.history.future.length);
-  const { past, future } = store.getState().history;
+  const { past, future } = useLook((s) => s.history);
   const undo = past[past.length - 1];
   const redo = future[0];
-  void offset;
   const pick = (kind: 'look' | 'trace' | 'pad') => store.setTool(kind);
   return (
     <div className="tools" role="toolbar" aria-label="Tools">

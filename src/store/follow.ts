@@ -6,6 +6,8 @@ import type { State } from './state.ts';
 export interface Follower {
   /** The document changed. */
   wake(): void;
+  /** Takes up what the person stopped. */
+  again(): void;
   /** Settles when everything shown belongs to the document as it is. */
   settled(): Promise<void>;
 }
@@ -76,6 +78,10 @@ export function createFollower(
   };
   return {
     wake,
+    again() {
+      followed = -1;
+      wake();
+    },
     settled: async () => {
       while (running) await running;
     },

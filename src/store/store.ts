@@ -560,6 +560,7 @@ export function createStore(workers: Workers) {
     },
     /** Stops whatever long work runs. */
     stop: () => workers.heavy.stopAll(),
+    again: follower.again,
     settled: follower.settled,
   };
 }

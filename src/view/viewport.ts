@@ -240,6 +240,7 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
 
   function placeHandles(): void {
     const places = handlePlaces(get());
+    overlay.classList.toggle('many', places.length > 8);
     while (dots.length < places.length) {
       const dot = document.createElement('div');
       dot.className = 'handle';
