@@ -89,8 +89,9 @@ export function band(solver: WindowSolver, path: SurfacePath, options: BandOptio
       if (!seen) return null;
       const { root, distance } = seen;
       if (root.kind === 'segment') return { distance, across: seen.qy, along: root.start + seen.qx };
-      if (root.vertex >= 0) return { distance, across: root.side * distance, along: root.start };
       const k = root.source - n;
+      // A vertex reached from a joint or an end stands for the joint: point sources have no arc length of their own.
+      if (root.vertex >= 0) return { distance, across: root.side * distance, along: k < 0 ? root.start : startOf[joints[k].index] };
       const joint = joints[k];
       const s = startOf[joint.index];
       const angle = polarAngle(seen);
