@@ -36,7 +36,20 @@ export function dialElements(): object[] {
     const way = e.leave > 180 ? e.leave - 360 : e.leave;
     const goal = e.leave > 90 && e.leave <= 180 ? e.tail + 360 : e.tail;
     const lane = arc(e.lane, e.leave > 180 ? way : e.leave, goal);
-    elements.push({ id: `lead${n}`, kind: 'trace', net: e.name, width: 0.6, route: [at(e.outer - 0.5, e.leave), ...lane, at(18, e.tail), at(20.5, e.tail), at(24, e.tail), at(PAD.radius, e.tail)] });
+    elements.push({
+      id: `lead${n}`,
+      kind: 'trace',
+      net: e.name,
+      width: 0.6,
+      route: [
+        at(e.outer - 0.5, e.leave),
+        ...lane,
+        at(18, e.tail),
+        at(20.5, e.tail),
+        at(24, e.tail),
+        at(PAD.radius, e.tail),
+      ],
+    });
     elements.push(pad(`pad${n}`, e.name, e.tail));
   }
   elements.push({
@@ -56,9 +69,19 @@ export function dialElements(): object[] {
       at(PAD.radius, GUARD.tailLeft),
     ],
   });
-  elements.push(pad('guard-pad-right', 'GUARD', GUARD.tailRight), pad('guard-pad-left', 'GUARD', GUARD.tailLeft));
+  elements.push(
+    pad('guard-pad-right', 'GUARD', GUARD.tailRight),
+    pad('guard-pad-left', 'GUARD', GUARD.tailLeft),
+  );
   return elements;
 }
 
 /** Pad across the skirt with its long side down the slope: u runs with the part's +X, so the turn is the tail's own angle. */
-const pad = (id: string, net: string, deg: number): object => ({ id, kind: 'pad', net, ...at(PAD.radius, deg), shape: { rect: [PAD.length, PAD.width] }, turn: deg });
+const pad = (id: string, net: string, deg: number): object => ({
+  id,
+  kind: 'pad',
+  net,
+  ...at(PAD.radius, deg),
+  shape: { rect: [PAD.length, PAD.width] },
+  turn: deg,
+});

@@ -15,7 +15,8 @@ const BLEND = 1.5;
 
 const skirtHeight = (r: number): number => RIM.height + (RIM.radius - r) * Math.tan(SKIRT.slope);
 const domeRadius = (SKIRT.top ** 2 + DOME ** 2) / (2 * DOME);
-const capHeight = (r: number): number => skirtHeight(SKIRT.top) + DOME - domeRadius + Math.sqrt(domeRadius ** 2 - r ** 2);
+const capHeight = (r: number): number =>
+  skirtHeight(SKIRT.top) + DOME - domeRadius + Math.sqrt(domeRadius ** 2 - r ** 2);
 /** Past its rim the cap goes straight on, so that skirt and dome cross once. */
 const domeHeight = (r: number): number => {
   const inside = Math.min(r, SKIRT.top);

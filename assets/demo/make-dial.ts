@@ -66,9 +66,31 @@ const project = {
     proof: { covered: 0.995, strayTolerance: 0.05, stray: 0.001 },
   },
   stage: { step: 0.01, range: [-30, 30], zMoves: 'stage' },
-  scan: { linePitch: 0.03, markSpeed: 800, jumpSpeed: 3000, jumpDelay_us: 300, markDelay_us: 150, stitch: 0.2, passes: 1 },
-  copper: { thickness_um: 3, depositFactor: 1.2, rate_um_per_h: 6, bathVolume_L: 1.0, bathLoad: [0.5, 2.5], temperature_C: 20, temperatureRise: 10, density: 8.89 },
-  setups: [{ name: 'top', pose: { rotate: [0, 0, round(Math.sin(half)), round(Math.cos(half))], move: [2.5, -1.5, -8] } }],
+  scan: {
+    linePitch: 0.03,
+    markSpeed: 800,
+    jumpSpeed: 3000,
+    jumpDelay_us: 300,
+    markDelay_us: 150,
+    stitch: 0.2,
+    passes: 1,
+  },
+  copper: {
+    thickness_um: 3,
+    depositFactor: 1.2,
+    rate_um_per_h: 6,
+    bathVolume_L: 1.0,
+    bathLoad: [0.5, 2.5],
+    temperature_C: 20,
+    temperatureRise: 10,
+    density: 8.89,
+  },
+  setups: [
+    {
+      name: 'top',
+      pose: { rotate: [0, 0, round(Math.sin(half)), round(Math.cos(half))], move: [2.5, -1.5, -8] },
+    },
+  ],
   circuit: { elements: dialElements(), drapes: [] },
 };
 writeFileSync(new URL('touch-dial.drape.json', here), JSON.stringify(project, null, 2) + '\n');

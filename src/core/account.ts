@@ -24,7 +24,13 @@ import { gapRule } from './rules/gap.ts';
 import { widthRule } from './rules/width.ts';
 import type { LayerScan } from './scan/strokes.ts';
 
-export function openReport(project: Project, unknown: readonly string[], part: Part, copper: Copper, findings: readonly DrapeFinding[]): Report {
+export function openReport(
+  project: Project,
+  unknown: readonly string[],
+  part: Part,
+  copper: Copper,
+  findings: readonly DrapeFinding[],
+): Report {
   const beam = focusedBeam(project.head);
   const area = copper.elements.reduce((sum, e) => sum + e.area, 0);
   const plated = plating(area, project.copper);
@@ -45,8 +51,17 @@ export function openReport(project: Project, unknown: readonly string[], part: P
     },
     elements: [],
     rules: [
-      ...findings.map((f) => ({ rule: f.rule, level: 'error' as const, value: 0, limit: 0, elements: [f.element], at: at(f.at) })),
-      ...[...widthRule(copper.elements, project.limits), ...gapRule(copper.elements, project.limits)].map((x) => ({ ...x, value: r(x.value), at: at(x.at) })),
+      ...findings.map((f) => ({
+        rule: f.rule,
+        level: 'error' as const,
+        value: 0,
+        limit: 0,
+        elements: [f.element],
+        at: at(f.at),
+      })),
+      ...[...widthRule(copper.elements, project.limits), ...gapRule(copper.elements, project.limits)].map(
+        (x) => ({ ...x, value: r(x.value), at: at(x.at) }),
+      ),
     ],
     setups: [],
     unreached: { length: 0, elements: [] },
@@ -70,7 +85,12 @@ export function openReport(project: Project, unknown: readonly string[], part: P
 }
 
 /** Setups and copper that no layer writes. */
-export function partsOfReport(report: Report, setups: readonly Setup[], copper: Copper, plans: readonly SetupPlan[]): void {
+export function partsOfReport(
+  report: Report,
+  setups: readonly Setup[],
+  copper: Copper,
+  plans: readonly SetupPlan[],
+): void {
   report.setups = plans.map((p): SetupReport => {
     const { pose } = setups[p.setup];
     return { name: p.name, pose: { rotate: pose.rotate, move: pose.move }, layers: [] };
@@ -82,7 +102,12 @@ export function partsOfReport(report: Report, setups: readonly Setup[], copper: 
   };
 }
 
-export function collisionsOf(project: Project, setups: readonly Setup[], part: Part, plans: readonly SetupPlan[]): Report['collisions'] {
+export function collisionsOf(
+  project: Project,
+  setups: readonly Setup[],
+  part: Part,
+  plans: readonly SetupPlan[],
+): Report['collisions'] {
   return plans.flatMap((plan, i) =>
     plan.layers.flatMap((layer) => {
       const hit = collision(part.mesh, setups[i].pose, layer.stageOffset, project.head, project.limits);
@@ -114,7 +139,14 @@ export function elementReports(
     });
     const after = reachElement(project, setups[s], part, element, defocus);
     const used = [...new Set(layerOf)].filter((k) => k >= 0).sort((a, b) => a - b);
-    return elementReport(project, element, used.length > 0 ? [plan.name] : [], used.map((k) => plan.layers[k].index), after, { layerOf, plan });
+    return elementReport(
+      project,
+      element,
+      used.length > 0 ? [plan.name] : [],
+      used.map((k) => plan.layers[k].index),
+      after,
+      { layerOf, plan },
+    );
   });
 }
 
@@ -193,7 +225,15 @@ function shadedShare(element: CopperElement, reach: ElementReach): number {
   return all > 0 ? shaded / all : 0;
 }
 
-export function layerReport(project: Project, copper: Copper, reach: SetupReach, plan: SetupPlan, layer: Layer, scan: LayerScan, files: string[]): SetupReport['layers'][number] {
+export function layerReport(
+  project: Project,
+  copper: Copper,
+  reach: SetupReach,
+  plan: SetupPlan,
+  layer: Layer,
+  scan: LayerScan,
+  files: string[],
+): SetupReport['layers'][number] {
   let area = 0;
   let low = Infinity;
   let high = -Infinity;
@@ -217,7 +257,10 @@ export function layerReport(project: Project, copper: Copper, reach: SetupReach,
     worstDefocus: r(layer.worstDefocus),
     copperArea: r(area),
     heights: [r(low), r(high)],
-    extent: [[r(x0), r(y0)], [r(x1), r(y1)]],
+    extent: [
+      [r(x0), r(y0)],
+      [r(x1), r(y1)],
+    ],
     markLength: r(scan.markLength),
     jumpLength: r(scan.jumpLength),
     time: r(scan.time),
@@ -229,16 +272,28 @@ export function layerReport(project: Project, copper: Copper, reach: SetupReach,
 function middle(element: CopperElement, t: number): Vec3 {
   const { positions: x, triangles } = element.copper;
   const [a, b, c] = [3 * triangles[3 * t], 3 * triangles[3 * t + 1], 3 * triangles[3 * t + 2]];
-  return [(x[a] + x[b] + x[c]) / 3, (x[a + 1] + x[b + 1] + x[c + 1]) / 3, (x[a + 2] + x[b + 2] + x[c + 2]) / 3];
+  return [
+    (x[a] + x[b] + x[c]) / 3,
+    (x[a + 1] + x[b + 1] + x[c + 1]) / 3,
+    (x[a + 2] + x[b + 2] + x[c + 2]) / 3,
+  ];
 }
 
 function triangleArea(element: CopperElement, t: number): number {
   const { positions: x, triangles } = element.copper;
   const [a, b, c] = [3 * triangles[3 * t], 3 * triangles[3 * t + 1], 3 * triangles[3 * t + 2]];
-  const ux = x[b] - x[a], uy = x[b + 1] - x[a + 1], uz = x[b + 2] - x[a + 2];
-  const vx = x[c] - x[a], vy = x[c + 1] - x[a + 1], vz = x[c + 2] - x[a + 2];
+  const ux = x[b] - x[a],
+    uy = x[b + 1] - x[a + 1],
+    uz = x[b + 2] - x[a + 2];
+  const vx = x[c] - x[a],
+    vy = x[c + 1] - x[a + 1],
+    vz = x[c + 2] - x[a + 2];
   return Math.hypot(uy * vz - uz * vy, uz * vx - ux * vz, ux * vy - uy * vx) / 2;
 }
 
 /** Places to the nanometre. */
-const at = (p: Vec3): Vec3 => [Math.round(p[0] * 1e6) / 1e6 + 0, Math.round(p[1] * 1e6) / 1e6 + 0, Math.round(p[2] * 1e6) / 1e6 + 0];
+const at = (p: Vec3): Vec3 => [
+  Math.round(p[0] * 1e6) / 1e6 + 0,
+  Math.round(p[1] * 1e6) / 1e6 + 0,
+  Math.round(p[2] * 1e6) / 1e6 + 0,
+];

@@ -2,9 +2,11 @@
  * The whole line on one page: part + drawing → drape → reach → layers → scan → files → proof.
  * The window, the command line and the tests all run this, so that all of them get the same bytes.
  */
+
+import { collisionsOf, elementReports, layerReport, openReport, partsOfReport } from './account.ts';
 import { InputError } from './base/news.ts';
 import type { RunContext } from './base/run-context.ts';
-import { collisionsOf, elementReports, layerReport, openReport, partsOfReport } from './account.ts';
+import { focusedBeam } from './beam/beam.ts';
 import type { Copper } from './drape/copper.ts';
 import { drapeCircuit } from './drape/drape.ts';
 import { layerCsv } from './files/csv.ts';
@@ -12,13 +14,19 @@ import { layerFile, safeNames } from './files/names.ts';
 import { type OutputFile, textFile } from './files/output.ts';
 import { jobSheet } from './files/sheet.ts';
 import { layerSvg } from './files/svg.ts';
-import { focusedBeam } from './beam/beam.ts';
 import type { SetupPlan } from './layers/plan.ts';
 import { planLayers } from './layers/plan-layers.ts';
 import { loadPart, type Part } from './part/part.ts';
 import type { ProofReport, Report } from './project/report.ts';
 import type { Project, Setup } from './project/schema.ts';
-import { planProof, type LayerPulses, type Proof, type ProofFormat, type ProofInput, verdict } from './proof/prove.ts';
+import {
+  type LayerPulses,
+  type Proof,
+  type ProofFormat,
+  type ProofInput,
+  planProof,
+  verdict,
+} from './proof/prove.ts';
 import { checkReach } from './reach/reach.ts';
 import type { SetupReach } from './reach/result.ts';
 import { prepareGround, scanLayer } from './scan/scan-layer.ts';
@@ -58,7 +66,12 @@ const FORMATS: readonly ProofFormat[] = ['csv', 'svg'];
  * @throws InputError for everything in the files that cannot be used
  * @throws Cancelled
  */
-export async function runJob(input: JobInput, options: JobOptions, ctx: RunContext, workers: Workers): Promise<JobResult> {
+export async function runJob(
+  input: JobInput,
+  options: JobOptions,
+  ctx: RunContext,
+  workers: Workers,
+): Promise<JobResult> {
   const { project, projectFile } = input;
   const setups = setupsOf(project, projectFile);
   const part = loadPart(input.part.bytes, input.part.file, project.part.units, ctx);
@@ -81,15 +94,32 @@ export async function runJob(input: JobInput, options: JobOptions, ctx: RunConte
   const written = scanFiles(project, setups, part, copper, reach, plans, report, ctx);
   // The proof reads the report from the files, as it would after a run.
   const drawn = { project, mesh: part.mesh, normals: part.normals, copper };
-  const proof = await proveFiles({ ...drawn, files: [...written.files, reportFile(report)], formats: FORMATS }, ctx, workers);
+  const proof = await proveFiles(
+    { ...drawn, files: [...written.files, reportFile(report)], formats: FORMATS },
+    ctx,
+    workers,
+  );
   report.proof = proof.report;
   report.ok = holds(report);
-  const sheet = jobSheet(project, report, written.scans.map((scans, i) => ({ report: report.setups[i], scans })));
+  const sheet = jobSheet(
+    project,
+    report,
+    written.scans.map((scans, i) => ({ report: report.setups[i], scans })),
+  );
   return { report, files: [...written.files, reportFile(report), textFile('sheet.html', sheet)] };
 }
 
 /** Strokes and files of every layer of every setup; their numbers go into the report. */
-function scanFiles(project: Project, setups: readonly Setup[], part: Part, copper: Copper, reach: readonly SetupReach[], plans: readonly SetupPlan[], report: Report, ctx: RunContext) {
+function scanFiles(
+  project: Project,
+  setups: readonly Setup[],
+  part: Part,
+  copper: Copper,
+  reach: readonly SetupReach[],
+  plans: readonly SetupPlan[],
+  report: Report,
+  ctx: RunContext,
+) {
   const files: OutputFile[] = [];
   const folders = safeNames(setups.map((s) => s.name));
   const spot = 2 * focusedBeam(project.head).waist;
@@ -127,7 +157,8 @@ export async function proveFiles(input: ProofInput, ctx: RunContext, workers: Wo
   return proof;
 }
 
-const reportFile = (report: Report): OutputFile => textFile('report.json', JSON.stringify(report, null, 2) + '\n');
+const reportFile = (report: Report): OutputFile =>
+  textFile('report.json', JSON.stringify(report, null, 2) + '\n');
 
 /** Every check of every element, every rule of level error, and the proof. */
 function holds(report: Report): boolean {
@@ -145,13 +176,24 @@ function holds(report: Report): boolean {
  * @throws InputError `not-yet`
  */
 export function setupsOf(project: Project, file: string): Setup[] {
-  const no = (place: string, problem: string, mend: string) => new InputError({ code: 'not-yet', file, place, problem, mend });
-  if (project.setups === 'auto') throw no('$.setups', 'this release does not choose setups by itself', 'give each setup its pose');
+  const no = (place: string, problem: string, mend: string) =>
+    new InputError({ code: 'not-yet', file, place, problem, mend });
+  if (project.setups === 'auto')
+    throw no('$.setups', 'this release does not choose setups by itself', 'give each setup its pose');
   project.setups.forEach((s, i) => {
-    if (s.measured) throw no(`$.setups[${i}].measured`, 'this release does not fit a pose to measured points', 'give the pose itself');
+    if (s.measured)
+      throw no(
+        `$.setups[${i}].measured`,
+        'this release does not fit a pose to measured points',
+        'give the pose itself',
+      );
   });
   const { axes } = project.head;
   if (axes && (axes.swap || axes.flipX || axes.flipY || axes.turn || axes.scale))
-    throw no('$.head.axes', 'this release does not turn or mirror the field', 'leave it out and turn the field at the machine');
+    throw no(
+      '$.head.axes',
+      'this release does not turn or mirror the field',
+      'leave it out and turn the field at the machine',
+    );
   return project.setups;
 }

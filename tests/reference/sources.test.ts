@@ -1,7 +1,9 @@
 import { readdirSync, readFileSync } from 'node:fs';
 import { describe, expect, it } from 'vitest';
 
-const files = (readdirSync('tests', { recursive: true }) as string[]).filter((f) => f.endsWith('.reference.test.ts')).map((f) => `tests/${f}`);
+const files = (readdirSync('tests', { recursive: true }) as string[])
+  .filter((f) => f.endsWith('.reference.test.ts'))
+  .map((f) => `tests/${f}`);
 
 describe('reference tests', () => {
   it('there are some', () => {

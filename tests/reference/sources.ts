@@ -3,19 +3,43 @@
  * sees to that. `seen` says how the value was taken: from the source's own text, from its formula, or from memory.
  */
 export const sources = {
-  'exact-geodesics': { title: 'Exact distances on six meshes, CGAL 5.5.1 Surface_mesh_shortest_path; see tests/reference/geodesic/README.md', seen: 'computed' },
-  'do-carmo': { title: 'M. do Carmo, Differential Geometry of Curves and Surfaces, 1976: great circles, helices, cones, Gauss–Bonnet, geodesic discs', seen: 'formula' },
+  'exact-geodesics': {
+    title:
+      'Exact distances on six meshes, CGAL 5.5.1 Surface_mesh_shortest_path; see tests/reference/geodesic/README.md',
+    seen: 'computed',
+  },
+  'do-carmo': {
+    title:
+      'M. do Carmo, Differential Geometry of Curves and Surfaces, 1976: great circles, helices, cones, Gauss–Bonnet, geodesic discs',
+    seen: 'formula',
+  },
   'gray-tubes': { title: 'A. Gray, Tubes, 1990 (Weyl’s formula): areas of bands', seen: 'formula' },
   'iso-11146': { title: 'ISO 11146-1: beam parameter product, M²', seen: 'formula, from memory' },
   siegman: { title: 'A. E. Siegman, Lasers, 1986: w(z), peak fluence', seen: 'formula' },
-  'urey-2004': { title: 'H. Urey, Appl. Opt. 43 (2004) 620: truncated Gaussian beams', seen: 'coefficients from memory, checked against the integral' },
-  'liu-1982': { title: 'J. M. Liu, Opt. Lett. 7 (1982) 196: activated width of a pulse', seen: 'formula, from memory' },
+  'urey-2004': {
+    title: 'H. Urey, Appl. Opt. 43 (2004) 620: truncated Gaussian beams',
+    seen: 'coefficients from memory, checked against the integral',
+  },
+  'liu-1982': {
+    title: 'J. M. Liu, Opt. Lett. 7 (1982) 196: activated width of a pulse',
+    seen: 'formula, from memory',
+  },
   'similar-triangles': { title: 'Elementary geometry of a ray through a pivot', seen: 'formula' },
-  'kleinberg-tardos': { title: 'J. Kleinberg, É. Tardos, Algorithm Design, 2006, ch. 4: stabbing intervals', seen: 'by hand and by exhaustive search' },
-  'johnson-mcgeoch': { title: 'D. Johnson, L. McGeoch, The traveling salesman problem: a case study, 1997: nearest neighbour 25 % above Held–Karp', seen: 'from memory' },
+  'kleinberg-tardos': {
+    title: 'J. Kleinberg, É. Tardos, Algorithm Design, 2006, ch. 4: stabbing intervals',
+    seen: 'by hand and by exhaustive search',
+  },
+  'johnson-mcgeoch': {
+    title:
+      'D. Johnson, L. McGeoch, The traveling salesman problem: a case study, 1997: nearest neighbour 25 % above Held–Karp',
+    seen: 'from memory',
+  },
   'iec-60028': { title: 'IEC 60028: resistivity of annealed copper', seen: 'quoted' },
   'ipc-2221': { title: 'IPC-2221: I = k ΔT^0.44 A^0.725', seen: 'from memory' },
-  'mallory-hajdu': { title: 'G. Mallory, J. Hajdu, Electroless Plating, 1990: reaction', seen: 'from memory; balanced by molar masses (IUPAC)' },
+  'mallory-hajdu': {
+    title: 'G. Mallory, J. Hajdu, Electroless Plating, 1990: reaction',
+    seen: 'from memory; balanced by molar masses (IUPAC)',
+  },
   'xml-1': { title: 'W3C XML 1.0: names and ids', seen: 'from memory' },
   'rfc-4180': { title: 'RFC 4180: comma-separated values', seen: 'from memory' },
   rotation: { title: 'Closed forms of rotations by quaternions', seen: 'formula' },

@@ -12,9 +12,15 @@ export function rotationMatrix(q: readonly [number, number, number, number]): Fl
   const l = Math.hypot(q[0], q[1], q[2], q[3]);
   const [x, y, z, w] = [q[0] / l, q[1] / l, q[2] / l, q[3] / l];
   return Float64Array.of(
-    1 - 2 * (y * y + z * z), 2 * (x * y - z * w), 2 * (x * z + y * w),
-    2 * (x * y + z * w), 1 - 2 * (x * x + z * z), 2 * (y * z - x * w),
-    2 * (x * z - y * w), 2 * (y * z + x * w), 1 - 2 * (x * x + y * y),
+    1 - 2 * (y * y + z * z),
+    2 * (x * y - z * w),
+    2 * (x * z + y * w),
+    2 * (x * y + z * w),
+    1 - 2 * (x * x + z * z),
+    2 * (y * z - x * w),
+    2 * (x * z - y * w),
+    2 * (y * z + x * w),
+    1 - 2 * (x * x + y * y),
   );
 }
 
@@ -36,7 +42,11 @@ export function poseFrame(pose: Pose) {
     ],
     pointToPart: (p: BenchPoint): PartPoint => {
       const [x, y, z] = [p[0] - tx, p[1] - ty, p[2] - tz];
-      return [m[0] * x + m[3] * y + m[6] * z, m[1] * x + m[4] * y + m[7] * z, m[2] * x + m[5] * y + m[8] * z] as unknown as PartPoint;
+      return [
+        m[0] * x + m[3] * y + m[6] * z,
+        m[1] * x + m[4] * y + m[7] * z,
+        m[2] * x + m[5] * y + m[8] * z,
+      ] as unknown as PartPoint;
     },
     directionToPart: (v: Vec3): Vec3 => [
       m[0] * v[0] + m[3] * v[1] + m[6] * v[2],

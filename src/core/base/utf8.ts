@@ -29,7 +29,8 @@ export function decodeUtf8(bytes: Uint8Array): string {
   let chunk: number[] = [];
   for (let i = 0; i < bytes.length; ) {
     const b = bytes[i];
-    const extra = b < 0x80 ? 0 : b >= 0xc2 && b < 0xe0 ? 1 : b >= 0xe0 && b < 0xf0 ? 2 : b >= 0xf0 && b < 0xf5 ? 3 : -1;
+    const extra =
+      b < 0x80 ? 0 : b >= 0xc2 && b < 0xe0 ? 1 : b >= 0xe0 && b < 0xf0 ? 2 : b >= 0xf0 && b < 0xf5 ? 3 : -1;
     let code = extra === 0 ? b : extra > 0 ? b & (0x3f >> extra) : 0xfffd;
     let used = 1;
     if (extra > 0) {

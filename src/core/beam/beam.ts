@@ -47,7 +47,8 @@ export function focusedBeam(head: Head): Beam {
 export const ureyFactor = (t: number): number => 1.654 - 0.105 / t + 0.28 / (t * t);
 
 /** 1/e² radius at defocus d for a beam that leans so that u_z = `uz`, mm: the way along the beam is d / u_z. */
-export const spotRadius = (beam: Beam, d: number, uz = 1): number => beam.waist * Math.sqrt(1 + (d / uz / beam.rayleigh) ** 2);
+export const spotRadius = (beam: Beam, d: number, uz = 1): number =>
+  beam.waist * Math.sqrt(1 + (d / uz / beam.rayleigh) ** 2);
 
 /** Peak fluence on a surface that the beam meets at incidence θ, J/cm². */
 export const peakFluence = (beam: Beam, radius: number, cosTheta: number, power = 1): number =>
@@ -64,7 +65,8 @@ export const activatedHalfWidth = (radius: number, fluence: number, activation: 
 export function halfDepth(beam: Beam, depth: Limits['depth'], material: Material, cosTheta = 1): number {
   if (depth.mode === 'distance') return depth.halfDepth;
   if (depth.mode === 'spot') return beam.rayleigh * Math.sqrt(depth.growth * depth.growth - 1);
-  const inHand = peakFluence(beam, beam.waist, cosTheta) / (material.activationFluence * material.doseMargin) - 1;
+  const inHand =
+    peakFluence(beam, beam.waist, cosTheta) / (material.activationFluence * material.doseMargin) - 1;
   return inHand > 0 ? beam.rayleigh * Math.sqrt(inHand) : 0;
 }
 

@@ -9,7 +9,8 @@ const ALPHA = 0.00393;
 const MIL2 = 6.4516e-4;
 
 /** Resistivity of the deposit, Ω·mm²/m. */
-export const resistivity = (copper: Project['copper']): number => RHO_20 * copper.depositFactor * (1 + ALPHA * (copper.temperature_C - 20));
+export const resistivity = (copper: Project['copper']): number =>
+  RHO_20 * copper.depositFactor * (1 + ALPHA * (copper.temperature_C - 20));
 
 /** mΩ of a strip, lengths mm: R = ρ L / (W t). */
 export const stripResistance = (length: number, width: number, copper: Project['copper']): number =>

@@ -41,26 +41,36 @@ function discsOf(e: CopperElement): Discs {
   const box = Float64Array.of(Infinity, Infinity, Infinity, -Infinity, -Infinity, -Infinity);
   for (let t = 0; t < face.length; t++) {
     for (let k = 0; k < 3; k++) {
-      const m = (x[3 * triangles[3 * t] + k] + x[3 * triangles[3 * t + 1] + k] + x[3 * triangles[3 * t + 2] + k]) / 3;
+      const m =
+        (x[3 * triangles[3 * t] + k] + x[3 * triangles[3 * t + 1] + k] + x[3 * triangles[3 * t + 2] + k]) / 3;
       middle[3 * t + k] = m;
       box[k] = Math.min(box[k], m);
       box[3 + k] = Math.max(box[3 + k], m);
     }
     for (let i = 0; i < 3; i++) {
       const o = 3 * triangles[3 * t + i];
-      reach[t] = Math.max(reach[t], Math.hypot(x[o] - middle[3 * t], x[o + 1] - middle[3 * t + 1], x[o + 2] - middle[3 * t + 2]));
+      reach[t] = Math.max(
+        reach[t],
+        Math.hypot(x[o] - middle[3 * t], x[o + 1] - middle[3 * t + 1], x[o + 2] - middle[3 * t + 2]),
+      );
     }
   }
   return { middle, reach, box };
 }
 
-function meet(a: CopperElement, da: Discs, b: CopperElement, db: Discs): { alongA: number; alongB: number } | null {
+function meet(
+  a: CopperElement,
+  da: Discs,
+  b: CopperElement,
+  db: Discs,
+): { alongA: number; alongB: number } | null {
   // Only triangles where the boxes overlap can touch.
   const lo = [0, 1, 2].map((k) => Math.max(da.box[k], db.box[k]) - CELL);
   const hi = [0, 1, 2].map((k) => Math.min(da.box[3 + k], db.box[3 + k]) + CELL);
   if (lo.some((x, k) => x > hi[k])) return null;
   const size = lo.map((x, k) => Math.floor((hi[k] - x) / CELL) + 1);
-  const inBox = (m: Float64Array, t: number) => [0, 1, 2].every((k) => m[3 * t + k] >= lo[k] && m[3 * t + k] <= hi[k]);
+  const inBox = (m: Float64Array, t: number) =>
+    [0, 1, 2].every((k) => m[3 * t + k] >= lo[k] && m[3 * t + k] <= hi[k]);
   const cells = new Map<number, number[]>();
   const index = (m: Float64Array, t: number, k: number) => Math.floor((m[3 * t + k] - lo[k]) / CELL);
   for (let t = 0; t < db.reach.length; t++) {
@@ -81,7 +91,11 @@ function meet(a: CopperElement, da: Discs, b: CopperElement, db: Discs): { along
         for (let dx = -1; dx <= 1; dx++) {
           if (i + dx < 0 || i + dx >= size[0] || j + dy < 0 || j + dy >= size[1]) continue;
           for (const tb of cells.get(((l + dz) * size[1] + j + dy) * size[0] + i + dx) ?? []) {
-            const d = Math.hypot(da.middle[3 * ta] - db.middle[3 * tb], da.middle[3 * ta + 1] - db.middle[3 * tb + 1], da.middle[3 * ta + 2] - db.middle[3 * tb + 2]);
+            const d = Math.hypot(
+              da.middle[3 * ta] - db.middle[3 * tb],
+              da.middle[3 * ta + 1] - db.middle[3 * tb + 1],
+              da.middle[3 * ta + 2] - db.middle[3 * tb + 2],
+            );
             if (d > Math.max(TOUCH, Math.min(da.reach[ta], db.reach[tb]))) continue;
             sumA += along(a, ta);
             sumB += along(b, tb);
@@ -96,5 +110,8 @@ function along(e: CopperElement, t: number): number {
   if (e.kind !== 'trace') return 0;
   const s = 3 * e.copper.source[t];
   const { triangles, along: at } = e.field;
-  return Math.min(e.length, Math.max(0, (at[triangles[s]] + at[triangles[s + 1]] + at[triangles[s + 2]]) / 3));
+  return Math.min(
+    e.length,
+    Math.max(0, (at[triangles[s]] + at[triangles[s + 1]] + at[triangles[s + 2]]) / 3),
+  );
 }

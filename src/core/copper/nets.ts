@@ -38,7 +38,11 @@ function pieceCount(n: number, joined: readonly Contact[]): number {
 }
 
 /** Resistances between pads: every pad from the first one of its piece. */
-function padPairs(project: Project, elements: readonly CopperElement[], joined: readonly Contact[]): NetReport['resistance_mohm'] {
+function padPairs(
+  project: Project,
+  elements: readonly CopperElement[],
+  joined: readonly Contact[],
+): NetReport['resistance_mohm'] {
   // Nodes: one for each pad or region, and one for each place on a trace where something meets it.
   let nodes = 0;
   const body = elements.map((e) => (e.kind === 'trace' ? -1 : nodes++));
@@ -56,7 +60,11 @@ function padPairs(project: Project, elements: readonly CopperElement[], joined: 
     if (e.kind !== 'trace') return;
     const sorted = [...taps[i]].sort((a, b) => a.s - b.s);
     for (let k = 0; k + 1 < sorted.length; k++)
-      links.push({ a: sorted[k].node, b: sorted[k + 1].node, ohm: stripResistance(sorted[k + 1].s - sorted[k].s, e.width, project.copper) });
+      links.push({
+        a: sorted[k].node,
+        b: sorted[k + 1].node,
+        ohm: stripResistance(sorted[k + 1].s - sorted[k].s, e.width, project.copper),
+      });
   });
   const pads = elements.flatMap((e, i) => (e.kind === 'pad' ? [i] : []));
   const out: NetReport['resistance_mohm'] = [];

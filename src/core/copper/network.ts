@@ -13,7 +13,13 @@ export interface Link {
  * @param same  pairs of nodes that are one
  * @returns resistance in the links' unit; 0 when both are one node; null when nothing joins them
  */
-export function solveResistance(nodes: number, links: readonly Link[], same: readonly (readonly [number, number])[], from: number, to: number): number | null {
+export function solveResistance(
+  nodes: number,
+  links: readonly Link[],
+  same: readonly (readonly [number, number])[],
+  from: number,
+  to: number,
+): number | null {
   const parent = Array.from({ length: nodes }, (_, i) => i);
   const find = (i: number): number => {
     while (parent[i] !== i) i = parent[i] = parent[parent[i]];

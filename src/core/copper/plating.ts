@@ -3,8 +3,9 @@
  * Cu²⁺ + 2 HCHO + 4 OH⁻ → Cu + H₂ + 2 HCOO⁻ + 2 H₂O: G. Mallory and J. Hajdu, *Electroless Plating* (1990), ch. 12.
  * Molar masses: IUPAC. The reaction is the least use; side reactions add to it.
  */
-import type { Project, } from '../project/schema.ts';
+
 import type { PlatingReport } from '../project/report.ts';
+import type { Project } from '../project/schema.ts';
 
 const CU = 63.546;
 const HCHO = 30.026;

@@ -6,8 +6,8 @@
  * distance are then equally spaced (Gauss's lemma), whatever the curvature.
  */
 import type { Vec3 } from '../base/vec.ts';
-import { ON_EDGE, type PointSource, type SegmentSource, type WindowSolver } from '../geodesic/windows.ts';
 import { polarAngle, SurfaceField } from '../geodesic/surface-field.ts';
+import { ON_EDGE, type PointSource, type SegmentSource, type WindowSolver } from '../geodesic/windows.ts';
 import { barycentric, type SurfacePoint } from '../mesh/surface-point.ts';
 import type { SurfacePath } from './copper.ts';
 
@@ -48,7 +48,15 @@ export function band(solver: WindowSolver, path: SurfacePath, options: BandOptio
   const segments: SegmentSource[] = [];
   const startOf = new Float64Array(n + 1);
   for (let i = 0; i < n; i++) {
-    segments.push({ face: path.faces[i], from: point(i), to: point(i + 1), source: i, start: startOf[i], radiusLeft: options.left, radiusRight: options.right });
+    segments.push({
+      face: path.faces[i],
+      from: point(i),
+      to: point(i + 1),
+      source: i,
+      start: startOf[i],
+      radiusLeft: options.left,
+      radiusRight: options.right,
+    });
     const d = direction(i);
     startOf[i + 1] = startOf[i] + Math.hypot(d[0], d[1], d[2]);
   }
@@ -69,14 +77,21 @@ export function band(solver: WindowSolver, path: SurfacePath, options: BandOptio
   const reach = Math.max(options.left, options.right);
   const points: PointSource[] = joints.map((j, k) => {
     const piece = j.after >= 0 ? j.after : j.before;
-    return { at: surfacePoint(mesh, path.faces[piece], point(j.index)), source: n + k, radius: reach, zero: direction(piece) };
+    return {
+      at: surfacePoint(mesh, path.faces[piece], point(j.index)),
+      source: n + k,
+      radius: reach,
+      zero: direction(piece),
+    };
   });
   solver.propagate(points, segments);
   const field = new SurfaceField(solver);
   // Left angle of each bend: from the way out, counter-clockwise, to the way back in.
   const leftAngle = joints.map((j, k) => {
     if (j.before < 0 || j.after < 0) return 0;
-    const root = solver.roots.find((r) => r.source === n + k && r.kind === 'point' && r.face === path.faces[j.before]);
+    const root = solver.roots.find(
+      (r) => r.source === n + k && r.kind === 'point' && r.face === path.faces[j.before],
+    );
     if (!root) return Math.PI;
     const d = direction(j.before);
     const back = (root.offset + Math.atan2(-dot(d, root.y), -dot(d, root.x))) * root.scale;
@@ -91,18 +106,30 @@ export function band(solver: WindowSolver, path: SurfacePath, options: BandOptio
       if (root.kind === 'segment') return { distance, across: seen.qy, along: root.start + seen.qx };
       const k = root.source - n;
       // A vertex reached from a joint or an end stands for the joint: point sources have no arc length of their own.
-      if (root.vertex >= 0) return { distance, across: root.side * distance, along: k < 0 ? root.start : startOf[joints[k].index] };
+      if (root.vertex >= 0)
+        return {
+          distance,
+          across: root.side * distance,
+          along: k < 0 ? root.start : startOf[joints[k].index],
+        };
       const joint = joints[k];
       const s = startOf[joint.index];
       const angle = polarAngle(seen);
-      if (joint.before < 0 || joint.after < 0) return { distance, across: distance * Math.sin(angle), along: s + distance * Math.cos(angle) };
+      if (joint.before < 0 || joint.after < 0)
+        return { distance, across: distance * Math.sin(angle), along: s + distance * Math.cos(angle) };
       return { distance, across: turnOf(angle) <= leftAngle[k] ? distance : -distance, along: s };
     },
   };
 }
 
 /** Whether path point i is a plain crossing from one face into the next, where a shortest path runs straight on. */
-function crossesEdge(mesh: WindowSolver['mesh'], path: SurfacePath, before: number, after: number, i: number): boolean {
+function crossesEdge(
+  mesh: WindowSolver['mesh'],
+  path: SurfacePath,
+  before: number,
+  after: number,
+  i: number,
+): boolean {
   if (path.faces[before] === path.faces[after]) return false;
   const p: Vec3 = [path.points[3 * i], path.points[3 * i + 1], path.points[3 * i + 2]];
   const bary = barycentric(mesh, path.faces[before], p);
@@ -114,7 +141,9 @@ const AT_VERTEX = 1e-7;
 
 /** Surface point of a place known to lie in a face; weights that rounding left off an edge are put on it. */
 function surfacePoint(mesh: WindowSolver['mesh'], face: number, p: Vec3): SurfacePoint {
-  const b = barycentric(mesh, face, p).map((x) => (Math.abs(x) <= AT_VERTEX * 1e-2 || Math.abs(x) <= ON_EDGE ? 0 : x));
+  const b = barycentric(mesh, face, p).map((x) =>
+    Math.abs(x) <= AT_VERTEX * 1e-2 || Math.abs(x) <= ON_EDGE ? 0 : x,
+  );
   const sum = b[0] + b[1] + b[2];
   return { face, bary: [b[0] / sum, b[1] / sum, b[2] / sum] };
 }

@@ -26,7 +26,11 @@ export interface Draper {
   second: WindowSolver;
 }
 
-export const prepareDraper = (part: DrapePart): Draper => ({ part, solver: new WindowSolver(part.mesh), second: new WindowSolver(part.mesh) });
+export const prepareDraper = (part: DrapePart): Draper => ({
+  part,
+  solver: new WindowSolver(part.mesh),
+  second: new WindowSolver(part.mesh),
+});
 
 export interface CircuitDraped {
   copper: Copper;
@@ -37,7 +41,12 @@ export interface CircuitDraped {
  * Lays every element of the circuit on the part.
  * @throws InputError `far-from-surface` with every point that is, `drawing-not-read` for drapes of drawings
  */
-export function drapeCircuit(project: Project, file: string, part: DrapePart, ctx: RunContext): CircuitDraped {
+export function drapeCircuit(
+  project: Project,
+  file: string,
+  part: DrapePart,
+  ctx: RunContext,
+): CircuitDraped {
   const draper = prepareDraper(part);
   checkPlaces(project, file, draper);
   const copper: Copper = { elements: [] };
@@ -73,7 +82,13 @@ function placesOf(draper: Draper, element: Element, path: string, file: string):
 export function checkPlaces(project: Project, file: string, draper: Draper): void {
   const problems: InputProblem[] = [];
   if (project.circuit.drapes.length > 0)
-    problems.push({ code: 'drawing-not-read', file, place: '$.circuit.drapes[0]', problem: 'this release does not read drawings', mend: 'draw the circuit as elements' });
+    problems.push({
+      code: 'drawing-not-read',
+      file,
+      place: '$.circuit.drapes[0]',
+      problem: 'this release does not read drawings',
+      mend: 'draw the circuit as elements',
+    });
   project.circuit.elements.forEach((element, i) => {
     try {
       placesOf(draper, element, `$.circuit.elements[${i}]`, file);

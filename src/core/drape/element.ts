@@ -23,7 +23,12 @@ export interface Laid {
  * @param evaluate fields at a place of a face
  * @param coarse   longest patch edge inside the copper, mm: the sampling step
  */
-export function layOut(mesh: SurfaceMesh, faces: Iterable<number>, evaluate: (face: number, p: Vec3) => FieldValue, coarse: number): Laid {
+export function layOut(
+  mesh: SurfaceMesh,
+  faces: Iterable<number>,
+  evaluate: (face: number, p: Vec3) => FieldValue,
+  coarse: number,
+): Laid {
   const field = refine(mesh, faces, evaluate, { fine: FINE, coarse, tolerance: TRUE_TO });
   const copper = clipBelow(field, field.edge, 0);
   const outline = levelLines(field, field.edge, 0).map((line) => {
@@ -40,7 +45,12 @@ export function layOut(mesh: SurfaceMesh, faces: Iterable<number>, evaluate: (fa
 /** Length of a run of points, 3 a point, mm. */
 export function lineLength(points: Float64Array): number {
   let sum = 0;
-  for (let i = 3; i < points.length; i += 3) sum += Math.hypot(points[i] - points[i - 3], points[i + 1] - points[i - 2], points[i + 2] - points[i - 1]);
+  for (let i = 3; i < points.length; i += 3)
+    sum += Math.hypot(
+      points[i] - points[i - 3],
+      points[i + 1] - points[i - 2],
+      points[i + 2] - points[i - 1],
+    );
   return sum;
 }
 
@@ -52,4 +62,6 @@ export interface DrapeFinding {
   text: string;
 }
 
-export type Draped = { element: CopperElement; findings: DrapeFinding[] } | { element: null; findings: DrapeFinding[] };
+export type Draped =
+  | { element: CopperElement; findings: DrapeFinding[] }
+  | { element: null; findings: DrapeFinding[] };

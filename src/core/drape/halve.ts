@@ -16,7 +16,11 @@ export function faceFrame(positions: readonly number[], a: number, b: number, c:
   const along = vx * x[0] + vy * x[1] + vz * x[2];
   const w = [vx - along * x[0], vy - along * x[1], vz - along * x[2]];
   const wl = Math.hypot(w[0], w[1], w[2]);
-  return { origin: [positions[3 * a], positions[3 * a + 1], positions[3 * a + 2]], x, y: [w[0] / wl, w[1] / wl, w[2] / wl] };
+  return {
+    origin: [positions[3 * a], positions[3 * a + 1], positions[3 * a + 2]],
+    x,
+    y: [w[0] / wl, w[1] / wl, w[2] / wl],
+  };
 }
 
 /** A polygon is as good as a line when its area is below this share of the square of its length: collinear points, and rounding. */
@@ -31,7 +35,11 @@ const FAIR = 0.1;
  * @returns       places i < j in the polygon, not neighbours: the chord joins them near the middle of the polygon's long way,
  *                and is as short as it can be there; null when the polygon is as good as a line
  */
-export function halve(polygon: readonly number[], positions: readonly number[], frame: FaceFrame): [number, number] | null {
+export function halve(
+  polygon: readonly number[],
+  positions: readonly number[],
+  frame: FaceFrame,
+): [number, number] | null {
   const n = polygon.length;
   const px = new Float64Array(n);
   const py = new Float64Array(n);
@@ -39,7 +47,11 @@ export function halve(polygon: readonly number[], positions: readonly number[], 
   let my = 0;
   for (let i = 0; i < n; i++) {
     const o = 3 * polygon[i];
-    const [dx, dy, dz] = [positions[o] - frame.origin[0], positions[o + 1] - frame.origin[1], positions[o + 2] - frame.origin[2]];
+    const [dx, dy, dz] = [
+      positions[o] - frame.origin[0],
+      positions[o + 1] - frame.origin[1],
+      positions[o + 2] - frame.origin[2],
+    ];
     px[i] = dx * frame.x[0] + dy * frame.x[1] + dz * frame.x[2];
     py[i] = dx * frame.y[0] + dy * frame.y[1] + dz * frame.y[2];
     mx += px[i] / n;

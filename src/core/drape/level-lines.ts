@@ -22,7 +22,8 @@ export function alongLine(line: LevelLine, values: ArrayLike<number>, stride: nu
     const a = line.ends[2 * i] * stride;
     const b = line.ends[2 * i + 1] * stride;
     const t = line.share[i];
-    for (let k = 0; k < stride; k++) out[i * stride + k] = values[a + k] + t * (values[b + k] - values[a + k]);
+    for (let k = 0; k < stride; k++)
+      out[i * stride + k] = values[a + k] + t * (values[b + k] - values[a + k]);
   }
   return out;
 }
@@ -32,7 +33,12 @@ export function alongLine(line: LevelLine, values: ArrayLike<number>, stride: nu
  * Closed lines do not repeat their first point.
  * @param only  triangles to look at; lines end where they leave them. Default: all
  */
-export function levelLines(patch: Patch, values: Float64Array, level: number, only?: ArrayLike<number>): LevelLine[] {
+export function levelLines(
+  patch: Patch,
+  values: Float64Array,
+  level: number,
+  only?: ArrayLike<number>,
+): LevelLine[] {
   const { triangles } = patch;
   const below = (v: number) => values[v] < level;
   // Crossed edges (a below, b not) are numbered; each triangle joins two of them; pieces chain.
@@ -54,7 +60,9 @@ export function levelLines(patch: Patch, values: Float64Array, level: number, on
   const count = only ? only.length : triangles.length / 3;
   for (let i = 0; i < count; i++) {
     const t = 3 * (only ? only[i] : i);
-    const a = triangles[t], b = triangles[t + 1], c = triangles[t + 2];
+    const a = triangles[t],
+      b = triangles[t + 1],
+      c = triangles[t + 2];
     const n = (below(a) ? 1 : 0) + (below(b) ? 1 : 0) + (below(c) ? 1 : 0);
     if (n === 0 || n === 3) continue;
     // p is the odd one out; the triangle stays counter-clockwise as p, q, r.
@@ -78,7 +86,10 @@ export function levelLines(patch: Patch, values: Float64Array, level: number, on
     } while (k >= 0 && !done[k]);
     lines.push({
       ends: Uint32Array.from(list.flatMap((i) => [ends[2 * i], ends[2 * i + 1]])),
-      share: Float64Array.from(list, (i) => (level - values[ends[2 * i]]) / (values[ends[2 * i + 1]] - values[ends[2 * i]])),
+      share: Float64Array.from(
+        list,
+        (i) => (level - values[ends[2 * i]]) / (values[ends[2 * i + 1]] - values[ends[2 * i]]),
+      ),
       closed: k === start,
     });
   };
@@ -105,14 +116,19 @@ export function clipBelow(patch: Patch, values: Float64Array, level: number): Cl
     if (n < 0) {
       n = positions.length / 3;
       const t = a === b ? 0 : (level - values[a]) / (values[b] - values[a]);
-      for (let i = 0; i < 3; i++) positions.push(patch.positions[3 * a + i] + t * (patch.positions[3 * b + i] - patch.positions[3 * a + i]));
+      for (let i = 0; i < 3; i++)
+        positions.push(
+          patch.positions[3 * a + i] + t * (patch.positions[3 * b + i] - patch.positions[3 * a + i]),
+        );
       number.set(a, b, n);
     }
     return n;
   };
   const below = (v: number) => values[v] < level;
   for (let t = 0; t < patch.triangles.length; t += 3) {
-    const a = patch.triangles[t], b = patch.triangles[t + 1], c = patch.triangles[t + 2];
+    const a = patch.triangles[t],
+      b = patch.triangles[t + 1],
+      c = patch.triangles[t + 2];
     const n = (below(a) ? 1 : 0) + (below(b) ? 1 : 0) + (below(c) ? 1 : 0);
     if (n === 0) continue;
     const f = patch.face[t / 3];
@@ -127,13 +143,21 @@ export function clipBelow(patch: Patch, values: Float64Array, level: number): Cl
       source.push(t / 3);
     } else {
       const [p, q, r] = !below(a) ? [a, b, c] : !below(b) ? [b, c, a] : [c, a, b];
-      const pq = vertex(q, p), pr = vertex(r, p), q0 = vertex(q, q), r0 = vertex(r, r);
+      const pq = vertex(q, p),
+        pr = vertex(r, p),
+        q0 = vertex(q, q),
+        r0 = vertex(r, r);
       triangles.push(pq, q0, r0, pq, r0, pr);
       face.push(f, f);
       source.push(t / 3, t / 3);
     }
   }
-  return { positions: Float64Array.from(positions), triangles: Uint32Array.from(triangles), face: Int32Array.from(face), source: Int32Array.from(source) };
+  return {
+    positions: Float64Array.from(positions),
+    triangles: Uint32Array.from(triangles),
+    face: Int32Array.from(face),
+    source: Int32Array.from(source),
+  };
 }
 
 /** Area of a patch, mm². */
@@ -141,9 +165,15 @@ export function patchArea(patch: Patch): number {
   const { positions: x, triangles: t } = patch;
   let sum = 0;
   for (let i = 0; i < t.length; i += 3) {
-    const a = 3 * t[i], b = 3 * t[i + 1], c = 3 * t[i + 2];
-    const ux = x[b] - x[a], uy = x[b + 1] - x[a + 1], uz = x[b + 2] - x[a + 2];
-    const vx = x[c] - x[a], vy = x[c + 1] - x[a + 1], vz = x[c + 2] - x[a + 2];
+    const a = 3 * t[i],
+      b = 3 * t[i + 1],
+      c = 3 * t[i + 2];
+    const ux = x[b] - x[a],
+      uy = x[b + 1] - x[a + 1],
+      uz = x[b + 2] - x[a + 2];
+    const vx = x[c] - x[a],
+      vy = x[c + 1] - x[a + 1],
+      vz = x[c + 2] - x[a + 2];
     sum += Math.hypot(uy * vz - uz * vy, uz * vx - ux * vz, ux * vy - uy * vx) / 2;
   }
   return sum;

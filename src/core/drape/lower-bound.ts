@@ -17,11 +17,22 @@ export function boxBound(points: Float64Array): (p: Vec3) => number {
       box = [x, y, z, x, y, z];
       return;
     }
-    box = [Math.min(box[0], x), Math.min(box[1], y), Math.min(box[2], z), Math.max(box[3], x), Math.max(box[4], y), Math.max(box[5], z)];
+    box = [
+      Math.min(box[0], x),
+      Math.min(box[1], y),
+      Math.min(box[2], z),
+      Math.max(box[3], x),
+      Math.max(box[4], y),
+      Math.max(box[5], z),
+    ];
   };
   take(points[0], points[1], points[2]);
   for (let i = 3; i < points.length; i += 3) {
-    const [dx, dy, dz] = [points[i] - points[i - 3], points[i + 1] - points[i - 2], points[i + 2] - points[i - 1]];
+    const [dx, dy, dz] = [
+      points[i] - points[i - 3],
+      points[i + 1] - points[i - 2],
+      points[i + 2] - points[i - 1],
+    ];
     const pieces = Math.max(1, Math.ceil(Math.hypot(dx, dy, dz) / STRETCH));
     for (let k = 1; k <= pieces; k++) {
       const t = k / pieces;
@@ -56,4 +67,5 @@ export function boxBound(points: Float64Array): (p: Vec3) => number {
  * @param seen  distance found, or null where the source does not see the place
  * @param far   gives a lower bound of the true distance; asked only where it is needed
  */
-export const heldDistance = (seen: number | null, reach: number, far: () => number): number => (seen !== null && seen <= reach ? seen : Math.max(reach, far()));
+export const heldDistance = (seen: number | null, reach: number, far: () => number): number =>
+  seen !== null && seen <= reach ? seen : Math.max(reach, far());

@@ -5,7 +5,7 @@ import { polarAngle, SurfaceField } from '../geodesic/surface-field.ts';
 import type { WindowSolver } from '../geodesic/windows.ts';
 import { faceNormal } from '../mesh/surface-point.ts';
 import type { Pad } from '../project/schema.ts';
-import { type Draped, MARGIN, layOut, lineLength } from './element.ts';
+import { type Draped, layOut, lineLength, MARGIN } from './element.ts';
 import { boxBound, heldDistance } from './lower-bound.ts';
 import type { Place } from './route.ts';
 import { circumradius, type FlatShape, flatDistance, perimeter } from './shapes.ts';
@@ -28,7 +28,9 @@ export function drapePad(solver: WindowSolver, pad: Pad, centre: Place): Draped 
   const shape = pad.shape as FlatShape;
   const reach = circumradius(shape) + MARGIN;
   const { face } = centre.surface;
-  solver.propagate([{ at: centre.surface, source: 0, radius: reach, zero: drawingU(faceNormal(solver.mesh, face)) }]);
+  solver.propagate([
+    { at: centre.surface, source: 0, radius: reach, zero: drawingU(faceNormal(solver.mesh, face)) },
+  ]);
   const field = new SurfaceField(solver);
   const turn = radiansFromDegrees(pad.turn);
   const far = boxBound(Float64Array.from(centre.point));
@@ -39,7 +41,8 @@ export function drapePad(solver: WindowSolver, pad: Pad, centre: Place): Draped 
     field.faces,
     (f, p) => {
       const seen = field.nearest(f, p);
-      if (!seen || seen.distance > reach) return { edge: heldDistance(null, reach, () => far(p)) - circumradius(shape), hatch: 0, along: 0 };
+      if (!seen || seen.distance > reach)
+        return { edge: heldDistance(null, reach, () => far(p)) - circumradius(shape), hatch: 0, along: 0 };
       const angle = polarAngle(seen) - turn;
       const u = seen.distance * Math.cos(angle);
       const v = seen.distance * Math.sin(angle);
@@ -47,7 +50,18 @@ export function drapePad(solver: WindowSolver, pad: Pad, centre: Place): Draped 
     },
     AREA_STEP,
   );
-  if (laid.copper.face.length === 0) return { element: null, findings: [{ rule: 'no-copper', element: pad.id, at: centre.point, text: 'nothing of the pad lies on the surface' }] };
+  if (laid.copper.face.length === 0)
+    return {
+      element: null,
+      findings: [
+        {
+          rule: 'no-copper',
+          element: pad.id,
+          at: centre.point,
+          text: 'nothing of the pad lies on the surface',
+        },
+      ],
+    };
   const length = laid.outline.reduce((sum, loop) => sum + lineLength(loop), 0);
   const drawnLength = perimeter(shape);
   return {

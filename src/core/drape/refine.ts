@@ -33,7 +33,12 @@ export interface RefineOptions {
  * @param faces    every face that may hold copper
  * @param evaluate fields at a place of a face; `edge` must grow by no more than the way walked
  */
-export function refine(mesh: SurfaceMesh, faces: Iterable<number>, evaluate: (face: number, p: Vec3) => FieldValue, options: RefineOptions): FieldPatch {
+export function refine(
+  mesh: SurfaceMesh,
+  faces: Iterable<number>,
+  evaluate: (face: number, p: Vec3) => FieldValue,
+  options: RefineOptions,
+): FieldPatch {
   const positions: number[] = [];
   const edge: number[] = [];
   const hatch: number[] = [];
@@ -60,7 +65,11 @@ export function refine(mesh: SurfaceMesh, faces: Iterable<number>, evaluate: (fa
       positions[3 * a + 2] + t * (positions[3 * b + 2] - positions[3 * a + 2]),
     );
   const size = (a: number, b: number) =>
-    Math.hypot(positions[3 * a] - positions[3 * b], positions[3 * a + 1] - positions[3 * b + 1], positions[3 * a + 2] - positions[3 * b + 2]);
+    Math.hypot(
+      positions[3 * a] - positions[3 * b],
+      positions[3 * a + 1] - positions[3 * b + 1],
+      positions[3 * a + 2] - positions[3 * b + 2],
+    );
 
   /** Where to cut the stretch a → b of an edge: a new vertex, or -1. */
   const cut = (face: number, a: number, b: number): number => {
@@ -108,7 +117,9 @@ export function refine(mesh: SurfaceMesh, faces: Iterable<number>, evaluate: (fa
     if (inradius < SMALLEST) return -1;
     // The middle of the inscribed circle is the farthest place from the edges.
     const w = [bc / (2 * s), ca / (2 * s), ab / (2 * s)];
-    const at = [0, 1, 2].map((k) => w[0] * positions[3 * a + k] + w[1] * positions[3 * b + k] + w[2] * positions[3 * c + k]);
+    const at = [0, 1, 2].map(
+      (k) => w[0] * positions[3 * a + k] + w[1] * positions[3 * b + k] + w[2] * positions[3 * c + k],
+    );
     const m = add(face, at[0], at[1], at[2]);
     return edge[m] <= Math.max(size(m, a), size(m, b), size(m, c)) ? m : -1;
   };
@@ -148,7 +159,12 @@ export function refine(mesh: SurfaceMesh, faces: Iterable<number>, evaluate: (fa
       }
       const m = island(face, p, q, r);
       if (m < 0) continue;
-      for (const [u, v] of [[p, q], [q, r], [r, p]]) stack.push([u, v, ...chain(face, v, m), m, ...chain(face, m, u)]);
+      for (const [u, v] of [
+        [p, q],
+        [q, r],
+        [r, p],
+      ])
+        stack.push([u, v, ...chain(face, v, m), m, ...chain(face, m, u)]);
     }
   }
   return compact(positions, edge, hatch, along, triangles, faceOfTriangle);
@@ -158,10 +174,18 @@ export function refine(mesh: SurfaceMesh, faces: Iterable<number>, evaluate: (fa
 const SMALLEST = 0.025;
 
 /** Whether the level 0 can run near an edge. */
-const touches = (a: number, b: number, len: number): boolean => Math.min(Math.abs(a), Math.abs(b)) <= 0.75 * len || a < 0 !== b < 0;
+const touches = (a: number, b: number, len: number): boolean =>
+  Math.min(Math.abs(a), Math.abs(b)) <= 0.75 * len || a < 0 !== b < 0;
 
 /** Keeps the vertices that triangles use, in the order of first use. */
-function compact(positions: number[], edge: number[], hatch: number[], along: number[], triangles: number[], face: number[]): FieldPatch {
+function compact(
+  positions: number[],
+  edge: number[],
+  hatch: number[],
+  along: number[],
+  triangles: number[],
+  face: number[],
+): FieldPatch {
   const number = new Int32Array(edge.length).fill(-1);
   const order: number[] = [];
   const used = Uint32Array.from(triangles, (v) => {

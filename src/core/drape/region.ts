@@ -12,16 +12,34 @@ import { joinRoute, type Place } from './route.ts';
 /** A region's inside may lie farther from its outline than the circle of its perimeter allows in the plane, by this factor on curved parts. */
 const DEPTH = 1.6;
 
-export function drapeRegion(solver: WindowSolver, baseline: WindowSolver, region: Region, places: readonly Place[]): Draped {
+export function drapeRegion(
+  solver: WindowSolver,
+  baseline: WindowSolver,
+  region: Region,
+  places: readonly Place[],
+): Draped {
   const corners = counterClockwise(solver, places) ? places : [...places].reverse();
   const route = joinRoute(solver, corners, true);
   if ('unreached' in route)
     return {
       element: null,
-      findings: [{ rule: 'no-way', element: region.id, at: corners[route.unreached % corners.length].point, text: 'no way over the surface joins the corners of the outline' }],
+      findings: [
+        {
+          rule: 'no-way',
+          element: region.id,
+          at: corners[route.unreached % corners.length].point,
+          text: 'no way over the surface joins the corners of the outline',
+        },
+      ],
     };
   const { path } = route;
-  if (path.faces.length < 2) return { element: null, findings: [{ rule: 'no-copper', element: region.id, at: places[0].point, text: 'the outline encloses nothing' }] };
+  if (path.faces.length < 2)
+    return {
+      element: null,
+      findings: [
+        { rule: 'no-copper', element: region.id, at: places[0].point, text: 'the outline encloses nothing' },
+      ],
+    };
   const depth = (path.length / (2 * Math.PI)) * DEPTH;
   const far = boxBound(path.points);
   // As far outside as inside: at a sharp corner the side that is nearer must be heard on both of its sides.
@@ -35,7 +53,8 @@ export function drapeRegion(solver: WindowSolver, baseline: WindowSolver, region
       rim.faces,
       (face, p) => {
         const at = rim.at(face, p);
-        if (!at || at.distance > depth) return { edge: heldDistance(null, depth, () => far(p)), hatch: 0, along: 0 };
+        if (!at || at.distance > depth)
+          return { edge: heldDistance(null, depth, () => far(p)), hatch: 0, along: 0 };
         const h = hatch?.at(face, p);
         if (!h && at.across > 0) blind = true;
         return { edge: at.across > 0 ? -at.distance : at.distance, hatch: h ? h.across : 0, along: 0 };
@@ -48,9 +67,25 @@ export function drapeRegion(solver: WindowSolver, baseline: WindowSolver, region
   let tried = lay(path.length / 3);
   if (tried.blind) tried = lay(path.length);
   const { laid } = tried;
-  if (laid.copper.face.length === 0) return { element: null, findings: [{ rule: 'no-copper', element: region.id, at: places[0].point, text: 'the outline encloses nothing' }] };
+  if (laid.copper.face.length === 0)
+    return {
+      element: null,
+      findings: [
+        { rule: 'no-copper', element: region.id, at: places[0].point, text: 'the outline encloses nothing' },
+      ],
+    };
   return {
-    element: { id: region.id, kind: 'region', net: region.net, width: 0, anchor: middle(laid.copper.positions), ...laid, length: path.length, drawnLength: path.length, stretch: 0 },
+    element: {
+      id: region.id,
+      kind: 'region',
+      net: region.net,
+      width: 0,
+      anchor: middle(laid.copper.positions),
+      ...laid,
+      length: path.length,
+      drawnLength: path.length,
+      stretch: 0,
+    },
     findings: [],
   };
 }
@@ -85,7 +120,9 @@ function hatchBand(solver: WindowSolver, corners: readonly Place[], reach: numbe
       }
     }
   const line = joinRoute(solver, best);
-  return 'unreached' in line || line.path.faces.length === 0 ? null : band(solver, line.path, { left: reach, right: reach, stops: line.stops });
+  return 'unreached' in line || line.path.faces.length === 0
+    ? null
+    : band(solver, line.path, { left: reach, right: reach, stops: line.stops });
 }
 
 const apart = (a: Vec3, b: Vec3): number => Math.hypot(a[0] - b[0], a[1] - b[1], a[2] - b[2]);

@@ -22,7 +22,12 @@ export interface Place {
  * @param name  file and JSON path, for the message
  * @throws InputError `far-from-surface`
  */
-export function pull(queries: SurfaceQueries, mesh: WindowSolver['mesh'], at: Vec3, name: { file: string; place: string }): Place {
+export function pull(
+  queries: SurfaceQueries,
+  mesh: WindowSolver['mesh'],
+  at: Vec3,
+  name: { file: string; place: string },
+): Place {
   const hit = queries.nearest(at);
   if (!hit) throw new Fault('a surface without faces was asked for its nearest point');
   if (hit.distance > PULL)
@@ -35,7 +40,10 @@ export function pull(queries: SurfaceQueries, mesh: WindowSolver['mesh'], at: Ve
     });
   const bary = barycentric(mesh, hit.face, hit.point).map((b) => (b < SNAP ? 0 : b));
   const sum = bary[0] + bary[1] + bary[2];
-  return { surface: { face: hit.face, bary: [bary[0] / sum, bary[1] / sum, bary[2] / sum] }, point: hit.point };
+  return {
+    surface: { face: hit.face, bary: [bary[0] / sum, bary[1] / sum, bary[2] / sum] },
+    point: hit.point,
+  };
 }
 
 /** A weight this small is an edge: nearest points on edges come with rounding of this size. */
@@ -52,7 +60,11 @@ export interface Route {
  * Joins places by shortest paths, one after the other; `closed` returns to the first.
  * @returns the route, or the index of the first place that cannot be reached from the one before it
  */
-export function joinRoute(solver: WindowSolver, places: readonly Place[], closed = false): Route | { unreached: number } {
+export function joinRoute(
+  solver: WindowSolver,
+  places: readonly Place[],
+  closed = false,
+): Route | { unreached: number } {
   const points: number[] = [...places[0].point];
   const faces: number[] = [];
   const stops = [0];
@@ -61,7 +73,9 @@ export function joinRoute(solver: WindowSolver, places: readonly Place[], closed
   for (let i = 0; i < count; i++) {
     const to = places[(i + 1) % places.length];
     const from = places[i];
-    if (Math.hypot(to.point[0] - from.point[0], to.point[1] - from.point[1], to.point[2] - from.point[2]) > SAME) {
+    if (
+      Math.hypot(to.point[0] - from.point[0], to.point[1] - from.point[1], to.point[2] - from.point[2]) > SAME
+    ) {
       const piece = shortestWith(solver, from.surface, to.surface);
       if (!piece) return { unreached: i + 1 };
       for (let k = 3; k < piece.points.length; k++) points.push(piece.points[k]);

@@ -35,8 +35,10 @@ export function polygonDistance(corners: readonly Vec2[], u: number, v: number):
   for (let i = 0, j = corners.length - 1; i < corners.length; j = i++) {
     const [ax, ay] = corners[j];
     const [bx, by] = corners[i];
-    const ex = bx - ax, ey = by - ay;
-    const px = u - ax, py = v - ay;
+    const ex = bx - ax,
+      ey = by - ay;
+    const px = u - ax,
+      py = v - ay;
     const ee = ex * ex + ey * ey;
     const t = ee > 0 ? Math.min(1, Math.max(0, (px * ex + py * ey) / ee)) : 0;
     best = Math.min(best, (px - t * ex) ** 2 + (py - t * ey) ** 2);

@@ -3,7 +3,7 @@ import type { WindowSolver } from '../geodesic/windows.ts';
 import type { Trace } from '../project/schema.ts';
 import { band } from './band.ts';
 import type { CopperElement } from './copper.ts';
-import { type Draped, MARGIN, layOut } from './element.ts';
+import { type Draped, layOut, MARGIN } from './element.ts';
 import { boxBound, heldDistance } from './lower-bound.ts';
 import { joinRoute, type Place } from './route.ts';
 
@@ -15,11 +15,23 @@ export function drapeTrace(solver: WindowSolver, trace: Trace, places: readonly 
   if ('unreached' in route)
     return {
       element: null,
-      findings: [{ rule: 'no-way', element: trace.id, at: places[route.unreached].point, text: `no way over the surface between route points ${route.unreached - 1} and ${route.unreached}` }],
+      findings: [
+        {
+          rule: 'no-way',
+          element: trace.id,
+          at: places[route.unreached].point,
+          text: `no way over the surface between route points ${route.unreached - 1} and ${route.unreached}`,
+        },
+      ],
     };
   const { path } = route;
   if (path.faces.length === 0)
-    return { element: null, findings: [{ rule: 'no-copper', element: trace.id, at: places[0].point, text: 'all route points are one place' }] };
+    return {
+      element: null,
+      findings: [
+        { rule: 'no-copper', element: trace.id, at: places[0].point, text: 'all route points are one place' },
+      ],
+    };
   const half = trace.width / 2;
   const reach = half + MARGIN;
   const field = band(solver, path, { left: reach, right: reach, stops: route.stops });

@@ -10,7 +10,9 @@ export function layerCsv(layer: LayerScan): string {
     const c = layer.classes[stroke.processClass];
     const tail = `${plainNumber(c.speed)},${quoted(stroke.element)},${plainNumber(c.power)}`;
     for (let i = 0; i < stroke.points.length; i += 2)
-      rows.push(`${coordinate(stroke.points[i])},${coordinate(stroke.points[i + 1])},${i === 0 ? 0 : 1},${tail}`);
+      rows.push(
+        `${coordinate(stroke.points[i])},${coordinate(stroke.points[i + 1])},${i === 0 ? 0 : 1},${tail}`,
+      );
   }
   return rows.join('\n') + '\n';
 }

@@ -28,4 +28,5 @@ export function safeNames(names: readonly string[]): string[] {
   });
 }
 
-export const layerFile = (folder: string, index: number, ending: string): string => `${folder}/layer-${String(index).padStart(2, '0')}.${ending}`;
+export const layerFile = (folder: string, index: number, ending: string): string =>
+  `${folder}/layer-${String(index).padStart(2, '0')}.${ending}`;

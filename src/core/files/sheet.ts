@@ -16,20 +16,22 @@ export interface SheetSetup {
 
 export function jobSheet(project: Project, report: Report, setups: readonly SheetSetup[]): string {
   const title = `${project.name} – job sheet`;
-  return [
-    '<!DOCTYPE html>',
-    '<html lang="en"><head><meta charset="utf-8">',
-    '<meta name="viewport" content="width=device-width, initial-scale=1">',
-    `<title>${text(title)}</title>`,
-    `<style>${SHEET_STYLE}</style></head><body>`,
-    `<header><h1>${text(project.name)}</h1>${verdict(report)}</header>`,
-    cautions(),
-    before(project, report),
-    ...setups.map((s, i) => setupSection(project, s, i, setups.length)),
-    after(report),
-    notWritten(report),
-    '</body></html>',
-  ].join('\n') + '\n';
+  return (
+    [
+      '<!DOCTYPE html>',
+      '<html lang="en"><head><meta charset="utf-8">',
+      '<meta name="viewport" content="width=device-width, initial-scale=1">',
+      `<title>${text(title)}</title>`,
+      `<style>${SHEET_STYLE}</style></head><body>`,
+      `<header><h1>${text(project.name)}</h1>${verdict(report)}</header>`,
+      cautions(),
+      before(project, report),
+      ...setups.map((s, i) => setupSection(project, s, i, setups.length)),
+      after(report),
+      notWritten(report),
+      '</body></html>',
+    ].join('\n') + '\n'
+  );
 }
 
 function verdict(report: Report): string {
@@ -51,23 +53,37 @@ function before(project: Project, report: Report): string {
   const rows: [string, string][] = [
     ['Part file', `${project.part.file} (${project.part.units})`],
     ['Lens', `f = ${n(head.focalLength)} mm, field ${n(head.field[0])} × ${n(head.field[1])} mm`],
-    ['Source', `${n(head.wavelength_nm)} nm, ${n(head.averagePower_W)} W at the part, ${n(head.repetitionRate_kHz)} kHz, ${n(head.pulseWidth_ns)} ns`],
-    ['Spot at best focus', `${n(2 * b.waistRadius_um, 1)} µm (1/e² diameter)${b.truncated ? ', clipped by the aperture' : ''}`],
-    ['Depth used', `±${n(b.halfDepth - project.limits.heightUncertainty, 2)} mm (±${n(b.halfDepth, 2)} mm less ${n(project.limits.heightUncertainty, 2)} mm for print and placing)`],
+    [
+      'Source',
+      `${n(head.wavelength_nm)} nm, ${n(head.averagePower_W)} W at the part, ${n(head.repetitionRate_kHz)} kHz, ${n(head.pulseWidth_ns)} ns`,
+    ],
+    [
+      'Spot at best focus',
+      `${n(2 * b.waistRadius_um, 1)} µm (1/e² diameter)${b.truncated ? ', clipped by the aperture' : ''}`,
+    ],
+    [
+      'Depth used',
+      `±${n(b.halfDepth - project.limits.heightUncertainty, 2)} mm (±${n(b.halfDepth, 2)} mm less ${n(project.limits.heightUncertainty, 2)} mm for print and placing)`,
+    ],
     ['Moves in Z', zMoves(project)],
   ];
   return `<section><h2>1. Check the machine against these</h2><table class="facts">${rows.map(([a, v]) => `<tr><th>${text(a)}</th><td>${text(v)}</td></tr>`).join('')}</table></section>`;
 }
 
 const zMoves = (project: Project): string =>
-  project.stage.zMoves === 'stage' ? 'the stage; positive lifts the part toward the head' : 'the head; positive lifts the head away from the part';
+  project.stage.zMoves === 'stage'
+    ? 'the stage; positive lifts the part toward the head'
+    : 'the head; positive lifts the head away from the part';
 
 function setupSection(project: Project, setup: SheetSetup, i: number, of: number): string {
   const { report } = setup;
   const layers = report.layers.map((layer, k) => {
     const scan = setup.scans[k];
     const classes = layer.classes
-      .map((c, j) => `<tr><td>${j + 1}</td><td>${n(c.speed, 1)} mm/s</td><td>${n(100 * c.power, 1)} %</td><td>${c.passes}</td></tr>`)
+      .map(
+        (c, j) =>
+          `<tr><td>${j + 1}</td><td>${n(c.speed, 1)} mm/s</td><td>${n(100 * c.power, 1)} %</td><td>${c.passes}</td></tr>`,
+      )
       .join('');
     return `<article class="layer">
 <h3><span class="box" aria-hidden="true"></span> Layer ${layer.index}: set Z to <span class="z">${signed(layer.zOffset)} mm</span></h3>
@@ -104,15 +120,25 @@ function notWritten(report: Report): string {
     .map((e) => ({ id: e.id, why: reasons(e) }))
     .filter((e) => e.why.length > 0)
     .map((e) => `<tr><th>${text(e.id)}</th><td>${text(e.why.join('; '))}</td></tr>`);
-  const rules = report.rules.filter((r) => r.level === 'error').map((r) => `<tr><th>${text(r.elements.join(', '))}</th><td>${text(`${r.rule}: ${n(r.value, 3)} mm, limit ${n(r.limit, 3)} mm`)}</td></tr>`);
+  const rules = report.rules
+    .filter((r) => r.level === 'error')
+    .map(
+      (r) =>
+        `<tr><th>${text(r.elements.join(', '))}</th><td>${text(`${r.rule}: ${n(r.value, 3)} mm, limit ${n(r.limit, 3)} mm`)}</td></tr>`,
+    );
   const p = report.proof;
-  const proof = p && !p.ok ? [
-    ...p.opens.map((o) => `<tr><th>${text(o.join(' – '))}</th><td>open after burning</td></tr>`),
-    ...p.shorts.map((o) => `<tr><th>${text(o.join(' – '))}</th><td>shorted after burning</td></tr>`),
-    ...(p.findings ?? []).map((f) => `<tr><th>files</th><td>${text(f)}</td></tr>`),
-  ] : [];
+  const proof =
+    p && !p.ok
+      ? [
+          ...p.opens.map((o) => `<tr><th>${text(o.join(' – '))}</th><td>open after burning</td></tr>`),
+          ...p.shorts.map((o) => `<tr><th>${text(o.join(' – '))}</th><td>shorted after burning</td></tr>`),
+          ...(p.findings ?? []).map((f) => `<tr><th>files</th><td>${text(f)}</td></tr>`),
+        ]
+      : [];
   const all = [...rows, ...rules, ...proof];
-  return all.length === 0 ? '' : `<section><h2>What does not hold</h2><table class="facts">${all.join('')}</table></section>`;
+  return all.length === 0
+    ? ''
+    : `<section><h2>What does not hold</h2><table class="facts">${all.join('')}</table></section>`;
 }
 
 function reasons(e: Report['elements'][number]): string[] {
@@ -128,5 +154,7 @@ function reasons(e: Report['elements'][number]): string[] {
 const n = (x: number, digits = 2): string => String(Number(x.toFixed(digits)) + 0);
 const signed = (x: number): string => `${x > 0 ? '+' : x < 0 ? '−' : ''}${Math.abs(x).toFixed(2)}`;
 const percent = (x: number): string => `${(100 * x).toFixed(2)} %`;
-const duration = (s: number): string => (s < 90 ? `${Math.ceil(s)} s` : `${Math.floor(s / 60)} min ${Math.round(s % 60)} s`);
-const text = (s: string): string => s.replaceAll('&', '&amp;').replaceAll('<', '&lt;').replaceAll('>', '&gt;').replaceAll('"', '&quot;');
+const duration = (s: number): string =>
+  s < 90 ? `${Math.ceil(s)} s` : `${Math.floor(s / 60)} min ${Math.round(s % 60)} s`;
+const text = (s: string): string =>
+  s.replaceAll('&', '&amp;').replaceAll('<', '&lt;').replaceAll('>', '&gt;').replaceAll('"', '&quot;');

@@ -20,7 +20,8 @@ export function layerSvg(layer: LayerScan, head: Pick<Head, 'field'>, spot: numb
     );
     for (const kind of ['outline', 'fill'] as const) {
       lines.push(`<g id="class-${i + 1}-${kind}" data-kind="${kind}">`);
-      for (const stroke of layer.strokes) if (stroke.processClass === i && stroke.kind === kind) lines.push(polyline(stroke, used));
+      for (const stroke of layer.strokes)
+        if (stroke.processClass === i && stroke.kind === kind) lines.push(polyline(stroke, used));
       lines.push('</g>');
     }
     lines.push('</g>');
@@ -34,7 +35,8 @@ function polyline(stroke: Stroke, used: Map<string, number>): string {
   const n = (used.get(base) ?? 0) + 1;
   used.set(base, n);
   const points: string[] = [];
-  for (let i = 0; i < stroke.points.length; i += 2) points.push(`${coordinate(stroke.points[i])},${coordinate(-stroke.points[i + 1])}`);
+  for (let i = 0; i < stroke.points.length; i += 2)
+    points.push(`${coordinate(stroke.points[i])},${coordinate(-stroke.points[i + 1])}`);
   return `<polyline id="${base}.${n}" points="${points.join(' ')}"/>`;
 }
 

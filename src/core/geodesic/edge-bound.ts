@@ -13,7 +13,10 @@ export function edgeBound(mesh: SurfaceMesh, from: SurfacePoint, to: SurfacePoin
   const { positions: x, triangles, twin } = mesh;
   const target = positionOf(mesh, to);
   const start = positionOf(mesh, from);
-  let best = from.face === to.face ? Math.hypot(start[0] - target[0], start[1] - target[1], start[2] - target[2]) : Infinity;
+  let best =
+    from.face === to.face
+      ? Math.hypot(start[0] - target[0], start[1] - target[1], start[2] - target[2])
+      : Infinity;
   const dist = new Map<number, number>();
   const done = new Set<number>();
   const leaves = new Map<number, number>();

@@ -24,11 +24,18 @@ export const shortestPath = (mesh: SurfaceMesh, from: SurfacePoint, to: SurfaceP
  * (`windows.ts`), bounded above by a path along edges.
  * @returns null when there is no way over the surface between them
  */
-export function shortestWith(solver: WindowSolver, from: SurfacePoint, to: SurfacePoint): GeodesicPath | null {
+export function shortestWith(
+  solver: WindowSolver,
+  from: SurfacePoint,
+  to: SurfacePoint,
+): GeodesicPath | null {
   const bound = edgeBound(solver.mesh, from, to);
   if (bound === Infinity) return null;
   // A hair more than the bound, so that a path that is itself along edges still arrives.
-  const arrival = solver.propagate([{ at: from, source: 0, radius: Infinity }], [], { at: to, bound: bound * (1 + 1e-9) + Number.MIN_VALUE });
+  const arrival = solver.propagate([{ at: from, source: 0, radius: Infinity }], [], {
+    at: to,
+    bound: bound * (1 + 1e-9) + Number.MIN_VALUE,
+  });
   return arrival.distance === Infinity ? null : traceBack(solver, arrival, to);
 }
 

@@ -51,7 +51,9 @@ export class SurfaceField {
     });
     // Nearest first, so that a look can stop at the first window that starts beyond what is found.
     for (let i = 0; i < this.faces.length; i++)
-      this.items.subarray(this.first[i], this.first[i + 1]).sort((a, b) => this.least(a) - this.least(b) || a - b);
+      this.items
+        .subarray(this.first[i], this.first[i + 1])
+        .sort((a, b) => this.least(a) - this.least(b) || a - b);
   }
 
   /** Least distance that a window can see; roots are looked at first. */

@@ -91,7 +91,11 @@ export class KeyHeap {
       let child = 2 * i + 1;
       if (child >= n) break;
       const right = child + 1;
-      if (right < n && (keys[right] < keys[child] || (keys[right] === keys[child] && items[right] < items[child]))) child = right;
+      if (
+        right < n &&
+        (keys[right] < keys[child] || (keys[right] === keys[child] && items[right] < items[child]))
+      )
+        child = right;
       if (key < keys[child] || (key === keys[child] && item <= items[child])) break;
       keys[i] = keys[child];
       items[i] = items[child];

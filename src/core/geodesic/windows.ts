@@ -124,7 +124,11 @@ export class WindowSolver {
    * Sends windows out from the sources until their radii or the target stop them.
    * @returns how the target was reached, `distance` Infinity when it was not (or when none was asked)
    */
-  propagate(points: readonly PointSource[], segments: readonly SegmentSource[] = [], target?: Target): Arrival {
+  propagate(
+    points: readonly PointSource[],
+    segments: readonly SegmentSource[] = [],
+    target?: Target,
+  ): Arrival {
     this.run++;
     this.windows.count = 0;
     this.roots = [];
@@ -148,7 +152,9 @@ export class WindowSolver {
       else if (windows.alive[item]) this.advance(item);
     }
     const best = this.target?.best;
-    return best && (best.window >= 0 || best.root >= 0 || best.vertex >= 0) ? best : { distance: Infinity, window: -1, root: -1, vertex: -1 };
+    return best && (best.window >= 0 || best.root >= 0 || best.vertex >= 0)
+      ? best
+      : { distance: Infinity, window: -1, root: -1, vertex: -1 };
   }
 
   /** Distance known at a vertex, Infinity where no window came. */
@@ -180,7 +186,20 @@ export class WindowSolver {
       return;
     }
     const { x, y } = this.frame(f, zero);
-    const root = { kind: 'point' as const, source: s.source, at, sigma: 0, vertex: -1, offset: 0, scale: 1, bearing: 0, length: 0, start: 0, side: 1 as const, radius: s.radius };
+    const root = {
+      kind: 'point' as const,
+      source: s.source,
+      at,
+      sigma: 0,
+      vertex: -1,
+      offset: 0,
+      scale: 1,
+      bearing: 0,
+      length: 0,
+      start: 0,
+      side: 1 as const,
+      radius: s.radius,
+    };
     const here = this.roots.push({ ...root, face: f, x, y }) - 1;
     if (n === 0) {
       this.seeFromRoot(here, [3 * f, 3 * f + 1, 3 * f + 2]);
@@ -207,9 +226,14 @@ export class WindowSolver {
       const f = this.roots[-1 - via].face;
       h = [3 * f, 3 * f + 1, 3 * f + 2].find((k) => this.mesh.triangles[k] === v) ?? -1;
     }
-    if (h < 0 || this.mesh.triangles[h] !== v) throw new Fault(`vertex ${v} was not reached through a face that holds it`);
+    if (h < 0 || this.mesh.triangles[h] !== v)
+      throw new Fault(`vertex ${v} was not reached through a face that holds it`);
     const from = via >= 0 ? this.roots[this.windows.root[via]] : this.roots[-1 - via];
-    const at: Vec3 = [this.mesh.positions[3 * v], this.mesh.positions[3 * v + 1], this.mesh.positions[3 * v + 2]];
+    const at: Vec3 = [
+      this.mesh.positions[3 * v],
+      this.mesh.positions[3 * v + 1],
+      this.mesh.positions[3 * v + 2],
+    ];
     const q = via >= 0 ? this.look(via, at, Infinity)! : this.inRoot(from, at);
     const side = from.kind === 'segment' || from.vertex >= 0 ? from.side : q[1] < 0 ? -1 : 1;
     const foot = from.kind === 'segment' ? from.start + q[0] : from.start;
@@ -218,7 +242,18 @@ export class WindowSolver {
   }
 
   /** One root for each face around the vertex at which half-edge `h` starts. */
-  private startFan(h: number, at: Vec3, sigma: number, vertex: number, source: number, radius: number, zero?: { face: number; zero: Vec3 }, side: 1 | -1 = 1, start = 0, bearing = 0): void {
+  private startFan(
+    h: number,
+    at: Vec3,
+    sigma: number,
+    vertex: number,
+    source: number,
+    radius: number,
+    zero?: { face: number; zero: Vec3 },
+    side: 1 | -1 = 1,
+    start = 0,
+    bearing = 0,
+  ): void {
     const { twin } = this.mesh;
     // Clockwise to a border, or once around.
     let first = h;
@@ -254,7 +289,24 @@ export class WindowSolver {
     halves.forEach((half, i) => {
       const face = faceOf(half);
       const { x, y } = this.frame(face, this.edgeDirection(half));
-      const root = this.roots.push({ kind: 'point', source, face, at, sigma, vertex, offset: angles[i] - zeroAngle, scale, bearing, length: 0, start, side, radius, x, y }) - 1;
+      const root =
+        this.roots.push({
+          kind: 'point',
+          source,
+          face,
+          at,
+          sigma,
+          vertex,
+          offset: angles[i] - zeroAngle,
+          scale,
+          bearing,
+          length: 0,
+          start,
+          side,
+          radius,
+          x,
+          y,
+        }) - 1;
       this.seeFromRoot(root, [next(half)]);
     });
   }
@@ -267,7 +319,24 @@ export class WindowSolver {
     for (const side of [1, -1] as const) {
       const radius = side > 0 ? s.radiusLeft : s.radiusRight;
       if (radius <= 0) continue;
-      const root = this.roots.push({ kind: 'segment', source: s.source, face: s.face, at: s.from, sigma: 0, vertex: -1, offset: 0, scale: 1, bearing: 0, length: len, start: s.start, side, radius, x, y }) - 1;
+      const root =
+        this.roots.push({
+          kind: 'segment',
+          source: s.source,
+          face: s.face,
+          at: s.from,
+          sigma: 0,
+          vertex: -1,
+          offset: 0,
+          scale: 1,
+          bearing: 0,
+          length: len,
+          start: s.start,
+          side,
+          radius,
+          x,
+          y,
+        }) - 1;
       this.seeFromRoot(root, [3 * s.face, 3 * s.face + 1, 3 * s.face + 2]);
     }
   }
@@ -286,7 +355,8 @@ export class WindowSolver {
     if (this.target && this.target.at.face === root.face) {
       const [qx, qy] = this.inRoot(root, this.target.p);
       const d = rootDistance(root, qx, qy);
-      if (d < this.target.best.distance) this.target.best = { distance: d, window: -1, root: rootIndex, vertex: -1 };
+      if (d < this.target.best.distance)
+        this.target.best = { distance: d, window: -1, root: rootIndex, vertex: -1 };
     }
     for (const h of halves) {
       const t = mesh.twin[h];
@@ -314,7 +384,18 @@ export class WindowSolver {
   // ---- windows ----------------------------------------------------------------------------------
 
   /** Adds a window unless it is out of reach or a vertex beats it, and queues it. */
-  private open(half: number, rootIndex: number, parent: number, b0: number, b1: number, sx: number, sy: number, cos: number, sin: number, len: number): void {
+  private open(
+    half: number,
+    rootIndex: number,
+    parent: number,
+    b0: number,
+    b1: number,
+    sx: number,
+    sy: number,
+    cos: number,
+    sin: number,
+    len: number,
+  ): void {
     if (b0 < 0) b0 = 0;
     if (b1 > len) b1 = len;
     if (b1 - b0 <= NO_WIDTH * len) return;
@@ -344,7 +425,17 @@ export class WindowSolver {
   }
 
   /** Xin and Wang's filtering theorem for the two ends of the edge: is all that the window sees nearer by way of a vertex? */
-  private beaten(half: number, root: Root, b0: number, b1: number, sx: number, sy: number, cos: number, sin: number, len: number): boolean {
+  private beaten(
+    half: number,
+    root: Root,
+    b0: number,
+    b1: number,
+    sx: number,
+    sy: number,
+    cos: number,
+    sin: number,
+    len: number,
+  ): boolean {
     const { triangles } = this.mesh;
     const d0 = this.vertexDistance(triangles[half]);
     const d1 = this.vertexDistance(triangles[next(half)]);
@@ -359,7 +450,13 @@ export class WindowSolver {
     const { windows, mesh } = this;
     const o = 8 * w;
     let n = windows.num;
-    const b0 = n[o], b1 = n[o + 1], sx = n[o + 2], sy = n[o + 3], cos = n[o + 4], sin = n[o + 5], len = n[o + 7];
+    const b0 = n[o],
+      b1 = n[o + 1],
+      sx = n[o + 2],
+      sy = n[o + 3],
+      cos = n[o + 4],
+      sin = n[o + 5],
+      len = n[o + 7];
     const half = windows.half[w];
     const rootIndex = windows.root[w];
     const root = this.roots[rootIndex];
@@ -401,27 +498,54 @@ export class WindowSolver {
       // Some rays pass left of the apex: onto the edge from a to c.
       const t = mesh.twin[hl];
       if (t >= 0) {
-        const ex = cx / la, ey = cy / la;
+        const ex = cx / la,
+          ey = cy / la;
         const t0 = b0 <= 0 ? 0 : crossing(b0, 0, d0x, d0y, ex, ey, 0);
         const t1 = right >= 0 ? la : crossing(b1, 0, d1x, d1y, ex, ey, la);
-        const a0x = t0 * ex, a0y = t0 * ey;
+        const a0x = t0 * ex,
+          a0y = t0 * ey;
         const d = pointDistance(root, a0x, a0y, sx, sy, cos, sin);
         if (!(vb + Math.hypot(len - a0x, a0y) < d - ROUNDING * (d + len)))
-          this.open(t, rootIndex, w, t0, t1, sx * ex + sy * ey, sy * ex - sx * ey, cos * ex - sin * ey, sin * ex + cos * ey, la);
+          this.open(
+            t,
+            rootIndex,
+            w,
+            t0,
+            t1,
+            sx * ex + sy * ey,
+            sy * ex - sx * ey,
+            cos * ex - sin * ey,
+            sin * ex + cos * ey,
+            la,
+          );
       }
     }
     if (right >= 0) {
       // Some pass right of it: onto the edge from c to b.
       const t = mesh.twin[hr];
       if (t >= 0) {
-        const ex = (len - cx) / lb, ey = -cy / lb;
+        const ex = (len - cx) / lb,
+          ey = -cy / lb;
         const t0 = left <= 0 ? 0 : crossing(b0 - cx, -cy, d0x, d0y, ex, ey, 0);
         const t1 = b1 >= len ? lb : crossing(b1 - cx, -cy, d1x, d1y, ex, ey, lb);
-        const b1x = cx + t1 * ex, b1y = cy + t1 * ey;
+        const b1x = cx + t1 * ex,
+          b1y = cy + t1 * ey;
         const d = pointDistance(root, b1x, b1y, sx, sy, cos, sin);
-        const px = sx - cx, py = sy - cy;
+        const px = sx - cx,
+          py = sy - cy;
         if (!(va + Math.hypot(b1x, b1y) < d - ROUNDING * (d + len)))
-          this.open(t, rootIndex, w, t0, t1, px * ex + py * ey, py * ex - px * ey, cos * ex - sin * ey, sin * ex + cos * ey, lb);
+          this.open(
+            t,
+            rootIndex,
+            w,
+            t0,
+            t1,
+            px * ex + py * ey,
+            py * ex - px * ey,
+            cos * ex - sin * ey,
+            sin * ex + cos * ey,
+            lb,
+          );
       }
     }
   }
@@ -475,7 +599,10 @@ export class WindowSolver {
     const n = windows.num;
     const o = 8 * w;
     const [x, y] = this.inHalf(windows.half[w], p, n[o + 7]);
-    const sx = n[o + 2], sy = n[o + 3], cos = n[o + 4], sin = n[o + 5];
+    const sx = n[o + 2],
+      sy = n[o + 3],
+      cos = n[o + 4],
+      sin = n[o + 5];
     const root = this.roots[windows.root[w]];
     // Where the ray to p crosses the edge.
     let cross: number;
@@ -487,22 +614,32 @@ export class WindowSolver {
     }
     const slack = tolerance * n[o + 7];
     if (cross < n[o] - slack || cross > n[o + 1] + slack) return null;
-    const px = x - sx, py = y - sy;
+    const px = x - sx,
+      py = y - sy;
     return [cos * px - sin * py, sin * px + cos * py];
   }
 
   /** Coordinates of `p` in the root's frame, for a p in the root's face. */
   inRoot(root: Root, p: Vec3): [number, number] {
-    const dx = p[0] - root.at[0], dy = p[1] - root.at[1], dz = p[2] - root.at[2];
-    return [dx * root.x[0] + dy * root.x[1] + dz * root.x[2], dx * root.y[0] + dy * root.y[1] + dz * root.y[2]];
+    const dx = p[0] - root.at[0],
+      dy = p[1] - root.at[1],
+      dz = p[2] - root.at[2];
+    return [
+      dx * root.x[0] + dy * root.x[1] + dz * root.x[2],
+      dx * root.y[0] + dy * root.y[1] + dz * root.y[2],
+    ];
   }
 
   /** Place on window w's edge where the straight line to root-frame point (qx, qy) crosses it, as a length from the edge's start. */
   crossingTo(w: number, qx: number, qy: number): number {
     const n = this.windows.num;
     const o = 8 * w;
-    const sx = n[o + 2], sy = n[o + 3], cos = n[o + 4], sin = n[o + 5];
-    const px = cos * qx + sin * qy, py = -sin * qx + cos * qy; // p - s
+    const sx = n[o + 2],
+      sy = n[o + 3],
+      cos = n[o + 4],
+      sin = n[o + 5];
+    const px = cos * qx + sin * qy,
+      py = -sin * qx + cos * qy; // p - s
     const root = this.roots[this.windows.root[w]];
     let x: number;
     if (root.kind === 'point') x = py > 0 ? sx + (px * -sy) / py : sx + px;
@@ -526,35 +663,61 @@ export class WindowSolver {
   /** Third corner in the local frame of half-edge h. */
   private apex(h: number, len: number): [number, number] {
     const { positions: x, triangles: t } = this.mesh;
-    const a = 3 * t[h], b = 3 * t[next(h)], c = 3 * t[previous(h)];
-    const ux = x[b] - x[a], uy = x[b + 1] - x[a + 1], uz = x[b + 2] - x[a + 2];
-    const vx = x[c] - x[a], vy = x[c + 1] - x[a + 1], vz = x[c + 2] - x[a + 2];
-    const nx = uy * vz - uz * vy, ny = uz * vx - ux * vz, nz = ux * vy - uy * vx;
+    const a = 3 * t[h],
+      b = 3 * t[next(h)],
+      c = 3 * t[previous(h)];
+    const ux = x[b] - x[a],
+      uy = x[b + 1] - x[a + 1],
+      uz = x[b + 2] - x[a + 2];
+    const vx = x[c] - x[a],
+      vy = x[c + 1] - x[a + 1],
+      vz = x[c + 2] - x[a + 2];
+    const nx = uy * vz - uz * vy,
+      ny = uz * vx - ux * vz,
+      nz = ux * vy - uy * vx;
     return [(ux * vx + uy * vy + uz * vz) / len, Math.hypot(nx, ny, nz) / len];
   }
 
   /** `p` of the face of h in h's local frame. */
   private inHalf(h: number, p: Vec3, len: number): [number, number] {
     const { positions: x, triangles: t } = this.mesh;
-    const a = 3 * t[h], b = 3 * t[next(h)], c = 3 * t[previous(h)];
-    const ux = (x[b] - x[a]) / len, uy = (x[b + 1] - x[a + 1]) / len, uz = (x[b + 2] - x[a + 2]) / len;
-    const vx = x[c] - x[a], vy = x[c + 1] - x[a + 1], vz = x[c + 2] - x[a + 2];
+    const a = 3 * t[h],
+      b = 3 * t[next(h)],
+      c = 3 * t[previous(h)];
+    const ux = (x[b] - x[a]) / len,
+      uy = (x[b + 1] - x[a + 1]) / len,
+      uz = (x[b + 2] - x[a + 2]) / len;
+    const vx = x[c] - x[a],
+      vy = x[c + 1] - x[a + 1],
+      vz = x[c + 2] - x[a + 2];
     const along = ux * vx + uy * vy + uz * vz;
-    let wx = vx - along * ux, wy = vy - along * uy, wz = vz - along * uz;
+    let wx = vx - along * ux,
+      wy = vy - along * uy,
+      wz = vz - along * uz;
     const l = Math.hypot(wx, wy, wz);
     wx /= l;
     wy /= l;
     wz /= l;
-    const px = p[0] - x[a], py = p[1] - x[a + 1], pz = p[2] - x[a + 2];
+    const px = p[0] - x[a],
+      py = p[1] - x[a + 1],
+      pz = p[2] - x[a + 2];
     return [px * ux + py * uy + pz * uz, px * wx + py * wy + pz * wz];
   }
 
   private cornerAngle(h: number): number {
     const { positions: x, triangles: t } = this.mesh;
-    const a = 3 * t[h], b = 3 * t[next(h)], c = 3 * t[previous(h)];
-    const ux = x[b] - x[a], uy = x[b + 1] - x[a + 1], uz = x[b + 2] - x[a + 2];
-    const vx = x[c] - x[a], vy = x[c + 1] - x[a + 1], vz = x[c + 2] - x[a + 2];
-    const nx = uy * vz - uz * vy, ny = uz * vx - ux * vz, nz = ux * vy - uy * vx;
+    const a = 3 * t[h],
+      b = 3 * t[next(h)],
+      c = 3 * t[previous(h)];
+    const ux = x[b] - x[a],
+      uy = x[b + 1] - x[a + 1],
+      uz = x[b + 2] - x[a + 2];
+    const vx = x[c] - x[a],
+      vy = x[c + 1] - x[a + 1],
+      vz = x[c + 2] - x[a + 2];
+    const nx = uy * vz - uz * vy,
+      ny = uz * vx - ux * vz,
+      nz = ux * vy - uy * vx;
     return Math.atan2(Math.hypot(nx, ny, nz), ux * vx + uy * vy + uz * vz);
   }
 
@@ -562,11 +725,15 @@ export class WindowSolver {
   private frame(face: number, direction: Vec3): { x: Vec3; y: Vec3 } {
     const u = this.edgeDirection(3 * face);
     const v = this.edgeDirection(3 * face + 2);
-    const nx = v[1] * u[2] - v[2] * u[1], ny = v[2] * u[0] - v[0] * u[2], nz = v[0] * u[1] - v[1] * u[0];
+    const nx = v[1] * u[2] - v[2] * u[1],
+      ny = v[2] * u[0] - v[0] * u[2],
+      nz = v[0] * u[1] - v[1] * u[0];
     const nl = Math.hypot(nx, ny, nz);
     const n: Vec3 = [nx / nl, ny / nl, nz / nl];
     const off = dot(direction, n);
-    const dx = direction[0] - off * n[0], dy = direction[1] - off * n[1], dz = direction[2] - off * n[2];
+    const dx = direction[0] - off * n[0],
+      dy = direction[1] - off * n[1],
+      dz = direction[2] - off * n[2];
     const dl = Math.hypot(dx, dy, dz);
     const x: Vec3 = [dx / dl, dy / dl, dz / dl];
     return { x, y: [n[1] * x[2] - n[2] * x[1], n[2] * x[0] - n[0] * x[2], n[0] * x[1] - n[1] * x[0]] };
@@ -579,16 +746,26 @@ export class WindowSolver {
     const e = this.edgeDirection(h);
     const there = this.frame(faceOf(t), e);
     const turn = (v: Vec3): Vec3 => {
-      const a = dot(v, here.x), b = dot(v, here.y);
-      return [a * there.x[0] + b * there.y[0], a * there.x[1] + b * there.y[1], a * there.x[2] + b * there.y[2]];
+      const a = dot(v, here.x),
+        b = dot(v, here.y);
+      return [
+        a * there.x[0] + b * there.y[0],
+        a * there.x[1] + b * there.y[1],
+        a * there.x[2] + b * there.y[2],
+      ];
     };
     return [turn(x), turn(y)];
   }
 
   private edgeToTarget(half: number, len: number, p: Vec3): number {
     const { positions: x, triangles: t } = this.mesh;
-    const a = 3 * t[half], b = 3 * t[next(half)];
-    const d = Math.hypot(p[0] - (x[a] + x[b]) / 2, p[1] - (x[a + 1] + x[b + 1]) / 2, p[2] - (x[a + 2] + x[b + 2]) / 2);
+    const a = 3 * t[half],
+      b = 3 * t[next(half)];
+    const d = Math.hypot(
+      p[0] - (x[a] + x[b]) / 2,
+      p[1] - (x[a + 1] + x[b + 1]) / 2,
+      p[2] - (x[a + 2] + x[b + 2]) / 2,
+    );
     return Math.max(0, d - len / 2);
   }
 
@@ -601,7 +778,15 @@ export class WindowSolver {
 const dot = (a: Vec3, b: Vec3): number => a[0] * b[0] + a[1] * b[1] + a[2] * b[2];
 
 /** Length t along unit direction e, from the edge's start, of its crossing with the ray P + k d; `parallel` when they never meet. */
-function crossing(px: number, py: number, dx: number, dy: number, ex: number, ey: number, parallel: number): number {
+function crossing(
+  px: number,
+  py: number,
+  dx: number,
+  dy: number,
+  ex: number,
+  ey: number,
+  parallel: number,
+): number {
   const den = ex * dy - ey * dx;
   return den === 0 ? parallel : (px * dy - py * dx) / den;
 }
@@ -613,16 +798,34 @@ export function rootDistance(root: Root, qx: number, qy: number): number {
   return qx < -slack || qx > root.length + slack || qy * root.side < -slack ? Infinity : Math.abs(qy);
 }
 
-function pointDistance(root: Root, x: number, y: number, sx: number, sy: number, cos: number, sin: number): number {
-  return root.kind === 'point' ? root.sigma + Math.hypot(x - sx, y - sy) : Math.abs(sin * (x - sx) + cos * (y - sy));
+function pointDistance(
+  root: Root,
+  x: number,
+  y: number,
+  sx: number,
+  sy: number,
+  cos: number,
+  sin: number,
+): number {
+  return root.kind === 'point'
+    ? root.sigma + Math.hypot(x - sx, y - sy)
+    : Math.abs(sin * (x - sx) + cos * (y - sy));
 }
 
 const windowDistance = (root: Root, x: number, sx: number, sy: number, cos: number, sin: number): number =>
   pointDistance(root, x, 0, sx, sy, cos, sin);
 
-function leastDistance(root: Root, b0: number, b1: number, sx: number, sy: number, cos: number, sin: number): number {
+function leastDistance(
+  root: Root,
+  b0: number,
+  b1: number,
+  sx: number,
+  sy: number,
+  cos: number,
+  sin: number,
+): number {
   if (root.kind === 'point') {
-    const x = sx < b0 ? b0 : sx > b1 ? b1 : sx;
+    const x = Math.max(b0, Math.min(sx, b1));
     return root.sigma + Math.hypot(x - sx, sy);
   }
   return Math.min(windowDistance(root, b0, sx, sy, cos, sin), windowDistance(root, b1, sx, sy, cos, sin));
@@ -632,7 +835,15 @@ function leastDistance(root: Root, b0: number, b1: number, sx: number, sy: numbe
  * Part of the edge A → B (root frame of a segment, half-edge of the far face) whose feet lie on the segment and
  * which lies on the asked side, as lengths from A. An edge that the segment runs along belongs to the side beyond it.
  */
-function clipToStrip(ax: number, ay: number, bx: number, by: number, length: number, side: number, len: number): [number, number] | null {
+function clipToStrip(
+  ax: number,
+  ay: number,
+  bx: number,
+  by: number,
+  length: number,
+  side: number,
+  len: number,
+): [number, number] | null {
   const slack = SEEN * (length + len);
   let t0 = 0;
   let t1 = 1;

@@ -39,12 +39,19 @@ export interface ChainOptions {
  * @param writable  whether the beam can go to a sample of the copper at all
  * @returns chains; where copper that cannot be written interrupts an element, one for each rest
  */
-export function chainsOf(element: CopperElement, index: number, reach: ElementReach, writable: (t: number) => boolean, options: ChainOptions): Chain[] {
+export function chainsOf(
+  element: CopperElement,
+  index: number,
+  reach: ElementReach,
+  writable: (t: number) => boolean,
+  options: ChainOptions,
+): Chain[] {
   const trace = element.kind === 'trace';
   const pad = element.kind === 'pad';
   const step = trace ? options.step : HEIGHT_STEP;
   const n = element.copper.face.length;
-  const ranges = (t: number): readonly (readonly [number, number])[] => (trace ? alongRange(element, t) : [[reach.low[t], reach.high[t]]]);
+  const ranges = (t: number): readonly (readonly [number, number])[] =>
+    trace ? alongRange(element, t) : [[reach.low[t], reach.high[t]]];
   let least = Infinity;
   let most = -Infinity;
   for (let t = 0; t < n; t++) {
@@ -89,7 +96,11 @@ export function chainsOf(element: CopperElement, index: number, reach: ElementRe
     });
   }
   const pieces = splitAtGaps(samples);
-  return pieces.map((piece) => ({ element: index, by: trace ? ('along' as const) : ('height' as const), samples: pad ? asOne(piece) ?? neighbours(piece) : neighbours(piece) }));
+  return pieces.map((piece) => ({
+    element: index,
+    by: trace ? ('along' as const) : ('height' as const),
+    samples: pad ? (asOne(piece) ?? neighbours(piece)) : neighbours(piece),
+  }));
 }
 
 /** A pad that one height can write whole is one sample; null when none can. */
@@ -143,7 +154,11 @@ function alongRange(element: CopperElement, t: number): readonly (readonly [numb
   const x = field.positions;
   const longest = Math.max(side(x, 3 * a, 3 * b), side(x, 3 * b, 3 * c), side(x, 3 * c, 3 * a));
   if (hi - lo <= JUMP * longest) return [[lo, hi]];
-  return [[sa, sa], [sb, sb], [sc, sc]];
+  return [
+    [sa, sa],
+    [sb, sb],
+    [sc, sc],
+  ];
 }
 
 /** The foot moves at most as fast as the place, but for curvature: more than this times a triangle's side is a jump. */
@@ -152,14 +167,23 @@ const JUMP = 2;
 /** Sine of a triangle's slope against the bench: height gained for each mm walked straight up it. */
 function slopeOf(element: CopperElement, t: number, up: Vec3): number {
   const { positions: x, triangles } = element.copper;
-  const a = 3 * triangles[3 * t], b = 3 * triangles[3 * t + 1], c = 3 * triangles[3 * t + 2];
-  const ux = x[b] - x[a], uy = x[b + 1] - x[a + 1], uz = x[b + 2] - x[a + 2];
-  const vx = x[c] - x[a], vy = x[c + 1] - x[a + 1], vz = x[c + 2] - x[a + 2];
-  const nx = uy * vz - uz * vy, ny = uz * vx - ux * vz, nz = ux * vy - uy * vx;
+  const a = 3 * triangles[3 * t],
+    b = 3 * triangles[3 * t + 1],
+    c = 3 * triangles[3 * t + 2];
+  const ux = x[b] - x[a],
+    uy = x[b + 1] - x[a + 1],
+    uz = x[b + 2] - x[a + 2];
+  const vx = x[c] - x[a],
+    vy = x[c + 1] - x[a + 1],
+    vz = x[c + 2] - x[a + 2];
+  const nx = uy * vz - uz * vy,
+    ny = uz * vx - ux * vz,
+    nz = ux * vy - uy * vx;
   const l = Math.hypot(nx, ny, nz);
   if (l === 0) return 0;
   const cos = (nx * up[0] + ny * up[1] + nz * up[2]) / l;
   return Math.sqrt(Math.max(0, 1 - cos * cos));
 }
 
-const side = (x: Float64Array, a: number, b: number): number => Math.hypot(x[a] - x[b], x[a + 1] - x[b + 1], x[a + 2] - x[b + 2]);
+const side = (x: Float64Array, a: number, b: number): number =>
+  Math.hypot(x[a] - x[b], x[a + 1] - x[b + 1], x[a + 2] - x[b + 2]);

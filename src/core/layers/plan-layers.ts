@@ -6,7 +6,7 @@ import type { Project, Setup, Stage } from '../project/schema.ts';
 import type { ElementReach, SetupReach } from '../reach/result.ts';
 import { REASONS } from '../reach/result.ts';
 import { type Chain, chainsOf } from './chains.ts';
-import type { Layer, Run, SetupPlan } from './plan.ts';
+import type { Layer, SetupPlan } from './plan.ts';
 import { bestHeights, fewestRuns, type Stretch } from './runs.ts';
 import { fewestHeights, gridCeil, gridFloor, type HeightGrid, stabLeft, stabRight, within } from './stab.ts';
 
@@ -14,10 +14,15 @@ import { fewestHeights, gridCeil, gridFloor, type HeightGrid, stabLeft, stabRigh
 const CANNOT_GO = (1 << REASONS.indexOf('shade')) | (1 << REASONS.indexOf('field'));
 
 /** Whether the beam can go to a sample; what is merely weak there (incidence, dose) is written all the same and reported. */
-export const canGo = (reach: ElementReach, t: number): boolean => (reach.fails[t] & CANNOT_GO) === 0 && reach.incidence[t] < Math.PI / 2;
+export const canGo = (reach: ElementReach, t: number): boolean =>
+  (reach.fails[t] & CANNOT_GO) === 0 && reach.incidence[t] < Math.PI / 2;
 
 /** Heights that the stage can bring into focus: s = -h within its range, in its steps. */
-export const heightGrid = (stage: Stage): HeightGrid => ({ step: stage.step, least: -stage.range[1], most: -stage.range[0] });
+export const heightGrid = (stage: Stage): HeightGrid => ({
+  step: stage.step,
+  least: -stage.range[1],
+  most: -stage.range[0],
+});
 
 /** Sampling step along a trace, mm (model.md §5). */
 const stepOf = (element: CopperElement): number => Math.min(0.1, element.width > 0 ? element.width / 4 : 0.1);
@@ -26,8 +31,19 @@ const stepOf = (element: CopperElement): number => Math.min(0.1, element.width >
  * @param reach  one a setup, from `checkReach`
  * @returns one plan a setup; an element is written in the setup that can write most of it, the first of equals
  */
-export function planLayers(project: Project, setups: readonly Setup[], copper: Copper, reach: readonly SetupReach[], ctx: RunContext): SetupPlan[] {
-  const home = copper.elements.map((element, e) => bestSetup(element, reach.map((r) => r.elements[e])));
+export function planLayers(
+  project: Project,
+  setups: readonly Setup[],
+  copper: Copper,
+  reach: readonly SetupReach[],
+  ctx: RunContext,
+): SetupPlan[] {
+  const home = copper.elements.map((element, e) =>
+    bestSetup(
+      element,
+      reach.map((r) => r.elements[e]),
+    ),
+  );
   return setups.map((setup, i) => {
     ctx.step('layers', i, setups.length);
     const mine = home.flatMap((s, e) => (s === i ? [e] : []));
@@ -49,7 +65,14 @@ function bestSetup(element: CopperElement, reaches: readonly ElementReach[]): nu
   return best;
 }
 
-function planSetup(project: Project, setup: Setup, index: number, copper: Copper, reach: SetupReach, mine: readonly number[]): SetupPlan {
+function planSetup(
+  project: Project,
+  setup: Setup,
+  index: number,
+  copper: Copper,
+  reach: SetupReach,
+  mine: readonly number[],
+): SetupPlan {
   const grid = heightGrid(project.stage);
   const up = poseFrame(setup.pose).directionToPart([0, 0, 1]);
   const given = setup.focusHeights ? [...new Set(setup.focusHeights)].sort((a, b) => a - b) : null;
@@ -59,7 +82,11 @@ function planSetup(project: Project, setup: Setup, index: number, copper: Copper
     const element = copper.elements[e];
     const r = reach.elements[e];
     unreached.push(...cannotGo(element, e, r));
-    for (const chain of chainsOf(element, e, r, (t) => canGo(r, t), { step: stepOf(element), stitch: project.scan.stitch, up })) {
+    for (const chain of chainsOf(element, e, r, (t) => canGo(r, t), {
+      step: stepOf(element),
+      stitch: project.scan.stitch,
+      up,
+    })) {
       // What no height of the stage brings into focus is a finding; the rest goes on.
       let keep: Chain['samples'] = [];
       const flush = () => {
@@ -75,7 +102,17 @@ function planSetup(project: Project, setup: Setup, index: number, copper: Copper
           if (last?.element === e && last.reason === 'focus' && last.to === s.from) {
             last.to = last.cutTo = s.to;
             last.length += s.to - s.from;
-          } else unreached.push({ element: e, by: chain.by, from: s.from, to: s.to, cutFrom: s.from, cutTo: s.to, length: s.to - s.from, reason: 'focus' });
+          } else
+            unreached.push({
+              element: e,
+              by: chain.by,
+              from: s.from,
+              to: s.to,
+              cutFrom: s.from,
+              cutTo: s.to,
+              length: s.to - s.from,
+              reason: 'focus',
+            });
         }
       }
       flush();
@@ -95,7 +132,11 @@ function layersOf(chains: readonly Chain[], grid: HeightGrid): Layer[] {
   const right = stabRight(fewest.intervals)!;
   const left = stabLeft(fewest.intervals)!;
   const snap = (h: number) => (grid.step > 0 ? Math.round(h / grid.step) * grid.step : h);
-  const { heights } = bestHeights(intervals, left.map((lo, i) => [lo, right[i]] as const), snap);
+  const { heights } = bestHeights(
+    intervals,
+    left.map((lo, i) => [lo, right[i]] as const),
+    snap,
+  );
   const runs = intervals.map((list) => fewestRuns(list, heights)!);
   // What is still free takes the middle of its range.
   const settled = heights.map((h, layer) => {
@@ -119,12 +160,29 @@ function layersOf(chains: readonly Chain[], grid: HeightGrid): Layer[] {
 /** Layers at heights chosen by hand: the fewest runs that they allow. Every sample meets one of them. */
 function layersAt(chains: readonly Chain[], heights: readonly number[]): Layer[] {
   const intervals = chains.map((c) => c.samples.map((s) => [s.lo, s.hi] as const));
-  return writtenAt(chains, intervals, intervals.map((list) => fewestRuns(list, heights)!), heights);
+  return writtenAt(
+    chains,
+    intervals,
+    intervals.map((list) => fewestRuns(list, heights)!),
+    heights,
+  );
 }
 
 /** The layers with their runs, from the lowest up; a height that writes nothing makes no layer. */
-function writtenAt(chains: readonly Chain[], intervals: readonly (readonly (readonly [number, number])[])[], runs: readonly Stretch[][], settled: readonly number[]): Layer[] {
-  const layers = settled.map((h, i): Layer & { key: number } => ({ key: i, index: 0, focusHeight: h, stageOffset: h === 0 ? 0 : -h, runs: [], worstDefocus: 0 }));
+function writtenAt(
+  chains: readonly Chain[],
+  intervals: readonly (readonly (readonly [number, number])[])[],
+  runs: readonly Stretch[][],
+  settled: readonly number[],
+): Layer[] {
+  const layers = settled.map((h, i): Layer & { key: number } => ({
+    key: i,
+    index: 0,
+    focusHeight: h,
+    stageOffset: h === 0 ? 0 : -h,
+    runs: [],
+    worstDefocus: 0,
+  }));
   chains.forEach((chain, c) => {
     addRuns(chain, intervals[c], runs[c], settled, layers);
   });
@@ -143,15 +201,27 @@ function snapDown(h: number, grid: HeightGrid): number {
 }
 
 /** Turns stretches into runs: each cut in the middle of where both layers may write, with half a stitch on either side. */
-function addRuns(chain: Chain, intervals: readonly (readonly [number, number])[], stretches: readonly Stretch[], heights: readonly number[], layers: Layer[]): void {
+function addRuns(
+  chain: Chain,
+  intervals: readonly (readonly [number, number])[],
+  stretches: readonly Stretch[],
+  heights: readonly number[],
+  layers: Layer[],
+): void {
   const { samples } = chain;
-  const allowed = (i: number, layer: number) => intervals[i][0] <= heights[layer] && heights[layer] <= intervals[i][1];
+  const allowed = (i: number, layer: number) =>
+    intervals[i][0] <= heights[layer] && heights[layer] <= intervals[i][1];
   const cuts: number[] = [];
   for (let r = 0; r + 1 < stretches.length; r++) {
     // The stretch before ends as late as it can; the one after may begin earlier.
     const border = stretches[r].last + 1;
     let early = border;
-    while (early > stretches[r].first + 1 && early - 1 > (cuts[r - 1] ?? 0) && allowed(early - 1, stretches[r + 1].height)) early--;
+    while (
+      early > stretches[r].first + 1 &&
+      early - 1 > (cuts[r - 1] ?? 0) &&
+      allowed(early - 1, stretches[r + 1].height)
+    )
+      early--;
     cuts.push(Math.ceil((early + border) / 2));
   }
   stretches.forEach((s, r) => {
@@ -159,8 +229,12 @@ function addRuns(chain: Chain, intervals: readonly (readonly [number, number])[]
     const last = r === stretches.length - 1 ? samples.length : cuts[r];
     const layer = layers[s.height];
     const h = heights[s.height];
-    for (let i = first; i < last; i++) layer.worstDefocus = Math.max(layer.worstDefocus, samples[i].high - h, h - samples[i].low);
-    const open = { from: r === 0 ? -Infinity : samples[first].from, to: last === samples.length ? Infinity : samples[last - 1].to };
+    for (let i = first; i < last; i++)
+      layer.worstDefocus = Math.max(layer.worstDefocus, samples[i].high - h, h - samples[i].low);
+    const open = {
+      from: r === 0 ? -Infinity : samples[first].from,
+      to: last === samples.length ? Infinity : samples[last - 1].to,
+    };
     // Ends next to copper that cannot be written are ends of the chain, not of the element.
     const from = r === 0 ? samples[0].from : open.from;
     const to = last === samples.length ? samples[samples.length - 1].to : open.to;

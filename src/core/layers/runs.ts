@@ -56,7 +56,11 @@ const ROUNDS = 8;
  * improves (coordinate descent: then fewest is not promised, and `exact` says so).
  * @param ranges  for each layer the least and greatest height that the smallest count allows
  */
-export function bestHeights(chains: readonly Intervals[], ranges: readonly (readonly [number, number])[], snap: (h: number) => number): { heights: number[]; runs: number; exact: boolean } {
+export function bestHeights(
+  chains: readonly Intervals[],
+  ranges: readonly (readonly [number, number])[],
+  snap: (h: number) => number,
+): { heights: number[]; runs: number; exact: boolean } {
   const thin = chains.map(distinct);
   const candidates = ranges.map(([lo, hi]) => candidateHeights(thin, lo, hi, snap));
   let heights = ranges.map(([lo, hi]) => snap((lo + hi) / 2));
@@ -104,7 +108,12 @@ function distinct(chain: Intervals): Intervals {
   return chain.filter((x, i) => i === 0 || x[0] !== chain[i - 1][0] || x[1] !== chain[i - 1][1]);
 }
 
-function candidateHeights(chains: readonly Intervals[], lo: number, hi: number, snap: (h: number) => number): number[] {
+function candidateHeights(
+  chains: readonly Intervals[],
+  lo: number,
+  hi: number,
+  snap: (h: number) => number,
+): number[] {
   const ends = new Set<number>([lo, hi]);
   for (const c of chains)
     for (const [a, b] of c) {
@@ -120,4 +129,6 @@ function candidateHeights(chains: readonly Intervals[], lo: number, hi: number, 
 /** At most this many candidates of one height are tried in one round. */
 const SPARSE = 200;
 const sparse = (list: readonly number[]): readonly number[] =>
-  list.length <= SPARSE ? list : Array.from({ length: SPARSE }, (_, i) => list[Math.round((i * (list.length - 1)) / (SPARSE - 1))]);
+  list.length <= SPARSE
+    ? list
+    : Array.from({ length: SPARSE }, (_, i) => list[Math.round((i * (list.length - 1)) / (SPARSE - 1))]);

@@ -41,15 +41,23 @@ export function gridFloor(x: number, grid: HeightGrid): number {
 
 /** The demand with at most `d` of defocus, on the grid; empty when lo > hi. */
 export function within(demand: Demand, d: number, grid: HeightGrid): readonly [number, number] {
-  return [gridCeil(Math.max(demand.lo, demand.high - d), grid), gridFloor(Math.min(demand.hi, demand.low + d), grid)];
+  return [
+    gridCeil(Math.max(demand.lo, demand.high - d), grid),
+    gridFloor(Math.min(demand.hi, demand.low + d), grid),
+  ];
 }
 
 /**
  * Fewest heights for intervals, each as far right as it may be; null when an interval is empty or more than `most`
  * heights are needed.
  */
-export function stabRight(intervals: readonly (readonly [number, number])[], most = Infinity): number[] | null {
-  const order = intervals.map((_, i) => i).sort((a, b) => intervals[a][1] - intervals[b][1] || intervals[a][0] - intervals[b][0]);
+export function stabRight(
+  intervals: readonly (readonly [number, number])[],
+  most = Infinity,
+): number[] | null {
+  const order = intervals
+    .map((_, i) => i)
+    .sort((a, b) => intervals[a][1] - intervals[b][1] || intervals[a][0] - intervals[b][0]);
   const heights: number[] = [];
   let last = -Infinity;
   for (const i of order) {
@@ -101,7 +109,11 @@ export function fewestHeights(demands: readonly Demand[], grid: HeightGrid): Few
 }
 
 /** Largest |defocus| when each demand takes the best of the heights in its interval. */
-function largestDefocus(demands: readonly Demand[], intervals: readonly (readonly [number, number])[], heights: readonly number[]): number {
+function largestDefocus(
+  demands: readonly Demand[],
+  intervals: readonly (readonly [number, number])[],
+  heights: readonly number[],
+): number {
   let worst = 0;
   demands.forEach((x, i) => {
     const [lo, hi] = intervals[i];

@@ -18,10 +18,18 @@ export function buildNormals(mesh: SurfaceMesh): CornerNormals {
   const flat = new Float64Array(halves);
   const angle = new Float64Array(halves);
   for (let h = 0; h < halves; h++) {
-    const a = 3 * t[h], b = 3 * t[next(h)], c = 3 * t[previous(h)];
-    const ux = x[b] - x[a], uy = x[b + 1] - x[a + 1], uz = x[b + 2] - x[a + 2];
-    const vx = x[c] - x[a], vy = x[c + 1] - x[a + 1], vz = x[c + 2] - x[a + 2];
-    const nx = uy * vz - uz * vy, ny = uz * vx - ux * vz, nz = ux * vy - uy * vx;
+    const a = 3 * t[h],
+      b = 3 * t[next(h)],
+      c = 3 * t[previous(h)];
+    const ux = x[b] - x[a],
+      uy = x[b + 1] - x[a + 1],
+      uz = x[b + 2] - x[a + 2];
+    const vx = x[c] - x[a],
+      vy = x[c + 1] - x[a + 1],
+      vz = x[c + 2] - x[a + 2];
+    const nx = uy * vz - uz * vy,
+      ny = uz * vx - ux * vz,
+      nz = ux * vy - uy * vx;
     const l = Math.hypot(nx, ny, nz);
     angle[h] = Math.atan2(l, ux * vx + uy * vy + uz * vz);
     if (h % 3 === 0) {
@@ -32,7 +40,8 @@ export function buildNormals(mesh: SurfaceMesh): CornerNormals {
   }
   const out = new Float64Array(3 * halves);
   const smooth = (h: number, k: number): boolean => {
-    const f = 3 * faceOf(h), g = 3 * faceOf(k);
+    const f = 3 * faceOf(h),
+      g = 3 * faceOf(k);
     return flat[f] * flat[g] + flat[f + 1] * flat[g + 1] + flat[f + 2] * flat[g + 2] >= CREASE;
   };
   const done = new Uint8Array(halves);
@@ -46,7 +55,9 @@ export function buildNormals(mesh: SurfaceMesh): CornerNormals {
       if (first === h0) break;
     }
     fan.length = 0;
-    let nx = 0, ny = 0, nz = 0;
+    let nx = 0,
+      ny = 0,
+      nz = 0;
     let h = first;
     for (;;) {
       const f = 3 * faceOf(h);

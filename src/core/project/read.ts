@@ -17,10 +17,22 @@ export interface ReadProject {
 export function readProject(text: string, file: string): ReadProject {
   const data = parseJson(text, file);
   if (typeof data !== 'object' || data === null || (data as { format?: unknown }).format !== 'beamdrape')
-    throw new InputError({ code: 'not-a-project', file, place: '$.format', problem: 'this is not a project file', mend: 'give a *.drape.json whose "format" is "beamdrape"' });
+    throw new InputError({
+      code: 'not-a-project',
+      file,
+      place: '$.format',
+      problem: 'this is not a project file',
+      mend: 'give a *.drape.json whose "format" is "beamdrape"',
+    });
   const version = (data as { version?: unknown }).version;
   if (typeof version === 'number' && version > 1)
-    throw new InputError({ code: 'newer-version', file, place: '$.version', problem: `version ${version} is newer than this program knows (1)`, mend: 'open it with a newer release' });
+    throw new InputError({
+      code: 'newer-version',
+      file,
+      place: '$.version',
+      problem: `version ${version} is newer than this program knows (1)`,
+      mend: 'open it with a newer release',
+    });
   const parsed = projectSchema.safeParse(data);
   if (!parsed.success) {
     const problems = parsed.error.issues.map((issue): InputProblem => {
@@ -30,7 +42,10 @@ export function readProject(text: string, file: string): ReadProject {
         code: 'bad-value',
         file,
         place: jsonPath(deep.path),
-        problem: value === undefined ? 'a required value is missing' : `${show(value)} cannot be used here (${plain(deep.message)})`,
+        problem:
+          value === undefined
+            ? 'a required value is missing'
+            : `${show(value)} cannot be used here (${plain(deep.message)})`,
         mend: value === undefined ? 'add it' : 'correct the value',
       };
     });
@@ -47,7 +62,16 @@ export const writeProject = (project: Project): string => JSON.stringify(project
 
 /** JSON path such as `$.circuit.elements[3].width`. */
 export const jsonPath = (path: readonly PropertyKey[]): string =>
-  '$' + path.map((k) => (typeof k === 'number' ? `[${k}]` : /^[A-Za-z_]\w*$/.test(String(k)) ? `.${String(k)}` : `[${JSON.stringify(String(k))}]`)).join('');
+  '$' +
+  path
+    .map((k) =>
+      typeof k === 'number'
+        ? `[${k}]`
+        : /^[A-Za-z_]\w*$/.test(String(k))
+          ? `.${String(k)}`
+          : `[${JSON.stringify(String(k))}]`,
+    )
+    .join('');
 
 function parseJson(text: string, file: string): unknown {
   try {
@@ -60,7 +84,13 @@ function parseJson(text: string, file: string): unknown {
       const before = text.slice(0, Number(at[1])).split('\n');
       place = `line ${before.length}, column ${before[before.length - 1].length + 1}`;
     }
-    throw new InputError({ code: 'not-json', file, place, problem: 'the text is not valid JSON', mend: 'mend the JSON at this place' });
+    throw new InputError({
+      code: 'not-json',
+      file,
+      place,
+      problem: 'the text is not valid JSON',
+      mend: 'mend the JSON at this place',
+    });
   }
 }
 
@@ -107,27 +137,70 @@ function cross(p: Project, file: string): InputProblem[] {
   p.circuit.elements.forEach((e, i) => {
     const first = seen.get(e.id);
     if (first !== undefined)
-      out.push({ code: 'same-id', file, place: `$.circuit.elements[${i}].id`, problem: `"${e.id}" is also the id of element ${first}`, mend: 'give each element an id of its own' });
+      out.push({
+        code: 'same-id',
+        file,
+        place: `$.circuit.elements[${i}].id`,
+        problem: `"${e.id}" is also the id of element ${first}`,
+        mend: 'give each element an id of its own',
+      });
     else seen.set(e.id, i);
   });
   p.head.pivot.forEach((v, i) => {
     if (v !== null && v <= p.head.workingDistance)
-      out.push({ code: 'bad-head', file, place: `$.head.pivot[${i}]`, problem: `the pivot at ${v} mm is not above the lens body, which begins at ${p.head.workingDistance} mm`, mend: 'give the pivot height above the focal plane, or null for a telecentric axis' });
+      out.push({
+        code: 'bad-head',
+        file,
+        place: `$.head.pivot[${i}]`,
+        problem: `the pivot at ${v} mm is not above the lens body, which begins at ${p.head.workingDistance} mm`,
+        mend: 'give the pivot height above the focal plane, or null for a telecentric axis',
+      });
   });
   if (p.material.damageFluence <= p.material.activationFluence * p.material.doseMargin)
-    out.push({ code: 'bad-range', file, place: '$.material.damageFluence', problem: 'damage begins below the dose that activation with its margin needs', mend: 'check activationFluence, doseMargin and damageFluence' });
+    out.push({
+      code: 'bad-range',
+      file,
+      place: '$.material.damageFluence',
+      problem: 'damage begins below the dose that activation with its margin needs',
+      mend: 'check activationFluence, doseMargin and damageFluence',
+    });
   if (p.stage.range[0] >= p.stage.range[1])
-    out.push({ code: 'bad-range', file, place: '$.stage.range', problem: 'the range is empty', mend: 'give the lower offset first' });
+    out.push({
+      code: 'bad-range',
+      file,
+      place: '$.stage.range',
+      problem: 'the range is empty',
+      mend: 'give the lower offset first',
+    });
   if (p.limits.depth.mode === 'distance' && p.limits.depth.halfDepth <= p.limits.heightUncertainty)
-    out.push({ code: 'bad-range', file, place: '$.limits.heightUncertainty', problem: `it takes the whole depth of focus (${p.limits.depth.halfDepth} mm)`, mend: 'lower the uncertainty or measure the depth again' });
+    out.push({
+      code: 'bad-range',
+      file,
+      place: '$.limits.heightUncertainty',
+      problem: `it takes the whole depth of focus (${p.limits.depth.halfDepth} mm)`,
+      mend: 'lower the uncertainty or measure the depth again',
+    });
   if (p.setups !== 'auto') {
     const names = new Set<string>();
     p.setups.forEach((s, i) => {
-      if (names.has(s.name)) out.push({ code: 'same-id', file, place: `$.setups[${i}].name`, problem: `"${s.name}" is used twice`, mend: 'give each setup a name of its own' });
+      if (names.has(s.name))
+        out.push({
+          code: 'same-id',
+          file,
+          place: `$.setups[${i}].name`,
+          problem: `"${s.name}" is used twice`,
+          mend: 'give each setup a name of its own',
+        });
       names.add(s.name);
       s.focusHeights?.forEach((h, k) => {
         if (-h < p.stage.range[0] || -h > p.stage.range[1])
-          out.push({ code: 'bad-range', file, place: `$.setups[${i}].focusHeights[${k}]`, problem: `the stage cannot bring the height ${h} mm into focus`, mend: 'give a height whose opposite lies in stage.range' });
+          out.push({
+            code: 'bad-range',
+            file,
+            place: `$.setups[${i}].focusHeights[${k}]`,
+            problem: `the stage cannot bring the height ${h} mm into focus`,
+            mend: 'give a height whose opposite lies in stage.range',
+          });
       });
     });
   }
@@ -135,7 +208,15 @@ function cross(p: Project, file: string): InputProblem[] {
 }
 
 interface Described {
-  def?: { type?: string; shape?: Record<string, Described>; element?: Described; innerType?: Described; options?: Described[]; items?: Described[]; in?: Described };
+  def?: {
+    type?: string;
+    shape?: Record<string, Described>;
+    element?: Described;
+    innerType?: Described;
+    options?: Described[];
+    items?: Described[];
+    in?: Described;
+  };
 }
 
 /** Walks schema and data together and lists what the schema has no name for. */
@@ -145,13 +226,18 @@ function unknownFields(data: unknown, schema: Described | undefined, path: Prope
   if (def.innerType) return unknownFields(data, def.innerType, path);
   if (def.in) return unknownFields(data, def.in, path);
   if (def.options) {
-    const found = def.options.map((o) => (fits(data, o) ? unknownFields(data, o, path) : null)).filter((x) => x !== null);
+    const found = def.options
+      .map((o) => (fits(data, o) ? unknownFields(data, o, path) : null))
+      .filter((x) => x !== null);
     return found.sort((a, b) => a.length - b.length)[0] ?? [];
   }
-  if (def.type === 'array' && Array.isArray(data)) return data.flatMap((v, i) => unknownFields(v, def.element, [...path, i]));
+  if (def.type === 'array' && Array.isArray(data))
+    return data.flatMap((v, i) => unknownFields(v, def.element, [...path, i]));
   if (def.type === 'object' && def.shape) {
     const shape = def.shape;
-    return Object.entries(data).flatMap(([k, v]) => (k in shape ? unknownFields(v, shape[k], [...path, k]) : [jsonPath([...path, k])]));
+    return Object.entries(data).flatMap(([k, v]) =>
+      k in shape ? unknownFields(v, shape[k], [...path, k]) : [jsonPath([...path, k])],
+    );
   }
   return [];
 }

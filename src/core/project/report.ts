@@ -16,7 +16,13 @@ export interface Report {
     area: number;
     volume: number;
     bounds: [Vec3, Vec3];
-    mended: { welded: number; degenerate: number; duplicate: number; flipped: number; nonManifoldEdges: number };
+    mended: {
+      welded: number;
+      degenerate: number;
+      duplicate: number;
+      flipped: number;
+      nonManifoldEdges: number;
+    };
   };
   beam: {
     waistRadius_um: number;

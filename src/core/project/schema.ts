@@ -19,7 +19,9 @@ const head = z.looseObject({
   field: z.tuple([positive, positive]),
   workingDistance: positive,
   bodyDiameter: positive,
-  pivot: z.union([z.null(), z.tuple([positive.nullable(), positive.nullable()])]).transform((p) => p ?? ([null, null] as [null, null])),
+  pivot: z
+    .union([z.null(), z.tuple([positive.nullable(), positive.nullable()])])
+    .transform((p) => p ?? ([null, null] as [null, null])),
   averagePower_W: positive,
   repetitionRate_kHz: positive,
   pulseWidth_ns: positive,
@@ -97,7 +99,12 @@ const copper = z.looseObject({
 });
 
 const pose = z.looseObject({
-  rotate: z.tuple([num, num, num, num]).refine((q) => Math.abs(Math.hypot(...q) - 1) < 1e-3, 'a quaternion of unit length [x, y, z, w] is needed'),
+  rotate: z
+    .tuple([num, num, num, num])
+    .refine(
+      (q) => Math.abs(Math.hypot(...q) - 1) < 1e-3,
+      'a quaternion of unit length [x, y, z, w] is needed',
+    ),
   move: vec3,
 });
 
@@ -119,8 +126,21 @@ const padShape = z.union([
   z.strictObject({ slot: z.tuple([positive, positive]) }),
   z.strictObject({ outline: z.array(vec2).min(3) }),
 ]);
-const trace = z.looseObject({ id, kind: z.literal('trace'), net, width: positive, route: z.array(place).min(2) });
-const pad = z.looseObject({ id, kind: z.literal('pad'), net, at: vec3, shape: padShape, turn: num.default(0) });
+const trace = z.looseObject({
+  id,
+  kind: z.literal('trace'),
+  net,
+  width: positive,
+  route: z.array(place).min(2),
+});
+const pad = z.looseObject({
+  id,
+  kind: z.literal('pad'),
+  net,
+  at: vec3,
+  shape: padShape,
+  turn: num.default(0),
+});
 const region = z.looseObject({ id, kind: z.literal('region'), net, outline: z.array(place).min(3) });
 const element = z.discriminatedUnion('kind', [trace, pad, region]);
 
@@ -145,7 +165,11 @@ export const projectSchema = z.looseObject({
   format: z.literal('beamdrape'),
   version: z.literal(1),
   name: z.string().min(1),
-  part: z.looseObject({ file: z.string().min(1), units: z.enum(['mm', 'cm', 'm', 'um', 'inch']).default('mm'), sha256: z.string().optional() }),
+  part: z.looseObject({
+    file: z.string().min(1),
+    units: z.enum(['mm', 'cm', 'm', 'um', 'inch']).default('mm'),
+    sha256: z.string().optional(),
+  }),
   head,
   material,
   limits: limits.prefault({}),

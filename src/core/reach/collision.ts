@@ -17,7 +17,13 @@ export interface Collision {
  * A vertex is the highest place of its faces; faces that only cross the body's rim are taken as under it when one
  * of their vertices is.
  */
-export function collision(mesh: SurfaceMesh, pose: Pose, stageOffset: number, head: Head, limits: Limits): Collision | null {
+export function collision(
+  mesh: SurfaceMesh,
+  pose: Pose,
+  stageOffset: number,
+  head: Head,
+  limits: Limits,
+): Collision | null {
   const frame = poseFrame(pose);
   const free = head.workingDistance - limits.clearance;
   let worst: Collision | null = null;
@@ -25,7 +31,12 @@ export function collision(mesh: SurfaceMesh, pose: Pose, stageOffset: number, he
     const at = at3(mesh.positions, v);
     const b = frame.point(partPoint(at));
     const height = b[2] + stageOffset;
-    if (height > free && height > (worst?.height ?? -Infinity) && Math.hypot(b[0], b[1]) <= head.bodyDiameter / 2) worst = { height, at };
+    if (
+      height > free &&
+      height > (worst?.height ?? -Infinity) &&
+      Math.hypot(b[0], b[1]) <= head.bodyDiameter / 2
+    )
+      worst = { height, at };
   }
   return worst;
 }

@@ -24,7 +24,13 @@ export const bit = (reason: Reason): number => 1 << REASONS.indexOf(reason);
  * so **focus** cannot fail here.
  * @param defocus  d of the sample in the layer that writes it; default 0 everywhere
  */
-export function checkReach(project: Project, setups: readonly Setup[], part: Part, copper: Copper, ctx: RunContext): SetupReach[] {
+export function checkReach(
+  project: Project,
+  setups: readonly Setup[],
+  part: Part,
+  copper: Copper,
+  ctx: RunContext,
+): SetupReach[] {
   return setups.map((setup, i) => ({
     setup: i,
     name: setup.name,
@@ -39,7 +45,13 @@ export function checkReach(project: Project, setups: readonly Setup[], part: Par
  * One element in one setup.
  * @param defocus  d of each sample, mm, for the layer that writes it; left out before there is a plan
  */
-export function reachElement(project: Project, setup: Setup, part: Part, element: CopperElement, defocus?: Float64Array): ElementReach {
+export function reachElement(
+  project: Project,
+  setup: Setup,
+  part: Part,
+  element: CopperElement,
+  defocus?: Float64Array,
+): ElementReach {
   const { head, material, limits } = project;
   const { mesh, queries, normals } = part;
   const frame = poseFrame(setup.pose);
@@ -61,12 +73,16 @@ export function reachElement(project: Project, setup: Setup, part: Part, element
   };
   const heights = new Float64Array(copper.positions.length / 3);
   for (let v = 0; v < heights.length; v++)
-    heights[v] = frame.point(partPoint([copper.positions[3 * v], copper.positions[3 * v + 1], copper.positions[3 * v + 2]]))[2];
+    heights[v] = frame.point(
+      partPoint([copper.positions[3 * v], copper.positions[3 * v + 1], copper.positions[3 * v + 2]]),
+    )[2];
   for (let t = 0; t < n; t++) {
     const [a, b, c] = [copper.triangles[3 * t], copper.triangles[3 * t + 1], copper.triangles[3 * t + 2]];
     const face = copper.face[t];
     const x = copper.positions;
-    const middle: Vec3 = [0, 1, 2].map((k) => (x[3 * a + k] + x[3 * b + k] + x[3 * c + k]) / 3) as unknown as Vec3;
+    const middle: Vec3 = [0, 1, 2].map(
+      (k) => (x[3 * a + k] + x[3 * b + k] + x[3 * c + k]) / 3,
+    ) as unknown as Vec3;
     const at = frame.point(partPoint(middle));
     const d = defocus ? defocus[t] : 0;
     const command = landing(benchPoint([at[0], at[1], d]), head);
@@ -74,7 +90,15 @@ export function reachElement(project: Project, setup: Setup, part: Part, element
     const smooth = frame.direction(normalAt(mesh, normals, face, middle));
     const theta = incidenceAngle(smooth, u);
     const cos = Math.cos(theta);
-    const blocked = blockedShare(queries, frame, middle, faceNormal(mesh, face), u, head.workingDistance - d, cone);
+    const blocked = blockedShare(
+      queries,
+      frame,
+      middle,
+      faceNormal(mesh, face),
+      u,
+      head.workingDistance - d,
+      cone,
+    );
     const fluence = cos > 0 ? peakFluence(beam, spotRadius(beam, d, u[2]), cos) : 0;
     const usable = usableDepth(beam, limits, material, Math.max(0, cos));
     out.height[t] = at[2];

@@ -15,9 +15,18 @@ export const LIFT = 1e-3;
  * @param height from the place up to the lens body, mm
  * @param cone   rays of the cone; empty for the chief ray alone
  */
-export function blockedShare(queries: SurfaceQueries, frame: PoseFrame, at: Vec3, normal: Vec3, u: Vec3, height: number, cone: readonly ConeRay[]): number {
+export function blockedShare(
+  queries: SurfaceQueries,
+  frame: PoseFrame,
+  at: Vec3,
+  normal: Vec3,
+  u: Vec3,
+  height: number,
+  cone: readonly ConeRay[],
+): number {
   const from = addScaled(at, normal, LIFT);
-  const stands = (direction: Vec3): boolean => queries.blocked(from, frame.directionToPart(direction), height / direction[2]);
+  const stands = (direction: Vec3): boolean =>
+    queries.blocked(from, frame.directionToPart(direction), height / direction[2]);
   if (cone.length === 0) return stands(u) ? 1 : 0;
   let share = 0;
   for (const ray of cone) if (stands(towardLens(u, height, ray.offset))) share += ray.power;

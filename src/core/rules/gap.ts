@@ -12,7 +12,8 @@ import type { Limits } from '../project/schema.ts';
 export function gapRule(elements: readonly CopperElement[], limits: Limits): RuleFinding[] {
   const cell = Math.max(limits.safeGap, 0.05);
   const cells = new Map<string, { element: number; loop: Float64Array; i: number }[]>();
-  const key = (x: number, y: number, z: number) => `${Math.floor(x / cell)},${Math.floor(y / cell)},${Math.floor(z / cell)}`;
+  const key = (x: number, y: number, z: number) =>
+    `${Math.floor(x / cell)},${Math.floor(y / cell)},${Math.floor(z / cell)}`;
   elements.forEach((e, n) => {
     for (const loop of e.outline)
       for (let i = 0; i + 3 < loop.length; i += 3) {
@@ -28,7 +29,13 @@ export function gapRule(elements: readonly CopperElement[], limits: Limits): Rul
       for (let i = 0; i + 3 < loop.length; i += 3) {
         const p: Vec3 = [loop[i], loop[i + 1], loop[i + 2]];
         for (let k = 0; k < 27; k++) {
-          const list = cells.get(key(p[0] + ((k % 3) - 1) * cell, p[1] + ((Math.floor(k / 3) % 3) - 1) * cell, p[2] + (Math.floor(k / 9) - 1) * cell));
+          const list = cells.get(
+            key(
+              p[0] + ((k % 3) - 1) * cell,
+              p[1] + ((Math.floor(k / 3) % 3) - 1) * cell,
+              p[2] + (Math.floor(k / 9) - 1) * cell,
+            ),
+          );
           for (const o of list ?? []) {
             if (o.element === n || sameNet(e, elements[o.element])) continue;
             const d = toSegment(p, o.loop, o.i);
@@ -44,7 +51,14 @@ export function gapRule(elements: readonly CopperElement[], limits: Limits): Rul
     .sort((x, y) => x.a - y.a || x.b - y.b)
     .map(({ a, b, d, at }) => {
       const error = d < limits.minGap;
-      return { rule: 'gap', level: error ? 'error' : 'warning', value: d, limit: error ? limits.minGap : limits.safeGap, elements: [elements[a].id, elements[b].id], at };
+      return {
+        rule: 'gap',
+        level: error ? 'error' : 'warning',
+        value: d,
+        limit: error ? limits.minGap : limits.safeGap,
+        elements: [elements[a].id, elements[b].id],
+        at,
+      };
     });
 }
 

@@ -7,6 +7,15 @@ export function widthRule(elements: readonly CopperElement[], limits: Limits): R
   return elements.flatMap((e) => {
     if (e.kind !== 'trace' || e.width >= limits.safeWidth) return [];
     const error = e.width < limits.minWidth;
-    return [{ rule: 'width', level: error ? ('error' as const) : ('warning' as const), value: e.width, limit: error ? limits.minWidth : limits.safeWidth, elements: [e.id], at: e.anchor }];
+    return [
+      {
+        rule: 'width',
+        level: error ? ('error' as const) : ('warning' as const),
+        value: e.width,
+        limit: error ? limits.minWidth : limits.safeWidth,
+        elements: [e.id],
+        at: e.anchor,
+      },
+    ];
   });
 }

@@ -9,7 +9,8 @@ const STEP = 1.2;
 const HOLD = 1.095;
 
 /** Speed of step j below the asked mark speed, mm/s, rounded to what files hold. */
-export const stepSpeed = (markSpeed: number, j: number): number => Math.round(markSpeed * STEP ** -j * 1000) / 1000;
+export const stepSpeed = (markSpeed: number, j: number): number =>
+  Math.round(markSpeed * STEP ** -j * 1000) / 1000;
 
 /**
  * Step of each piece of a stroke.

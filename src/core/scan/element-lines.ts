@@ -1,12 +1,11 @@
 /** Outline and fill of one run of one element, as lines on the surface (model.md §6). */
-import { partPoint } from '../base/brands.ts';
+import { benchPoint, partPoint } from '../base/brands.ts';
 import type { PoseFrame } from '../base/pose.ts';
 import type { Vec3 } from '../base/vec.ts';
 import type { Beam } from '../beam/beam.ts';
 import { beamDirection, landing } from '../beam/landing.ts';
-import { benchPoint } from '../base/brands.ts';
 import type { CopperElement } from '../drape/copper.ts';
-import { levelLines, type LevelLine } from '../drape/level-lines.ts';
+import { type LevelLine, levelLines } from '../drape/level-lines.ts';
 import type { Run } from '../layers/plan.ts';
 import { normalAt } from '../part/normals.ts';
 import type { Part } from '../part/part.ts';
@@ -34,7 +33,12 @@ export interface ElementGround {
   bench: Float64Array;
 }
 
-export function prepareElement(part: Part, frame: PoseFrame, element: CopperElement, writable: (t: number) => boolean): ElementGround {
+export function prepareElement(
+  part: Part,
+  frame: PoseFrame,
+  element: CopperElement,
+  writable: (t: number) => boolean,
+): ElementGround {
   const { field, copper } = element;
   const count = field.edge.length;
   const bench = new Float64Array(3 * count);
@@ -54,7 +58,10 @@ export function prepareElement(part: Part, frame: PoseFrame, element: CopperElem
     const v = field.triangles[i];
     if (done[v]) continue;
     done[v] = 1;
-    normal.set(normalAt(part.mesh, part.normals, field.face[Math.floor(i / 3)], vertex(field.positions, v)), 3 * v);
+    normal.set(
+      normalAt(part.mesh, part.normals, field.face[Math.floor(i / 3)], vertex(field.positions, v)),
+      3 * v,
+    );
   }
   return { element, along: field.along, height, open, gradient: edgeGradients(field), normal, bench };
 }
@@ -63,7 +70,15 @@ export function prepareElement(part: Part, frame: PoseFrame, element: CopperElem
  * Lines of one run at one stage offset.
  * @param spacing  pulse spacing asked on the surface, mm
  */
-export function runLines(ground: ElementGround, run: Run, stageOffset: number, project: Project, frame: PoseFrame, beam: Beam, spacing: number): RunLines[] {
+export function runLines(
+  ground: ElementGround,
+  run: Run,
+  stageOffset: number,
+  project: Project,
+  frame: PoseFrame,
+  beam: Beam,
+  spacing: number,
+): RunLines[] {
   const { element } = ground;
   const { field } = element;
   const pitch = project.scan.linePitch;
@@ -71,7 +86,11 @@ export function runLines(ground: ElementGround, run: Run, stageOffset: number, p
   const only: number[] = [];
   for (let t = 0; t < field.face.length; t++) {
     if (!ground.open[t]) continue;
-    const [a, b, c] = [coordinate[field.triangles[3 * t]], coordinate[field.triangles[3 * t + 1]], coordinate[field.triangles[3 * t + 2]]];
+    const [a, b, c] = [
+      coordinate[field.triangles[3 * t]],
+      coordinate[field.triangles[3 * t + 1]],
+      coordinate[field.triangles[3 * t + 2]],
+    ];
     if (Math.max(a, b, c) >= run.from && Math.min(a, b, c) <= run.to) only.push(t);
   }
   if (only.length === 0) return [];
@@ -87,7 +106,9 @@ export function runLines(ground: ElementGround, run: Run, stageOffset: number, p
   if (outlines.length === 0) return thinTrace(ground, only, cut);
   const levels = fillLevels(ground, only, inset, outlines, pitch);
   // A fill line ends half a pitch before the outline's stroke, which its last pulse overlaps.
-  const fill = levels.passes.flatMap((p) => p.levels.flatMap((level) => levelLines(field, p.values, level, p.only).flatMap((l) => cut(l, pitch / 2))));
+  const fill = levels.passes.flatMap((p) =>
+    p.levels.flatMap((level) => levelLines(field, p.values, level, p.only).flatMap((l) => cut(l, pitch / 2))),
+  );
   return [
     { kind: 'outline', lines: outlines.flatMap((l) => cut(l, null)) },
     { kind: 'fill', lines: fill },
@@ -95,13 +116,25 @@ export function runLines(ground: ElementGround, run: Run, stageOffset: number, p
 }
 
 /** Where the beam's own line is as wide as the trace, one stroke down the middle has to do. */
-function thinTrace(ground: ElementGround, only: number[], cut: (line: LevelLine, clearance: number | null) => SurfaceLine[]): RunLines[] {
+function thinTrace(
+  ground: ElementGround,
+  only: number[],
+  cut: (line: LevelLine, clearance: number | null) => SurfaceLine[],
+): RunLines[] {
   const { field } = ground.element;
   if (ground.element.kind !== 'trace') return [];
   return [{ kind: 'outline', lines: levelLines(field, field.hatch, 0, only).flatMap((l) => cut(l, null)) }];
 }
 
-function insets(ground: ElementGround, only: readonly number[], stageOffset: number, project: Project, frame: PoseFrame, beam: Beam, spacing: number): Float64Array {
+function insets(
+  ground: ElementGround,
+  only: readonly number[],
+  stageOffset: number,
+  project: Project,
+  frame: PoseFrame,
+  beam: Beam,
+  spacing: number,
+): Float64Array {
   const { field } = ground.element;
   const out = new Float64Array(field.edge.length);
   const done = new Uint8Array(field.edge.length);
@@ -111,8 +144,18 @@ function insets(ground: ElementGround, only: readonly number[], stageOffset: num
       if (done[v]) continue;
       done[v] = 1;
       const d = ground.bench[3 * v + 2] + stageOffset;
-      const u = beamDirection(landing(benchPoint([ground.bench[3 * v], ground.bench[3 * v + 1], d]), project.head), project.head);
-      const light = lightAt(beam, project.material.activationFluence, d, vertex(ground.normal, v), frame.directionToPart(u), u[2]);
+      const u = beamDirection(
+        landing(benchPoint([ground.bench[3 * v], ground.bench[3 * v + 1], d]), project.head),
+        project.head,
+      );
+      const light = lightAt(
+        beam,
+        project.material.activationFluence,
+        d,
+        vertex(ground.normal, v),
+        frame.directionToPart(u),
+        u[2],
+      );
       out[v] = lineHalfWidth(light, vertex(ground.gradient, v), spacing);
     }
   return out;
@@ -125,7 +168,13 @@ interface Pass {
 }
 
 /** Fields and levels of the fill lines, spaced so that whole pitches fit between the outline's strokes. */
-function fillLevels(ground: ElementGround, only: readonly number[], inset: Float64Array, outlines: readonly LevelLine[], pitch: number): { passes: Pass[] } {
+function fillLevels(
+  ground: ElementGround,
+  only: readonly number[],
+  inset: Float64Array,
+  outlines: readonly LevelLine[],
+  pitch: number,
+): { passes: Pass[] } {
   const { element } = ground;
   const { field } = element;
   if (element.kind !== 'trace') {
@@ -170,12 +219,18 @@ function fillLevels(ground: ElementGround, only: readonly number[], inset: Float
 /** Keeps a division meaningful where the inset eats the trace; such places are outside the outline's strokes. */
 const LEAST_ROOM = 1e-3;
 
-const between = (lo: number, hi: number, n: number): number[] => Array.from({ length: n - 1 }, (_, k) => lo + ((k + 1) * (hi - lo)) / n);
+const between = (lo: number, hi: number, n: number): number[] =>
+  Array.from({ length: n - 1 }, (_, k) => lo + ((k + 1) * (hi - lo)) / n);
 
 /** A hatch coordinate grows by no more than the way walked; a triangle where it does is torn. */
 const TORN = 2;
 
-function splitJumps(hatch: Float64Array, x: Float64Array, triangles: Uint32Array, only: readonly number[]): [number[], number[]] {
+function splitJumps(
+  hatch: Float64Array,
+  x: Float64Array,
+  triangles: Uint32Array,
+  only: readonly number[],
+): [number[], number[]] {
   const smooth: number[] = [];
   const jumps: number[] = [];
   for (const t of only) {

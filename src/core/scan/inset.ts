@@ -6,7 +6,7 @@
  * reach along the line (the mean height of a circle's arc). Ellipse: model.md §3, Liu 1982.
  */
 import type { Vec3 } from '../base/vec.ts';
-import { type Beam, activatedHalfWidth, peakFluence, spotRadius } from '../beam/beam.ts';
+import { activatedHalfWidth, type Beam, peakFluence, spotRadius } from '../beam/beam.ts';
 import type { FieldPatch } from '../drape/copper.ts';
 
 /** The light at a place in the layer that writes it. */
@@ -55,9 +55,15 @@ export function edgeGradients(patch: FieldPatch): Float64Array {
   const { positions: x, triangles: t, edge } = patch;
   const out = new Float64Array(x.length);
   for (let i = 0; i < t.length; i += 3) {
-    const a = t[i], b = t[i + 1], c = t[i + 2];
-    const ux = x[3 * b] - x[3 * a], uy = x[3 * b + 1] - x[3 * a + 1], uz = x[3 * b + 2] - x[3 * a + 2];
-    const vx = x[3 * c] - x[3 * a], vy = x[3 * c + 1] - x[3 * a + 1], vz = x[3 * c + 2] - x[3 * a + 2];
+    const a = t[i],
+      b = t[i + 1],
+      c = t[i + 2];
+    const ux = x[3 * b] - x[3 * a],
+      uy = x[3 * b + 1] - x[3 * a + 1],
+      uz = x[3 * b + 2] - x[3 * a + 2];
+    const vx = x[3 * c] - x[3 * a],
+      vy = x[3 * c + 1] - x[3 * a + 1],
+      vz = x[3 * c + 2] - x[3 * a + 2];
     const uu = ux * ux + uy * uy + uz * uz;
     const vv = vx * vx + vy * vy + vz * vz;
     const uv = ux * vx + uy * vy + uz * vz;

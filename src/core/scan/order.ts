@@ -17,7 +17,10 @@ export interface Ordered {
 export function orderStrokes(ends: Float64Array, start: readonly [number, number]): Ordered[] {
   const n = ends.length / 4;
   if (n === 0) return [];
-  let x0 = Infinity, y0 = Infinity, x1 = -Infinity, y1 = -Infinity;
+  let x0 = Infinity,
+    y0 = Infinity,
+    x1 = -Infinity,
+    y1 = -Infinity;
   for (let i = 0; i < 2 * n; i++) {
     x0 = Math.min(x0, ends[2 * i]);
     x1 = Math.max(x1, ends[2 * i]);
@@ -66,7 +69,8 @@ export function orderStrokes(ends: Float64Array, start: readonly [number, number
         }
       }
     };
-    const ci = col(px), cj = row(py);
+    const ci = col(px),
+      cj = row(py);
     const most = Math.max(nx, ny);
     for (let r = 0; r <= most; r++) {
       // Nothing in ring r or beyond is nearer than (r - 1) cells.
@@ -84,7 +88,8 @@ export function orderStrokes(ends: Float64Array, start: readonly [number, number
       }
     }
     const i = best >> 1;
-    const reversed = (best & 1) === 1 && !(ends[4 * i] === ends[4 * i + 2] && ends[4 * i + 1] === ends[4 * i + 3]);
+    const reversed =
+      (best & 1) === 1 && !(ends[4 * i] === ends[4 * i + 2] && ends[4 * i + 1] === ends[4 * i + 3]);
     done[i] = 1;
     out.push({ index: i, reversed });
     px = reversed ? ends[4 * i] : ends[4 * i + 2];

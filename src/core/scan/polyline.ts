@@ -20,7 +20,8 @@ export function surfaceLine(line: LevelLine, positions: Float64Array): SurfaceLi
 }
 
 /** Values of a vertex field along a level line, one a point of its surface line. */
-export const lineValues = (line: LevelLine, values: Float64Array): Float64Array => closeUp(alongLine(line, values, 1), line.closed, 1);
+export const lineValues = (line: LevelLine, values: Float64Array): Float64Array =>
+  closeUp(alongLine(line, values, 1), line.closed, 1);
 
 function closeUp(flat: Float64Array, closed: boolean, stride: number): Float64Array {
   if (!closed) return flat;
@@ -46,7 +47,10 @@ export function cutLine(line: SurfaceLine, conditions: readonly Keep[]): Surface
     for (const c of conditions) {
       const a = c.values[i];
       const b = c.values[i + 1];
-      for (const [fa, fb] of [[a - c.least, b - c.least], [c.most - a, c.most - b]]) {
+      for (const [fa, fb] of [
+        [a - c.least, b - c.least],
+        [c.most - a, c.most - b],
+      ]) {
         if (fa < 0 && fb < 0) t1 = -1;
         else if (fa < 0) t0 = Math.max(t0, fa / (fa - fb));
         else if (fb < 0) t1 = Math.min(t1, fa / (fa - fb));

@@ -22,22 +22,48 @@ const FILE_STEP = 1e-4;
 /** A stroke shorter than this burns nothing that its neighbours do not, mm. */
 const SHORTEST = 2e-3;
 
-export const pulseSpacing = (project: Project): number => project.scan.markSpeed / (project.head.repetitionRate_kHz * 1e3);
+export const pulseSpacing = (project: Project): number =>
+  project.scan.markSpeed / (project.head.repetitionRate_kHz * 1e3);
 
 /** Prepared elements of a setup, shared by its layers. */
-export function prepareGround(part: Part, setup: Setup, copper: Copper, reach: SetupReach, plan: SetupPlan): Map<number, ElementGround> {
+export function prepareGround(
+  part: Part,
+  setup: Setup,
+  copper: Copper,
+  reach: SetupReach,
+  plan: SetupPlan,
+): Map<number, ElementGround> {
   const frame = poseFrame(setup.pose);
-  return new Map(plan.elements.map((e) => [e, prepareElement(part, frame, copper.elements[e], (t) => canGo(reach.elements[e], t))]));
+  return new Map(
+    plan.elements.map((e) => [
+      e,
+      prepareElement(part, frame, copper.elements[e], (t) => canGo(reach.elements[e], t)),
+    ]),
+  );
 }
 
-export function scanLayer(project: Project, setup: Setup, layer: Layer, ground: ReadonlyMap<number, ElementGround>): LayerScan {
+export function scanLayer(
+  project: Project,
+  setup: Setup,
+  layer: Layer,
+  ground: ReadonlyMap<number, ElementGround>,
+): LayerScan {
   const frame = poseFrame(setup.pose);
   const beam = focusedBeam(project.head);
   const pieces: Piece[] = [];
   for (const run of layer.runs) {
     const g = ground.get(run.element)!;
-    for (const { kind, lines } of runLines(g, run, layer.stageOffset, project, frame, beam, pulseSpacing(project)))
-      for (const line of lines) pieces.push(...strokePieces(line, kind, g.element.id, frame, layer.stageOffset, project));
+    for (const { kind, lines } of runLines(
+      g,
+      run,
+      layer.stageOffset,
+      project,
+      frame,
+      beam,
+      pulseSpacing(project),
+    ))
+      for (const line of lines)
+        pieces.push(...strokePieces(line, kind, g.element.id, frame, layer.stageOffset, project));
   }
   return assemble(layer.index, pieces, project, beam);
 }
@@ -50,7 +76,14 @@ interface Piece {
 }
 
 /** Field commands of a line on the surface, thinned and cut where the speed changes. */
-function strokePieces(line: SurfaceLine, kind: StrokeKind, element: string, frame: PoseFrame, stageOffset: number, project: Project): Piece[] {
+function strokePieces(
+  line: SurfaceLine,
+  kind: StrokeKind,
+  element: string,
+  frame: PoseFrame,
+  stageOffset: number,
+  project: Project,
+): Piece[] {
   const keep = thin(line.points, 3, THIN);
   const n = keep.length;
   const commands = new Float64Array(2 * n);
@@ -69,7 +102,10 @@ function strokePieces(line: SurfaceLine, kind: StrokeKind, element: string, fram
         line.points[3 * i + 4] - line.points[3 * i + 1],
         line.points[3 * i + 5] - line.points[3 * i + 2],
       );
-    onCommand[k] = Math.hypot(commands[2 * k + 2] - commands[2 * k], commands[2 * k + 3] - commands[2 * k + 1]);
+    onCommand[k] = Math.hypot(
+      commands[2 * k + 2] - commands[2 * k],
+      commands[2 * k + 3] - commands[2 * k + 1],
+    );
   }
   if (sum(onSurface) < SHORTEST) return [];
   const steps = speedSteps(onSurface, onCommand);
@@ -87,7 +123,11 @@ function strokePieces(line: SurfaceLine, kind: StrokeKind, element: string, fram
 function assemble(index: number, pieces: readonly Piece[], project: Project, _beam: Beam): LayerScan {
   const { scan } = project;
   const steps = [...new Set(pieces.map((p) => p.step))].sort((a, b) => a - b);
-  const classes: ProcessClass[] = steps.map((j) => ({ speed: stepSpeed(scan.markSpeed, j), power: 1, passes: scan.passes }));
+  const classes: ProcessClass[] = steps.map((j) => ({
+    speed: stepSpeed(scan.markSpeed, j),
+    power: 1,
+    passes: scan.passes,
+  }));
   const strokes: Stroke[] = [];
   let at: readonly [number, number] = [0, 0];
   steps.forEach((step, c) => {
@@ -100,7 +140,8 @@ function assemble(index: number, pieces: readonly Piece[], project: Project, _be
       });
       for (const { index: i, reversed } of orderStrokes(ends, at)) {
         const points = reversed ? backwards(group[i].points) : group[i].points;
-        for (let pass = 0; pass < scan.passes; pass++) strokes.push({ kind, element: group[i].element, processClass: c, points });
+        for (let pass = 0; pass < scan.passes; pass++)
+          strokes.push({ kind, element: group[i].element, processClass: c, points });
         at = [points[points.length - 2], points[points.length - 1]];
       }
     }
@@ -108,7 +149,11 @@ function assemble(index: number, pieces: readonly Piece[], project: Project, _be
   return { index, classes, strokes, ...lengths(strokes, classes, scan) };
 }
 
-function lengths(strokes: readonly Stroke[], classes: readonly ProcessClass[], scan: Project['scan']): { markLength: number; jumpLength: number; time: number } {
+function lengths(
+  strokes: readonly Stroke[],
+  classes: readonly ProcessClass[],
+  scan: Project['scan'],
+): { markLength: number; jumpLength: number; time: number } {
   let markLength = 0;
   let jumpLength = 0;
   let time = 0;
@@ -118,10 +163,14 @@ function lengths(strokes: readonly Stroke[], classes: readonly ProcessClass[], s
     // The first jump of a layer comes from wherever the beam stood: not counted.
     const jump = at ? Math.hypot(first[0] - at[0], first[1] - at[1]) : 0;
     let mark = 0;
-    for (let i = 2; i < s.points.length; i += 2) mark += Math.hypot(s.points[i] - s.points[i - 2], s.points[i + 1] - s.points[i - 1]);
+    for (let i = 2; i < s.points.length; i += 2)
+      mark += Math.hypot(s.points[i] - s.points[i - 2], s.points[i + 1] - s.points[i - 1]);
     jumpLength += jump;
     markLength += mark;
-    time += mark / classes[s.processClass].speed + jump / scan.jumpSpeed + (scan.jumpDelay_us + scan.markDelay_us) * 1e-6;
+    time +=
+      mark / classes[s.processClass].speed +
+      jump / scan.jumpSpeed +
+      (scan.jumpDelay_us + scan.markDelay_us) * 1e-6;
     at = [s.points[s.points.length - 2], s.points[s.points.length - 1]];
   }
   return { markLength, jumpLength, time };

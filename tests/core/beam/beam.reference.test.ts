@@ -1,11 +1,24 @@
 import { describe, expect, it } from 'vitest';
-import { activatedHalfWidth, focusedBeam, halfDepth, peakFluence, spotRadius, ureyFactor } from '../../../src/core/beam/beam.ts';
+import {
+  activatedHalfWidth,
+  focusedBeam,
+  halfDepth,
+  peakFluence,
+  spotRadius,
+  ureyFactor,
+} from '../../../src/core/beam/beam.ts';
 import type { Head, Limits, Material } from '../../../src/core/project/schema.ts';
 import { source } from '../../reference/sources.ts';
 import { exampleHead } from '../helpers/proof-scene.ts';
 
 const head = exampleHead as unknown as Head;
-const withBeam = (wavelength_nm: number, beamDiameter: number, beamQuality: number): Head => ({ ...head, wavelength_nm, beamDiameter, beamQuality, aperture: 100 });
+const withBeam = (wavelength_nm: number, beamDiameter: number, beamQuality: number): Head => ({
+  ...head,
+  wavelength_nm,
+  beamDiameter,
+  beamQuality,
+  aperture: 100,
+});
 const material: Material = { activationFluence: 0.4, damageFluence: 6, doseMargin: 1.3 };
 const near = (x: number, y: number, tol = 1e-6) => expect(Math.abs(x / y - 1)).toBeLessThan(tol);
 
@@ -68,7 +81,8 @@ function integralFactor(t: number): number {
   const bessel = (x: number): number => {
     let sum = 0;
     const m = 200;
-    for (let i = 0; i <= m; i++) sum += (i === 0 || i === m ? 0.5 : 1) * Math.cos(x * Math.sin((Math.PI * i) / m));
+    for (let i = 0; i <= m; i++)
+      sum += (i === 0 || i === m ? 0.5 : 1) * Math.cos(x * Math.sin((Math.PI * i) / m));
     return sum / m;
   };
   const amplitude = (q: number): number => {

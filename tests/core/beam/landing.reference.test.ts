@@ -14,19 +14,22 @@ describe(source('similar-triangles'), () => {
     [55, 55, 2, 54.421052632, 54.382022472, [-0.266564698, -0.284535352, 0.920859867], 0.846803567],
     [55, 0, -2, 55.578947368, 0, [-0.278058077, 0, 0.960564264], 0.578947368],
     [0, 55, 20, 0, 48.820224719, [0, -0.295217188, 0.955430171], 6.179775281],
-  ])('command %d, %d at d %d: where it lands, its direction, and the miss of a plain projection', (X, Y, d, x, y, u, miss) => {
-    const command = fieldPoint([X, Y]);
-    const p = beamPoint(command, d, head);
-    expect(p[0]).toBeCloseTo(x, 8);
-    expect(p[1]).toBeCloseTo(y, 8);
-    beamDirection(command, head).forEach((v, k) => {
-      expect(v).toBeCloseTo(u[k], 8);
-    });
-    expect(Math.hypot(X - p[0], Y - p[1])).toBeCloseTo(miss, 8);
-    // A plain projection misses by d · tan(tilt).
-    const [ux, uy, uz] = beamDirection(command, head);
-    expect((Math.abs(d) * Math.hypot(ux, uy)) / uz).toBeCloseTo(miss, 8);
-  });
+  ])(
+    'command %d, %d at d %d: where it lands, its direction, and the miss of a plain projection',
+    (X, Y, d, x, y, u, miss) => {
+      const command = fieldPoint([X, Y]);
+      const p = beamPoint(command, d, head);
+      expect(p[0]).toBeCloseTo(x, 8);
+      expect(p[1]).toBeCloseTo(y, 8);
+      beamDirection(command, head).forEach((v, k) => {
+        expect(v).toBeCloseTo(u[k], 8);
+      });
+      expect(Math.hypot(X - p[0], Y - p[1])).toBeCloseTo(miss, 8);
+      // A plain projection misses by d · tan(tilt).
+      const [ux, uy, uz] = beamDirection(command, head);
+      expect((Math.abs(d) * Math.hypot(ux, uy)) / uz).toBeCloseTo(miss, 8);
+    },
+  );
 
   it.each([
     [30, -20, 5, 30.810810811, -20.578034682],
@@ -53,6 +56,8 @@ describe(source('similar-triangles'), () => {
   });
 
   it('level with a pivot there is no command', () => {
-    expect(() => landing(benchPoint([1, 1, 178]), head)).toThrow(expect.objectContaining({ code: 'beyond-pivot' }));
+    expect(() => landing(benchPoint([1, 1, 178]), head)).toThrow(
+      expect.objectContaining({ code: 'beyond-pivot' }),
+    );
   });
 });

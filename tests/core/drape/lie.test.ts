@@ -9,9 +9,26 @@ import type { Pad, Project, Trace } from '../../../src/core/project/schema.ts';
 import { gridMesh, meshFrom, partFrom, placeAt, plate, tube } from '../helpers/surfaces.ts';
 
 /** An L, so that a mirrored or turned pad shows. */
-const L: Pad = { id: 'p', kind: 'pad', net: '', at: [0, 0, 0], shape: { outline: [[-1, -1], [1, -1], [1, -0.5], [-0.5, -0.5], [-0.5, 2], [-1, 2]] }, turn: 0 };
+const L: Pad = {
+  id: 'p',
+  kind: 'pad',
+  net: '',
+  at: [0, 0, 0],
+  shape: {
+    outline: [
+      [-1, -1],
+      [1, -1],
+      [1, -0.5],
+      [-0.5, -0.5],
+      [-0.5, 2],
+      [-1, 2],
+    ],
+  },
+  turn: 0,
+};
 const covers = (points: Float64Array, near: Vec3): boolean => {
-  for (let i = 0; i < points.length; i += 3) if (Math.hypot(points[i] - near[0], points[i + 1] - near[1], points[i + 2] - near[2]) < 0.15) return true;
+  for (let i = 0; i < points.length; i += 3)
+    if (Math.hypot(points[i] - near[0], points[i + 1] - near[1], points[i + 2] - near[2]) < 0.15) return true;
   return false;
 };
 
@@ -26,7 +43,8 @@ describe('how a pad lies', () => {
 
   it('turn is counter-clockwise seen from outside', () => {
     const mesh = plate(20, 20, 3, 3);
-    const { copper } = drapePad(new WindowSolver(mesh), { ...L, turn: 90 }, placeAt(mesh, [2, 3, 0])).element!;
+    const { copper } = drapePad(new WindowSolver(mesh), { ...L, turn: 90 }, placeAt(mesh, [2, 3, 0]))
+      .element!;
     // The long leg (-0.75, 2) turns to (-2, -0.75).
     expect(covers(copper.positions, [0.1, 2.2, 0])).toBe(true);
     expect(covers(copper.positions, [1.2, 4.9, 0])).toBe(false);
@@ -55,14 +73,28 @@ describe('how a pad lies', () => {
     // At the foot the normal is -Y: u = +X (counter-clockwise about z), v = n × u = +Z.
     const a = -Math.PI / 2 + 0.95 / r;
     expect(covers(copper.positions, [r * Math.cos(a), r * Math.sin(a), 12 - 0.75])).toBe(true);
-    expect(covers(copper.positions, [r * Math.cos(-Math.PI / 2 - 0.75 / r), r * Math.sin(-Math.PI / 2 - 0.75 / r), 13.9])).toBe(true);
+    expect(
+      covers(copper.positions, [
+        r * Math.cos(-Math.PI / 2 - 0.75 / r),
+        r * Math.sin(-Math.PI / 2 - 0.75 / r),
+        13.9,
+      ]),
+    ).toBe(true);
   });
 });
 
 describe('a trace', () => {
   const trace: Trace = { id: 't', kind: 'trace', net: '', width: 1, route: [] };
   const mesh = plate(20, 20, 3, 3);
-  const bent = drapeTrace(new WindowSolver(mesh), trace, [[-5, 0, 0], [0, 0, 0], [0, 6, 0]].map((p) => placeAt(mesh, p as unknown as Vec3))).element!;
+  const bent = drapeTrace(
+    new WindowSolver(mesh),
+    trace,
+    [
+      [-5, 0, 0],
+      [0, 0, 0],
+      [0, 6, 0],
+    ].map((p) => placeAt(mesh, p as unknown as Vec3)),
+  ).element!;
 
   it('is round at a bend outside and sharp inside: 2 w L + π w² less the inner corner, plus the outer quarter', () => {
     // Two straight strips of lengths 5 and 6, a quarter disc outside the bend, a square overlap inside counted once.
@@ -75,7 +107,8 @@ describe('a trace', () => {
       const [x, y] = [field.positions[3 * v], field.positions[3 * v + 1]];
       if (x < -1 && x > -5) expect(field.hatch[v]).toBeCloseTo(y, 9);
       if (y > 1 && y < 6) expect(field.hatch[v]).toBeCloseTo(-x, 9);
-      if (x > 0.01 && y < -0.01 && field.edge[v] < 0.05) expect(field.hatch[v]).toBeCloseTo(-Math.hypot(x, y), 9);
+      if (x > 0.01 && y < -0.01 && field.edge[v] < 0.05)
+        expect(field.hatch[v]).toBeCloseTo(-Math.hypot(x, y), 9);
     }
   });
 
@@ -91,23 +124,36 @@ describe('a trace', () => {
   it('every patch triangle lies in the face it names, wound as the face', () => {
     const tri = tube(6, 30, 40, 1);
     const r = 6 * Math.cos(Math.PI / 40);
-    const e = drapeTrace(new WindowSolver(tri), trace, [placeAt(tri, [r, 0.1, 5]), placeAt(tri, [0.1, r, 20])]).element!;
+    const e = drapeTrace(new WindowSolver(tri), trace, [
+      placeAt(tri, [r, 0.1, 5]),
+      placeAt(tri, [0.1, r, 20]),
+    ]).element!;
     const x = e.copper.positions;
     e.copper.face.forEach((f, t) => {
       const n = (p: Float64Array, a: number, b: number, c: number) => {
-        const [u, v] = [[0, 1, 2].map((k) => p[3 * b + k] - p[3 * a + k]), [0, 1, 2].map((k) => p[3 * c + k] - p[3 * a + k])];
+        const [u, v] = [
+          [0, 1, 2].map((k) => p[3 * b + k] - p[3 * a + k]),
+          [0, 1, 2].map((k) => p[3 * c + k] - p[3 * a + k]),
+        ];
         return [u[1] * v[2] - u[2] * v[1], u[2] * v[0] - u[0] * v[2], u[0] * v[1] - u[1] * v[0]];
       };
-      const mine = n(x, e.copper.triangles[3 * t], e.copper.triangles[3 * t + 1], e.copper.triangles[3 * t + 2]);
+      const mine = n(
+        x,
+        e.copper.triangles[3 * t],
+        e.copper.triangles[3 * t + 1],
+        e.copper.triangles[3 * t + 2],
+      );
       const face = n(tri.positions, tri.triangles[3 * f], tri.triangles[3 * f + 1], tri.triangles[3 * f + 2]);
       const size = Math.hypot(...mine) * Math.hypot(...face);
-      if (Math.hypot(...mine) > 1e-9) expect(mine.reduce((s, m, k) => s + m * face[k], 0) / size).toBeCloseTo(1, 6);
+      if (Math.hypot(...mine) > 1e-9)
+        expect(mine.reduce((s, m, k) => s + m * face[k], 0) / size).toBeCloseTo(1, 6);
     });
   });
 });
 
 describe('bad places', () => {
-  const project = (elements: unknown[]): Project => ({ circuit: { elements, drapes: [] } }) as unknown as Project;
+  const project = (elements: unknown[]): Project =>
+    ({ circuit: { elements, drapes: [] } }) as unknown as Project;
   const part = partFrom(plate(20, 20, 3, 3));
 
   it('a point 1.2 mm off the surface is bad input, named by its path, and so is the next', () => {
@@ -119,7 +165,11 @@ describe('bad places', () => {
     expect(() => drapeCircuit(bad, 'x.drape.json', part, quiet)).toThrow(
       expect.objectContaining({
         problems: [
-          expect.objectContaining({ code: 'far-from-surface', file: 'x.drape.json', place: '$.circuit.elements[0].route[1].at' }),
+          expect.objectContaining({
+            code: 'far-from-surface',
+            file: 'x.drape.json',
+            place: '$.circuit.elements[0].route[1].at',
+          }),
           expect.objectContaining({ code: 'far-from-surface', place: '$.circuit.elements[1].at' }),
         ],
       }),

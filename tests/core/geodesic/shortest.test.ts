@@ -25,7 +25,11 @@ const randomPoint = (mesh: SurfaceMesh, random: () => number): SurfacePoint => {
 const moved = (p: Vec3): Vec3 => {
   const [x, y, z, w] = [0.18257418583505536, 0.3651483716701107, 0.5477225575051661, 0.7302967433402214];
   const t: Vec3 = [2 * (y * p[2] - z * p[1]), 2 * (z * p[0] - x * p[2]), 2 * (x * p[1] - y * p[0])];
-  return [p[0] + w * t[0] + y * t[2] - z * t[1] + 5, p[1] + w * t[1] + z * t[0] - x * t[2] - 3, p[2] + w * t[2] + x * t[1] - y * t[0] + 11];
+  return [
+    p[0] + w * t[0] + y * t[2] - z * t[1] + 5,
+    p[1] + w * t[1] + z * t[0] - x * t[2] - 3,
+    p[2] + w * t[2] + x * t[1] - y * t[0] + 11,
+  ];
 };
 
 describe('shortest path', () => {
@@ -65,7 +69,9 @@ describe('shortest path', () => {
     const corners: number[][] = [];
     const mesh = bumpy();
     for (let f = 0; f < mesh.triangles.length / 3; f++)
-      corners.push([0, 1, 2].flatMap((i) => [0, 1, 2].map((k) => mesh.positions[3 * mesh.triangles[3 * f + i] + k])));
+      corners.push(
+        [0, 1, 2].flatMap((i) => [0, 1, 2].map((k) => mesh.positions[3 * mesh.triangles[3 * f + i] + k])),
+      );
     for (let i = corners.length - 1; i > 0; i--) {
       const j = Math.floor(random() * (i + 1));
       [corners[i], corners[j]] = [corners[j], corners[i]];
@@ -74,7 +80,10 @@ describe('shortest path', () => {
     for (let k = 0; k < 20; k++) {
       const [a, b] = [randomPoint(mesh, random), randomPoint(mesh, random)];
       const there = [a, b].map((p) => placeAt(shuffled, positionOf(mesh, p)).surface);
-      expect(shortestPath(shuffled, there[0], there[1])!.length).toBeCloseTo(shortestPath(mesh, a, b)!.length, 8);
+      expect(shortestPath(shuffled, there[0], there[1])!.length).toBeCloseTo(
+        shortestPath(mesh, a, b)!.length,
+        8,
+      );
     }
   });
 
@@ -102,7 +111,9 @@ describe('shortest path', () => {
         for (const p of [at(i), at(i + 1)]) {
           const w = barycentric(mesh, face, p);
           expect(Math.min(...w)).toBeGreaterThan(-1e-9);
-          expect(Math.hypot(...positionOf(mesh, { face, bary: w }).map((x, n) => x - p[n]))).toBeLessThan(1e-9);
+          expect(Math.hypot(...positionOf(mesh, { face, bary: w }).map((x, n) => x - p[n]))).toBeLessThan(
+            1e-9,
+          );
         }
         sum += Math.hypot(...at(i).map((x, n) => x - at(i + 1)[n]));
       });
@@ -117,9 +128,14 @@ describe('shortest path', () => {
     const corners: number[] = [];
     for (let j = 0; j < 3; j++)
       for (let i = 0; i < 3; i++)
-        if (i !== 1 || j !== 1) corners.push(i, j, 0, i + 1, j, 0, i + 1, j + 1, 0, i, j, 0, i + 1, j + 1, 0, i, j + 1, 0);
+        if (i !== 1 || j !== 1)
+          corners.push(i, j, 0, i + 1, j, 0, i + 1, j + 1, 0, i, j, 0, i + 1, j + 1, 0, i, j + 1, 0);
     const mesh = meshFrom(corners);
-    const path = shortestPath(mesh, placeAt(mesh, [0.5, 1.4, 0]).surface, placeAt(mesh, [2.5, 1.4, 0]).surface)!;
+    const path = shortestPath(
+      mesh,
+      placeAt(mesh, [0.5, 1.4, 0]).surface,
+      placeAt(mesh, [2.5, 1.4, 0]).surface,
+    )!;
     // Below the hole, by way of its two lower corners (1, 1) and (2, 1).
     expect(path.length).toBeCloseTo(2 * Math.hypot(0.5, 0.4) + 1, 12);
   });

@@ -2,10 +2,11 @@
  * A small world for the proof's tests: a lopsided box under the head, rectangles of copper on its top, and a tiny
  * planner and writer of their own. Nothing here imports the code that plans, writes or proves.
  */
-import type { Copper, CopperElement } from '../../../src/core/drape/copper.ts';
+
 import type { Pose } from '../../../src/core/base/pose.ts';
 import { encodeUtf8 } from '../../../src/core/base/utf8.ts';
 import { normalize, type Vec2, type Vec3 } from '../../../src/core/base/vec.ts';
+import type { Copper, CopperElement } from '../../../src/core/drape/copper.ts';
 import type { SurfaceMesh } from '../../../src/core/mesh/surface-mesh.ts';
 import { type Project, projectSchema } from '../../../src/core/project/schema.ts';
 

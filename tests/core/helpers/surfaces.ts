@@ -11,13 +11,26 @@ import type { Part } from '../../../src/core/part/part.ts';
 
 /** Mesh of facets given by their corners, 9 numbers each, in double precision. */
 export function meshFrom(corners: readonly number[]): SurfaceMesh {
-  return buildMesh({ corners: Float64Array.from(corners), trailingBytes: 0 } as Parameters<typeof buildMesh>[0], 1, quiet);
+  return buildMesh(
+    { corners: Float64Array.from(corners), trailingBytes: 0 } as Parameters<typeof buildMesh>[0],
+    1,
+    quiet,
+  );
 }
 
-export const partFrom = (mesh: SurfaceMesh): Part => ({ mesh, queries: buildQueries(mesh), normals: buildNormals(mesh) });
+export const partFrom = (mesh: SurfaceMesh): Part => ({
+  mesh,
+  queries: buildQueries(mesh),
+  normals: buildNormals(mesh),
+});
 
 /** Open grid of a map (i, j) → place; i along the first side. Cells are cut along alternating diagonals. */
-export function gridMesh(n: number, m: number, at: (i: number, j: number) => Vec3, alternate = true): SurfaceMesh {
+export function gridMesh(
+  n: number,
+  m: number,
+  at: (i: number, j: number) => Vec3,
+  alternate = true,
+): SurfaceMesh {
   const out: number[] = [];
   for (let j = 0; j < m; j++)
     for (let i = 0; i < n; i++) {
@@ -39,7 +52,14 @@ export function plate(w: number, h: number, n: number, m: number, tilt = 0): Sur
 
 /** Octahedron split `level` times and pushed onto the sphere of radius r. */
 export function sphere(r: number, level: number): SurfaceMesh {
-  const axis: Vec3[] = [[1, 0, 0], [0, 1, 0], [-1, 0, 0], [0, -1, 0], [0, 0, 1], [0, 0, -1]];
+  const axis: Vec3[] = [
+    [1, 0, 0],
+    [0, 1, 0],
+    [-1, 0, 0],
+    [0, -1, 0],
+    [0, 0, 1],
+    [0, 0, -1],
+  ];
   let faces: [Vec3, Vec3, Vec3][] = [0, 1, 2, 3].flatMap((k): [Vec3, Vec3, Vec3][] => [
     [axis[k], axis[(k + 1) % 4], axis[4]],
     [axis[(k + 1) % 4], axis[k], axis[5]],
@@ -52,7 +72,12 @@ export function sphere(r: number, level: number): SurfaceMesh {
   for (let i = 0; i < level; i++)
     faces = faces.flatMap(([a, b, c]): [Vec3, Vec3, Vec3][] => {
       const [p, q, s] = [middle(a, b), middle(b, c), middle(c, a)];
-      return [[a, p, s], [p, b, q], [s, q, c], [p, q, s]];
+      return [
+        [a, p, s],
+        [p, b, q],
+        [s, q, c],
+        [p, q, s],
+      ];
     });
   return meshFrom(faces.flat(2).map((x) => x * r));
 }

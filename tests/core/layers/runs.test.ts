@@ -39,7 +39,15 @@ describe('fewest runs', () => {
   });
 
   it('a sample that no height meets is told', () => {
-    expect(fewestRuns([[0, 1], [5, 6]], [0.5])).toBeNull();
+    expect(
+      fewestRuns(
+        [
+          [0, 1],
+          [5, 6],
+        ],
+        [0.5],
+      ),
+    ).toBeNull();
     expect(countRuns([[[5, 6]]], [0.5])).toBe(Infinity);
   });
 
@@ -47,9 +55,13 @@ describe('fewest runs', () => {
     const random = randomFrom(42);
     for (let k = 0; k < 15; k++) {
       const chains = [randomChain(random, 8), randomChain(random, 6)];
-      const ranges = [[0, 1.5], [2, 3.5]] as const;
+      const ranges = [
+        [0, 1.5],
+        [2, 3.5],
+      ] as const;
       let least = Infinity;
-      for (let a = 0; a <= 1.5; a += 0.05) for (let b = 2; b <= 3.5; b += 0.05) least = Math.min(least, countRuns(chains, [a, b]));
+      for (let a = 0; a <= 1.5; a += 0.05)
+        for (let b = 2; b <= 3.5; b += 0.05) least = Math.min(least, countRuns(chains, [a, b]));
       const found = bestHeights(chains, ranges, (h) => h);
       expect(found.exact).toBe(true);
       expect(found.runs).toBeLessThanOrEqual(least);

@@ -1,6 +1,13 @@
 import { describe, expect, it } from 'vitest';
 import { randomFrom } from '../../../src/core/base/random.ts';
-import { type Demand, fewestHeights, type HeightGrid, stabLeft, stabRight, within } from '../../../src/core/layers/stab.ts';
+import {
+  type Demand,
+  fewestHeights,
+  type HeightGrid,
+  stabLeft,
+  stabRight,
+  within,
+} from '../../../src/core/layers/stab.ts';
 import { source } from '../../reference/sources.ts';
 
 const free: HeightGrid = { step: 0, least: -1e9, most: 1e9 };
@@ -8,15 +15,69 @@ const demand = (z: number, half: number): Demand => ({ lo: z - half, hi: z + hal
 
 describe(source('kleinberg-tardos'), () => {
   it.each([
-    ['A', [[0, 2], [2, 2], [3, 2], [5, 2], [6, 2], [7, 2]], 2, 1.5],
-    ['B', [[0, 2], [1, 0.5], [3, 2], [4, 0.5], [6, 1]], 3, 0.5],
-    ['C', [[0, 2], [1, 2], [3, 2], [4, 2], [6, 2], [9, 2]], 2, 2],
-    ['D', [[0, 2], [3, 2], [4, 2], [5, 2], [8, 2], [9.5, 2], [11, 2]], 3, 1.5],
-  ] as [string, [number, number][], number, number][])('instance %s: count and smallest worst defocus', (_, samples, count, worst) => {
-    const found = fewestHeights(samples.map(([z, h]) => demand(z, h)), free)!;
-    expect(found.count).toBe(count);
-    expect(found.worst).toBeCloseTo(worst, 9);
-  });
+    [
+      'A',
+      [
+        [0, 2],
+        [2, 2],
+        [3, 2],
+        [5, 2],
+        [6, 2],
+        [7, 2],
+      ],
+      2,
+      1.5,
+    ],
+    [
+      'B',
+      [
+        [0, 2],
+        [1, 0.5],
+        [3, 2],
+        [4, 0.5],
+        [6, 1],
+      ],
+      3,
+      0.5,
+    ],
+    [
+      'C',
+      [
+        [0, 2],
+        [1, 2],
+        [3, 2],
+        [4, 2],
+        [6, 2],
+        [9, 2],
+      ],
+      2,
+      2,
+    ],
+    [
+      'D',
+      [
+        [0, 2],
+        [3, 2],
+        [4, 2],
+        [5, 2],
+        [8, 2],
+        [9.5, 2],
+        [11, 2],
+      ],
+      3,
+      1.5,
+    ],
+  ] as [string, [number, number][], number, number][])(
+    'instance %s: count and smallest worst defocus',
+    (_, samples, count, worst) => {
+      const found = fewestHeights(
+        samples.map(([z, h]) => demand(z, h)),
+        free,
+      )!;
+      expect(found.count).toBe(count);
+      expect(found.worst).toBeCloseTo(worst, 9);
+    },
+  );
 
   it('instance E: a stage that moves in whole millimetres cannot reach 0.6 ± 0.3', () => {
     const coarse: HeightGrid = { ...free, step: 1 };
@@ -42,7 +103,12 @@ describe(source('kleinberg-tardos'), () => {
 });
 
 /** All plans on the grid, tried one by one. */
-function bruteForce(demands: Demand[], step: number, least: number, most: number): { count: number; worst: number } | null {
+function bruteForce(
+  demands: Demand[],
+  step: number,
+  least: number,
+  most: number,
+): { count: number; worst: number } | null {
   const heights: number[] = [];
   for (let k = Math.ceil(least / step); k * step <= most + 1e-12; k++) heights.push(k * step);
   for (let count = 1; count <= demands.length; count++) {
@@ -52,7 +118,9 @@ function bruteForce(demands: Demand[], step: number, least: number, most: number
       if (pick.length === count) {
         let worst = 0;
         for (const d of demands) {
-          const errors = pick.filter((h) => h >= d.lo - 1e-12 && h <= d.hi + 1e-12).map((h) => Math.max(d.high - h, h - d.low));
+          const errors = pick
+            .filter((h) => h >= d.lo - 1e-12 && h <= d.hi + 1e-12)
+            .map((h) => Math.max(d.high - h, h - d.low));
           worst = Math.max(worst, errors.length > 0 ? Math.min(...errors) : Infinity);
         }
         best = Math.min(best, worst);

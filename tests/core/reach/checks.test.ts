@@ -3,13 +3,18 @@ import { quiet } from '../../../src/core/base/run-context.ts';
 import type { Vec3 } from '../../../src/core/base/vec.ts';
 import { drapeCircuit } from '../../../src/core/drape/drape.ts';
 import type { SurfaceMesh } from '../../../src/core/mesh/surface-mesh.ts';
-import { projectSchema, type Project, type Setup } from '../../../src/core/project/schema.ts';
+import { type Project, projectSchema, type Setup } from '../../../src/core/project/schema.ts';
 import { collision } from '../../../src/core/reach/collision.ts';
 import { bit, reachElement } from '../../../src/core/reach/reach.ts';
-import { meshFrom, partFrom, plate, sphere } from '../helpers/surfaces.ts';
 import { exampleHead } from '../helpers/proof-scene.ts';
+import { meshFrom, partFrom, plate, sphere } from '../helpers/surfaces.ts';
 
-const project = (elements: unknown[], head: object = {}, limits: object = {}, move: Vec3 = [0, 0, 0]): Project =>
+const project = (
+  elements: unknown[],
+  head: object = {},
+  limits: object = {},
+  move: Vec3 = [0, 0, 0],
+): Project =>
   projectSchema.parse({
     format: 'beamdrape',
     version: 1,
@@ -21,11 +26,21 @@ const project = (elements: unknown[], head: object = {}, limits: object = {}, mo
     setups: [{ name: 'top', pose: { rotate: [0, 0, 0, 1], move } }],
     circuit: { elements },
   });
-const pad = (at: Vec3, d = 1): object => ({ id: 'p', kind: 'pad', net: '', at, shape: { circle: d }, turn: 0 });
+const pad = (at: Vec3, d = 1): object => ({
+  id: 'p',
+  kind: 'pad',
+  net: '',
+  at,
+  shape: { circle: d },
+  turn: 0,
+});
 const reachOf = (mesh: SurfaceMesh, p: Project, defocus?: (n: number) => Float64Array) => {
   const part = partFrom(mesh);
   const [element] = drapeCircuit(p, 'x', part, quiet).copper.elements;
-  return { element, reach: reachElement(p, (p.setups as Setup[])[0], part, element, defocus?.(element.copper.face.length)) };
+  return {
+    element,
+    reach: reachElement(p, (p.setups as Setup[])[0], part, element, defocus?.(element.copper.face.length)),
+  };
 };
 const deg = (rad: number) => (rad * 180) / Math.PI;
 
@@ -46,7 +61,10 @@ describe('incidence', () => {
   });
 
   it("the beam's own tilt counts: ± 30° faces at command (30, −20) give 39.40° and 21.92°", () => {
-    for (const [tilt, exact] of [[30, 39.402833], [-30, 21.918925]]) {
+    for (const [tilt, exact] of [
+      [30, 39.402833],
+      [-30, 21.918925],
+    ]) {
       const a = (tilt * Math.PI) / 180;
       const p = project([pad([0, 0, 0], 0.2)], {}, {}, [30, -20, 0]);
       const { reach } = reachOf(plate(20, 20, 4, 3, a), p);
@@ -57,8 +75,14 @@ describe('incidence', () => {
 
   it('beyond maxIncidence it fails, and only there', () => {
     const a = (50 * Math.PI) / 180;
-    const ok = reachOf(plate(20, 20, 4, 3, a), project([pad([0, 0, 0])], { pivot: null }, { maxIncidence: 51 })).reach;
-    const bad = reachOf(plate(20, 20, 4, 3, a), project([pad([0, 0, 0])], { pivot: null }, { maxIncidence: 49 })).reach;
+    const ok = reachOf(
+      plate(20, 20, 4, 3, a),
+      project([pad([0, 0, 0])], { pivot: null }, { maxIncidence: 51 }),
+    ).reach;
+    const bad = reachOf(
+      plate(20, 20, 4, 3, a),
+      project([pad([0, 0, 0])], { pivot: null }, { maxIncidence: 49 }),
+    ).reach;
     expect(ok.fails.every((f) => f === 0)).toBe(true);
     expect(bad.fails.every((f) => f === bit('incidence'))).toBe(true);
   });
@@ -75,10 +99,18 @@ const roofed = (): SurfaceMesh => {
 
 describe('shade', () => {
   it('a roof shades what lies under it, by the edge of its shadow', () => {
-    const { element, reach } = reachOf(roofed(), project([{ id: 't', kind: 'trace', net: '', width: 0.5, route: [{ at: [-6, 1, 0] }, { at: [7, 1, 0] }] }], { pivot: null }));
+    const { element, reach } = reachOf(
+      roofed(),
+      project(
+        [{ id: 't', kind: 'trace', net: '', width: 0.5, route: [{ at: [-6, 1, 0] }, { at: [7, 1, 0] }] }],
+        { pivot: null },
+      ),
+    );
     let shaded = 0;
     for (let t = 0; t < reach.blocked.length; t++) {
-      const x = [0, 1, 2].map((i) => element.copper.positions[3 * element.copper.triangles[3 * t + i]]).reduce((s, v) => s + v / 3, 0);
+      const x = [0, 1, 2]
+        .map((i) => element.copper.positions[3 * element.copper.triangles[3 * t + i]])
+        .reduce((s, v) => s + v / 3, 0);
       expect(reach.blocked[t]).toBe(x > 2 ? 1 : 0);
       if (reach.fails[t] & bit('shade')) shaded++;
     }
@@ -87,10 +119,17 @@ describe('shade', () => {
 
   it("off the axis the shadow moves by the roof's height times the beam's slope", () => {
     // Moved by 40 mm in x, the beam leans toward the axis: at x = 42 its slope is 42/190 for each mm of height.
-    const p = project([{ id: 't', kind: 'trace', net: '', width: 0.5, route: [{ at: [-6, 1, 0] }, { at: [7, 1, 0] }] }], {}, {}, [40, 0, 0]);
+    const p = project(
+      [{ id: 't', kind: 'trace', net: '', width: 0.5, route: [{ at: [-6, 1, 0] }, { at: [7, 1, 0] }] }],
+      {},
+      {},
+      [40, 0, 0],
+    );
     const { element, reach } = reachOf(roofed(), p);
     for (let t = 0; t < reach.blocked.length; t++) {
-      const x = [0, 1, 2].map((i) => element.copper.positions[3 * element.copper.triangles[3 * t + i]]).reduce((s, v) => s + v / 3, 0);
+      const x = [0, 1, 2]
+        .map((i) => element.copper.positions[3 * element.copper.triangles[3 * t + i]])
+        .reduce((s, v) => s + v / 3, 0);
       // A place at x sees past the roof's edge at x = 2 when x - 6 (x + 40)/190 < 2.
       const past = x - (6 * (x + 40)) / 190 < 2;
       const margin = Math.abs(x - (6 * (x + 40)) / 190 - 2);
@@ -110,7 +149,9 @@ describe('field and dose', () => {
     // At d = -2 the place x is hit by X = x / (1 + 2/190): nearer the middle. Before planning d = 0 counts.
     const { reach } = reachOf(plate(20, 20, 4, 3), project([pad([0, 0, 0], 0.2)], {}, {}, [55.2, 0, 0]));
     expect(reach.fails.every((f) => f & bit('field'))).toBe(true);
-    const low = reachOf(plate(20, 20, 4, 3), project([pad([0, 0, 0], 0.2)], {}, {}, [55.2, 0, 0]), (n) => new Float64Array(n).fill(-2)).reach;
+    const low = reachOf(plate(20, 20, 4, 3), project([pad([0, 0, 0], 0.2)], {}, {}, [55.2, 0, 0]), (n) =>
+      new Float64Array(n).fill(-2),
+    ).reach;
     expect(low.fails.every((f) => (f & bit('field')) === 0)).toBe(true);
     expect(low.fails.every((f) => f & bit('focus'))).toBe(true);
   });
