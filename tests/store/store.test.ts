@@ -89,6 +89,12 @@ describe('following the document', () => {
     expect(current(s()).plan!.layers.map((l) => l.focusHeight)).toEqual(fewest);
   });
 
+  test('a height that the stage cannot reach is bad input, named by its place', async () => {
+    store.act({ kind: 'set', path: ['setups', 0, 'focusHeights'], what: 'heights', value: [1, -99] });
+    await store.settled();
+    expect(s().notices.at(-1)!.text).toContain('$.setups[0].focusHeights[1]');
+  });
+
   test('a layer does not pass its neighbour', async () => {
     const fewest = current(s()).plan!.layers.map((l) => l.focusHeight);
     store.moveLayer(0, fewest[1]! + 5, null);
