@@ -15,6 +15,7 @@ table{border-collapse:collapse}th,td{text-align:left;padding:.15rem .8rem .15rem
 .box{display:inline-block;width:1rem;height:1rem;border:2px solid currentColor;vertical-align:-.1rem;margin-right:.3rem}
 svg.picture{width:100%;height:auto;background:var(--paper);border:1px solid var(--line)}
 .stroke{fill:none;stroke:var(--copper);stroke-linecap:round;stroke-linejoin:round}.frame{fill:none;stroke:var(--line)}
-.cross{stroke:var(--line)}.tag{fill:var(--ink);font-family:system-ui,sans-serif}
+.cross{stroke:var(--ink)}.ghost{fill:none;stroke:var(--line);opacity:.45}.defs{position:absolute;width:0;height:0}
+figure{margin:0}figcaption{font-size:.85rem}
 code{overflow-wrap:anywhere}
 `.trim();

@@ -6,7 +6,7 @@ import type { Report, SetupReport } from '../project/report.ts';
 import type { Project } from '../project/schema.ts';
 import type { LayerScan } from '../scan/strokes.ts';
 import { CAUTIONS } from './cautions.ts';
-import { layerPicture } from './layer-picture.ts';
+import { extentOf, layerPicture, setupGhost } from './layer-picture.ts';
 import { SHEET_STYLE } from './sheet-style.ts';
 
 export interface SheetSetup {
@@ -77,6 +77,8 @@ const zMoves = (project: Project): string =>
 
 function setupSection(project: Project, setup: SheetSetup, i: number, of: number): string {
   const { report } = setup;
+  const ghost = `setup-${i + 1}`;
+  const view = extentOf(...setup.scans);
   const layers = report.layers.map((layer, k) => {
     const scan = setup.scans[k];
     const classes = layer.classes
@@ -93,10 +95,11 @@ In focus: copper at bench height ${signed(layer.focusHeight)} mm. This layer wri
 <p>Burn <strong>one</strong> of: ${layer.files.map((f) => `<code>${text(f)}</code>`).join(' or ')}</p>
 <table class="classes"><tr><th>class</th><th>mark speed</th><th>power</th><th>passes</th></tr>${classes}</table>
 <p>${n(layer.copperArea, 2)} mm² of copper · ${n(layer.markLength, 0)} mm of strokes · ${n(layer.jumpLength, 0)} mm of jumps · about ${duration(layer.time)}</p>
-</div>${layerPicture(scan, project.head, `Strokes of layer ${layer.index}`)}</div></article>`;
+</div>${layerPicture(scan, view, project.head, ghost, `Strokes of layer ${layer.index}`)}</div></article>`;
   });
   return `<section><h2>${i + 2}. Setup “${text(report.name)}”${of > 1 ? ` (${i + 1} of ${of})` : ''}</h2>
-<p>Fix the part so that a point (x, y, z) of its file stands at the bench at: ${text(poseSentence(report))} Bench: +Z up the optical axis, zero in the focal plane with the stage at offset 0; +X and +Y are the scan field’s axes.</p>
+${setupGhost(setup.scans, ghost)}
+<p>${text(poseSentence(report))} The bench’s +Z runs up the optical axis, with zero in the focal plane while the stage stands at offset 0; its +X and +Y are the scan field’s axes.</p>
 <p>Write the layers in this order, each after setting its Z with the laser off.</p>
 ${layers.join('\n')}</section>`;
 }
@@ -106,8 +109,8 @@ function poseSentence(report: SetupReport): string {
   const angle = (2 * Math.atan2(Math.hypot(x, y, z), w) * 180) / Math.PI;
   const move = report.pose.move.map((v) => signed(v)).join(', ');
   const l = Math.hypot(x, y, z);
-  if (l < 1e-9) return `not turned, moved by (${move}) mm.`;
-  return `turned by ${n(angle, 2)}° about the axis (${n(x / l, 3)}, ${n(y / l, 3)}, ${n(z / l, 3)}), then moved by (${move}) mm.`;
+  if (l < 1e-9) return `Take the part as its file has it, not turned, and move it by (${move}) mm.`;
+  return `Take the part as its file has it, turn it by ${n(angle, 2)}° about the axis (${n(x / l, 3)}, ${n(y / l, 3)}, ${n(z / l, 3)}), then move it by (${move}) mm.`;
 }
 
 function after(report: Report): string {
