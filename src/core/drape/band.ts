@@ -6,8 +6,9 @@
  * distance are then equally spaced (Gauss's lemma), whatever the curvature.
  */
 import type { Vec3 } from '../base/vec.ts';
+import { ON_EDGE, type PointSource, type SegmentSource } from '../geodesic/roots.ts';
 import { polarAngle, SurfaceField } from '../geodesic/surface-field.ts';
-import { ON_EDGE, type PointSource, type SegmentSource, type WindowSolver } from '../geodesic/windows.ts';
+import type { WindowSolver } from '../geodesic/windows.ts';
 import { barycentric, type SurfacePoint } from '../mesh/surface-point.ts';
 import type { SurfacePath } from './copper.ts';
 

@@ -1,7 +1,8 @@
 /** Reading a finished propagation anywhere on the surface: who sees a place, from how far, and where. */
 import type { Vec3 } from '../base/vec.ts';
 import { faceOf } from '../mesh/surface-mesh.ts';
-import { type Root, rootDistance, type WindowSolver } from './windows.ts';
+import { type Root, rootDistance } from './roots.ts';
+import type { WindowSolver } from './windows.ts';
 
 /** Windows that rounding left a hair apart are widened by this share of the edge before a place counts as unseen. */
 const CRACK = 1e-5;

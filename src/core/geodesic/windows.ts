@@ -13,73 +13,26 @@ import { Fault } from '../base/news.ts';
 import type { Vec3 } from '../base/vec.ts';
 import { faceOf, next, previous, type SurfaceMesh } from '../mesh/surface-mesh.ts';
 import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
+import { FaceGeometry } from './face-geometry.ts';
+import {
+  clipToStrip,
+  cornerAt,
+  fanRoots,
+  type PointSource,
+  pointRoots,
+  type Root,
+  rootDistance,
+  SEEN,
+  type SegmentSource,
+  type Start,
+  segmentRoots,
+} from './roots.ts';
 import { KeyHeap, WindowStore } from './window-store.ts';
 
-/** Weight below which a surface point counts as lying on the opposite edge: float32 input cannot mean less. */
-export const ON_EDGE = 1e-10;
 /** A window shorter than this share of its edge is below the rounding of its own ends. */
 const NO_WIDTH = 1e-12;
 /** Share of a distance that rounding may have cost after thousands of unfoldings. */
 const ROUNDING = 1e-12;
-/** How far past its ends a window is still believed to see, as a share of the edge: closes hair cracks between windows. */
-const SEEN = 1e-9;
-/** A vertex whose angles sum to this much over 2π bends shortest paths around it. */
-const SADDLE = 1e-9;
-
-/**
- * Where windows start. One root serves one face; a source on an edge or a vertex makes one for each
- * face around it.
- */
-export interface Root {
-  kind: 'point' | 'segment';
-  /** Number the caller gave to the source. */
-  source: number;
-  face: number;
-  /** Position of the point, or of the segment's start, part frame. */
-  at: Vec3;
-  /** Length already walked before the root (pseudo-sources at vertices). */
-  sigma: number;
-  /** Vertex whose pseudo-source this is, -1 for a true source. */
-  vertex: number;
-  /** Point: angle of the root frame's x axis in the source's polar angle. */
-  offset: number;
-  /** Point at a vertex: 2π over the sum of its angles; 1 elsewhere. */
-  scale: number;
-  /** Pseudo-source of a point: polar angle, radians, at which the source sees its vertex, and with it all that lies behind. */
-  bearing: number;
-  /**
-   * Segment: length, arc length at its start, and the side (+1 left, -1 right) its windows run to.
-   * Pseudo-source: `start` and `side` are those of the path that reached its vertex.
-   */
-  length: number;
-  start: number;
-  side: 1 | -1;
-  /** Windows stop at this distance. */
-  radius: number;
-  /** Root frame in the face: origin `at`, x and y axes as part-frame unit vectors. */
-  x: Vec3;
-  y: Vec3;
-}
-
-export interface PointSource {
-  at: SurfacePoint;
-  source: number;
-  radius: number;
-  /** Direction of polar angle 0, part frame, in the plane of `at.face`; default: its first edge. */
-  zero?: Vec3;
-}
-
-export interface SegmentSource {
-  face: number;
-  from: Vec3;
-  to: Vec3;
-  source: number;
-  /** Arc length at `from`. */
-  start: number;
-  radiusLeft: number;
-  radiusRight: number;
-}
-
 /** Only distances below the bound that a straight line still allows are of use: stops a search for one target early. */
 export interface Target {
   at: SurfacePoint;
@@ -99,6 +52,7 @@ export interface Arrival {
 /** Prepared for one mesh; each `run` starts afresh. Memory that a run touches is bounded by what its windows reach. */
 export class WindowSolver {
   readonly mesh: SurfaceMesh;
+  private readonly geometry: FaceGeometry;
   windows = new WindowStore();
   roots: Root[] = [];
   private heap = new KeyHeap();
@@ -114,6 +68,7 @@ export class WindowSolver {
 
   constructor(mesh: SurfaceMesh) {
     this.mesh = mesh;
+    this.geometry = new FaceGeometry(mesh);
     const n = mesh.positions.length / 3;
     this.dist = new Float64Array(n);
     this.stamp = new Int32Array(n).fill(-1);
@@ -143,7 +98,7 @@ export class WindowSolver {
         }
       : null;
     for (const s of points) this.startPoint(s);
-    for (const s of segments) this.startSegment(s);
+    for (const s of segments) this.start(segmentRoots(this.geometry, s));
     const { windows, heap } = this;
     while (heap.size > 0) {
       if (this.target && heap.least >= this.target.best.distance) break;
@@ -170,49 +125,15 @@ export class WindowSolver {
   // ---- sources ----------------------------------------------------------------------------------
 
   private startPoint(s: PointSource): void {
-    const at = positionOf(this.mesh, s.at);
-    const zeros = s.at.bary.map((b) => Math.abs(b) <= ON_EDGE);
-    const n = zeros.filter(Boolean).length;
-    const f = s.at.face;
-    const zero = s.zero ?? this.edgeDirection(3 * f);
-    if (n === 2) {
-      const corner = zeros.indexOf(false);
-      const v = this.mesh.triangles[3 * f + corner];
-      // The fan below is this vertex's own: no second one as a pseudo-source.
+    const corner = cornerAt(s.at);
+    if (corner >= 0) {
+      // The fan is this vertex's own: no second one as a pseudo-source.
+      const v = this.mesh.triangles[3 * s.at.face + corner];
       this.dist[v] = 0;
       this.stamp[v] = this.run;
       this.fanned.set(v, 0);
-      this.startFan(3 * f + corner, at, 0, -1, s.source, s.radius, { face: f, zero });
-      return;
     }
-    const { x, y } = this.frame(f, zero);
-    const root = {
-      kind: 'point' as const,
-      source: s.source,
-      at,
-      sigma: 0,
-      vertex: -1,
-      offset: 0,
-      scale: 1,
-      bearing: 0,
-      length: 0,
-      start: 0,
-      side: 1 as const,
-      radius: s.radius,
-    };
-    const here = this.roots.push({ ...root, face: f, x, y }) - 1;
-    if (n === 0) {
-      this.seeFromRoot(here, [3 * f, 3 * f + 1, 3 * f + 2]);
-      return;
-    }
-    // On an edge: the face across it sees the point too, in the same frame once unfolded.
-    const h = 3 * f + ((zeros.indexOf(true) + 1) % 3);
-    this.seeFromRoot(here, [next(h), previous(h)]);
-    const t = this.mesh.twin[h];
-    if (t < 0) return;
-    const [ux, uy] = this.unfold(h, x, y);
-    const there = this.roots.push({ ...root, face: faceOf(t), x: ux, y: uy }) - 1;
-    this.seeFromRoot(there, [next(t), previous(t)]);
+    this.start(pointRoots(this.geometry, s));
   }
 
   /** Pseudo-source: a vertex around which shortest paths bend. */
@@ -229,116 +150,24 @@ export class WindowSolver {
     if (h < 0 || this.mesh.triangles[h] !== v)
       throw new Fault(`vertex ${v} was not reached through a face that holds it`);
     const from = via >= 0 ? this.roots[this.windows.root[via]] : this.roots[-1 - via];
-    const at: Vec3 = [
-      this.mesh.positions[3 * v],
-      this.mesh.positions[3 * v + 1],
-      this.mesh.positions[3 * v + 2],
-    ];
+    const at = this.position(v);
     const q = via >= 0 ? this.look(via, at, Infinity)! : this.inRoot(from, at);
-    const side = from.kind === 'segment' || from.vertex >= 0 ? from.side : q[1] < 0 ? -1 : 1;
-    const foot = from.kind === 'segment' ? from.start + q[0] : from.start;
-    const bearing = from.vertex >= 0 ? from.bearing : (from.offset + Math.atan2(q[1], q[0])) * from.scale;
-    this.startFan(h, at, this.dist[v], v, from.source, from.radius, undefined, side, foot, bearing);
+    this.start(
+      fanRoots(this.geometry, h, {
+        source: from.source,
+        at,
+        sigma: this.dist[v],
+        vertex: v,
+        side: from.kind === 'segment' || from.vertex >= 0 ? from.side : q[1] < 0 ? -1 : 1,
+        start: from.kind === 'segment' ? from.start + q[0] : from.start,
+        bearing: from.vertex >= 0 ? from.bearing : (from.offset + Math.atan2(q[1], q[0])) * from.scale,
+        radius: from.radius,
+      }),
+    );
   }
 
-  /** One root for each face around the vertex at which half-edge `h` starts. */
-  private startFan(
-    h: number,
-    at: Vec3,
-    sigma: number,
-    vertex: number,
-    source: number,
-    radius: number,
-    zero?: { face: number; zero: Vec3 },
-    side: 1 | -1 = 1,
-    start = 0,
-    bearing = 0,
-  ): void {
-    const { twin } = this.mesh;
-    // Clockwise to a border, or once around.
-    let first = h;
-    let border = false;
-    for (;;) {
-      const t = twin[first];
-      if (t < 0) {
-        border = true;
-        break;
-      }
-      first = next(t);
-      if (first === h) break;
-    }
-    const halves: number[] = [];
-    const angles: number[] = [];
-    let total = 0;
-    let k = first;
-    for (;;) {
-      halves.push(k);
-      angles.push(total);
-      total += this.cornerAngle(k);
-      const t = twin[previous(k)];
-      if (t < 0 || t === first) break;
-      k = t;
-    }
-    const scale = border ? 1 : (2 * Math.PI) / total;
-    let zeroAngle = 0;
-    if (zero) {
-      const i = halves.findIndex((half) => faceOf(half) === zero.face);
-      const { x, y } = this.frame(zero.face, this.edgeDirection(halves[i]));
-      zeroAngle = angles[i] + Math.atan2(dot(zero.zero, y), dot(zero.zero, x));
-    }
-    halves.forEach((half, i) => {
-      const face = faceOf(half);
-      const { x, y } = this.frame(face, this.edgeDirection(half));
-      const root =
-        this.roots.push({
-          kind: 'point',
-          source,
-          face,
-          at,
-          sigma,
-          vertex,
-          offset: angles[i] - zeroAngle,
-          scale,
-          bearing,
-          length: 0,
-          start,
-          side,
-          radius,
-          x,
-          y,
-        }) - 1;
-      this.seeFromRoot(root, [next(half)]);
-    });
-  }
-
-  private startSegment(s: SegmentSource): void {
-    const along: Vec3 = [s.to[0] - s.from[0], s.to[1] - s.from[1], s.to[2] - s.from[2]];
-    const len = Math.hypot(along[0], along[1], along[2]);
-    if (len === 0) return;
-    const { x, y } = this.frame(s.face, along);
-    for (const side of [1, -1] as const) {
-      const radius = side > 0 ? s.radiusLeft : s.radiusRight;
-      if (radius <= 0) continue;
-      const root =
-        this.roots.push({
-          kind: 'segment',
-          source: s.source,
-          face: s.face,
-          at: s.from,
-          sigma: 0,
-          vertex: -1,
-          offset: 0,
-          scale: 1,
-          bearing: 0,
-          length: len,
-          start: s.start,
-          side,
-          radius,
-          x,
-          y,
-        }) - 1;
-      this.seeFromRoot(root, [3 * s.face, 3 * s.face + 1, 3 * s.face + 2]);
-    }
+  private start(starts: readonly Start[]): void {
+    for (const { root, halves } of starts) this.seeFromRoot(this.roots.push(root) - 1, halves);
   }
 
   /** Gives the root's face its vertices, the target if it is there, and a first window on each of `halves`. */
@@ -466,7 +295,7 @@ export class WindowSolver {
     }
     const hr = next(half);
     const hl = previous(half);
-    const [cx, cy] = this.apex(half, len);
+    const [cx, cy] = this.geometry.apex(half, len);
     if (cy <= 0) return;
     // Bounding rays.
     let d0x: number, d0y: number, d1x: number, d1y: number;
@@ -564,25 +393,12 @@ export class WindowSolver {
         if (d + last < t.best.distance) t.best = { distance: d + last, window: -1, root: -1, vertex: v };
       }
     }
-    if (this.bends(corner)) this.heap.push(-1 - v, d);
+    if (this.geometry.bends(corner)) this.heap.push(-1 - v, d);
   }
 
   private cornerOf(face: number, v: number): boolean {
     const { triangles } = this.mesh;
     return triangles[3 * face] === v || triangles[3 * face + 1] === v || triangles[3 * face + 2] === v;
-  }
-
-  /** Whether shortest paths may turn at the vertex where half-edge `h` starts: a saddle, or on a border. */
-  private bends(h: number): boolean {
-    const { twin } = this.mesh;
-    let total = 0;
-    let k = h;
-    do {
-      total += this.cornerAngle(k);
-      k = twin[previous(k)];
-      if (k < 0) return true;
-    } while (k !== h);
-    return total > 2 * Math.PI + SADDLE;
   }
 
   // ---- seeing -----------------------------------------------------------------------------------
@@ -598,7 +414,7 @@ export class WindowSolver {
     const { windows } = this;
     const n = windows.num;
     const o = 8 * w;
-    const [x, y] = this.inHalf(windows.half[w], p, n[o + 7]);
+    const [x, y] = this.geometry.inHalf(windows.half[w], p, n[o + 7]);
     const sx = n[o + 2],
       sy = n[o + 3],
       cos = n[o + 4],
@@ -647,114 +463,8 @@ export class WindowSolver {
     return Math.min(n[o + 1], Math.max(n[o], x));
   }
 
-  // ---- geometry of faces ------------------------------------------------------------------------
-
   position(v: number): Vec3 {
-    const x = this.mesh.positions;
-    return [x[3 * v], x[3 * v + 1], x[3 * v + 2]];
-  }
-
-  private edgeDirection(h: number): Vec3 {
-    const a = this.position(this.mesh.triangles[h]);
-    const b = this.position(this.mesh.triangles[next(h)]);
-    return [b[0] - a[0], b[1] - a[1], b[2] - a[2]];
-  }
-
-  /** Third corner in the local frame of half-edge h. */
-  private apex(h: number, len: number): [number, number] {
-    const { positions: x, triangles: t } = this.mesh;
-    const a = 3 * t[h],
-      b = 3 * t[next(h)],
-      c = 3 * t[previous(h)];
-    const ux = x[b] - x[a],
-      uy = x[b + 1] - x[a + 1],
-      uz = x[b + 2] - x[a + 2];
-    const vx = x[c] - x[a],
-      vy = x[c + 1] - x[a + 1],
-      vz = x[c + 2] - x[a + 2];
-    const nx = uy * vz - uz * vy,
-      ny = uz * vx - ux * vz,
-      nz = ux * vy - uy * vx;
-    return [(ux * vx + uy * vy + uz * vz) / len, Math.hypot(nx, ny, nz) / len];
-  }
-
-  /** `p` of the face of h in h's local frame. */
-  private inHalf(h: number, p: Vec3, len: number): [number, number] {
-    const { positions: x, triangles: t } = this.mesh;
-    const a = 3 * t[h],
-      b = 3 * t[next(h)],
-      c = 3 * t[previous(h)];
-    const ux = (x[b] - x[a]) / len,
-      uy = (x[b + 1] - x[a + 1]) / len,
-      uz = (x[b + 2] - x[a + 2]) / len;
-    const vx = x[c] - x[a],
-      vy = x[c + 1] - x[a + 1],
-      vz = x[c + 2] - x[a + 2];
-    const along = ux * vx + uy * vy + uz * vz;
-    let wx = vx - along * ux,
-      wy = vy - along * uy,
-      wz = vz - along * uz;
-    const l = Math.hypot(wx, wy, wz);
-    wx /= l;
-    wy /= l;
-    wz /= l;
-    const px = p[0] - x[a],
-      py = p[1] - x[a + 1],
-      pz = p[2] - x[a + 2];
-    return [px * ux + py * uy + pz * uz, px * wx + py * wy + pz * wz];
-  }
-
-  private cornerAngle(h: number): number {
-    const { positions: x, triangles: t } = this.mesh;
-    const a = 3 * t[h],
-      b = 3 * t[next(h)],
-      c = 3 * t[previous(h)];
-    const ux = x[b] - x[a],
-      uy = x[b + 1] - x[a + 1],
-      uz = x[b + 2] - x[a + 2];
-    const vx = x[c] - x[a],
-      vy = x[c + 1] - x[a + 1],
-      vz = x[c + 2] - x[a + 2];
-    const nx = uy * vz - uz * vy,
-      ny = uz * vx - ux * vz,
-      nz = ux * vy - uy * vx;
-    return Math.atan2(Math.hypot(nx, ny, nz), ux * vx + uy * vy + uz * vz);
-  }
-
-  /** Axes in the face's plane: x along `direction`, y a quarter turn on, seen from outside. */
-  private frame(face: number, direction: Vec3): { x: Vec3; y: Vec3 } {
-    const u = this.edgeDirection(3 * face);
-    const v = this.edgeDirection(3 * face + 2);
-    const nx = v[1] * u[2] - v[2] * u[1],
-      ny = v[2] * u[0] - v[0] * u[2],
-      nz = v[0] * u[1] - v[1] * u[0];
-    const nl = Math.hypot(nx, ny, nz);
-    const n: Vec3 = [nx / nl, ny / nl, nz / nl];
-    const off = dot(direction, n);
-    const dx = direction[0] - off * n[0],
-      dy = direction[1] - off * n[1],
-      dz = direction[2] - off * n[2];
-    const dl = Math.hypot(dx, dy, dz);
-    const x: Vec3 = [dx / dl, dy / dl, dz / dl];
-    return { x, y: [n[1] * x[2] - n[2] * x[1], n[2] * x[0] - n[0] * x[2], n[0] * x[1] - n[1] * x[0]] };
-  }
-
-  /** Axes of the face of h, turned into the face across h. */
-  private unfold(h: number, x: Vec3, y: Vec3): [Vec3, Vec3] {
-    const t = this.mesh.twin[h];
-    const here = this.frame(faceOf(h), this.edgeDirection(h));
-    const e = this.edgeDirection(h);
-    const there = this.frame(faceOf(t), e);
-    const turn = (v: Vec3): Vec3 => {
-      const a = dot(v, here.x),
-        b = dot(v, here.y);
-      return [
-        a * there.x[0] + b * there.y[0],
-        a * there.x[1] + b * there.y[1],
-        a * there.x[2] + b * there.y[2],
-      ];
-    };
-    return [turn(x), turn(y)];
+    return this.geometry.position(v);
   }
 
   private edgeToTarget(half: number, len: number, p: Vec3): number {
@@ -770,12 +480,10 @@ export class WindowSolver {
   }
 
   private vertexAt(p: SurfacePoint): number {
-    const corner = p.bary.findIndex((b) => Math.abs(b - 1) <= ON_EDGE);
+    const corner = cornerAt(p);
     return corner < 0 ? -1 : this.mesh.triangles[3 * p.face + corner];
   }
 }
-
-const dot = (a: Vec3, b: Vec3): number => a[0] * b[0] + a[1] * b[1] + a[2] * b[2];
 
 /** Length t along unit direction e, from the edge's start, of its crossing with the ray P + k d; `parallel` when they never meet. */
 function crossing(
@@ -789,13 +497,6 @@ function crossing(
 ): number {
   const den = ex * dy - ey * dx;
   return den === 0 ? parallel : (px * dy - py * dx) / den;
-}
-
-/** Distance that a root-frame point stands for; Infinity where a segment has no foot for it. */
-export function rootDistance(root: Root, qx: number, qy: number): number {
-  if (root.kind === 'point') return root.sigma + Math.hypot(qx, qy);
-  const slack = SEEN * root.length;
-  return qx < -slack || qx > root.length + slack || qy * root.side < -slack ? Infinity : Math.abs(qy);
 }
 
 function pointDistance(
@@ -829,36 +530,4 @@ function leastDistance(
     return root.sigma + Math.hypot(x - sx, sy);
   }
   return Math.min(windowDistance(root, b0, sx, sy, cos, sin), windowDistance(root, b1, sx, sy, cos, sin));
-}
-
-/**
- * Part of the edge A → B (root frame of a segment, half-edge of the far face) whose feet lie on the segment and
- * which lies on the asked side, as lengths from A. An edge that the segment runs along belongs to the side beyond it.
- */
-function clipToStrip(
-  ax: number,
-  ay: number,
-  bx: number,
-  by: number,
-  length: number,
-  side: number,
-  len: number,
-): [number, number] | null {
-  const slack = SEEN * (length + len);
-  let t0 = 0;
-  let t1 = 1;
-  const cut = (fa: number, fb: number): boolean => {
-    // Keeps where fa + t (fb - fa) >= 0.
-    if (fa < 0 && fb < 0) return false;
-    if (fa < 0) t0 = Math.max(t0, fa / (fa - fb));
-    else if (fb < 0) t1 = Math.min(t1, fa / (fa - fb));
-    return t0 < t1;
-  };
-  if (!cut(ax, bx) || !cut(length - ax, length - bx)) return null;
-  if (Math.abs(ay) <= slack && Math.abs(by) <= slack) {
-    // The far face lies left of A → B: to the segment's left when both run the same way.
-    return bx - ax > 0 === side > 0 ? [t0 * len, t1 * len] : null;
-  }
-  if (!cut(ay * side, by * side)) return null;
-  return [t0 * len, t1 * len];
 }
