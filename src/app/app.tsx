@@ -73,7 +73,7 @@ export function App({ store, host, questions }: { store: Store; host: Host; ques
   );
 
   useEffect(() => questions.listen(setAsked), [questions]);
-  useEffect(() => void documents.begin().then((put) => setDismissed(new Set(put))), [documents]);
+  useEffect(() => void documents.begin((put) => setDismissed(new Set(put))), [documents]);
   useEffect(() => {
     return host.listen((event) => (event.kind === 'command' ? run(event.id) : documents.hear(event)));
   }, [documents, host, run]);

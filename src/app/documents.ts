@@ -189,8 +189,9 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
         void guard('Opening', async () => (await mayLeave()) && showOpened(event.opened));
     },
     /** What a fresh window shows: what was asked for, else lost work, else the demonstration or nothing. */
-    async begin(): Promise<readonly string[]> {
+    async begin(tellDismissed: (put: readonly string[]) => void): Promise<void> {
       const news = await host.start();
+      tellDismissed(news.dismissed);
       await guard('Opening', async () => {
         if (news.opened) return showOpened(news.opened);
         for (const lost of news.lost) {
@@ -211,7 +212,6 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
         }
         await fetchDemo();
       });
-      return news.dismissed;
     },
     showHelp: () =>
       void ask({

@@ -5,7 +5,7 @@ import { request } from 'node:http';
 import { dirname, join } from 'node:path';
 import { type Browser, chromium, type Page } from 'playwright-core';
 import { afterAll, beforeAll, expect, test } from 'vitest';
-import { domeFolder, freshFolder, planned, ROOT, step, tally } from './open-window.ts';
+import { domeFolder, freshFolder, planned, poll, ROOT, step, tally } from './open-window.ts';
 
 const BROWSER = ['/usr/bin/chromium', '/usr/bin/chromium-browser', '/usr/bin/google-chrome'].find((f) =>
   existsSync(f),
@@ -88,13 +88,11 @@ test('menus stand in the window; an act is named there; the save lands in the fo
   await net.fill('BROWSER');
   await net.press('Enter');
   await page.getByRole('button', { name: 'Edit', exact: true }).click();
-  await expect
-    .poll(() => page.getByRole('menuitem').first().textContent())
-    .toContain('Undo change net of p1');
+  await poll(() => page.getByRole('menuitem').first().textContent()).toContain('Undo change net of p1');
   await page.keyboard.press('Escape');
   await page.getByRole('button', { name: 'File', exact: true }).click();
   await page.getByRole('menuitem', { name: 'Save Ctrl+S', exact: true }).click();
-  await expect.poll(() => JSON.parse(readFileSync(file, 'utf8')).circuit.elements[0].net).toBe('BROWSER');
+  await poll(() => JSON.parse(readFileSync(file, 'utf8')).circuit.elements[0].net).toBe('BROWSER');
 });
 
 test('a name that leaves the folder is refused, and "Save as" with a plain one is kept', async () => {
@@ -102,13 +100,13 @@ test('a name that leaves the folder is refused, and "Save as" with a plain one i
   const entry = page.getByRole('textbox', { name: 'File name' });
   await entry.fill('../out.drape.json');
   await entry.press('Enter');
-  await expect
-    .poll(() => page.locator('.notice').allTextContents())
-    .toContainEqual(expect.stringContaining('not a plain file name'));
+  await poll(() => page.locator('.notice').allTextContents()).toContainEqual(
+    expect.stringContaining('not a plain file name'),
+  );
   await page.keyboard.press('Control+Shift+S');
   await entry.fill('second.drape.json');
   await entry.press('Enter');
-  await expect.poll(() => readdirSync(dirname(file))).toContain('second.drape.json');
+  await poll(() => readdirSync(dirname(file))).toContain('second.drape.json');
 });
 
 test('the page told of no fault', () => {

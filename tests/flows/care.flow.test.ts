@@ -9,6 +9,7 @@ import {
   type OpenWindow,
   openWindow,
   planned,
+  poll,
   step,
   stubDialogs,
 } from './open-window.ts';
@@ -31,23 +32,21 @@ async function change(w: OpenWindow, net: string): Promise<void> {
   const field = w.page.locator('.facts').getByRole('textbox', { name: 'Net' });
   await field.fill(net);
   await field.press('Enter');
-  await expect.poll(() => w.page.locator('.elements button').first().textContent()).toContain(net);
+  await poll(() => w.page.locator('.elements button').first().textContent()).toContain(net);
 }
 
 describe('first start', () => {
   test('opens the demonstration with three hints, and a hint put away stays away', async () => {
     const user = freshFolder();
     const first = await window(null, user);
-    await expect
-      .poll(() => first.page.locator('.facts h2').textContent(), { timeout: 30_000 })
-      .toBe('touch dial');
-    await expect.poll(() => first.page.locator('.hint').count()).toBe(3);
+    await poll(() => first.page.locator('.facts h2').textContent(), { timeout: 30_000 }).toBe('touch dial');
+    await poll(() => first.page.locator('.hint').count()).toBe(3);
     await first.page.locator('.hint button').first().click();
-    await expect.poll(() => first.page.locator('.hint').count()).toBe(2);
+    await poll(() => first.page.locator('.hint').count()).toBe(2);
     await first.page.waitForTimeout(500);
     await first.close();
     const second = await window(null, user);
-    await expect.poll(() => second.page.locator('.hint').count()).toBe(2);
+    await poll(() => second.page.locator('.hint').count()).toBe(2);
     expect(second.faults).toEqual([]);
   });
 });
@@ -60,7 +59,7 @@ describe('unsaved work', () => {
     const title = () => w.app.evaluate(({ BrowserWindow }) => BrowserWindow.getAllWindows()[0]!.getTitle());
     expect(await title()).toBe('dome.drape.json – Beamdrape');
     await change(w, 'KEEP');
-    await expect.poll(title).toBe('• dome.drape.json – Beamdrape');
+    await poll(title).toBe('• dome.drape.json – Beamdrape');
     const ask = () => w.app.evaluate(({ BrowserWindow }) => BrowserWindow.getAllWindows()[0]!.close());
     await ask();
     await w.page.getByRole('dialog').waitFor();
@@ -77,14 +76,14 @@ describe('unsaved work', () => {
     const w = await window(domeFolder());
     await planned(w.page);
     await change(w, 'X');
-    await expect
-      .poll(() => w.app.evaluate(({ BrowserWindow }) => BrowserWindow.getAllWindows()[0]!.getTitle()))
-      .toMatch(/^• /);
+    await poll(() =>
+      w.app.evaluate(({ BrowserWindow }) => BrowserWindow.getAllWindows()[0]!.getTitle()),
+    ).toMatch(/^• /);
     await w.page.getByTestId('view').focus();
     await w.page.keyboard.press('Control+z');
-    await expect
-      .poll(() => w.app.evaluate(({ BrowserWindow }) => BrowserWindow.getAllWindows()[0]!.getTitle()))
-      .not.toMatch(/^• /);
+    await poll(() =>
+      w.app.evaluate(({ BrowserWindow }) => BrowserWindow.getAllWindows()[0]!.getTitle()),
+    ).not.toMatch(/^• /);
   });
 
   test('survives a crash: the next start offers it back', async () => {
@@ -102,10 +101,10 @@ describe('unsaved work', () => {
     await next.page.getByRole('button', { name: 'Bring it back' }).click();
     await planned(next.page);
     await step(next.page, 'circuit');
-    await expect.poll(() => next.page.locator('.elements button').first().textContent()).toContain('LOST');
-    await expect
-      .poll(() => next.app.evaluate(({ BrowserWindow }) => BrowserWindow.getAllWindows()[0]!.getTitle()))
-      .toMatch(/^• dome/);
+    await poll(() => next.page.locator('.elements button').first().textContent()).toContain('LOST');
+    await poll(() =>
+      next.app.evaluate(({ BrowserWindow }) => BrowserWindow.getAllWindows()[0]!.getTitle()),
+    ).toMatch(/^• dome/);
     expect(JSON.parse(readFileSync(file, 'utf8')).circuit.elements[0].net).toBe('A');
   });
 });
@@ -121,16 +120,16 @@ describe('bad files', () => {
     await planned(w.page);
     await stubDialogs(w.app, { open: bad });
     await w.page.keyboard.press('Control+o');
-    await expect
-      .poll(() => w.page.locator('.notice').allTextContents())
-      .toContainEqual(expect.stringContaining('$.circuit.elements[2].width'));
+    await poll(() => w.page.locator('.notice').allTextContents()).toContainEqual(
+      expect.stringContaining('$.circuit.elements[2].width'),
+    );
     expect(await w.page.locator('.facts h2').textContent()).toBe('lumpy dome');
     writeFileSync(join(dirname(file), 'noise.stl'), 'this is no part');
     await stubDialogs(w.app, { open: join(dirname(file), 'noise.stl') });
     await w.page.keyboard.press('Control+o');
-    await expect
-      .poll(() => w.page.locator('.notice').allTextContents())
-      .toContainEqual(expect.stringContaining('noise.stl'));
+    await poll(() => w.page.locator('.notice').allTextContents()).toContainEqual(
+      expect.stringContaining('noise.stl'),
+    );
     expect(w.faults).toEqual([]);
   });
 });

@@ -16,6 +16,7 @@ import {
   type OpenWindow,
   openWindow,
   planned,
+  poll,
   step,
   stubDialogs,
 } from './open-window.ts';
@@ -68,10 +69,10 @@ describe('drawing with the mouse', () => {
     await clickAt(70, -95);
     await clickAt(-40, -70);
     await w.page.mouse.move(...at(-90, 20), { steps: 6 });
-    await expect.poll(() => w.page.locator('.tool-help').textContent()).toMatch(/mm to the pointer/);
+    await poll(() => w.page.locator('.tool-help').textContent()).toMatch(/mm to the pointer/);
     await clickAt(-90, 20);
     await w.page.keyboard.press('Enter');
-    await expect.poll(listed).toEqual(['p1', 'p2', 't1', 't2', 't3', 't4']);
+    await poll(listed).toEqual(['p1', 'p2', 't1', 't2', 't3', 't4']);
     await planned(w.page);
 
     const t4 = traceIn(await saved(), 't4');
@@ -108,10 +109,10 @@ describe('drawing with the mouse', () => {
     expect(await menuLabel(w.app, 'undo')).toBe('Undo draw trace t4');
     await w.page.keyboard.press('Escape');
     await w.page.keyboard.press('Control+z');
-    await expect.poll(listed).not.toContain('t4');
+    await poll(listed).not.toContain('t4');
     expect(await menuLabel(w.app, 'redo')).toBe('Redo draw trace t4');
     await w.page.keyboard.press('Control+Shift+Z');
-    await expect.poll(listed).toContain('t4');
+    await poll(listed).toContain('t4');
     expect(await saved()).toEqual(before);
   });
 
@@ -120,11 +121,11 @@ describe('drawing with the mouse', () => {
     await w.page.keyboard.press('t');
     await clickAt(30, 60);
     await clickAt(60, 30);
-    await expect.poll(() => w.page.locator('.overlay .handle:not([hidden])').count()).toBe(2);
+    await poll(() => w.page.locator('.overlay .handle:not([hidden])').count()).toBe(2);
     await w.page.keyboard.press('Backspace');
-    await expect.poll(() => w.page.locator('.overlay .handle:not([hidden])').count()).toBe(1);
+    await poll(() => w.page.locator('.overlay .handle:not([hidden])').count()).toBe(1);
     await w.page.keyboard.press('Escape');
-    await expect.poll(() => w.page.locator('.overlay .handle:not([hidden])').count()).toBe(0);
+    await poll(() => w.page.locator('.overlay .handle:not([hidden])').count()).toBe(0);
     await w.page.keyboard.press('Escape');
     expect(await listed()).toHaveLength(6);
   });
@@ -133,7 +134,7 @@ describe('drawing with the mouse', () => {
     await w.page.getByTestId('view').focus();
     await w.page.keyboard.press('p');
     await clickAt(-30, 110);
-    await expect.poll(listed).toContain('p3');
+    await poll(listed).toContain('p3');
     await planned(w.page);
     const pad = (await saved()).circuit.elements.find((e) => e.id === 'p3');
     if (pad?.kind !== 'pad') throw new Error('no pad');
@@ -143,7 +144,7 @@ describe('drawing with the mouse', () => {
     await w.page.keyboard.press('Escape');
     await w.page.locator('.elements button', { hasText: 'p3' }).click();
     await w.page.keyboard.press('Delete');
-    await expect.poll(listed).not.toContain('p3');
+    await poll(listed).not.toContain('p3');
   });
 
   test('dragging a point is one step of undo', async () => {
@@ -180,7 +181,7 @@ describe('drawing with the mouse', () => {
     await w.page.keyboard.press('Space');
     await w.page.waitForTimeout(600);
     await w.page.keyboard.press('Enter');
-    await expect.poll(listed).toContain('t5');
+    await poll(listed).toContain('t5');
     await planned(w.page);
     const t5 = traceIn(await saved(), 't5');
     expect(t5.route[1]!.at[0]).toBeGreaterThan(t5.route[0]!.at[0] + 2);
@@ -195,9 +196,9 @@ describe('files', () => {
     writeFileSync(source, JSON.stringify(odd));
     await stubDialogs(w.app, { open: source, save: join(dirname(file), 'again.drape.json') });
     await w.page.keyboard.press('Control+o');
-    await expect
-      .poll(() => w.page.locator('.notice').allTextContents())
-      .toContainEqual(expect.stringContaining('$.shopNote'));
+    await poll(() => w.page.locator('.notice').allTextContents()).toContainEqual(
+      expect.stringContaining('$.shopNote'),
+    );
     await planned(w.page);
     await w.page.keyboard.press('Control+Shift+S');
     await w.page.waitForTimeout(800);
@@ -230,8 +231,8 @@ describe('files', () => {
       window.dispatchEvent(new DragEvent('drop', { dataTransfer: data, bubbles: true, cancelable: true }));
     });
     await step(w.page, 'circuit');
-    await expect.poll(listed).toEqual([]);
-    await expect.poll(() => w.page.locator('[data-step=part]').textContent()).toContain('40 × 40 × 17.9');
+    await poll(listed).toEqual([]);
+    await poll(() => w.page.locator('[data-step=part]').textContent()).toContain('40 × 40 × 17.9');
   });
 
   test('the page told of no fault', () => {

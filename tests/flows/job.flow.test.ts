@@ -10,6 +10,7 @@ import {
   type OpenWindow,
   openWindow,
   planned,
+  poll,
   step,
   stubDialogs,
   tally,
@@ -89,10 +90,10 @@ describe('the height strip', () => {
     const band = w.page.getByTestId('band-1');
     const box = (await band.boundingBox())!;
     await w.page.mouse.click(box.x + 6, box.y + 60);
-    await expect.poll(() => band.getAttribute('aria-valuetext')).toContain('shown alone');
+    await poll(() => band.getAttribute('aria-valuetext')).toContain('shown alone');
     const alone = await tally(w.page);
     await w.page.mouse.click(box.x + 6, box.y + 60);
-    await expect.poll(() => band.getAttribute('aria-valuetext')).not.toContain('shown alone');
+    await poll(() => band.getAttribute('aria-valuetext')).not.toContain('shown alone');
     const all = await tally(w.page);
     expect(alone.copper).toBeGreaterThan(50);
     expect(alone.copper).toBeLessThan(0.8 * all.copper);
@@ -107,12 +108,12 @@ describe('the height strip', () => {
     await w.page.mouse.down();
     await w.page.mouse.move(box.x + 8 - 60, box.y + 60, { steps: 6 });
     await w.page.mouse.up();
-    await expect
-      .poll(() => w.page.locator('.strip-foot').textContent(), { timeout: 30_000 })
-      .toMatch(/mm² of copper is not reached/);
+    await poll(() => w.page.locator('.strip-foot').textContent(), { timeout: 30_000 }).toMatch(
+      /mm² of copper is not reached/,
+    );
     expect((await tally(w.page)).red).toBeGreaterThan(30);
     await w.page.getByRole('button', { name: 'Fewest', exact: true }).click();
-    await expect.poll(rows, { timeout: 30_000 }).toEqual(fewest);
+    await poll(rows, { timeout: 30_000 }).toEqual(fewest);
     await planned(w.page);
   });
 
@@ -122,9 +123,7 @@ describe('the height strip', () => {
     const before = Number(await marker.getAttribute('aria-valuenow'));
     await w.page.keyboard.press('ArrowRight');
     // To the right is a higher focus: the stage goes down.
-    await expect
-      .poll(async () => Number(await marker.getAttribute('aria-valuenow')))
-      .toBeCloseTo(before - 0.1, 6);
+    await poll(async () => Number(await marker.getAttribute('aria-valuenow'))).toBeCloseTo(before - 0.1, 6);
   });
 });
 
@@ -134,13 +133,13 @@ describe('the other reasons', () => {
     const field = w.page.getByRole('textbox', { name: 'Steepest incidence' });
     await field.fill('0.5rad');
     await field.press('Enter');
-    await expect.poll(() => field.inputValue()).toBe('28.648');
-    await expect.poll(() => w.page.locator('[data-look=incidence]').count(), { timeout: 60_000 }).toBe(1);
+    await poll(() => field.inputValue()).toBe('28.648');
+    await poll(() => w.page.locator('[data-look=incidence]').count(), { timeout: 60_000 }).toBe(1);
     await w.page.locator('[data-look=incidence]').click();
-    await expect.poll(() => w.page.locator('.facts h2').textContent()).toMatch(/elements|Trace|Pad/);
+    await poll(() => w.page.locator('.facts h2').textContent()).toMatch(/elements|Trace|Pad/);
     await w.page.getByTestId('view').focus();
     await w.page.keyboard.press('Control+z');
-    await expect.poll(() => w.page.locator('[data-look=incidence]').count(), { timeout: 60_000 }).toBe(0);
+    await poll(() => w.page.locator('[data-look=incidence]').count(), { timeout: 60_000 }).toBe(0);
     await planned(w.page);
   });
 });
@@ -151,9 +150,9 @@ describe('the files', () => {
     await stubDialogs(w.app, { open: folder });
     await w.page.getByTestId('view').focus();
     await choose(w.app, 'export');
-    await expect
-      .poll(() => w.page.locator('[data-step=files]').textContent(), { timeout: 150_000 })
-      .toMatch(/files written/);
+    await poll(() => w.page.locator('[data-step=files]').textContent(), { timeout: 150_000 }).toMatch(
+      /files written/,
+    );
     const run = await runCli(['run', file, '--out', join(folder, 'cli'), '--no-timing']);
     expect(run.stderr).not.toMatch(/fault/);
     const ours = filesIn(join(folder, 'lumpy-dome-scan'));
@@ -195,9 +194,9 @@ describe('the files', () => {
     writeFileSync(join(other, 'lumpy-dome-scan', 'thesis.txt'), 'mine');
     await stubDialogs(w.app, { open: other });
     await choose(w.app, 'export');
-    await expect
-      .poll(() => w.page.locator('.notice').allTextContents(), { timeout: 150_000 })
-      .toContainEqual(expect.stringContaining('holds other things'));
+    await poll(() => w.page.locator('.notice').allTextContents(), { timeout: 150_000 }).toContainEqual(
+      expect.stringContaining('holds other things'),
+    );
     expect(readdirSync(join(other, 'lumpy-dome-scan'))).toEqual(['thesis.txt']);
     expect(statSync(file).mtimeMs).toBe(before);
   }, 200_000);

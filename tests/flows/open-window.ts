@@ -4,6 +4,7 @@ import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { fileURLToPath } from 'node:url';
 import { _electron, type ElectronApplication, type Page } from 'playwright-core';
+import { expect } from 'vitest';
 import { writeProject } from '../../src/core/project/read.ts';
 import { domeProject, domeStl } from './dome.ts';
 
@@ -16,6 +17,12 @@ export interface OpenWindow {
   faults: string[];
   close(): Promise<void>;
 }
+
+/** Asks again and again until it holds: windows are slow where two cores are shared. */
+export const poll = <T>(
+  ask: () => T | Promise<T>,
+  options: { timeout?: number } = {},
+): ReturnType<typeof expect.poll<T>> => expect.poll(ask, { timeout: 20_000, ...options });
 
 export const freshFolder = (): string => mkdtempSync(join(tmpdir(), 'beamdrape-flow-'));
 
