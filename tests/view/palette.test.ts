@@ -42,7 +42,10 @@ describe('what the colours say', () => {
   });
 
   test('the legend’s style sheet has the same colours', () => {
-    const css = readFileSync(new URL('../../src/app/style.css', import.meta.url), 'utf8').replace(/\s+/g, ' ');
+    const css = readFileSync(new URL('../../src/app/style.css', import.meta.url), 'utf8').replace(
+      /\s+/g,
+      ' ',
+    );
     for (const [name, l] of Object.entries(LOOKS)) {
       expect(css, name).toContain(`.look-${name} .base { fill: ${l.base}; }`);
       if (l.pattern !== 'plain') expect(css, name).toContain(l.mark);
