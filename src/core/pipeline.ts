@@ -8,7 +8,15 @@ import { InputError } from './base/news.ts';
 import type { RunContext } from './base/run-context.ts';
 import { focusedBeam } from './beam/beam.ts';
 import type { Copper } from './drape/copper.ts';
-import { drapeCircuit } from './drape/drape.ts';
+import {
+  type CircuitDraped,
+  checkPlaces,
+  type DrapeTask,
+  drapeShared,
+  drapeTasks,
+  gatherCircuit,
+} from './drape/drape.ts';
+import type { Draped } from './drape/element.ts';
 import { layerCsv } from './files/csv.ts';
 import { layerFile, safeNames } from './files/names.ts';
 import { type OutputFile, textFile } from './files/output.ts';
@@ -37,7 +45,7 @@ export { loadPart, type Part } from './part/part.ts';
 /** Named plain functions on worker threads, results in order; see `src/worker`. */
 export interface Workers {
   readonly threads: number;
-  map<A, R>(task: string, shared: unknown, args: readonly A[]): Promise<R[]>;
+  map<A, R>(task: string, shared: unknown, args: readonly A[], tell?: (done: number) => void): Promise<R[]>;
 }
 
 export interface JobInput {
@@ -75,7 +83,7 @@ export async function runJob(
   const { project, projectFile } = input;
   const setups = setupsOf(project, projectFile);
   const part = loadPart(input.part.bytes, input.part.file, project.part.units, ctx);
-  const { copper, findings } = drapeCircuit(project, projectFile, part, ctx);
+  const { copper, findings } = await layCircuit(project, projectFile, part, ctx, workers);
   const reach = checkReach(project, setups, part, copper, ctx);
   const report = openReport(project, input.unknown ?? [], part, copper, findings);
   if (options.stopAfter === 'reach') {
@@ -141,6 +149,23 @@ function scanFiles(
   return { files, scans };
 }
 
+/** Every element laid on the part, one a task. @throws InputError as `drapeCircuit` */
+export async function layCircuit(
+  project: Project,
+  file: string,
+  part: Part,
+  ctx: RunContext,
+  workers: Workers,
+): Promise<CircuitDraped> {
+  checkPlaces(project, file, part);
+  const tasks = drapeTasks(project, file);
+  ctx.step('drape', 0, tasks.length);
+  const draped = await workers.map<DrapeTask, Draped>('lay element', drapeShared(part), tasks, (done) =>
+    ctx.step('drape', done, tasks.length),
+  );
+  return gatherCircuit(draped);
+}
+
 /** The read-back proof, one file a task. */
 export async function proveFiles(input: ProofInput, ctx: RunContext, workers: Workers): Promise<Proof> {
   const plans = planProof(input);
@@ -148,8 +173,9 @@ export async function proveFiles(input: ProofInput, ctx: RunContext, workers: Wo
   const tasks = plans.flatMap((p) => p.tasks.map(({ head: _, mesh: __, normals: ___, ...own }) => own));
   ctx.step('proof', 0, tasks.length + 1);
   const shared = first ? { head: first.head, mesh: first.mesh, normals: first.normals } : {};
-  const traced = await workers.map<unknown, LayerPulses>('trace pulses', shared, tasks);
-  ctx.step('proof', tasks.length, tasks.length + 1);
+  const traced = await workers.map<unknown, LayerPulses>('trace pulses', shared, tasks, (done) =>
+    ctx.step('proof', done, tasks.length + 1),
+  );
   let next = 0;
   const byPlan = plans.map((p) => traced.slice(next, (next += p.tasks.length)));
   const proof = verdict(input, plans, byPlan, ctx);

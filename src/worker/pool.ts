@@ -14,10 +14,11 @@ export interface Workers {
    * @param task    name in the task table
    * @param shared  plain data that no task changes; sent once to each thread, its arrays in shared memory where there is any
    * @param args    one task each
+   * @param tell    hears how many tasks are done; what it throws stops the map (a person who cancels)
    * @returns       results in the order of `args`
    * @throws        what the task with the lowest index threw
    */
-  map<A, R>(task: string, shared: unknown, args: readonly A[]): Promise<R[]>;
+  map<A, R>(task: string, shared: unknown, args: readonly A[], tell?: (done: number) => void): Promise<R[]>;
 }
 
 /** One thread, as the pool sees it. */
@@ -60,12 +61,18 @@ export function createPool(threads: number, tasks: TaskTable, spawn: Spawn): Poo
     return s;
   }
 
-  function spread<A, R>(task: string, shared: unknown, args: readonly A[]): Promise<R[]> {
+  function spread<A, R>(
+    task: string,
+    shared: unknown,
+    args: readonly A[],
+    tell?: (done: number) => void,
+  ): Promise<R[]> {
     const key = keyOf(shared);
     return new Promise((resolve, reject) => {
       const results = new Array<R>(args.length);
       let next = 0;
       let busy = 0;
+      let done = 0;
       // Tasks are handed out in order, so when one fails every task before it is under way or done: the failure with the
       // lowest index does not depend on who was quicker.
       let failed: { index: number; failure: Failure } | null = null;
@@ -91,8 +98,14 @@ export function createPool(threads: number, tasks: TaskTable, spawn: Spawn): Poo
         };
         s.hear = (m) => {
           busy--;
-          if (m.kind === 'done') results[m.index] = m.value as R;
-          else if (!failed || m.index < failed.index) failed = { index: m.index, failure: m.failure };
+          if (m.kind === 'done') {
+            results[m.index] = m.value as R;
+            try {
+              tell?.(++done);
+            } catch (error) {
+              failed = { index: -1, failure: failureOf(error) };
+            }
+          } else if (!failed || m.index < failed.index) failed = { index: m.index, failure: m.failure };
           feed(s);
         };
         if (!s.has.has(key)) {
@@ -115,15 +128,26 @@ export function createPool(threads: number, tasks: TaskTable, spawn: Spawn): Poo
 
   return {
     threads,
-    map<A, R>(task: string, shared: unknown, args: readonly A[]): Promise<R[]> {
+    map<A, R>(
+      task: string,
+      shared: unknown,
+      args: readonly A[],
+      tell?: (done: number) => void,
+    ): Promise<R[]> {
       const run = tasks[task];
       if (!run) return Promise.reject(new Fault(`there is no task "${task}"`));
       if (args.length === 0) return Promise.resolve([]);
       if (threads === 1 || args.length === 1) {
-        return Promise.resolve().then(() => args.map((a) => run(shared, a) as R));
+        return Promise.resolve().then(() =>
+          args.map((a, i) => {
+            const result = run(shared, a) as R;
+            tell?.(i + 1);
+            return result;
+          }),
+        );
       }
       // One map at a time: a thread hears the answers of one map.
-      const result = queue.then(() => spread<A, R>(task, shared, args));
+      const result = queue.then(() => spread<A, R>(task, shared, args, tell));
       queue = result.catch(() => {});
       return result;
     },

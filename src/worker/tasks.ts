@@ -1,4 +1,7 @@
 /** Functions of the core that may run on another thread, by name. Each is a plain function: (shared, argument) → result. */
+
+import { type DrapeShared, type DrapeTask, layElement } from '../core/drape/drape.ts';
+import type { Draped } from '../core/drape/element.ts';
 import { type LayerPulses, type TraceTask, tracePulses } from '../core/proof/prove.ts';
 import type { TaskTable } from './pool.ts';
 
@@ -7,5 +10,6 @@ export type TraceShared = Pick<TraceTask, 'head' | 'mesh' | 'normals'>;
 export type TraceOwn = Omit<TraceTask, keyof TraceShared>;
 
 export const tasks = {
+  'lay element': (shared: DrapeShared, own: DrapeTask): Draped => layElement(shared, own),
   'trace pulses': (shared: TraceShared, own: TraceOwn): LayerPulses => tracePulses({ ...shared, ...own }),
 } satisfies TaskTable;

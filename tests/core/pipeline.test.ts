@@ -10,21 +10,18 @@ import { type JobResult, loadPart, runJob } from '../../src/core/pipeline.ts';
 import { readProject } from '../../src/core/project/read.ts';
 import type { ProofReport } from '../../src/core/project/report.ts';
 import type { Setup } from '../../src/core/project/schema.ts';
-import { type ProofFormat, prove, tracePulses } from '../../src/core/proof/prove.ts';
+import { type ProofFormat, prove } from '../../src/core/proof/prove.ts';
 import { checkReach } from '../../src/core/reach/reach.ts';
+import { createPool } from '../../src/worker/pool.ts';
+import { tasks } from '../../src/worker/tasks.ts';
 
 const folder = new URL('../../assets/demo/', import.meta.url);
 const text = readFileSync(new URL('touch-dial.drape.json', folder), 'utf8');
 const bytes = readFileSync(new URL('dial.stl', folder));
 const { project } = readProject(text, 'touch-dial.drape.json');
-const inline = {
-  threads: 1,
-  map: async <A, R>(_: string, shared: unknown, args: readonly A[]): Promise<R[]> =>
-    args.map(
-      (a) =>
-        tracePulses({ ...(shared as object), ...(a as object) } as Parameters<typeof tracePulses>[0]) as R,
-    ),
-};
+const inline = createPool(1, tasks, () => {
+  throw new Error('one thread needs no other');
+});
 
 describe('the touch dial', () => {
   let job: JobResult;

@@ -2,7 +2,7 @@
 import { InputError, type InputProblem } from '../base/news.ts';
 import type { RunContext } from '../base/run-context.ts';
 import { WindowSolver } from '../geodesic/windows.ts';
-import type { SurfaceQueries } from '../mesh/queries.ts';
+import { restoreQueries, type SurfaceQueries, type SurfaceTree, serializeQueries } from '../mesh/queries.ts';
 import type { SurfaceMesh } from '../mesh/surface-mesh.ts';
 import type { Element, Project } from '../project/schema.ts';
 import type { Copper } from './copper.ts';
@@ -38,7 +38,7 @@ export interface CircuitDraped {
 }
 
 /**
- * Lays every element of the circuit on the part.
+ * Lays every element of the circuit on the part, one after the other.
  * @throws InputError `far-from-surface` with every point that is, `drawing-not-read` for drapes of drawings
  */
 export function drapeCircuit(
@@ -48,38 +48,76 @@ export function drapeCircuit(
   ctx: RunContext,
 ): CircuitDraped {
   const draper = prepareDraper(part);
-  checkPlaces(project, file, draper);
-  const copper: Copper = { elements: [] };
-  const findings: DrapeFinding[] = [];
-  const { elements } = project.circuit;
-  elements.forEach((element, i) => {
-    ctx.step('drape', i, elements.length);
-    const draped = drapeElement(draper, element, `$.circuit.elements[${i}]`, file);
-    if (draped.element) copper.elements.push(draped.element);
-    findings.push(...draped.findings);
+  checkPlaces(project, file, part);
+  const tasks = drapeTasks(project, file);
+  const draped = tasks.map(({ element, path }, i) => {
+    ctx.step('drape', i, tasks.length);
+    return drapeElement(draper, element, path, file);
   });
-  ctx.step('drape', elements.length, elements.length);
-  return { copper, findings };
+  ctx.step('drape', tasks.length, tasks.length);
+  return gatherCircuit(draped);
+}
+
+/** What the elements of a circuit share when they are laid on other threads: plain data. */
+export interface DrapeShared {
+  mesh: SurfaceMesh;
+  tree: SurfaceTree;
+}
+
+export interface DrapeTask {
+  element: Element;
+  /** JSON path of the element, and the file it stands in. */
+  path: string;
+  file: string;
+}
+
+/** One independent task an element. */
+export const drapeTasks = (project: Project, file: string): DrapeTask[] =>
+  project.circuit.elements.map((element, i) => ({ element, path: `$.circuit.elements[${i}]`, file }));
+
+export const drapeShared = (part: DrapePart): DrapeShared => ({
+  mesh: part.mesh,
+  tree: serializeQueries(part.queries),
+});
+
+const drapers = new WeakMap<DrapeShared, Draper>();
+
+/** A task on whatever thread it runs; the draper is prepared once for the same shared data. */
+export function layElement(shared: DrapeShared, task: DrapeTask): Draped {
+  let draper = drapers.get(shared);
+  if (!draper) {
+    draper = prepareDraper({ mesh: shared.mesh, queries: restoreQueries(shared.mesh, shared.tree) });
+    drapers.set(shared, draper);
+  }
+  return drapeElement(draper, task.element, task.path, task.file);
+}
+
+/** Results of the tasks, in their order, as one circuit. */
+export function gatherCircuit(draped: readonly Draped[]): CircuitDraped {
+  return {
+    copper: { elements: draped.flatMap((d) => (d.element ? [d.element] : [])) },
+    findings: draped.flatMap((d) => d.findings),
+  };
 }
 
 /** One element. @throws InputError `far-from-surface` */
 export function drapeElement(draper: Draper, element: Element, path: string, file: string): Draped {
   const { solver } = draper;
-  const places = placesOf(draper, element, path, file);
+  const places = placesOf(draper.part, element, path, file);
   if (element.kind === 'trace') return drapeTrace(solver, element, places);
   if (element.kind === 'pad') return drapePad(solver, element, places[0]);
   return drapeRegion(solver, draper.second, element, places);
 }
 
-function placesOf(draper: Draper, element: Element, path: string, file: string): Place[] {
-  const { mesh, queries } = draper.part;
+function placesOf(part: DrapePart, element: Element, path: string, file: string): Place[] {
+  const { mesh, queries } = part;
   if (element.kind === 'pad') return [pull(queries, mesh, element.at, { file, place: `${path}.at` })];
   const [list, name] = element.kind === 'trace' ? [element.route, 'route'] : [element.outline, 'outline'];
   return list.map((p, i) => pull(queries, mesh, p.at, { file, place: `${path}.${name}[${i}].at` }));
 }
 
 /** Names every bad point of the file at once, before any work is done. */
-export function checkPlaces(project: Project, file: string, draper: Draper): void {
+export function checkPlaces(project: Project, file: string, part: DrapePart): void {
   const problems: InputProblem[] = [];
   if (project.circuit.drapes.length > 0)
     problems.push({
@@ -91,7 +129,7 @@ export function checkPlaces(project: Project, file: string, draper: Draper): voi
     });
   project.circuit.elements.forEach((element, i) => {
     try {
-      placesOf(draper, element, `$.circuit.elements[${i}]`, file);
+      placesOf(part, element, `$.circuit.elements[${i}]`, file);
     } catch (error) {
       if (!(error instanceof InputError)) throw error;
       problems.push(...error.problems);

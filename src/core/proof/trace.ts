@@ -1,12 +1,12 @@
 /** From a scan file to the places its pulses hit: the heavy half of the proof, one plain call a file. */
-import { partPoint, benchPoint } from '../base/brands.ts';
+import { benchPoint, partPoint } from '../base/brands.ts';
 import { InputError } from '../base/news.ts';
 import { type Pose, poseFrame } from '../base/pose.ts';
 import type { SurfaceMesh } from '../mesh/surface-mesh.ts';
 import { type CornerNormals, normalAt } from '../part/normals.ts';
 import type { Head } from '../project/schema.ts';
 import { firstFace, rasterFaces } from './first-hit.ts';
-import { belowPivots, beamAt, leanOf, towardHead } from './forward.ts';
+import { beamAt, belowPivots, leanOf, towardHead } from './forward.ts';
 import { layPulses } from './pulses.ts';
 import { readCsv } from './reader-csv.ts';
 import { readSvg } from './reader-svg.ts';
