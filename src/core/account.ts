@@ -193,7 +193,7 @@ function elementReport(
   const field = worst((t) => fieldShare(reach.command[2 * t], reach.command[2 * t + 1], project.head));
   const least = worst((t) => -reach.fluence[t]);
   const most = worst((t) => reach.fluence[t]);
-  const unwritten = written !== null && written.layerOf.some((k, t) => k < 0 && canGo(reach, t));
+  const unwritten = written?.layerOf.some((k, t) => k < 0 && canGo(reach, t)) ?? false;
   const damaged = most.value > project.material.damageFluence;
   return {
     id: element.id,
