@@ -1,6 +1,7 @@
 /** Which layer writes each sample: the plan read back onto the copper. */
 import type { CopperElement } from '../drape/copper.ts';
 import type { ElementReach } from '../reach/result.ts';
+import { middleAlong } from './cut-places.ts';
 import type { SetupPlan } from './plan.ts';
 
 /** Arc lengths that differ by less than this between triangles and cuts are one, mm. */
@@ -28,16 +29,3 @@ export function layerOfSamples(
   }
   return out;
 }
-
-/** Arc length that a sample stands for: the mean of its triangle's feet, or one of them where they jump. */
-function middleAlong(element: CopperElement, t: number): number {
-  const { field, copper } = element;
-  const s = 3 * copper.source[t];
-  const [a, b, c] = [0, 1, 2].map((i) => field.along[field.triangles[s + i]]);
-  const mean = (a + b + c) / 3;
-  const wide = Math.max(a, b, c) - Math.min(a, b, c);
-  return wide > WIDE ? a : mean;
-}
-
-/** No patch triangle spans this much of a centre line but by a jump of the foot, mm. */
-const WIDE = 0.5;

@@ -4,6 +4,7 @@
 import type { Vec3 } from '../base/vec.ts';
 import type { CopperElement } from '../drape/copper.ts';
 import type { ElementReach } from '../reach/result.ts';
+import { type CutPlace, cutPlaces } from './cut-places.ts';
 import type { Demand } from './stab.ts';
 
 /** A chain's sample: a short stretch of the cut coordinate, the whole copper across it. */
@@ -46,72 +47,107 @@ export function chainsOf(
   writable: (t: number) => boolean,
   options: ChainOptions,
 ): Chain[] {
-  const trace = element.kind === 'trace';
-  const pad = element.kind === 'pad';
-  const step = trace ? options.step : HEIGHT_STEP;
-  const n = element.copper.face.length;
-  const ranges = (t: number): readonly (readonly [number, number])[] =>
-    trace ? alongRange(element, t) : [[reach.low[t], reach.high[t]]];
+  const by = element.kind === 'trace' ? 'along' : 'height';
+  const places = cutPlaces(element, by, reach, writable, options.up);
   let least = Infinity;
   let most = -Infinity;
-  for (let t = 0; t < n; t++) {
-    if (!writable(t)) continue;
-    for (const [a, b] of ranges(t)) {
-      least = Math.min(least, a);
-      most = Math.max(most, b);
+  for (const p of places)
+    for (const c of p.at) {
+      least = Math.min(least, c);
+      most = Math.max(most, c);
     }
-  }
   if (least > most) return [];
-  const count = Math.max(1, Math.ceil((most - least) / step));
-  const size = (most - least) / count || step;
-  const low = new Float64Array(count).fill(Infinity);
-  const high = new Float64Array(count).fill(-Infinity);
-  const usable = new Float64Array(count).fill(Infinity);
-  const steep = new Float64Array(count);
-  for (let t = 0; t < n; t++) {
-    if (!writable(t)) continue;
-    const slope = trace ? 0 : slopeOf(element, t, options.up);
-    for (const [a, b] of ranges(t)) {
-      const first = Math.min(count - 1, Math.max(0, Math.floor((a - least) / size)));
-      const last = Math.min(count - 1, Math.max(0, Math.floor((b - least) / size)));
-      for (let i = first; i <= last; i++) {
-        // A region's bin holds only the part of the triangle at its heights.
-        low[i] = Math.min(low[i], trace ? reach.low[t] : Math.max(reach.low[t], least + i * size));
-        high[i] = Math.max(high[i], trace ? reach.high[t] : Math.min(reach.high[t], least + (i + 1) * size));
-        usable[i] = Math.min(usable[i], reach.usable[t]);
-        steep[i] = Math.max(steep[i], slope);
+  const bins = new Bins(least, most, by === 'along' ? options.step : HEIGHT_STEP);
+  for (const p of places) bins.add(p, reach.usable[p.triangle]);
+  const samples = bins.samples((steep) => (options.stitch / 2) * (by === 'along' ? 1 : steep));
+  return splitAtGaps(samples).map((piece) => ({
+    element: index,
+    by,
+    samples: element.kind === 'pad' ? (asOne(piece) ?? neighbours(piece)) : neighbours(piece),
+  }));
+}
+
+/** Equal bins of the cut coordinate, each with the heights of the copper in it. */
+class Bins {
+  private readonly least: number;
+  private readonly count: number;
+  private readonly size: number;
+  private readonly low: Float64Array;
+  private readonly high: Float64Array;
+  private readonly usable: Float64Array;
+  private readonly steep: Float64Array;
+
+  constructor(least: number, most: number, step: number) {
+    this.least = least;
+    // Bins no smaller than the step: one that is a hair smaller than half a stitch would bring in a second neighbour.
+    this.count = Math.max(1, Math.floor((most - least) / step));
+    this.size = (most - least) / this.count || step;
+    this.low = new Float64Array(this.count).fill(Infinity);
+    this.high = new Float64Array(this.count).fill(-Infinity);
+    this.usable = new Float64Array(this.count).fill(Infinity);
+    this.steep = new Float64Array(this.count);
+  }
+
+  private at(c: number): number {
+    return Math.min(this.count - 1, Math.max(0, Math.floor((c - this.least) / this.size)));
+  }
+
+  /** Adds the part of a triangle that each bin holds: heights are linear in it, so its ends and the bin's borders tell all. */
+  add(p: CutPlace, usable: number): void {
+    const { at, height } = p;
+    const last = this.at(Math.max(...at));
+    for (let i = this.at(Math.min(...at)); i <= last; i++) {
+      const from = this.least + i * this.size;
+      const to = from + this.size;
+      for (let k = 0; k < at.length; k++) {
+        const n = (k + 1) % at.length;
+        this.side(i, from, to, at[k], height[k], at[n], height[n]);
       }
+      this.usable[i] = Math.min(this.usable[i], usable);
+      this.steep[i] = Math.max(this.steep[i], p.steep);
     }
   }
-  const samples: ChainSample[] = [];
-  for (let i = 0; i < count; i++) {
-    samples.push({
-      from: least + i * size,
-      to: least + (i + 1) * size,
-      low: low[i],
-      high: high[i],
-      lo: high[i] - usable[i],
-      hi: low[i] + usable[i],
-      halfStitch: trace ? options.stitch / 2 : (options.stitch / 2) * steep[i],
-    });
+
+  /** Heights of the side (c, z) → (d, y) between the borders of bin i. */
+  private side(i: number, from: number, to: number, c: number, z: number, d: number, y: number): void {
+    const t0 = c < from ? (from - c) / (d - c) : c > to ? (to - c) / (d - c) : 0;
+    const t1 = d < from ? (from - c) / (d - c) : d > to ? (to - c) / (d - c) : 1;
+    if (!(t0 <= 1 && t1 >= 0)) return;
+    for (const t of [t0, t1]) {
+      const h = z + t * (y - z);
+      this.low[i] = Math.min(this.low[i], h);
+      this.high[i] = Math.max(this.high[i], h);
+    }
   }
-  const pieces = splitAtGaps(samples);
-  return pieces.map((piece) => ({
-    element: index,
-    by: trace ? ('along' as const) : ('height' as const),
-    samples: pad ? (asOne(piece) ?? neighbours(piece)) : neighbours(piece),
-  }));
+
+  samples(halfStitch: (steep: number) => number): ChainSample[] {
+    return Array.from({ length: this.count }, (_, i) => ({
+      from: this.least + i * this.size,
+      to: this.least + (i + 1) * this.size,
+      low: this.low[i],
+      high: this.high[i],
+      lo: this.high[i] - this.usable[i],
+      hi: this.low[i] + this.usable[i],
+      halfStitch: halfStitch(this.steep[i]),
+    }));
+  }
 }
 
 /** A pad that one height can write whole is one sample; null when none can. */
 function asOne(samples: ChainSample[]): ChainSample[] | null {
-  const lo = Math.max(...samples.map((s) => s.lo));
-  const hi = Math.min(...samples.map((s) => s.hi));
+  let { lo, hi, low, high } = samples[0];
+  for (const s of samples) {
+    lo = Math.max(lo, s.lo);
+    hi = Math.min(hi, s.hi);
+    low = Math.min(low, s.low);
+    high = Math.max(high, s.high);
+  }
   if (lo > hi) return null;
-  const low = Math.min(...samples.map((s) => s.low));
-  const high = Math.max(...samples.map((s) => s.high));
   return [{ from: samples[0].from, to: samples[samples.length - 1].to, lo, hi, low, high, halfStitch: 0 }];
 }
+
+/** Borders of bins that differ by rounding are one, mm. */
+const SAME = 1e-9;
 
 /** Each sample takes on the demands of its neighbours within half a stitch, so that a cut may fall at it (model.md §5). */
 function neighbours(samples: ChainSample[]): ChainSample[] {
@@ -123,8 +159,9 @@ function neighbours(samples: ChainSample[]): ChainSample[] {
       low = Math.min(low, o.low);
       high = Math.max(high, o.high);
     };
-    for (let k = i - 1; k >= 0 && samples[k].to > s.from - s.halfStitch; k--) take(samples[k]);
-    for (let k = i + 1; k < samples.length && samples[k].from < s.to + s.halfStitch; k++) take(samples[k]);
+    for (let k = i - 1; k >= 0 && samples[k].to > s.from - s.halfStitch + SAME; k--) take(samples[k]);
+    for (let k = i + 1; k < samples.length && samples[k].from < s.to + s.halfStitch - SAME; k++)
+      take(samples[k]);
     return { ...s, lo, hi, low, high };
   });
 }
@@ -141,49 +178,3 @@ function splitAtGaps(samples: ChainSample[]): ChainSample[][] {
   if (current.length > 0) pieces.push(current);
   return pieces;
 }
-
-/** Arc lengths that a triangle stands for: a range, or its corners' own where the foot jumps (inner bends, crossings). */
-function alongRange(element: CopperElement, t: number): readonly (readonly [number, number])[] {
-  const { field, copper } = element;
-  // The field's triangle holds the copper's: its range is the wider one.
-  const s = 3 * copper.source[t];
-  const [a, b, c] = [field.triangles[s], field.triangles[s + 1], field.triangles[s + 2]];
-  const [sa, sb, sc] = [field.along[a], field.along[b], field.along[c]];
-  const lo = Math.min(sa, sb, sc);
-  const hi = Math.max(sa, sb, sc);
-  const x = field.positions;
-  const longest = Math.max(side(x, 3 * a, 3 * b), side(x, 3 * b, 3 * c), side(x, 3 * c, 3 * a));
-  if (hi - lo <= JUMP * longest) return [[lo, hi]];
-  return [
-    [sa, sa],
-    [sb, sb],
-    [sc, sc],
-  ];
-}
-
-/** The foot moves at most as fast as the place, but for curvature: more than this times a triangle's side is a jump. */
-const JUMP = 2;
-
-/** Sine of a triangle's slope against the bench: height gained for each mm walked straight up it. */
-function slopeOf(element: CopperElement, t: number, up: Vec3): number {
-  const { positions: x, triangles } = element.copper;
-  const a = 3 * triangles[3 * t],
-    b = 3 * triangles[3 * t + 1],
-    c = 3 * triangles[3 * t + 2];
-  const ux = x[b] - x[a],
-    uy = x[b + 1] - x[a + 1],
-    uz = x[b + 2] - x[a + 2];
-  const vx = x[c] - x[a],
-    vy = x[c + 1] - x[a + 1],
-    vz = x[c + 2] - x[a + 2];
-  const nx = uy * vz - uz * vy,
-    ny = uz * vx - ux * vz,
-    nz = ux * vy - uy * vx;
-  const l = Math.hypot(nx, ny, nz);
-  if (l === 0) return 0;
-  const cos = (nx * up[0] + ny * up[1] + nz * up[2]) / l;
-  return Math.sqrt(Math.max(0, 1 - cos * cos));
-}
-
-const side = (x: Float64Array, a: number, b: number): number =>
-  Math.hypot(x[a] - x[b], x[a + 1] - x[b + 1], x[a + 2] - x[b + 2]);

@@ -6,8 +6,9 @@ import type { Project, Setup, Stage } from '../project/schema.ts';
 import type { ElementReach, SetupReach } from '../reach/result.ts';
 import { REASONS } from '../reach/result.ts';
 import { type Chain, chainsOf } from './chains.ts';
+import { cutChains } from './cuts.ts';
 import type { Layer, SetupPlan } from './plan.ts';
-import { bestHeights, fewestRuns, type Stretch } from './runs.ts';
+import { bestHeights, fewestRuns } from './runs.ts';
 import { fewestHeights, gridCeil, gridFloor, type HeightGrid, stabLeft, stabRight, within } from './stab.ts';
 
 /** Reasons for which the beam cannot go to a place at all: it would burn something else, or turn past its field. */
@@ -154,42 +155,18 @@ function layersOf(chains: readonly Chain[], grid: HeightGrid): Layer[] {
     const middle = (lo + hi) / 2;
     return Math.min(Math.max(snapDown(middle, grid), lo), hi);
   });
-  return writtenAt(chains, intervals, runs, settled);
+  return cutChains(chains, intervals, runs, settled);
 }
 
 /** Layers at heights chosen by hand: the fewest runs that they allow. Every sample meets one of them. */
 function layersAt(chains: readonly Chain[], heights: readonly number[]): Layer[] {
   const intervals = chains.map((c) => c.samples.map((s) => [s.lo, s.hi] as const));
-  return writtenAt(
+  return cutChains(
     chains,
     intervals,
     intervals.map((list) => fewestRuns(list, heights)!),
     heights,
   );
-}
-
-/** The layers with their runs, from the lowest up; a height that writes nothing makes no layer. */
-function writtenAt(
-  chains: readonly Chain[],
-  intervals: readonly (readonly (readonly [number, number])[])[],
-  runs: readonly Stretch[][],
-  settled: readonly number[],
-): Layer[] {
-  const layers = settled.map((h, i): Layer & { key: number } => ({
-    key: i,
-    index: 0,
-    focusHeight: h,
-    stageOffset: h === 0 ? 0 : -h,
-    runs: [],
-    worstDefocus: 0,
-  }));
-  chains.forEach((chain, c) => {
-    addRuns(chain, intervals[c], runs[c], settled, layers);
-  });
-  return layers
-    .filter((l) => l.runs.length > 0)
-    .sort((a, b) => a.focusHeight - b.focusHeight)
-    .map(({ key: _, ...l }, i) => ({ ...l, index: i + 1 }));
 }
 
 /** Nearest grid height; halfway goes down, so that the same job always gives the same plan. */
@@ -198,55 +175,6 @@ function snapDown(h: number, grid: HeightGrid): number {
   const down = gridFloor(h, grid);
   const up = gridCeil(h, grid);
   return up - h < h - down ? up : down;
-}
-
-/** Turns stretches into runs: each cut in the middle of where both layers may write, with half a stitch on either side. */
-function addRuns(
-  chain: Chain,
-  intervals: readonly (readonly [number, number])[],
-  stretches: readonly Stretch[],
-  heights: readonly number[],
-  layers: Layer[],
-): void {
-  const { samples } = chain;
-  const allowed = (i: number, layer: number) =>
-    intervals[i][0] <= heights[layer] && heights[layer] <= intervals[i][1];
-  const cuts: number[] = [];
-  for (let r = 0; r + 1 < stretches.length; r++) {
-    // The stretch before ends as late as it can; the one after may begin earlier.
-    const border = stretches[r].last + 1;
-    let early = border;
-    while (
-      early > stretches[r].first + 1 &&
-      early - 1 > (cuts[r - 1] ?? 0) &&
-      allowed(early - 1, stretches[r + 1].height)
-    )
-      early--;
-    cuts.push(Math.ceil((early + border) / 2));
-  }
-  stretches.forEach((s, r) => {
-    const first = r === 0 ? 0 : cuts[r - 1];
-    const last = r === stretches.length - 1 ? samples.length : cuts[r];
-    const layer = layers[s.height];
-    const h = heights[s.height];
-    for (let i = first; i < last; i++)
-      layer.worstDefocus = Math.max(layer.worstDefocus, samples[i].high - h, h - samples[i].low);
-    const open = {
-      from: r === 0 ? -Infinity : samples[first].from,
-      to: last === samples.length ? Infinity : samples[last - 1].to,
-    };
-    // Ends next to copper that cannot be written are ends of the chain, not of the element.
-    const from = r === 0 ? samples[0].from : open.from;
-    const to = last === samples.length ? samples[samples.length - 1].to : open.to;
-    layer.runs.push({
-      element: chain.element,
-      by: chain.by,
-      from: r === 0 ? from : from - samples[first].halfStitch,
-      to: last === samples.length ? to : to + samples[last - 1].halfStitch,
-      cutFrom: from,
-      cutTo: to,
-    });
-  });
 }
 
 /** Stretches that the beam cannot go to, with the reason that most of their copper has. */

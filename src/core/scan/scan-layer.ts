@@ -1,7 +1,7 @@
 /** Plan → strokes of a layer, in the order in which they are burnt (model.md §6). */
 import { benchPoint, partPoint } from '../base/brands.ts';
 import { type PoseFrame, poseFrame } from '../base/pose.ts';
-import { type Beam, focusedBeam } from '../beam/beam.ts';
+import { focusedBeam } from '../beam/beam.ts';
 import { landing } from '../beam/landing.ts';
 import type { Copper } from '../drape/copper.ts';
 import type { Layer, SetupPlan } from '../layers/plan.ts';
@@ -65,7 +65,7 @@ export function scanLayer(
       for (const line of lines)
         pieces.push(...strokePieces(line, kind, g.element.id, frame, layer.stageOffset, project));
   }
-  return assemble(layer.index, pieces, project, beam);
+  return assemble(layer.index, pieces, project);
 }
 
 interface Piece {
@@ -120,7 +120,7 @@ function strokePieces(
 }
 
 /** Groups by class and kind, orders each group, and adds lengths and time up. */
-function assemble(index: number, pieces: readonly Piece[], project: Project, _beam: Beam): LayerScan {
+function assemble(index: number, pieces: readonly Piece[], project: Project): LayerScan {
   const { scan } = project;
   const steps = [...new Set(pieces.map((p) => p.step))].sort((a, b) => a - b);
   const classes: ProcessClass[] = steps.map((j) => ({
