@@ -1,6 +1,7 @@
 /** Makes the demonstration: `node --import tsx assets/demo/make-dial.ts`. Same code, same bytes. */
 import { createHash } from 'node:crypto';
 import { writeFileSync } from 'node:fs';
+import { newProject } from '../../src/core/project/new-project.ts';
 import { dialElements } from './dial-circuit.ts';
 import { dialFacets } from './dial-shape.ts';
 
@@ -29,62 +30,11 @@ writeFileSync(new URL('dial.stl', here), stl);
 // The dial stands turned by 20° about the optical axis and a little off the field's middle, the focal plane through its skirt.
 const half = (10 * Math.PI) / 180;
 const round = (x: number): number => Math.round(x * 1e9) / 1e9;
+const example = newProject('dial.stl', null);
 const project = {
-  format: 'beamdrape',
-  version: 1,
+  ...example,
   name: 'touch dial',
-  part: { file: 'dial.stl', units: 'mm', sha256: createHash('sha256').update(stl).digest('hex') },
-  head: {
-    wavelength_nm: 532,
-    beamQuality: 1.9,
-    beamDiameter: 4.5,
-    aperture: 10,
-    focalLength: 163,
-    field: [110, 110],
-    workingDistance: 165,
-    bodyDiameter: 90,
-    pivot: [190, 178],
-    averagePower_W: 1,
-    repetitionRate_kHz: 30,
-    pulseWidth_ns: 10,
-  },
-  material: { activationFluence: 0.4, damageFluence: 6.0, doseMargin: 1.3 },
-  limits: {
-    depth: { mode: 'distance', halfDepth: 2.0 },
-    maxIncidence: 60,
-    cone: false,
-    maxBlocked: 0.1,
-    clearance: 10,
-    minWidth: 0.25,
-    safeWidth: 0.5,
-    minGap: 0.25,
-    safeGap: 0.5,
-    safeStretch: 0.05,
-    maxStretch: 0.15,
-    heightUncertainty: 0.3,
-    maxResidual: 0.15,
-    proof: { covered: 0.995, strayTolerance: 0.05, stray: 0.001 },
-  },
-  stage: { step: 0.01, range: [-30, 30], zMoves: 'stage' },
-  scan: {
-    linePitch: 0.03,
-    markSpeed: 800,
-    jumpSpeed: 3000,
-    jumpDelay_us: 300,
-    markDelay_us: 150,
-    stitch: 0.2,
-    passes: 1,
-  },
-  copper: {
-    thickness_um: 3,
-    depositFactor: 1.2,
-    rate_um_per_h: 6,
-    bathVolume_L: 1.0,
-    bathLoad: [0.5, 2.5],
-    temperature_C: 20,
-    temperatureRise: 10,
-    density: 8.89,
-  },
+  part: { ...example.part, sha256: createHash('sha256').update(stl).digest('hex') },
   setups: [
     {
       name: 'top',

@@ -1,4 +1,5 @@
 /** Files: the scan settings, writing, and what to do at the bench, with the cautions that belong to it. */
+import { CAUTIONS } from '../core/files/cautions.ts';
 import type { Report } from '../core/project/report.ts';
 import { isUnsaved } from '../store/state.ts';
 import { show, signed } from '../store/units.ts';
@@ -46,16 +47,11 @@ export function FilesStep() {
   return (
     <>
       <div className="caution" role="note">
-        <p>
-          <b>Before the beam is switched on.</b> The head is a class 4 laser: its beam and its stray light
-          harm eyes and skin and can start a fire. Follow IEC 60825-1, the local codes and the shop’s laser
-          safety officer.
-        </p>
-        <p>
-          The plating bath is caustic and may hold formaldehyde: ventilate, wear gloves and eye protection,
-          follow its data sheet.
-        </p>
-        <p>No number here is a safety limit.</p>
+        {CAUTIONS.map((c) => (
+          <p key={c.word}>
+            <b>{c.word}</b> {c.text}
+          </p>
+        ))}
       </div>
       <p className="row">
         <button

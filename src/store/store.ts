@@ -1,6 +1,7 @@
 /** The store: state, acts with undo, drawing, and the derived results that follow the document. No React here. */
 import { type StoreApi, createStore as zustandStore } from 'zustand/vanilla';
 import type { Vec3 } from '../core/base/vec.ts';
+import { newProject } from '../core/project/new-project.ts';
 import type { Element, Project, Setup } from '../core/project/schema.ts';
 import { type WorkerClient, WorkFailure, wasStopped } from '../worker/client.ts';
 import type { PartPicture, Probe } from '../worker/pictures.ts';
@@ -9,7 +10,6 @@ import { type Act, apply, freeId, nameOf } from './document.ts';
 import { createFollower } from './follow.ts';
 import { noHistory, record, redo, seal, undo } from './history.ts';
 import { copperAt } from './margins.ts';
-import { newProject } from './new-project.ts';
 import { current, firstState, isUnsaved, type Notice, type Origin, type State, type Tool } from './state.ts';
 
 export type Store = ReturnType<typeof createStore>;

@@ -1,5 +1,6 @@
 /** A lumpy stone of any number of triangles, as a binary STL, and a circuit that lies on its upper side. */
 import type { Vec3 } from '../../src/core/base/vec.ts';
+import { newProject } from '../../src/core/project/new-project.ts';
 import { readProject } from '../../src/core/project/read.ts';
 import type { Project } from '../../src/core/project/schema.ts';
 
@@ -75,25 +76,8 @@ export function stoneProject(): Project {
   ];
   const region = { id: 'r', kind: 'region', net: 'GUARD', outline: corners.map(([u, v]) => at(u, v)) };
   const text = JSON.stringify({
-    format: 'beamdrape',
-    version: 1,
+    ...newProject('stone.stl', null),
     name: 'lumpy stone',
-    part: { file: 'stone.stl' },
-    head: {
-      wavelength_nm: 532,
-      beamQuality: 1.9,
-      beamDiameter: 4.5,
-      aperture: 10,
-      focalLength: 163,
-      field: [110, 110],
-      workingDistance: 165,
-      bodyDiameter: 90,
-      pivot: [190, 178],
-      averagePower_W: 1,
-      repetitionRate_kHz: 30,
-      pulseWidth_ns: 10,
-    },
-    material: { activationFluence: 0.4, damageFluence: 6 },
     setups: [{ name: 'top', pose: { rotate: [0, 0, 0, 1], move: [1, -2, -8] } }],
     circuit: { elements: [...elements, region] },
   });

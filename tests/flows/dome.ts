@@ -1,6 +1,7 @@
 /** A lopsided dome as STL bytes, and a project on it: nothing about it looks the same mirrored or turned. */
+
+import { newProject } from '../../src/core/project/new-project.ts';
 import type { Project } from '../../src/core/project/schema.ts';
-import { newProject } from '../../src/store/new-project.ts';
 
 /** Height over the plane, mm, out to radius 20; the bump stands off the middle. */
 export function domeHeight(x: number, y: number): number {

@@ -1,6 +1,6 @@
 /** A project for a part that has none yet. */
-import type { Vec3 } from '../core/base/vec.ts';
-import type { Project } from '../core/project/schema.ts';
+import type { Vec3 } from '../base/vec.ts';
+import type { Project } from './schema.ts';
 
 /** The head and material of job.md's example: a common small head, to be replaced by the person's own numbers. */
 export function newProject(partFile: string, bounds: readonly [Vec3, Vec3] | null): Project {
