@@ -14,6 +14,6 @@ export const CAUTIONS: readonly { word: string; text: string }[] = [
   },
   {
     word: 'NOTICE.',
-    text: 'No number on this sheet is a safety limit. Licensed practice and the shop’s own rules come first.',
+    text: 'No number here is a safety limit. Licensed practice and the shop’s own rules come first.',
   },
 ];
