@@ -127,7 +127,7 @@ export function elementReports(
   ctx: RunContext,
 ): ElementReport[] {
   return copper.elements.map((element, e) => {
-    ctx.step('layers', e, copper.elements.length);
+    ctx.step(plans ? 'layers' : 'reach', e, copper.elements.length);
     const plan = plans?.find((p) => p.elements.includes(e)) ?? null;
     const s = plan ? plan.setup : bestOf(reach, e);
     const before = reach[s].elements[e];

@@ -20,7 +20,7 @@ export function Legend() {
   const { store } = useWindow();
   const state = useSteady();
   const { copper, reach, plan } = current(state);
-  const depth = state.project ? plainDepth(state.project.limits) : 0;
+  const depth = state.project ? plainDepth(state.project.limits, reach) : 0;
   const counts = useMemo(
     () =>
       copper

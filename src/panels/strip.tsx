@@ -35,7 +35,7 @@ function Strip({ project }: { project: Project }) {
     return () => watch.disconnect();
   }, []);
 
-  const depth = plainDepth(project.limits);
+  const depth = plainDepth(project.limits, reach);
   const layers = plan?.layers ?? [];
   const handMade = setupsOf(project)[state.setup]?.focusHeights;
   // By hand, a height that writes nothing is still there to be dragged back.

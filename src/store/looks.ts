@@ -21,9 +21,13 @@ const BIT: Record<Reason, number> = Object.fromEntries(REASONS.map((r, i) => [r,
   number
 >;
 
-/** Half-depth less the height uncertainty, as far as it is known without the beam. */
-export const plainDepth = (limits: Limits): number =>
-  limits.depth.mode === 'distance' ? Math.max(0, limits.depth.halfDepth - limits.heightUncertainty) : 1;
+/** Usable depth: that of the beam once reach is known, before it what the project says outright, or 0. */
+export const plainDepth = (limits: Limits, reach: ReachPicture | null): number => {
+  if (reach) return reach.depth;
+  return limits.depth.mode === 'distance'
+    ? Math.max(0, limits.depth.halfDepth - limits.heightUncertainty)
+    : 0;
+};
 
 /** Why triangle `t` is not copper-coloured, or null. */
 export function reasonAt(

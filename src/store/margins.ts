@@ -59,7 +59,7 @@ export function marginsOf(
     }
     out.push({
       check: 'focus',
-      label: 'Out of focus by',
+      label: 'Defocus',
       ok,
       value,
       limit,

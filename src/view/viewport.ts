@@ -128,7 +128,7 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
         changed((x) => x.plan) ||
         changed((x) => x.project?.limits))
     )
-      scene.setReach(copper, reach, plan, plainDepth(s.project.limits));
+      scene.setReach(copper, reach, plan, plainDepth(s.project.limits, reach));
     if (copperChanged || changed((x) => x.selection)) {
       const ids = new Set(s.selection);
       scene.setChosen((copper?.elements ?? []).filter((e) => ids.has(e.id)).flatMap((e) => e.outline));

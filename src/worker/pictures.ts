@@ -68,6 +68,8 @@ export interface CopperPicture {
 /** One setup's answers, one number a triangle of the copper. */
 export interface ReachPicture {
   setup: number;
+  /** Usable depth of the beam met square on, mm: half a band's width. */
+  depth: number;
   incidence: Float32Array;
   /** Share of the beam that is blocked, 0 … 1. */
   blocked: Float32Array;

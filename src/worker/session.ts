@@ -4,6 +4,7 @@ import { Fault, InputError, type InputProblem } from '../core/base/news.ts';
 import { poseFrame } from '../core/base/pose.ts';
 import type { RunContext } from '../core/base/run-context.ts';
 import { addScaled, at3, dot, normalize, type Vec3 } from '../core/base/vec.ts';
+import { focusedBeam, usableDepth } from '../core/beam/beam.ts';
 import type { Copper, CopperElement } from '../core/drape/copper.ts';
 import { type Draper, drapeElement, prepareDraper } from '../core/drape/drape.ts';
 import type { Draped, DrapeFinding } from '../core/drape/element.ts';
@@ -307,6 +308,7 @@ function reachPicture(r: SetupReach, project: Project): ReachPicture {
   const total = r.elements.reduce((n, e) => n + e.height.length, 0);
   const out: ReachPicture = {
     setup: r.setup,
+    depth: usableDepth(focusedBeam(project.head), project.limits, project.material),
     incidence: new Float32Array(total),
     blocked: new Float32Array(total),
     field: new Float32Array(total),

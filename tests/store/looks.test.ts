@@ -14,8 +14,26 @@ const copper = session.drape({ project }, quiet);
 const reach = session.reach(null, quiet)[0]!;
 const plan = session.plan(null, quiet)[0]!;
 const heights = copper.heights[0]!;
-const depth = plainDepth(project.limits);
+const depth = plainDepth(project.limits, reach);
 const total = copper.area.reduce((a, b) => a + b, 0);
+
+describe('half a band', () => {
+  test('is the depth that was set less the uncertainty, before and after the beam is known', () => {
+    expect(plainDepth(project.limits, null)).toBeCloseTo(1.7, 9);
+    expect(plainDepth(project.limits, reach)).toBeCloseTo(1.7, 9);
+  });
+
+  test('by spot growth it is the beam that says: zR √(g² - 1) less the uncertainty', () => {
+    const other = structuredClone(project);
+    other.limits.depth = { mode: 'spot', growth: 1.5 };
+    session.drape({ project: other }, quiet);
+    const [bySpot] = session.reach(null, quiet);
+    // 1.887907 mm: check value of the example head.
+    expect(plainDepth(other.limits, bySpot!)).toBeCloseTo(1.887907 - 0.3, 5);
+    session.drape({ project }, quiet);
+    session.reach(null, quiet);
+  });
+});
 
 describe('what the copper looks like', () => {
   test('areas of all looks add up to the copper, at any offset', () => {
