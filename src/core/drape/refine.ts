@@ -85,6 +85,8 @@ export function refine(
       return between(face, a, b, 0.5);
     }
     if (len <= options.fine || !touches(fa, fb, len)) return -1;
+    // A field that changes by more than the way walked is torn (an outline that crosses itself): nothing to follow.
+    if (Math.abs(fa - fb) > TORN * len) return -1;
     const m = between(face, a, b, 0.5);
     return Math.abs(edge[m] - (fa + fb) / 2) > options.tolerance ? m : -1;
   };
@@ -172,6 +174,9 @@ export function refine(
 
 /** No element is so small that it fits a circle of this radius inside a triangle, mm: a tenth of the narrowest trace. */
 const SMALLEST = 0.025;
+
+/** More than rounding and cracks between windows can bring about. */
+const TORN = 1.5;
 
 /** Whether the level 0 can run near an edge. */
 const touches = (a: number, b: number, len: number): boolean =>
