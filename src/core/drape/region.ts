@@ -8,6 +8,7 @@ import { type Draped, layOut } from './element.ts';
 import { boxBound, heldDistance } from './lower-bound.ts';
 import { AREA_STEP } from './pad.ts';
 import { joinRoute, type Place } from './route.ts';
+import { selfCrossing } from './self-crossing.ts';
 
 /** A region's inside may lie farther from its outline than the circle of its perimeter allows in the plane, by this factor on curved parts. */
 const DEPTH = 1.6;
@@ -39,6 +40,12 @@ export function drapeRegion(
       findings: [
         { rule: 'no-copper', element: region.id, at: places[0].point, text: 'the outline encloses nothing' },
       ],
+    };
+  const crossed = selfCrossing(solver.mesh, path);
+  if (crossed)
+    return {
+      element: null,
+      findings: [{ rule: 'crossed', element: region.id, at: crossed, text: 'the outline crosses itself' }],
     };
   const depth = (path.length / (2 * Math.PI)) * DEPTH;
   const far = boxBound(path.points);

@@ -77,7 +77,8 @@ describe('on dirty meshes', () => {
         expect(e.copper.positions.every(Number.isFinite)).toBe(true);
       }
     }
-    expect(laid).toBeGreaterThan(150);
-    expect([...told.keys()]).toEqual(['no-way']);
+    // Four corners at random cross in about half of all cases.
+    expect(laid).toBeGreaterThan(120);
+    expect([...told.keys()].sort()).toEqual(['crossed', 'no-way']);
   });
 });

@@ -182,6 +182,26 @@ describe('bad places', () => {
     expect(e.anchor.map((v) => Math.round(v * 1e9) / 1e9)).toEqual([3, -2, 0]);
   });
 
+  it('an outline that crosses itself is a finding that names the place', () => {
+    const bow = project([
+      {
+        id: 'r',
+        kind: 'region',
+        net: '',
+        outline: [
+          [-4, -2, 0],
+          [4, 2, 0],
+          [4, -2, 0],
+          [-4, 2, 0],
+        ].map((at) => ({ at })),
+      },
+    ]);
+    const { copper, findings } = drapeCircuit(bow, 'x', part, quiet);
+    expect(copper.elements).toEqual([]);
+    expect(findings.map((f) => [f.rule, f.element])).toEqual([['crossed', 'r']]);
+    expect(Math.hypot(...findings[0].at)).toBeLessThan(1e-9);
+  });
+
   it('no way over the surface is a finding that leaves the rest standing', () => {
     const two = partFrom(meshFrom([0, 0, 0, 4, 0, 0, 0, 4, 0, 9, 0, 0, 13, 0, 0, 9, 4, 0]));
     const lost = project([
