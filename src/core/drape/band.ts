@@ -106,13 +106,9 @@ export function band(solver: WindowSolver, path: SurfacePath, options: BandOptio
       const { root, distance } = seen;
       if (root.kind === 'segment') return { distance, across: seen.qy, along: root.start + seen.qx };
       const k = root.source - n;
-      // A vertex reached from a joint or an end stands for the joint: point sources have no arc length of their own.
-      if (root.vertex >= 0)
-        return {
-          distance,
-          across: root.side * distance,
-          along: k < 0 ? root.start : startOf[joints[k].index],
-        };
+      // Behind a vertex that was reached from a piece of the path: the piece's side and foot.
+      if (k < 0) return { distance, across: root.side * distance, along: root.start };
+      // Ends and bends know their sides by angle, that of the vertex for all that lies behind one.
       const joint = joints[k];
       const s = startOf[joint.index];
       const angle = polarAngle(seen);
