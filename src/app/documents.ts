@@ -67,7 +67,7 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
     if (shown && !opened.part)
       store.notify(
         'problem',
-        `The part is missing: ${opened.partProblem ?? 'its file was not found'}`,
+        `The part is missing: ${(opened.partProblem ?? 'its file was not found').replace(/\.$/, '')}`,
         'put the file back and open the project again',
       );
   }
@@ -138,7 +138,13 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
       if (folder === null) return;
       store.setExported({ revision, report: result.report, folder, files: result.files.length });
       store.setStep('files');
-      store.notify('done', `${result.files.length} files written to ${folder}`);
+      if (result.report.ok) store.notify('done', `${result.files.length} files written to ${folder}`);
+      else
+        store.notify(
+          'problem',
+          `${result.files.length} files are in ${folder}, but not every check holds`,
+          'see in the Files step what fails before anything is burnt',
+        );
     });
 
   const keep = () =>

@@ -11,7 +11,7 @@ import { extentOf } from './files/layer-picture.ts';
 import { reportNumber as r } from './files/numbers.ts';
 import { layerOfSamples } from './layers/assign.ts';
 import type { Layer, SetupPlan } from './layers/plan.ts';
-import { canGo } from './layers/plan-layers.ts';
+import { canGo, heightGrid } from './layers/plan-layers.ts';
 import { partReport } from './mesh/summary.ts';
 import type { Part } from './part/part.ts';
 import type { ElementReport, Report, SetupReport } from './project/report.ts';
@@ -145,7 +145,7 @@ export function elementReports(
       used.length > 0 ? [plan.name] : [],
       used.map((k) => plan.layers[k].index),
       after,
-      { layerOf, plan },
+      { layerOf, plan, before },
     );
   });
 }
@@ -161,18 +161,24 @@ function elementReport(
   setups: string[],
   layers: number[],
   reach: ElementReach,
-  written: { layerOf: Int16Array; plan: SetupPlan } | null,
+  written: { layerOf: Int16Array; plan: SetupPlan; before: ElementReach } | null,
 ): ElementReport {
   const n = element.copper.face.length;
   const fails = (reason: Reason): boolean => {
     const bit = 1 << REASONS.indexOf(reason);
     return reach.fails.some((f) => (f & bit) !== 0);
   };
+  const grid = heightGrid(project.stage);
+  const before = written?.before ?? reach;
+  // What no layer writes is out of focus by the way to the nearest layer, or to the nearest height of the stage.
   const defocus = (t: number): number => {
+    const from = (h: number) => Math.max(reach.high[t] - h, h - reach.low[t]);
     const k = written ? written.layerOf[t] : -1;
-    if (k < 0) return 0;
-    const h = written!.plan.layers[k].focusHeight;
-    return Math.max(reach.high[t] - h, h - reach.low[t]);
+    if (k >= 0) return from(written!.plan.layers[k].focusHeight);
+    if (!canGo(before, t)) return 0;
+    const layers = written?.plan.layers ?? [];
+    if (layers.length > 0) return Math.min(...layers.map((l) => from(l.focusHeight)));
+    return Math.max(0, reach.high[t] - grid.most, grid.least - reach.low[t]);
   };
   const worst = (value: (t: number) => number): { value: number; at: Vec3; t: number } => {
     let best = 0;
@@ -193,7 +199,9 @@ function elementReport(
   const field = worst((t) => fieldShare(reach.command[2 * t], reach.command[2 * t + 1], project.head));
   const least = worst((t) => -reach.fluence[t]);
   const most = worst((t) => reach.fluence[t]);
-  const unwritten = written?.layerOf.some((k, t) => k < 0 && canGo(reach, t)) ?? false;
+  const unwritten = written
+    ? written.layerOf.some((k, t) => k < 0 && canGo(before, t))
+    : reach.usable.some((usable, t) => canGo(before, t) && defocus(t) > usable);
   const damaged = most.value > project.material.damageFluence;
   return {
     id: element.id,

@@ -91,6 +91,14 @@ export async function runJob(
     report.ok = holds(report);
     return { report, files: [] };
   }
+  if (copper.elements.length === 0 && findings.length === 0)
+    throw new InputError({
+      code: 'nothing-to-write',
+      file: projectFile,
+      place: '$.circuit.elements',
+      problem: 'there is no copper to write',
+      mend: 'add a trace, a pad or a region',
+    });
   const plans = planLayers(project, setups, copper, reach, ctx);
   report.elements = elementReports(project, setups, part, copper, reach, plans, ctx);
   report.collisions = collisionsOf(project, setups, part, plans);
@@ -214,6 +222,10 @@ export function setupsOf(project: Project, file: string): Setup[] {
         'give the pose itself',
       );
   });
+  if (project.netlist !== undefined)
+    throw no('$.netlist', 'this release does not compare netlists', 'leave the field out');
+  if (project.cradle !== undefined)
+    throw no('$.cradle', 'this release makes no cradles', 'leave the field out');
   const { axes } = project.head;
   if (axes && (axes.swap || axes.flipX || axes.flipY || axes.turn || axes.scale))
     throw no(

@@ -73,7 +73,7 @@ export function FilesStep() {
           <p className={report.ok ? 'good' : 'wrong'}>
             {report.ok ? 'Every check holds.' : 'A check fails; the report says which.'}{' '}
             {report.proof &&
-              `Read back: ${show(100 * report.proof.covered, 2)} % covered, ${show(report.proof.stray_mm2, 3)} mm² stray, ${report.proof.opens.length} opens, ${report.proof.shorts.length} shorts.`}
+              `Read back: ${show(100 * report.proof.covered, 2)} % covered, ${show(report.proof.stray_mm2, 3)} mm² stray, opens: ${report.proof.opens.map((o) => o.join('–')).join(', ') || 'none'}, shorts: ${report.proof.shorts.map((o) => o.join('–')).join(', ') || 'none'}.`}
           </p>
           {report.collisions.map((c) => (
             <p key={`${c.setup} ${c.layer}`} className="wrong">

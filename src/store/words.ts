@@ -73,6 +73,7 @@ export function stepWords(s: State): Record<StepName, StepWords> {
     return n === 0 ? [] : [`${n} ${word}${n === 1 ? '' : 's'}`];
   };
   const drawn = [...count('trace', 'trace'), ...count('pad', 'pad'), ...count('region', 'region')];
+  const broken = copper?.rules.filter((r) => r.level === 'error').length ?? 0;
   const troubles = (copper?.problems.length ?? 0) + (copper?.findings.length ?? 0);
 
   const size = part
@@ -91,8 +92,11 @@ export function stepWords(s: State): Record<StepName, StepWords> {
       drawn.length === 0
         ? { words: 'Nothing drawn yet', mark: 'open' }
         : {
-            words: drawn.join(', ') + (troubles ? `; ${troubles} cannot be laid` : ''),
-            mark: troubles ? 'look' : 'good',
+            words:
+              drawn.join(', ') +
+              (troubles ? `; ${troubles} cannot be laid` : '') +
+              (broken ? `; ${broken} shop rule${broken === 1 ? '' : 's'} broken` : ''),
+            mark: troubles || broken ? 'look' : 'good',
           },
     head: {
       words: `${show(project.head.focalLength, 1)} mm lens, field ${show(project.head.field[0], 0)} × ${show(project.head.field[1], 0)} mm`,

@@ -5,7 +5,7 @@ import type { Vec3 } from '../core/base/vec.ts';
 import type { ElementKind } from '../core/drape/copper.ts';
 import type { DrapeFinding } from '../core/drape/element.ts';
 import type { Mended } from '../core/mesh/surface-mesh.ts';
-import type { Report } from '../core/project/report.ts';
+import type { Report, RuleFinding } from '../core/project/report.ts';
 import type { Reason } from '../core/reach/result.ts';
 
 export interface PartPicture {
@@ -51,6 +51,8 @@ export interface CopperPicture {
   problems: InputProblem[];
   /** Elements that were laid with bad news, or not at all: no way over the surface, no room. */
   findings: DrapeFinding[];
+  /** Shop rules that the copper breaks; empty while elements are pending. */
+  rules: RuleFinding[];
   /** Part frame, 3 a vertex. */
   positions: Float32Array;
   normals: Float32Array;

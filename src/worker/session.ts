@@ -22,6 +22,8 @@ import { readProject, writeProject } from '../core/project/read.ts';
 import type { Head, Project, Setup } from '../core/project/schema.ts';
 import { checkReach } from '../core/reach/reach.ts';
 import type { SetupReach } from '../core/reach/result.ts';
+import { gapRule } from '../core/rules/gap.ts';
+import { widthRule } from '../core/rules/width.ts';
 import { creases } from './creases.ts';
 import {
   type CopperPicture,
@@ -131,7 +133,9 @@ export function createSession() {
       });
       for (const key of laid.keys()) if (!keep.has(key)) laid.delete(key);
       copper = { elements };
-      return { ...copperPicture(copper, here, posesOf(project)), problems, findings, pending };
+      const { limits } = project;
+      const rules = pending > 0 ? [] : [...widthRule(elements, limits), ...gapRule(elements, limits)];
+      return { ...copperPicture(copper, here, posesOf(project)), problems, findings, rules, pending };
     },
 
     /** @throws InputError with every problem found in the text */
@@ -245,7 +249,7 @@ function copperPicture(
   copper: Copper,
   part: Part,
   setups: Setup[],
-): Omit<CopperPicture, 'problems' | 'findings' | 'pending'> {
+): Omit<CopperPicture, 'problems' | 'findings' | 'rules' | 'pending'> {
   const triangles = copper.elements.reduce((n, e) => n + e.copper.triangles.length / 3, 0);
   const vertices = copper.elements.reduce((n, e) => n + e.copper.positions.length / 3, 0);
   const positions = new Float32Array(3 * vertices);

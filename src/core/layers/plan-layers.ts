@@ -14,9 +14,13 @@ import { fewestHeights, gridCeil, gridFloor, type HeightGrid, stabLeft, stabRigh
 /** Reasons for which the beam cannot go to a place at all: it would burn something else, or turn past its field. */
 const CANNOT_GO = (1 << REASONS.indexOf('shade')) | (1 << REASONS.indexOf('field'));
 
-/** Whether the beam can go to a sample; what is merely weak there (incidence, dose) is written all the same and reported. */
+/**
+ * Whether the beam can go to a sample and activate anything there. What is merely weak (beyond `maxIncidence`, or without its
+ * dose margin) is written all the same, and reported.
+ * @param reach  as before planning, at d = 0: in focus the light is strongest
+ */
 export const canGo = (reach: ElementReach, t: number): boolean =>
-  (reach.fails[t] & CANNOT_GO) === 0 && reach.incidence[t] < Math.PI / 2;
+  (reach.fails[t] & CANNOT_GO) === 0 && reach.fluence[t] >= reach.activation;
 
 /** Heights that the stage can bring into focus: s = -h within its range, in its steps. */
 export const heightGrid = (stage: Stage): HeightGrid => ({
@@ -182,11 +186,13 @@ function cannotGo(element: CopperElement, index: number, reach: ElementReach): S
   let n = 0;
   let shaded = 0;
   let off = 0;
+  let turned = 0;
   for (let t = 0; t < element.copper.face.length; t++) {
     if (canGo(reach, t)) continue;
     n++;
     if (reach.fails[t] & (1 << REASONS.indexOf('shade'))) shaded++;
     else if (reach.fails[t] & (1 << REASONS.indexOf('field'))) off++;
+    else if (reach.fails[t] & (1 << REASONS.indexOf('incidence'))) turned++;
   }
   if (n === 0) return [];
   const share = n / element.copper.face.length;
@@ -199,7 +205,13 @@ function cannotGo(element: CopperElement, index: number, reach: ElementReach): S
       cutFrom: -Infinity,
       cutTo: Infinity,
       length: share * element.length,
-      reason: shaded >= off && shaded > 0 ? 'shade' : off > 0 ? 'field' : 'incidence',
+      reason: mostOf({ shade: shaded, field: off, incidence: turned, dose: n - shaded - off - turned }),
     },
   ];
+}
+
+/** The reason with the largest count, the first of equals. */
+function mostOf<K extends string>(counts: Record<K, number>): K {
+  const names = Object.keys(counts) as K[];
+  return names.reduce((best, k) => (counts[k] > counts[best] ? k : best), names[0]);
 }

@@ -1,3 +1,5 @@
+import type { Reason } from '../reach/result.ts';
+
 /** The plan of focus layers: plain data shared by the stages after it, the report and the window. */
 
 /** A stretch of an element's copper that one layer writes: `from ≤ c ≤ to`, where c is the cut coordinate. */
@@ -34,5 +36,5 @@ export interface SetupPlan {
   /** Index into `Copper.elements` of those that this setup writes. */
   elements: number[];
   /** Copper of those elements that no layer writes: `length` along the trace, or across heights, mm. */
-  unreached: (Run & { length: number; reason: 'focus' | 'shade' | 'field' | 'incidence' })[];
+  unreached: (Run & { length: number; reason: Reason })[];
 }

@@ -1,4 +1,5 @@
 /** Reading and writing project files, with every problem named by its JSON path. */
+import { type ParseError, parse } from 'jsonc-parser';
 import { InputError, type InputProblem } from '../base/news.ts';
 import { type Project, projectSchema } from './schema.ts';
 
@@ -38,15 +39,13 @@ export function readProject(text: string, file: string): ReadProject {
     const problems = parsed.error.issues.map((issue): InputProblem => {
       const deep = deepest(issue as Issue, []);
       const value = valueAt(data, deep.path);
+      const wants = deep.wants.join(' or ');
       return {
         code: 'bad-value',
         file,
         place: jsonPath(deep.path),
-        problem:
-          value === undefined
-            ? 'a required value is missing'
-            : `${show(value)} cannot be used here (${plain(deep.message)})`,
-        mend: value === undefined ? 'add it' : 'correct the value',
+        problem: value === undefined ? 'a required value is missing' : `${show(value)} cannot stand here`,
+        mend: value === undefined ? `add it (${wants})` : `give ${wants}`,
       };
     });
     throw new InputError(problems[0], ...problems.slice(1));
@@ -74,22 +73,19 @@ export const jsonPath = (path: readonly PropertyKey[]): string =>
     .join('');
 
 function parseJson(text: string, file: string): unknown {
+  const plain = text.charCodeAt(0) === 0xfeff ? text.slice(1) : text;
   try {
-    return JSON.parse(text.charCodeAt(0) === 0xfeff ? text.slice(1) : text);
-  } catch (error) {
-    const message = (error as Error).message;
-    const at = /position (\d+)/.exec(message);
-    let place = '';
-    if (at) {
-      const before = text.slice(0, Number(at[1])).split('\n');
-      place = `line ${before.length}, column ${before[before.length - 1].length + 1}`;
-    }
+    return JSON.parse(plain);
+  } catch {
+    const errors: ParseError[] = [];
+    parse(plain, errors, { disallowComments: true });
+    const before = plain.slice(0, errors[0]?.offset ?? plain.length).split('\n');
     throw new InputError({
       code: 'not-json',
       file,
-      place,
-      problem: 'the text is not valid JSON',
-      mend: 'mend the JSON at this place',
+      place: `line ${before.length}, column ${before[before.length - 1].length + 1}`,
+      problem: 'the text is not valid JSON from here on',
+      mend: 'look here for a comma, quote or bracket that is missing or too much',
     });
   }
 }
@@ -101,17 +97,16 @@ interface Issue {
   errors?: Issue[][];
 }
 
-/** A union reports one list of issues an option: the option that came furthest says best what is wrong. */
-function deepest(issue: Issue, prefix: PropertyKey[]): { path: PropertyKey[]; message: string } {
+/** A union reports one list of issues an option: the options that came furthest say best what is wrong, together. */
+function deepest(issue: Issue, prefix: PropertyKey[]): { path: PropertyKey[]; wants: string[] } {
   const path = [...prefix, ...issue.path];
-  if (issue.code !== 'invalid_union' || !issue.errors?.length) return { path, message: issue.message };
-  let best = { path, message: issue.message };
-  for (const option of issue.errors)
-    for (const inner of option) {
-      const d = deepest(inner, path);
-      if (d.path.length > best.path.length) best = d;
-    }
-  return best;
+  if (issue.code !== 'invalid_union' || !issue.errors?.length)
+    return { path, wants: [wanted(issue.message)] };
+  const inner = issue.errors.flatMap((option) => option.map((i) => deepest(i, path)));
+  const depth = Math.max(...inner.map((d) => d.path.length));
+  const furthest = inner.filter((d) => d.path.length === depth);
+  const same = furthest.filter((d) => jsonPath(d.path) === jsonPath(furthest[0].path));
+  return { path: furthest[0].path, wants: [...new Set(same.flatMap((d) => d.wants))] };
 }
 
 function valueAt(data: unknown, path: readonly PropertyKey[]): unknown {
@@ -128,7 +123,35 @@ const show = (v: unknown): string => {
   return s.length > 40 ? s.slice(0, 37) + '…' : s;
 };
 
-const plain = (message: string): string => message.replace(/^Invalid input: /, '').replace(/\.$/, '');
+/** The validator's words in the person's: what may stand in the place. */
+function wanted(message: string): string {
+  const plain = message
+    .replace(/\.$/, '')
+    .replace(/^(Invalid input|Invalid option|Too small|Too big|Unrecognized key\w*): /, '')
+    .replace(/^Invalid discriminator value\. Expected /, 'one of ')
+    .replace(/^expected /, '')
+    .replace(/, received .*$/, '')
+    .replaceAll(/["']\s*\|\s*["']/g, '", "')
+    .replaceAll("'", '"');
+  const kinds: Record<string, string> = {
+    number: 'a number',
+    int: 'a whole number',
+    string: 'text',
+    boolean: 'true or false',
+    array: 'a list',
+    tuple: 'a list',
+    object: 'an object { … }',
+    record: 'an object { … }',
+    null: 'null',
+  };
+  return (
+    kinds[plain] ??
+    plain
+      .replace(/^(number|int) to be /, 'a number ')
+      .replace(/^array to have >=(\d+) items$/, 'a list of $1 or more')
+      .replace(/^string to have >=1 characters$/, 'text that is not empty')
+  );
+}
 
 /** What no single field can see: ids used twice, a lens below its pivot, ranges the wrong way round. */
 function cross(p: Project, file: string): InputProblem[] {

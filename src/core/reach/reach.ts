@@ -69,6 +69,7 @@ export function reachElement(
     command: new Float64Array(2 * n),
     fluence: new Float64Array(n),
     usable: new Float64Array(n),
+    activation: material.activationFluence,
     fails: new Uint8Array(n),
   };
   const heights = new Float64Array(copper.positions.length / 3);

@@ -21,6 +21,8 @@ export interface ElementReach {
   fluence: Float64Array;
   /** Usable depth there: half-depth less the height uncertainty, mm; 0 where there is none. */
   usable: Float64Array;
+  /** J/cm² below which nothing is activated: a place that stays below it even in focus is not worth a layer. */
+  activation: number;
   /** Bit i is set where check `REASONS[i]` fails. Before planning, bit 0 (focus) is never set. */
   fails: Uint8Array;
 }
