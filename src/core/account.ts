@@ -7,11 +7,12 @@ import { netReports } from './copper/nets.ts';
 import { plating } from './copper/plating.ts';
 import type { Copper, CopperElement } from './drape/copper.ts';
 import type { DrapeFinding } from './drape/element.ts';
+import { triangleArea } from './drape/level-lines.ts';
 import { extentOf } from './files/layer-picture.ts';
 import { reportNumber as r } from './files/numbers.ts';
 import { layerOfSamples } from './layers/assign.ts';
 import type { Layer, SetupPlan } from './layers/plan.ts';
-import { canGo, heightGrid } from './layers/plan-layers.ts';
+import { bestSetup, canGo, heightGrid } from './layers/plan-layers.ts';
 import { partReport } from './mesh/summary.ts';
 import type { Part } from './part/part.ts';
 import type { ElementReport, Report, SetupReport } from './project/report.ts';
@@ -129,7 +130,7 @@ export function elementReports(
   return copper.elements.map((element, e) => {
     ctx.step(plans ? 'layers' : 'reach', e, copper.elements.length);
     const plan = plans?.find((p) => p.elements.includes(e)) ?? null;
-    const s = plan ? plan.setup : bestOf(reach, e);
+    const s = plan ? plan.setup : bestSetup(reach.map((x) => x.elements[e]));
     const before = reach[s].elements[e];
     if (!plan) return elementReport(project, element, [], [], before, null);
     const layerOf = layerOfSamples(plan, element, e, before, (t) => canGo(before, t));
@@ -149,11 +150,6 @@ export function elementReports(
     );
   });
 }
-
-const bestOf = (reach: readonly SetupReach[], e: number): number => {
-  const good = reach.map((x) => x.elements[e].fails.reduce((n, f) => n + (f === 0 ? 1 : 0), 0));
-  return good.indexOf(Math.max(...good));
-};
 
 function elementReport(
   project: Project,
@@ -226,7 +222,7 @@ function shadedShare(element: CopperElement, reach: ElementReach): number {
   let shaded = 0;
   let all = 0;
   for (let t = 0; t < reach.fails.length; t++) {
-    const a = triangleArea(element, t);
+    const a = triangleArea(element.copper, t);
     all += a;
     if (reach.fails[t] & bit) shaded += a;
   }
@@ -251,7 +247,7 @@ export function layerReport(
     const re = reach.elements[e];
     layerOfSamples(plan, element, e, re, (t) => canGo(re, t)).forEach((k, t) => {
       if (k !== place) return;
-      area += triangleArea(element, t);
+      area += triangleArea(element.copper, t);
       low = Math.min(low, re.low[t]);
       high = Math.max(high, re.high[t]);
     });
@@ -285,18 +281,6 @@ function middle(element: CopperElement, t: number): Vec3 {
     (x[a + 1] + x[b + 1] + x[c + 1]) / 3,
     (x[a + 2] + x[b + 2] + x[c + 2]) / 3,
   ];
-}
-
-function triangleArea(element: CopperElement, t: number): number {
-  const { positions: x, triangles } = element.copper;
-  const [a, b, c] = [3 * triangles[3 * t], 3 * triangles[3 * t + 1], 3 * triangles[3 * t + 2]];
-  const ux = x[b] - x[a],
-    uy = x[b + 1] - x[a + 1],
-    uz = x[b + 2] - x[a + 2];
-  const vx = x[c] - x[a],
-    vy = x[c + 1] - x[a + 1],
-    vz = x[c + 2] - x[a + 2];
-  return Math.hypot(uy * vz - uz * vy, uz * vx - ux * vz, ux * vy - uy * vx) / 2;
 }
 
 /** Places to the nanometre. */

@@ -8,6 +8,7 @@ import { focusedBeam, usableDepth } from '../core/beam/beam.ts';
 import type { Copper, CopperElement } from '../core/drape/copper.ts';
 import { type Draper, drapeElement, prepareDraper } from '../core/drape/drape.ts';
 import type { Draped, DrapeFinding } from '../core/drape/element.ts';
+import { triangleArea } from '../core/drape/level-lines.ts';
 import { shortestWith } from '../core/geodesic/shortest.ts';
 import { layerOfSamples } from '../core/layers/assign.ts';
 import type { SetupPlan } from '../core/layers/plan.ts';
@@ -269,7 +270,7 @@ function copperPicture(
     for (let i = 0; i < own.length / 3; i++, t++) {
       face[t] = f[i];
       element[t] = index;
-      area[t] = triangleArea(x, own[3 * i], own[3 * i + 1], own[3 * i + 2]);
+      area[t] = triangleArea(e.copper, i);
       for (let c = 0; c < 3; c++) {
         const vertex = own[3 * i + c];
         corners[3 * t + c] = v + vertex;
@@ -300,12 +301,6 @@ function copperPicture(
     });
   });
   return { elements, positions, normals, corners, face, element, area, heights };
-}
-
-function triangleArea(x: Float64Array, a: number, b: number, c: number): number {
-  const [ux, uy, uz] = [x[3 * b] - x[3 * a], x[3 * b + 1] - x[3 * a + 1], x[3 * b + 2] - x[3 * a + 2]];
-  const [vx, vy, vz] = [x[3 * c] - x[3 * a], x[3 * c + 1] - x[3 * a + 1], x[3 * c + 2] - x[3 * a + 2]];
-  return Math.hypot(uy * vz - uz * vy, uz * vx - ux * vz, ux * vy - uy * vx) / 2;
 }
 
 function reachPicture(r: SetupReach, project: Project): ReachPicture {

@@ -5,7 +5,7 @@
  * to both sides, each end and bend sends windows of its own, and the nearest wins. Lines of equal
  * distance are then equally spaced (Gauss's lemma), whatever the curvature.
  */
-import type { Vec3 } from '../base/vec.ts';
+import { dot, type Vec3 } from '../base/vec.ts';
 import { ON_EDGE, type PointSource, type SegmentSource } from '../geodesic/roots.ts';
 import { polarAngle, SurfaceField } from '../geodesic/surface-field.ts';
 import type { WindowSolver } from '../geodesic/windows.ts';
@@ -145,5 +145,4 @@ function surfacePoint(mesh: WindowSolver['mesh'], face: number, p: Vec3): Surfac
   return { face, bary: [b[0] / sum, b[1] / sum, b[2] / sum] };
 }
 
-const dot = (a: Vec3, b: Vec3): number => a[0] * b[0] + a[1] * b[1] + a[2] * b[2];
 const turnOf = (a: number): number => a - 2 * Math.PI * Math.floor(a / (2 * Math.PI));

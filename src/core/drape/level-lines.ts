@@ -160,21 +160,20 @@ export function clipBelow(patch: Patch, values: Float64Array, level: number): Cl
   };
 }
 
+/** Area of one triangle of a patch, mm². */
+export function triangleArea(
+  { positions: x, triangles }: Pick<Patch, 'positions' | 'triangles'>,
+  t: number,
+): number {
+  const [a, b, c] = [3 * triangles[3 * t], 3 * triangles[3 * t + 1], 3 * triangles[3 * t + 2]];
+  const [ux, uy, uz] = [x[b] - x[a], x[b + 1] - x[a + 1], x[b + 2] - x[a + 2]];
+  const [vx, vy, vz] = [x[c] - x[a], x[c + 1] - x[a + 1], x[c + 2] - x[a + 2]];
+  return Math.hypot(uy * vz - uz * vy, uz * vx - ux * vz, ux * vy - uy * vx) / 2;
+}
+
 /** Area of a patch, mm². */
 export function patchArea(patch: Patch): number {
-  const { positions: x, triangles: t } = patch;
   let sum = 0;
-  for (let i = 0; i < t.length; i += 3) {
-    const a = 3 * t[i],
-      b = 3 * t[i + 1],
-      c = 3 * t[i + 2];
-    const ux = x[b] - x[a],
-      uy = x[b + 1] - x[a + 1],
-      uz = x[b + 2] - x[a + 2];
-    const vx = x[c] - x[a],
-      vy = x[c + 1] - x[a + 1],
-      vz = x[c + 2] - x[a + 2];
-    sum += Math.hypot(uy * vz - uz * vy, uz * vx - ux * vz, ux * vy - uy * vx) / 2;
-  }
+  for (let t = 0; t < patch.face.length; t++) sum += triangleArea(patch, t);
   return sum;
 }

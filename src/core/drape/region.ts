@@ -1,5 +1,5 @@
 /** A region: what shortest paths between its corners enclose, on the side that the corners run round counter-clockwise. */
-import type { Vec3 } from '../base/vec.ts';
+import { distance, type Vec3 } from '../base/vec.ts';
 import type { WindowSolver } from '../geodesic/windows.ts';
 import { faceNormal } from '../mesh/surface-point.ts';
 import type { Region } from '../project/schema.ts';
@@ -120,7 +120,7 @@ function hatchBand(solver: WindowSolver, corners: readonly Place[], reach: numbe
   let longest = -1;
   for (let i = 0; i < corners.length; i++)
     for (let j = i + 1; j < corners.length; j++) {
-      const d = apart(corners[i].point, corners[j].point);
+      const d = distance(corners[i].point, corners[j].point);
       if (d > longest) {
         longest = d;
         best = [corners[i], corners[j]];
@@ -131,8 +131,6 @@ function hatchBand(solver: WindowSolver, corners: readonly Place[], reach: numbe
     ? null
     : band(solver, line.path, { left: reach, right: reach, stops: line.stops });
 }
-
-const apart = (a: Vec3, b: Vec3): number => Math.hypot(a[0] - b[0], a[1] - b[1], a[2] - b[2]);
 
 function middle(positions: Float64Array): Vec3 {
   const n = positions.length / 3;

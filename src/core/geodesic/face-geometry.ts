@@ -1,5 +1,5 @@
 /** Flat geometry of single faces and of the faces around a vertex: what unfolding needs. Nothing is kept between calls. */
-import type { Vec3 } from '../base/vec.ts';
+import { dot, type Vec3 } from '../base/vec.ts';
 import { faceOf, next, previous, type SurfaceMesh } from '../mesh/surface-mesh.ts';
 
 /** A vertex whose angles sum to this much over 2π bends shortest paths around it. */
@@ -178,5 +178,3 @@ export class FaceGeometry {
     return total > 2 * Math.PI + SADDLE;
   }
 }
-
-export const dot = (a: Vec3, b: Vec3): number => a[0] * b[0] + a[1] * b[1] + a[2] * b[2];

@@ -1,8 +1,8 @@
 /** Where windows start: points and segments of paths, one root for each face that sees them. */
-import type { Vec3 } from '../base/vec.ts';
+import { dot, type Vec3 } from '../base/vec.ts';
 import { faceOf, next, previous } from '../mesh/surface-mesh.ts';
 import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
-import { dot, type FaceGeometry } from './face-geometry.ts';
+import type { FaceGeometry } from './face-geometry.ts';
 
 /** Weight below which a surface point counts as lying on the opposite edge: float32 input cannot mean less. */
 export const ON_EDGE = 1e-10;

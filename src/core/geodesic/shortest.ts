@@ -1,5 +1,5 @@
 /** Shortest paths over the surface between two places, exact on the polyhedron. */
-import type { Vec3 } from '../base/vec.ts';
+import { distance, type Vec3 } from '../base/vec.ts';
 import { faceOf, next, type SurfaceMesh } from '../mesh/surface-mesh.ts';
 import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
 import { edgeBound } from './edge-bound.ts';
@@ -112,5 +112,3 @@ function gather(points: Vec3[], faces: number[]): GeodesicPath {
   for (let i = 0; i + 1 < keep.length; i++) length += distance(keep[i], keep[i + 1]);
   return { points: Float64Array.from(keep.flat()), faces: Int32Array.from(inFace), length };
 }
-
-const distance = (a: Vec3, b: Vec3): number => Math.hypot(a[0] - b[0], a[1] - b[1], a[2] - b[2]);

@@ -40,7 +40,7 @@ export interface Target {
   bound: number;
 }
 
-/** What ended at the target: a window, or a vertex (through `-2 - vertex`), or the root itself. */
+/** What ended at the target: a window, a corner of its face, or the root itself; -1 where it was another. */
 export interface Arrival {
   distance: number;
   window: number;
@@ -278,7 +278,7 @@ export class WindowSolver {
   private advance(w: number): void {
     const { windows, mesh } = this;
     const o = 8 * w;
-    let n = windows.num;
+    const n = windows.num;
     const b0 = n[o],
       b1 = n[o + 1],
       sx = n[o + 2],
@@ -322,7 +322,6 @@ export class WindowSolver {
     const lb = Math.hypot(len - cx, cy);
     const vb = this.vertexDistance(mesh.triangles[hr]);
     const va = this.vertexDistance(mesh.triangles[half]);
-    n = windows.num;
     if (left <= 0) {
       // Some rays pass left of the apex: onto the edge from a to c.
       const t = mesh.twin[hl];

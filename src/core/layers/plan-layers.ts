@@ -43,12 +43,7 @@ export function planLayers(
   reach: readonly SetupReach[],
   ctx: RunContext,
 ): SetupPlan[] {
-  const home = copper.elements.map((element, e) =>
-    bestSetup(
-      element,
-      reach.map((r) => r.elements[e]),
-    ),
-  );
+  const home = copper.elements.map((_, e) => bestSetup(reach.map((r) => r.elements[e])));
   return setups.map((setup, i) => {
     ctx.step('layers', i, setups.length);
     const mine = home.flatMap((s, e) => (s === i ? [e] : []));
@@ -56,12 +51,13 @@ export function planLayers(
   });
 }
 
-function bestSetup(element: CopperElement, reaches: readonly ElementReach[]): number {
+/** The setup that can write most samples of an element, the first of equals. @param reaches  of the element, one a setup */
+export function bestSetup(reaches: readonly ElementReach[]): number {
   let best = 0;
   let most = -1;
   reaches.forEach((reach, i) => {
     let n = 0;
-    for (let t = 0; t < element.copper.face.length; t++) if (reach.fails[t] === 0) n++;
+    for (const fails of reach.fails) if (fails === 0) n++;
     if (n > most) {
       most = n;
       best = i;

@@ -1,7 +1,7 @@
 /** Outline and fill of one run of one element, as lines on the surface (model.md §6). */
 import { benchPoint, partPoint } from '../base/brands.ts';
 import type { PoseFrame } from '../base/pose.ts';
-import type { Vec3 } from '../base/vec.ts';
+import { at3 } from '../base/vec.ts';
 import type { Beam } from '../beam/beam.ts';
 import { beamDirection, landing } from '../beam/landing.ts';
 import type { CopperElement } from '../drape/copper.ts';
@@ -44,7 +44,7 @@ export function prepareElement(
   const bench = new Float64Array(3 * count);
   const height = new Float64Array(count);
   for (let v = 0; v < count; v++) {
-    const b = frame.point(partPoint(vertex(field.positions, v)));
+    const b = frame.point(partPoint(at3(field.positions, v)));
     bench.set(b, 3 * v);
     height[v] = b[2];
   }
@@ -59,7 +59,7 @@ export function prepareElement(
     if (done[v]) continue;
     done[v] = 1;
     normal.set(
-      normalAt(part.mesh, part.normals, field.face[Math.floor(i / 3)], vertex(field.positions, v)),
+      normalAt(part.mesh, part.normals, field.face[Math.floor(i / 3)], at3(field.positions, v)),
       3 * v,
     );
   }
@@ -152,11 +152,11 @@ function insets(
         beam,
         project.material.activationFluence,
         d,
-        vertex(ground.normal, v),
+        at3(ground.normal, v),
         frame.directionToPart(u),
         u[2],
       );
-      out[v] = lineHalfWidth(light, vertex(ground.gradient, v), spacing);
+      out[v] = lineHalfWidth(light, at3(ground.gradient, v), spacing);
     }
   return out;
 }
@@ -245,5 +245,3 @@ function splitJumps(
   }
   return [smooth, jumps];
 }
-
-const vertex = (flat: Float64Array, v: number): Vec3 => [flat[3 * v], flat[3 * v + 1], flat[3 * v + 2]];
