@@ -13,6 +13,11 @@ export const sources = {
       'M. do Carmo, Differential Geometry of Curves and Surfaces, 1976: great circles, helices, cones, Gauss–Bonnet, geodesic discs',
     seen: 'formula',
   },
+  'milnor-1969': {
+    title:
+      'J. Milnor, A problem in cartography, Amer. Math. Monthly 76 (1969) 1101: least distortion of a spherical cap',
+    seen: 'theorem from memory, values by formula',
+  },
   'gray-tubes': { title: 'A. Gray, Tubes, 1990 (Weyl’s formula): areas of bands', seen: 'formula' },
   'iso-11146': { title: 'ISO 11146-1: beam parameter product, M²', seen: 'formula, from memory' },
   siegman: { title: 'A. E. Siegman, Lasers, 1986: w(z), peak fluence', seen: 'formula' },

@@ -1,11 +1,12 @@
 /** A pad: its flat shape laid on the surface in polar coordinates about its centre (model.md §10). */
 import { radiansFromDegrees } from '../base/brands.ts';
 import type { Vec3 } from '../base/vec.ts';
-import { polarAngle, SurfaceField } from '../geodesic/surface-field.ts';
+import { type LogPlace, logMap } from '../geodesic/log-map.ts';
+import type { MapLimit } from '../geodesic/map-limits.ts';
 import type { WindowSolver } from '../geodesic/windows.ts';
 import { faceNormal } from '../mesh/surface-point.ts';
 import type { Pad } from '../project/schema.ts';
-import { type Draped, layOut, lineLength, MARGIN } from './element.ts';
+import { type Draped, layOut, lineLength, MARGIN, TRUE_TO } from './element.ts';
 import { boxBound, heldDistance } from './lower-bound.ts';
 import type { Place } from './route.ts';
 import { circumradius, type FlatShape, flatDistance, perimeter } from './shapes.ts';
@@ -27,29 +28,29 @@ export function drawingU(n: Vec3): Vec3 {
 export function drapePad(solver: WindowSolver, pad: Pad, centre: Place): Draped {
   const shape = pad.shape as FlatShape;
   const reach = circumradius(shape) + MARGIN;
-  const { face } = centre.surface;
-  solver.propagate([
-    { at: centre.surface, source: 0, radius: reach, zero: drawingU(faceNormal(solver.mesh, face)) },
-  ]);
-  const field = new SurfaceField(solver);
+  const zero = drawingU(faceNormal(solver.mesh, centre.surface.face));
+  const map = logMap(solver, centre.surface, reach, zero);
   const turn = radiansFromDegrees(pad.turn);
+  const flat = ({ radius, angle }: LogPlace): [number, number] => [
+    radius * Math.cos(angle - turn),
+    radius * Math.sin(angle - turn),
+  ];
   const far = boxBound(Float64Array.from(centre.point));
   // Hatch across the shorter side: fewer, longer lines.
   const tall = sizeOf(shape);
   const laid = layOut(
     solver.mesh,
-    field.faces,
+    map.faces,
     (f, p) => {
-      const seen = field.nearest(f, p);
-      if (!seen || seen.distance > reach)
+      const at = map.at(f, p);
+      if (!at)
         return { edge: heldDistance(null, reach, () => far(p)) - circumradius(shape), hatch: 0, along: 0 };
-      const angle = polarAngle(seen) - turn;
-      const u = seen.distance * Math.cos(angle);
-      const v = seen.distance * Math.sin(angle);
+      const [u, v] = flat(at);
       return { edge: flatDistance(shape, u, v), hatch: tall ? u : v, along: 0 };
     },
     AREA_STEP,
   );
+  const limits = map.limits((at) => flatDistance(shape, ...flat(at)));
   if (laid.copper.face.length === 0)
     return {
       element: null,
@@ -76,9 +77,18 @@ export function drapePad(solver: WindowSolver, pad: Pad, centre: Place): Draped 
       drawnLength,
       stretch: Math.abs(length / drawnLength - 1),
     },
-    findings: [],
+    findings: limits
+      .filter((limit) => limit.measure < -TRUE_TO)
+      .map((limit) => ({ rule: 'beyond-map', element: pad.id, at: limit.at, text: BEYOND[limit.kind] })),
   };
 }
+
+/** What lies inside the pad where the map of the surface stops being one to one. The copper that has a place is kept. */
+const BEYOND: Record<MapLimit['kind'], string> = {
+  border: 'the surface ends inside the pad: some of its copper has no place',
+  'cut locus': 'ways over the surface from either side meet inside the pad: it is torn there',
+  saddle: 'a sharp inner corner lies inside the pad: its copper is squeezed behind it',
+};
 
 const sizeOf = (shape: FlatShape): boolean =>
   'rect' in shape ? shape.rect[1] > shape.rect[0] : 'slot' in shape ? shape.slot[1] > shape.slot[0] : false;

@@ -68,7 +68,8 @@ describe('on dirty meshes', () => {
       const project = { circuit: { elements, drapes: [] } } as unknown as Project;
       const { copper, findings } = drapeCircuit(project, 'x', part, quiet);
       for (const f of findings) told.set(f.rule, (told.get(f.rule) ?? 0) + 1);
-      expect(copper.elements.length + findings.length).toBe(3);
+      // A pad may be both: laid as far as the surface goes, and told so.
+      expect(new Set([...copper.elements.map((e) => e.id), ...findings.map((f) => f.element)]).size).toBe(3);
       for (const e of copper.elements) {
         laid++;
         expect(e.area).toBeGreaterThan(0);
@@ -79,6 +80,6 @@ describe('on dirty meshes', () => {
     }
     // Four corners at random cross in about half of all cases.
     expect(laid).toBeGreaterThan(120);
-    expect([...told.keys()].sort()).toEqual(['crossed', 'no-way']);
+    expect([...told.keys()].sort()).toEqual(['beyond-map', 'crossed', 'no-way']);
   });
 });

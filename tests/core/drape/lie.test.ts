@@ -5,6 +5,7 @@ import { drapeCircuit } from '../../../src/core/drape/drape.ts';
 import { drapePad, drawingU } from '../../../src/core/drape/pad.ts';
 import { drapeTrace } from '../../../src/core/drape/trace.ts';
 import { WindowSolver } from '../../../src/core/geodesic/windows.ts';
+import type { SurfaceMesh } from '../../../src/core/mesh/surface-mesh.ts';
 import type { Pad, Project, Trace } from '../../../src/core/project/schema.ts';
 import { gridMesh, meshFrom, partFrom, placeAt, plate, tube } from '../helpers/surfaces.ts';
 
@@ -80,6 +81,38 @@ describe('how a pad lies', () => {
         13.9,
       ]),
     ).toBe(true);
+  });
+});
+
+describe('a pad that the surface has no room for', () => {
+  const circle = (d: number): Pad => ({ ...L, shape: { circle: d } });
+  const lay = (mesh: SurfaceMesh, pad: Pad, at: Vec3) =>
+    drapePad(new WindowSolver(mesh), pad, placeAt(mesh, at));
+
+  it('over a rim keeps the copper that has a place, and says where the surface ends', () => {
+    // A disc of radius 2 whose centre lies 1.2 from the rim: a circular segment is missing.
+    const { element, findings } = lay(plate(20, 14, 3, 3), circle(4), [2, 5.8, 0]);
+    expect(findings.map((f) => [f.rule, f.element])).toEqual([['beyond-map', 'p']]);
+    expect(findings[0].at[1]).toBeCloseTo(7, 6);
+    const half = Math.acos(0.6);
+    expect(element!.area).toBeCloseTo(Math.PI * 4 - 4 * (half - 0.6 * Math.sin(half)), 2);
+  });
+
+  it('is no news where only the square about it reaches over the rim', () => {
+    const slot: Pad = { ...L, shape: { slot: [8, 1] } };
+    const mesh = plate(20, 14, 3, 3);
+    expect(lay(mesh, slot, [2, 5.8, 0]).findings).toEqual([]);
+    expect(lay(mesh, { ...slot, turn: 90 }, [2, 5.8, 0]).findings).toHaveLength(1);
+  });
+
+  it('round a thin post meets itself behind it', () => {
+    const post = tube(1, 30, 720, 1);
+    const behind = lay(post, { ...L, shape: { rect: [8, 2] } }, [0, -1, 14]);
+    expect(behind.findings.map((f) => f.rule)).toEqual(['beyond-map']);
+    expect(behind.findings[0].at[1]).toBeCloseTo(1, 3);
+    // All of the post's turn, 2 mm high.
+    expect(behind.element!.area).toBeCloseTo(2 * Math.PI * 2, 1);
+    expect(lay(post, { ...L, shape: { rect: [6, 2] } }, [0, -1, 14]).findings).toEqual([]);
   });
 });
 
