@@ -31,6 +31,8 @@ function mendedWords(m: Report['part']['mended']): string {
   if (m.degenerate) words.push(`${counted(m.degenerate, 'facet', 'facets')} of no area left out`);
   if (m.duplicate) words.push(`${counted(m.duplicate, 'facet', 'facets')} drawn twice left out`);
   if (m.flipped) words.push(`${counted(m.flipped, 'facet', 'facets')} turned over`);
+  if (m.split)
+    words.push(`${counted(m.split, 'border edge', 'border edges')} split at a corner that lay there`);
   if (m.nonManifoldEdges)
     words.push(`${counted(m.nonManifoldEdges, 'edge', 'edges')} of more than two facets taken as borders`);
   return words.join(', ');

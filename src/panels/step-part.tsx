@@ -110,6 +110,7 @@ function mendedWords(m: {
   degenerate: number;
   duplicate: number;
   flipped: number;
+  split: number;
   nonManifoldEdges: number;
 }): string {
   const told = [
@@ -117,6 +118,7 @@ function mendedWords(m: {
     [m.degenerate, 'facets of no area left out'],
     [m.duplicate, 'double facets left out'],
     [m.flipped, 'facets turned over'],
+    [m.split, 'border edges split at a corner on them'],
     [m.nonManifoldEdges, 'edges that more than two facets share'],
   ].filter(([n]) => (n as number) > 0);
   return told.length ? told.map(([n, w]) => `${n} ${w}`).join(', ') : 'nothing';

@@ -79,7 +79,9 @@ export function stepWords(s: State): Record<StepName, StepWords> {
   const size = part
     ? [0, 1, 2].map((k) => show(part.bounds[1][k as 0] - part.bounds[0][k as 0], 1)).join(' × ') + ' mm'
     : '';
-  const mended = part ? part.mended.degenerate + part.mended.duplicate + part.mended.flipped : 0;
+  const mended = part
+    ? part.mended.degenerate + part.mended.duplicate + part.mended.flipped + part.mended.split
+    : 0;
   return {
     part: part
       ? {

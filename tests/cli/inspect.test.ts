@@ -29,7 +29,14 @@ test('--json gives the part in numbers, in mm whatever the unit of the file', as
   });
   expect(part.volume).toBeCloseTo(6000, 6);
   expect(part.area).toBeCloseTo(2200, 6);
-  expect(part.mended).toEqual({ welded: 0, degenerate: 0, duplicate: 0, flipped: 1, nonManifoldEdges: 0 });
+  expect(part.mended).toEqual({
+    welded: 0,
+    degenerate: 0,
+    duplicate: 0,
+    flipped: 1,
+    split: 0,
+    nonManifoldEdges: 0,
+  });
 });
 
 test('the table says what was mended, in words', async () => {

@@ -5,6 +5,7 @@ import { flipCaps, hasFlat } from './caps.ts';
 import { orient } from './orient.ts';
 import type { Soup } from './stl.ts';
 import type { SurfaceMesh } from './surface-mesh.ts';
+import { splitAtCorners } from './t-junctions.ts';
 import { pairEdges } from './twins.ts';
 import { weld } from './weld.ts';
 
@@ -12,7 +13,8 @@ import { weld } from './weld.ts';
 export const MM_PER_UNIT = { mm: 1, cm: 10, m: 1000, um: 0.001, inch: 25.4 } as const;
 
 /**
- * Welds, drops facets of no area and facets drawn twice, pairs edges, winds pieces alike and outward.
+ * Welds, drops facets of no area and facets drawn twice, splits edges at corners that lie on them, pairs edges, winds
+ * pieces alike and outward.
  *
  * A vertex where fans meet that share no edge (two cones tip to tip) stays one vertex: whoever walks around it goes by
  * half-edges, and so stays in one fan.
@@ -28,13 +30,7 @@ export function buildMesh(soup: Soup, unitsScale: number, ctx: RunContext, file 
   const facets = soup.corners.length / 9;
   const welded = weld(soup.corners, ctx);
   const kept = keepFacets(welded.vertex);
-  const whole = mendCaps(
-    cornersOf(welded.vertex, kept.facetOfFace),
-    kept,
-    welded.positions,
-    welded.distance,
-    facets,
-  );
+  const whole = mendCaps(cornersOf(welded.vertex, kept.facetOfFace), kept, welded.positions, welded.distance);
   if (whole.facetOfFace.length === 0)
     throw new InputError({
       code: 'no-area',
@@ -44,8 +40,9 @@ export function buildMesh(soup: Soup, unitsScale: number, ctx: RunContext, file 
       mend: 'export the part again',
     });
   ctx.step('load', 2 * facets, 3 * facets);
-  const { positions, triangles } = renumber(whole.triangles, welded.positions, unitsScale);
-  const { partner, crowded } = pairEdges(triangles, positions.length / 3);
+  const joined = mendJunctions(whole, welded.positions, welded.distance);
+  const { partner, crowded } = joined.edges;
+  const { positions, triangles } = renumber(joined.triangles, welded.positions, unitsScale);
   const { twin, pieceOf, pieces, turned, disagreeing } = orient(positions, triangles, partner);
   let flipped = 0;
   for (const t of turned) flipped += t;
@@ -56,8 +53,8 @@ export function buildMesh(soup: Soup, unitsScale: number, ctx: RunContext, file 
     twin,
     pieceOf,
     pieces,
-    faceOfFacet: whole.faceOfFacet,
-    facetOfFace: whole.facetOfFace,
+    faceOfFacet: faceOfFacet(joined.facetOfFace, facets),
+    facetOfFace: joined.facetOfFace,
     bounds: boundsOf(positions),
     closed: pieces.every((p) => p.closed),
     area: pieces.reduce((s, p) => s + p.area, 0),
@@ -67,6 +64,7 @@ export function buildMesh(soup: Soup, unitsScale: number, ctx: RunContext, file 
       degenerate: kept.degenerate + whole.caps,
       duplicate: kept.duplicate,
       flipped,
+      split: joined.split,
       nonManifoldEdges: crowded + disagreeing,
     },
   };
@@ -116,18 +114,11 @@ function keepFacets(vertex: Uint32Array): Kept {
 interface Whole {
   triangles: Uint32Array;
   facetOfFace: Int32Array;
-  faceOfFacet: Int32Array;
   caps: number;
 }
 
 /** A facet lower than the weld distance over its longest side has no area that was meant, and no normal to trust. */
-function mendCaps(
-  triangles: Uint32Array,
-  kept: Kept,
-  x: Float64Array,
-  distance: number,
-  facets: number,
-): Whole {
+function mendCaps(triangles: Uint32Array, kept: Kept, x: Float64Array, distance: number): Whole {
   let { facetOfFace } = kept;
   let caps = 0;
   if (hasFlat(x, triangles, distance)) {
@@ -142,10 +133,34 @@ function mendCaps(
       (_, i) => triangles[3 * stay[(i / 3) | 0] + (i % 3)],
     );
   }
-  const faceOfFacet = new Int32Array(facets).fill(-1);
-  // From the back, so that a facet that became two faces names the first.
-  for (let f = facetOfFace.length - 1; f >= 0; f--) faceOfFacet[facetOfFace[f]] = f;
-  return { triangles, facetOfFace, faceOfFacet, caps };
+  return { triangles, facetOfFace, caps };
+}
+
+/**
+ * A corner that was meant to lie on an edge is off it by what rounding did to the corner and to the edge's ends. Welding
+ * allows its distance for each of them; so both together.
+ */
+const ON_EDGE = 2;
+
+/** Facets with their edges paired, after border edges were split where corners of others lie on them. */
+function mendJunctions(whole: Whole, x: Float64Array, distance: number) {
+  const { triangles, facetOfFace } = whole;
+  const edges = pairEdges(triangles, x.length / 3);
+  const split = splitAtCorners(x, triangles, edges.partner, ON_EDGE * distance);
+  if (!split) return { triangles, facetOfFace, edges, split: 0 };
+  return {
+    triangles: split.triangles,
+    facetOfFace: Int32Array.from(split.from, (f) => facetOfFace[f]),
+    edges: pairEdges(split.triangles, x.length / 3),
+    split: split.edges,
+  };
+}
+
+function faceOfFacet(facetOfFace: Int32Array, facets: number): Int32Array {
+  const out = new Int32Array(facets).fill(-1);
+  // From the back, so that a facet that became several faces names the first.
+  for (let f = facetOfFace.length - 1; f >= 0; f--) out[facetOfFace[f]] = f;
+  return out;
 }
 
 const cornersOf = (vertex: Uint32Array, facetOfFace: Int32Array): Uint32Array => {

@@ -30,13 +30,13 @@ export function flipCaps(
   const queue: number[] = [];
   for (let f = 0; f < faces; f++) {
     from[f] = f;
-    if (isFlat(x, triangles, f, distance)) queue.push(f);
+    if (isFlatFacet(x, triangles, f, distance)) queue.push(f);
   }
   const found = queue.length;
   // Flips make long sides shorter, so they end; the bound only guards against rounding going round in circles.
   for (let left = 20 * found; queue.length > 0; left--) {
     const f = queue.pop() as number;
-    if (drop[f] || !isFlat(x, triangles, f, distance)) continue;
+    if (drop[f] || !isFlatFacet(x, triangles, f, distance)) continue;
     const long = longestSide(x, triangles, f);
     const across = partner[long];
     if (across < 0 || left <= 0 || sharesMore(partner, long, across)) {
@@ -53,7 +53,7 @@ export function flipCaps(
 }
 
 export function hasFlat(x: Float64Array, triangles: Uint32Array, distance: number): boolean {
-  for (let f = 0; f < triangles.length / 3; f++) if (isFlat(x, triangles, f, distance)) return true;
+  for (let f = 0; f < triangles.length / 3; f++) if (isFlatFacet(x, triangles, f, distance)) return true;
   return false;
 }
 
@@ -63,10 +63,12 @@ function sharesMore(partner: Int32Array, long: number, across: number): boolean 
   return [nextOf(long), previousOf(long)].some((h) => partner[h] >= 0 && ((partner[h] / 3) | 0) === g);
 }
 
-function isFlat(x: Float64Array, t: Uint32Array, f: number, distance: number): boolean {
-  const a = 3 * t[3 * f];
-  const b = 3 * t[3 * f + 1];
-  const c = 3 * t[3 * f + 2];
+const isFlatFacet = (x: Float64Array, t: Uint32Array, f: number, distance: number): boolean =>
+  isFlat(x, t[3 * f], t[3 * f + 1], t[3 * f + 2], distance);
+
+/** Whether the triangle on three vertices is no higher than `distance` over its longest side. */
+export function isFlat(x: Float64Array, p: number, q: number, r: number, distance: number): boolean {
+  const [a, b, c] = [3 * p, 3 * q, 3 * r];
   const ux = x[b] - x[a];
   const uy = x[b + 1] - x[a + 1];
   const uz = x[b + 2] - x[a + 2];

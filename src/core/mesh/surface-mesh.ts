@@ -12,6 +12,8 @@ export interface Mended {
   duplicate: number;
   /** Facets turned over so that their piece is consistent and faces outward. */
   flipped: number;
+  /** Border edges split where another facet's corner lay on them (T-junctions): the facet then has two faces or more. */
+  split: number;
   /** Edges shared by three or more facets, or by two that cannot agree: treated as borders. */
   nonManifoldEdges: number;
 }
@@ -40,7 +42,7 @@ export interface SurfaceMesh {
   /** Piece of each face. */
   readonly pieceOf: Int32Array;
   readonly pieces: readonly Piece[];
-  /** Facet number in the file → face number (the first of two where it was split), -1 where the facet was left out. */
+  /** Facet number in the file → face number (the first of several where it was split), -1 where the facet was left out. */
   readonly faceOfFacet: Int32Array;
   /** Face number → facet number in the file. */
   readonly facetOfFace: Int32Array;

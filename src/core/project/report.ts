@@ -21,6 +21,7 @@ export interface Report {
       degenerate: number;
       duplicate: number;
       flipped: number;
+      split: number;
       nonManifoldEdges: number;
     };
   };

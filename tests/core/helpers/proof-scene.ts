@@ -64,7 +64,7 @@ export function meshOf(positions: number[], triangles: number[]): SurfaceMesh {
     closed,
     area: 0,
     volume: 0,
-    mended: { welded: 0, degenerate: 0, duplicate: 0, flipped: 0, nonManifoldEdges: 0 },
+    mended: { welded: 0, degenerate: 0, duplicate: 0, flipped: 0, split: 0, nonManifoldEdges: 0 },
   };
 }
 

@@ -8,7 +8,7 @@ import { checkMesh } from '../../../src/core/mesh/check-mesh.ts';
 import type { SurfaceMesh } from '../../../src/core/mesh/surface-mesh.ts';
 import { box, type Facet, flip, lumpyRing, moved, soupOf, tetra, twistedStrip } from './parts.ts';
 
-const NOTHING = { welded: 0, degenerate: 0, duplicate: 0, flipped: 0, nonManifoldEdges: 0 };
+const NOTHING = { welded: 0, degenerate: 0, duplicate: 0, flipped: 0, split: 0, nonManifoldEdges: 0 };
 
 function build(facets: readonly Facet[], scale = 1): SurfaceMesh {
   const mesh = buildMesh(soupOf(facets), scale, quiet);

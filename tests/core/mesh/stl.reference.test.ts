@@ -30,6 +30,7 @@ describe(`the reference set is read as its README describes it (${source('exact-
         degenerate: 0,
         duplicate: 0,
         flipped: 0,
+        split: 0,
         nonManifoldEdges: 0,
       });
       expect(mesh.triangles.length / 3).toBe(triangles);
