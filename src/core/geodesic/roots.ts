@@ -66,6 +66,8 @@ export interface SegmentSource {
 export interface Start {
   root: Root;
   halves: readonly number[];
+  /** Pseudo-source: the root looks only between these angles of its frame, radians. */
+  wedge?: readonly [number, number];
 }
 
 const PLAIN = {
@@ -117,12 +119,22 @@ export type AtVertex = Pick<
   'source' | 'at' | 'sigma' | 'vertex' | 'side' | 'start' | 'bearing' | 'radius'
 >;
 
-/** One root for each face around the vertex at which half-edge `h` starts. @param zero  direction of polar angle 0 in one of the faces */
+/** How much wider than its shadow a pseudo-source looks, radians: rounding leaves no crack between it and its neighbours. */
+const WEDGE_SLACK = 1e-6;
+
+/**
+ * Roots around the vertex at which half-edge `h` starts: one for each face, or for a pseudo-source one for each face of
+ * its shadow. A shortest path makes at least a half turn on either side of each vertex it passes (Mitchell, Mount and
+ * Papadimitriou 1987, lemma 3.4), so a pseudo-source has nothing to say to the rest.
+ * @param zero  direction of polar angle 0 in one of the faces
+ * @param back  pseudo-source: angle from half-edge h, counter-clockwise, to the way it was reached by
+ */
 export function fanRoots(
   geometry: FaceGeometry,
   h: number,
   common: AtVertex,
   zero?: { face: number; zero: Vec3 },
+  back?: number,
 ): Start[] {
   const { halves, angles, total, border } = geometry.fan(h);
   let zeroAngle = 0;
@@ -132,30 +144,61 @@ export function fanRoots(
     zeroAngle = angles[i] + Math.atan2(dot(zero.zero, y), dot(zero.zero, x));
   }
   const scale = border ? 1 : (2 * Math.PI) / total;
-  return halves.map((half, i) => {
+  const shadow = back === undefined ? null : shadowOf(angles[halves.indexOf(h)] + back, total, border);
+  const starts: Start[] = [];
+  halves.forEach((half, i) => {
+    const corner = (i + 1 < angles.length ? angles[i + 1] : total) - angles[i];
+    const wedges: [number, number][] = shadow
+      ? shadow
+          .map(([lo, hi]): [number, number] => [
+            Math.max(0, lo - angles[i]),
+            Math.min(corner, hi - angles[i]),
+          ])
+          .filter(([lo, hi]) => lo < hi)
+      : [[0, corner]];
+    if (wedges.length === 0) return;
     const face = faceOf(half);
     const axes = geometry.axes(face, geometry.edgeDirection(half));
     const { source, at, sigma, vertex, side, start, bearing, radius } = common;
-    return {
-      root: {
-        kind: 'point',
-        source,
-        at,
-        sigma,
-        vertex,
-        side,
-        start,
-        bearing,
-        radius,
-        face,
-        offset: angles[i] - zeroAngle,
-        scale,
-        length: 0,
-        ...axes,
-      },
-      halves: [next(half)],
+    const root: Root = {
+      kind: 'point',
+      source,
+      at,
+      sigma,
+      vertex,
+      side,
+      start,
+      bearing,
+      radius,
+      face,
+      offset: angles[i] - zeroAngle,
+      scale,
+      length: 0,
+      ...axes,
     };
+    for (const [lo, hi] of wedges)
+      starts.push(
+        lo === 0 && hi === corner
+          ? { root, halves: [next(half)] }
+          : { root, halves: [next(half)], wedge: [lo, hi] },
+      );
   });
+  return starts;
+}
+
+/** Angles of a fan, from its first half-edge, in which a path that came in along `back` may go on. */
+function shadowOf(back: number, total: number, border: boolean): [number, number][] {
+  const lo = back + Math.PI - WEDGE_SLACK;
+  if (border)
+    return [
+      [0, back - Math.PI + WEDGE_SLACK],
+      [lo, total],
+    ];
+  const hi = back + total - Math.PI + WEDGE_SLACK;
+  return [
+    [lo, hi],
+    [lo - total, hi - total],
+  ];
 }
 
 /** Roots of a segment of a path: one to each side that has a reach. A segment of no length has none. */

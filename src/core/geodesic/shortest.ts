@@ -2,26 +2,30 @@
 import { distance, type Vec3 } from '../base/vec.ts';
 import { faceOf, next, type SurfaceMesh } from '../mesh/surface-mesh.ts';
 import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
-import { edgeBound } from './edge-bound.ts';
+import { wayBeside } from './beside-path.ts';
+import { EdgeWays, pathOfWay } from './edge-ways.ts';
+import { FlipPaths, sharedFace } from './flip-path.ts';
+import { type GeodesicPath, gatherPath } from './geodesic-path.ts';
+import { LowerBound } from './lower-bound.ts';
 import { type Arrival, WindowSolver } from './windows.ts';
 
-/** A way over the surface: every place where it enters another face, part frame. */
-export interface GeodesicPath {
-  /** mm, 3 a point. */
-  points: Float64Array;
-  /** Face that the piece from point i to i + 1 lies in; one fewer than points. */
-  faces: Int32Array;
-  /** mm */
-  length: number;
-}
+export type { GeodesicPath } from './geodesic-path.ts';
+
+/** How much longer than the shortest way along edges the first guess may be: flips pull it taut anyhow. */
+const GREED = 1.25;
+/** A path through fewer faces has so few windows that bounds better than the straight line cost more than they save. */
+const MANY_FACES = 60;
+/** A path no longer than the straight line by this share is the shortest: what is left is rounding. */
+const ROUNDING = 1e-13;
 
 /** One path on one mesh. Where the same mesh is asked again, prepare a `WindowSolver` and use `shortestWith`. */
 export const shortestPath = (mesh: SurfaceMesh, from: SurfacePoint, to: SurfacePoint): GeodesicPath | null =>
   shortestWith(new WindowSolver(mesh), from, to);
 
 /**
- * Shortest path from one surface point to another: Chen and Han's windows with Xin and Wang's pruning
- * (`windows.ts`), bounded above by a path along edges.
+ * Shortest path from one surface point to another: Chen and Han's windows with Xin and Wang's pruning (`windows.ts`), let
+ * loose only where a path shorter than a known one may run. The known one is a way along edges pulled taut by flips
+ * (`flip-path.ts`); what is still to go is bounded from below by the straight line and, over many faces, by `lower-bound.ts`.
  * @returns null when there is no way over the surface between them
  */
 export function shortestWith(
@@ -29,14 +33,63 @@ export function shortestWith(
   from: SurfacePoint,
   to: SurfacePoint,
 ): GeodesicPath | null {
-  const bound = edgeBound(solver.mesh, from, to);
-  if (bound === Infinity) return null;
-  // A hair more than the bound, so that a path that is itself along edges still arrives.
-  const arrival = solver.propagate([{ at: from, source: 0, radius: Infinity }], [], {
-    at: to,
-    bound: bound * (1 + 1e-9) + Number.MIN_VALUE,
-  });
-  return arrival.distance === Infinity ? null : traceBack(solver, arrival, to);
+  const { mesh } = solver;
+  const straight = distance(positionOf(mesh, from), positionOf(mesh, to));
+  const known = tautWith(solver, from, to);
+  if (known === null || known.length <= straight * (1 + ROUNDING)) return known;
+  let toGo: LowerBound | null = null;
+  if (known.faces.length > MANY_FACES) {
+    toGo = helpersOf(solver).bound;
+    toGo.aim(from, to, known.length);
+  }
+  const bound = known.length;
+  const arrival = solver.propagate([{ at: from, source: 0, radius: Infinity }], [], { at: to, bound, toGo });
+  return arrival.distance === Infinity ? known : traceBack(solver, arrival, to);
+}
+
+/** A path that is taut and may be the shortest; null when there is none. */
+function tautWith(solver: WindowSolver, from: SurfacePoint, to: SurfacePoint): GeodesicPath | null {
+  const { mesh } = solver;
+  const face = sharedFace(mesh, from, to);
+  if (face >= 0) return gatherPath([positionOf(mesh, from), positionOf(mesh, to)], [face]);
+  const { ways, flips } = helpersOf(solver);
+  const way = ways.find(from, to, GREED);
+  return way && (flips.tauten(from, to, way) ?? pathOfWay(mesh, from, to, way));
+}
+
+/**
+ * The locally shortest path that an old path becomes when its ends move a little: it stays on the old path's side of
+ * holes and humps, and costs by the path, not by the part (`flip-path.ts`).
+ * @returns null when it cannot be made from the old path: ask for the shortest then
+ */
+export function followWith(
+  solver: WindowSolver,
+  old: GeodesicPath,
+  from: SurfacePoint,
+  to: SurfacePoint,
+): GeodesicPath | null {
+  const { ways, flips } = helpersOf(solver);
+  const way = wayBeside(ways, solver.mesh, old, from, to);
+  return way && flips.tauten(from, to, way);
+}
+
+interface Helpers {
+  ways: EdgeWays;
+  flips: FlipPaths;
+  bound: LowerBound;
+}
+
+/** What a prepared solver's paths need besides windows; made when the first path is asked for. */
+const helpers = new WeakMap<WindowSolver, Helpers>();
+
+function helpersOf(solver: WindowSolver): Helpers {
+  let known = helpers.get(solver);
+  if (!known) {
+    const { mesh } = solver;
+    known = { ways: new EdgeWays(mesh), flips: new FlipPaths(mesh), bound: new LowerBound(mesh) };
+    helpers.set(solver, known);
+  }
+  return known;
 }
 
 /** Follows the arrival back to its source and returns the path from source to target. */
@@ -83,32 +136,5 @@ export function traceBack(solver: WindowSolver, arrival: Arrival, to: SurfacePoi
   }
   points.reverse();
   faces.reverse();
-  return gather(points, faces);
-}
-
-/** A piece shorter than this share of the path is a crossing met twice (targets on edges): its direction would mean nothing. */
-const NO_PIECE = 1e-10;
-
-/** Drops pieces of no length, keeps both ends, and adds the rest up. */
-function gather(points: Vec3[], faces: number[]): GeodesicPath {
-  const last = points.length - 1;
-  let whole = 0;
-  for (let i = 0; i < last; i++) whole += distance(points[i], points[i + 1]);
-  const keep: Vec3[] = [points[0]];
-  const inFace: number[] = [];
-  for (let i = 1; i <= last; i++) {
-    if (distance(keep[keep.length - 1], points[i]) <= NO_PIECE * whole) {
-      if (i < last) continue;
-      if (keep.length > 1) {
-        // The end stands for the crossing just before it.
-        keep[keep.length - 1] = points[last];
-        continue;
-      }
-    }
-    keep.push(points[i]);
-    inFace.push(faces[i - 1]);
-  }
-  let length = 0;
-  for (let i = 0; i + 1 < keep.length; i++) length += distance(keep[i], keep[i + 1]);
-  return { points: Float64Array.from(keep.flat()), faces: Int32Array.from(inFace), length };
+  return gatherPath(points, faces);
 }

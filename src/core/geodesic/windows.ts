@@ -10,10 +10,11 @@
  * to a path, its foot on it and its side.
  */
 import { Fault } from '../base/news.ts';
-import type { Vec3 } from '../base/vec.ts';
+import { dot, type Vec3 } from '../base/vec.ts';
 import { faceOf, next, previous, type SurfaceMesh } from '../mesh/surface-mesh.ts';
 import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
 import { FaceGeometry } from './face-geometry.ts';
+import type { LowerBound } from './lower-bound.ts';
 import {
   clipToStrip,
   cornerAt,
@@ -27,17 +28,32 @@ import {
   type Start,
   segmentRoots,
 } from './roots.ts';
+import { crossing, leastBroken, leastDistance, leastLinear, pointDistance } from './window-geometry.ts';
 import { KeyHeap, WindowStore } from './window-store.ts';
 
 /** A window shorter than this share of its edge is below the rounding of its own ends. */
 const NO_WIDTH = 1e-12;
 /** Share of a distance that rounding may have cost after thousands of unfoldings. */
 const ROUNDING = 1e-12;
-/** Only distances below the bound that a straight line still allows are of use: stops a search for one target early. */
+/** What `bending` knows of a vertex; 0 where nobody has asked. */
+const STRAIGHT = 1;
+const BENDS = 2;
+
+/** Only paths shorter than `bound` are of use: stops a search for one target early. For one point source. */
 export interface Target {
   at: SurfacePoint;
   /** Length of a known path, or Infinity. */
   bound: number;
+  /** Lower bounds of the ways from vertices to the target, where the straight line says too little. */
+  toGo?: LowerBound | null;
+}
+
+interface Aim {
+  at: SurfacePoint;
+  p: Vec3;
+  vertex: number;
+  best: Arrival;
+  toGo: LowerBound | null;
 }
 
 /** What ended at the target: a window, a corner of its face, or the root itself; -1 where it was another. */
@@ -49,7 +65,10 @@ export interface Arrival {
   vertex: number;
 }
 
-/** Prepared for one mesh; each `run` starts afresh. Memory that a run touches is bounded by what its windows reach. */
+/**
+ * Prepared for one mesh; each run starts afresh. Arrays as long as the mesh's vertices are zeros until a run comes near
+ * (and cost no memory before), and are never cleared: a run touches only what its windows reach.
+ */
 export class WindowSolver {
   readonly mesh: SurfaceMesh;
   private readonly geometry: FaceGeometry;
@@ -62,17 +81,20 @@ export class WindowSolver {
   /** What gave that distance: window number, or -1 - root. */
   private readonly via: Int32Array;
   private run = 0;
+  /** Whether shortest paths may bend at a vertex. */
+  private readonly bending: Uint8Array;
   /** Distance at which a vertex last sent windows out, so that it does so once. */
   private readonly fanned = new Map<number, number>();
-  private target: { at: SurfacePoint; p: Vec3; vertex: number; best: Arrival } | null = null;
+  private target: Aim | null = null;
 
   constructor(mesh: SurfaceMesh) {
     this.mesh = mesh;
     this.geometry = new FaceGeometry(mesh);
     const n = mesh.positions.length / 3;
     this.dist = new Float64Array(n);
-    this.stamp = new Int32Array(n).fill(-1);
+    this.stamp = new Int32Array(n);
     this.via = new Int32Array(n);
+    this.bending = new Uint8Array(n);
   }
 
   /**
@@ -95,6 +117,7 @@ export class WindowSolver {
           p: positionOf(this.mesh, target.at),
           vertex: this.vertexAt(target.at),
           best: { distance: target.bound, window: -1, root: -1, vertex: -1 },
+          toGo: target.toGo ?? null,
         }
       : null;
     for (const s of points) this.startPoint(s);
@@ -132,46 +155,72 @@ export class WindowSolver {
       this.dist[v] = 0;
       this.stamp[v] = this.run;
       this.fanned.set(v, 0);
+      if (this.target?.vertex === v) this.target.best = { distance: 0, window: -1, root: -1, vertex: v };
     }
     this.start(pointRoots(this.geometry, s));
   }
 
   /** Pseudo-source: a vertex around which shortest paths bend. */
   private startVertex(v: number): void {
-    if (this.fanned.get(v) === this.dist[v]) return;
-    this.fanned.set(v, this.dist[v]);
+    const sigma = this.dist[v];
+    if (this.fanned.get(v) === sigma) return;
+    this.fanned.set(v, sigma);
+    if (this.target && sigma + this.vertexToGo(v) > this.target.best.distance * (1 + ROUNDING)) return;
     const via = this.via[v];
-    const half = via >= 0 ? this.windows.half[via] : -1;
-    let h = half >= 0 ? previous(half) : -1;
-    if (h < 0) {
-      const f = this.roots[-1 - via].face;
-      h = [3 * f, 3 * f + 1, 3 * f + 2].find((k) => this.mesh.triangles[k] === v) ?? -1;
-    }
-    if (h < 0 || this.mesh.triangles[h] !== v)
-      throw new Fault(`vertex ${v} was not reached through a face that holds it`);
-    const from = via >= 0 ? this.roots[this.windows.root[via]] : this.roots[-1 - via];
-    const at = this.position(v);
-    const q = via >= 0 ? this.look(via, at, Infinity)! : this.inRoot(from, at);
+    const { from, half, q, back } = via >= 0 ? this.enteredBy(via) : this.enteredFrom(-1 - via, v);
     this.start(
-      fanRoots(this.geometry, h, {
-        source: from.source,
-        at,
-        sigma: this.dist[v],
-        vertex: v,
-        side: from.kind === 'segment' || from.vertex >= 0 ? from.side : q[1] < 0 ? -1 : 1,
-        start: from.kind === 'segment' ? from.start + q[0] : from.start,
-        bearing: from.vertex >= 0 ? from.bearing : (from.offset + Math.atan2(q[1], q[0])) * from.scale,
-        radius: from.radius,
-      }),
+      fanRoots(
+        this.geometry,
+        half,
+        {
+          source: from.source,
+          at: this.position(v),
+          sigma,
+          vertex: v,
+          side: from.kind === 'segment' || from.vertex >= 0 ? from.side : q[1] < 0 ? -1 : 1,
+          start: from.kind === 'segment' ? from.start + q[0] : from.start,
+          bearing: from.vertex >= 0 ? from.bearing : (from.offset + Math.atan2(q[1], q[0])) * from.scale,
+          radius: from.radius,
+        },
+        undefined,
+        back,
+      ),
     );
   }
 
-  private start(starts: readonly Start[]): void {
-    for (const { root, halves } of starts) this.seeFromRoot(this.roots.push(root) - 1, halves);
+  /** How the apex of window w was reached: half-edge that starts there, place in the root's frame, angle from it to the way back. */
+  private enteredBy(w: number) {
+    const { num } = this.windows;
+    const o = 8 * w;
+    const from = this.roots[this.windows.root[w]];
+    const half = previous(this.windows.half[w]);
+    const [cx, cy] = this.geometry.apex(this.windows.half[w], num[o + 7]);
+    const [sx, sy, cos, sin] = [num[o + 2], num[o + 3], num[o + 4], num[o + 5]];
+    const [px, py] = [cx - sx, cy - sy];
+    const [bx, by] = from.kind === 'point' ? [-px, -py] : [-sin * from.side, -cos * from.side];
+    const q: [number, number] = [cos * px - sin * py, sin * px + cos * py];
+    return { from, half, q, back: Math.atan2(-cx * by + cy * bx, -cx * bx - cy * by) };
   }
 
-  /** Gives the root's face its vertices, the target if it is there, and a first window on each of `halves`. */
-  private seeFromRoot(rootIndex: number, halves: readonly number[]): void {
+  /** The same for vertex v of a root's own face. */
+  private enteredFrom(rootIndex: number, v: number) {
+    const from = this.roots[rootIndex];
+    const f = 3 * from.face;
+    const half = [f, f + 1, f + 2].find((h) => this.mesh.triangles[h] === v);
+    if (half === undefined) throw new Fault(`vertex ${v} was not reached through a face that holds it`);
+    const q = this.inRoot(from, this.position(v));
+    const e = this.geometry.edgeDirection(half);
+    const [ex, ey] = [dot(e, from.x), dot(e, from.y)];
+    const [bx, by] = from.kind === 'point' ? [-q[0], -q[1]] : [0, -from.side];
+    return { from, half, q, back: Math.atan2(ex * by - ey * bx, ex * bx + ey * by) };
+  }
+
+  private start(starts: readonly Start[]): void {
+    for (const s of starts) this.seeFromRoot(this.roots.push(s.root) - 1, s);
+  }
+
+  /** Gives the root's face its vertices, the target if it is there, and a first window on each half-edge it looks through. */
+  private seeFromRoot(rootIndex: number, { halves, wedge }: Start): void {
     const root = this.roots[rootIndex];
     const { mesh } = this;
     for (let i = 0; i < 3; i++) {
@@ -179,7 +228,8 @@ export class WindowSolver {
       if (v === root.vertex) continue;
       const [qx, qy] = this.inRoot(root, this.position(v));
       const d = rootDistance(root, qx, qy);
-      if (d < this.vertexDistance(v)) this.reachVertex(v, d, -1 - rootIndex, 3 * root.face + i);
+      if (d < this.vertexDistance(v) && d <= root.radius)
+        this.reachVertex(v, d, -1 - rootIndex, 3 * root.face + i);
     }
     if (this.target && this.target.at.face === root.face) {
       const [qx, qy] = this.inRoot(root, this.target.p);
@@ -191,20 +241,21 @@ export class WindowSolver {
       const t = mesh.twin[h];
       if (t < 0) continue;
       // The twin runs the other way: its start is the end of h.
-      const a = this.position(mesh.triangles[t]);
-      const b = this.position(mesh.triangles[next(t)]);
-      const [ax, ay] = this.inRoot(root, a);
-      const [bx, by] = this.inRoot(root, b);
-      const len = Math.hypot(bx - ax, by - ay);
+      const [ax, ay] = this.inRoot(root, this.position(mesh.triangles[t]));
+      const [bx, by] = this.inRoot(root, this.position(mesh.triangles[next(t)]));
+      const len = Math.sqrt((bx - ax) * (bx - ax) + (by - ay) * (by - ay));
+      const ex = (bx - ax) / len;
+      const ey = (by - ay) / len;
       let b0 = 0;
       let b1 = len;
       if (root.kind === 'segment') {
         const clip = clipToStrip(ax, ay, bx, by, root.length, root.side, len);
         if (!clip) continue;
         [b0, b1] = clip;
+      } else if (wedge) {
+        b0 = crossing(-ax, -ay, Math.cos(wedge[1]), Math.sin(wedge[1]), ex, ey, 0);
+        b1 = crossing(-ax, -ay, Math.cos(wedge[0]), Math.sin(wedge[0]), ex, ey, len);
       }
-      const ex = (bx - ax) / len;
-      const ey = (by - ay) / len;
       // p in the root frame is q = A + x e + y e⊥, so s = -Rᵀ A.
       this.open(t, rootIndex, -1, b0, b1, -(ax * ex + ay * ey), -(ay * ex - ax * ey), ex, ey, len);
     }
@@ -232,8 +283,7 @@ export class WindowSolver {
     const least = leastDistance(root, b0, b1, sx, sy, cos, sin);
     if (least > root.radius) return;
     const t = this.target;
-    if (t && least >= t.best.distance) return;
-    if (t && least + this.edgeToTarget(half, len, t.p) > t.best.distance * (1 + ROUNDING)) return;
+    if (t && (least >= t.best.distance || this.missesTarget(t, half, root, b0, b1, sx, sy, len))) return;
     if (this.beaten(half, root, b0, b1, sx, sy, cos, sin, len)) return;
     const w = this.windows.push(half, rootIndex, parent);
     const n = this.windows.num;
@@ -253,6 +303,45 @@ export class WindowSolver {
     this.heap.push(w, least);
   }
 
+  /** Whether no way through the window can be shorter than the one known. Only point sources are asked for a target. */
+  private missesTarget(
+    t: Aim,
+    half: number,
+    root: Root,
+    b0: number,
+    b1: number,
+    sx: number,
+    sy: number,
+    len: number,
+  ): boolean {
+    const { positions: x, triangles } = this.mesh;
+    const most = t.best.distance * (1 + ROUNDING) - root.sigma;
+    const va = triangles[half];
+    const vb = triangles[next(half)];
+    if (t.toGo) {
+      const fa = t.toGo.at(va);
+      const fb = t.toGo.at(vb);
+      if (fa + fb === Infinity) return true;
+      // Close to the target the sum is NaN, and the straight line says more.
+      if (fa + fb >= 0) return leastLinear(b0, b1, sx, sy, fa, fb, len) > most;
+    }
+    const a = 3 * va;
+    const b = 3 * vb;
+    const px = t.p[0] - x[a],
+      py = t.p[1] - x[a + 1],
+      pz = t.p[2] - x[a + 2];
+    const ux = x[b] - x[a],
+      uy = x[b + 1] - x[a + 1],
+      uz = x[b + 2] - x[a + 2];
+    // By the cross product: the target may lie on the edge itself, where a difference of squares has no digits left.
+    const nx = uy * pz - uz * py,
+      ny = uz * px - ux * pz,
+      nz = ux * py - uy * px;
+    const tx = (px * ux + py * uy + pz * uz) / len;
+    const ty = Math.sqrt(nx * nx + ny * ny + nz * nz) / len;
+    return leastBroken(b0, b1, sx, sy, tx, ty) > most;
+  }
+
   /** Xin and Wang's filtering theorem for the two ends of the edge: is all that the window sees nearer by way of a vertex? */
   private beaten(
     half: number,
@@ -268,8 +357,8 @@ export class WindowSolver {
     const { triangles } = this.mesh;
     const d0 = this.vertexDistance(triangles[half]);
     const d1 = this.vertexDistance(triangles[next(half)]);
-    const at0 = windowDistance(root, b0, sx, sy, cos, sin);
-    const at1 = windowDistance(root, b1, sx, sy, cos, sin);
+    const at0 = pointDistance(root, b0, 0, sx, sy, cos, sin);
+    const at1 = pointDistance(root, b1, 0, sx, sy, cos, sin);
     const slack = ROUNDING * (at0 + at1 + len);
     return d0 + b1 < at1 - slack || d1 + (len - b0) < at0 - slack;
   }
@@ -287,8 +376,7 @@ export class WindowSolver {
       sin = n[o + 5],
       len = n[o + 7];
     const half = windows.half[w];
-    const rootIndex = windows.root[w];
-    const root = this.roots[rootIndex];
+    const root = this.roots[windows.root[w]];
     if (this.beaten(half, root, b0, b1, sx, sy, cos, sin, len)) {
       windows.alive[w] = 0;
       return;
@@ -312,70 +400,73 @@ export class WindowSolver {
     const right = d1x * cy - d1y * (cx - b1); // < 0: right of the right ray
     const reach0 = ROUNDING * (Math.abs(d0x) + Math.abs(d0y)) * (cy + len);
     const reach1 = ROUNDING * (Math.abs(d1x) + Math.abs(d1y)) * (cy + len);
-    const seesApex = left <= reach0 && right >= -reach1;
-    if (seesApex) {
-      const v = mesh.triangles[hl];
+    if (left <= reach0 && right >= -reach1) {
       const d = pointDistance(root, cx, cy, sx, sy, cos, sin);
-      if (d < this.vertexDistance(v) && d <= root.radius) this.reachVertex(v, d, w, hl);
+      if (d < this.vertexDistance(mesh.triangles[hl]) && d <= root.radius)
+        this.reachVertex(mesh.triangles[hl], d, w, hl);
     }
-    const la = Math.hypot(cx, cy);
-    const lb = Math.hypot(len - cx, cy);
-    const vb = this.vertexDistance(mesh.triangles[hr]);
-    const va = this.vertexDistance(mesh.triangles[half]);
-    if (left <= 0) {
-      // Some rays pass left of the apex: onto the edge from a to c.
-      const t = mesh.twin[hl];
-      if (t >= 0) {
-        const ex = cx / la,
-          ey = cy / la;
-        const t0 = b0 <= 0 ? 0 : crossing(b0, 0, d0x, d0y, ex, ey, 0);
-        const t1 = right >= 0 ? la : crossing(b1, 0, d1x, d1y, ex, ey, la);
-        const a0x = t0 * ex,
-          a0y = t0 * ey;
-        const d = pointDistance(root, a0x, a0y, sx, sy, cos, sin);
-        if (!(vb + Math.hypot(len - a0x, a0y) < d - ROUNDING * (d + len)))
-          this.open(
-            t,
-            rootIndex,
-            w,
-            t0,
-            t1,
-            sx * ex + sy * ey,
-            sy * ex - sx * ey,
-            cos * ex - sin * ey,
-            sin * ex + cos * ey,
-            la,
-          );
-      }
+    if (left <= 0 && mesh.twin[hl] >= 0) {
+      // Some rays pass left of the apex: onto the edge from a to c. The end nearer to a is the one that b may beat.
+      const l = Math.sqrt(cx * cx + cy * cy);
+      const ex = cx / l,
+        ey = cy / l;
+      const t0 = b0 <= 0 ? 0 : crossing(b0, 0, d0x, d0y, ex, ey, 0);
+      const t1 = right >= 0 ? l : crossing(b1, 0, d1x, d1y, ex, ey, l);
+      if (!this.endBeaten(w, hr, t0 * ex - len, t0 * ey, t0 * ex, t0 * ey))
+        this.passOn(w, mesh.twin[hl], t0, t1, sx, sy, ex, ey, l);
     }
-    if (right >= 0) {
-      // Some pass right of it: onto the edge from c to b.
-      const t = mesh.twin[hr];
-      if (t >= 0) {
-        const ex = (len - cx) / lb,
-          ey = -cy / lb;
-        const t0 = left <= 0 ? 0 : crossing(b0 - cx, -cy, d0x, d0y, ex, ey, 0);
-        const t1 = b1 >= len ? lb : crossing(b1 - cx, -cy, d1x, d1y, ex, ey, lb);
-        const b1x = cx + t1 * ex,
-          b1y = cy + t1 * ey;
-        const d = pointDistance(root, b1x, b1y, sx, sy, cos, sin);
-        const px = sx - cx,
-          py = sy - cy;
-        if (!(va + Math.hypot(b1x, b1y) < d - ROUNDING * (d + len)))
-          this.open(
-            t,
-            rootIndex,
-            w,
-            t0,
-            t1,
-            px * ex + py * ey,
-            py * ex - px * ey,
-            cos * ex - sin * ey,
-            sin * ex + cos * ey,
-            lb,
-          );
-      }
+    if (right >= 0 && mesh.twin[hr] >= 0) {
+      // Some pass right of it: onto the edge from c to b. The end nearer to b is the one that a may beat.
+      const l = Math.sqrt((len - cx) * (len - cx) + cy * cy);
+      const ex = (len - cx) / l,
+        ey = -cy / l;
+      const t0 = left <= 0 ? 0 : crossing(b0 - cx, -cy, d0x, d0y, ex, ey, 0);
+      const t1 = b1 >= len ? l : crossing(b1 - cx, -cy, d1x, d1y, ex, ey, l);
+      const x = cx + t1 * ex,
+        y = cy + t1 * ey;
+      if (!this.endBeaten(w, half, x, y, x, y))
+        this.passOn(w, mesh.twin[hr], t0, t1, sx - cx, sy - cy, ex, ey, l);
     }
+  }
+
+  /**
+   * Xin and Wang's filter for the third vertex of the face: whether the vertex at which half-edge h starts, (dx, dy) away
+   * from the end (x, y) of the new window, gives that end a shorter way than window w does.
+   */
+  private endBeaten(w: number, h: number, dx: number, dy: number, x: number, y: number): boolean {
+    const { num, root } = this.windows;
+    const o = 8 * w;
+    const d = pointDistance(this.roots[root[w]], x, y, num[o + 2], num[o + 3], num[o + 4], num[o + 5]);
+    const by = this.vertexDistance(this.mesh.triangles[h]) + Math.sqrt(dx * dx + dy * dy);
+    return by < d - ROUNDING * (d + num[o + 7]);
+  }
+
+  /** Opens the part of window w that falls on half-edge t, whose frame has its x axis along (ex, ey) and the root at (px, py) from its start. */
+  private passOn(
+    w: number,
+    t: number,
+    t0: number,
+    t1: number,
+    px: number,
+    py: number,
+    ex: number,
+    ey: number,
+    length: number,
+  ): void {
+    const cos = this.windows.num[8 * w + 4];
+    const sin = this.windows.num[8 * w + 5];
+    this.open(
+      t,
+      this.windows.root[w],
+      w,
+      t0,
+      t1,
+      px * ex + py * ey,
+      py * ex - px * ey,
+      cos * ex - sin * ey,
+      sin * ex + cos * ey,
+      length,
+    );
   }
 
   private reachVertex(v: number, d: number, via: number, corner: number): void {
@@ -392,7 +483,20 @@ export class WindowSolver {
         if (d + last < t.best.distance) t.best = { distance: d + last, window: -1, root: -1, vertex: v };
       }
     }
-    if (this.geometry.bends(corner)) this.heap.push(-1 - v, d);
+    if (this.bends(v, corner)) this.heap.push(-1 - v, d);
+  }
+
+  private bends(v: number, corner: number): boolean {
+    this.bending[v] ||= this.geometry.bends(corner) ? BENDS : STRAIGHT;
+    return this.bending[v] === BENDS;
+  }
+
+  private vertexToGo(v: number): number {
+    const t = this.target!;
+    const p = this.position(v);
+    const straight = Math.hypot(p[0] - t.p[0], p[1] - t.p[1], p[2] - t.p[2]);
+    const bound = t.toGo ? t.toGo.at(v) : 0;
+    return Number.isNaN(bound) ? straight : Math.max(bound, straight);
   }
 
   private cornerOf(face: number, v: number): boolean {
@@ -466,67 +570,8 @@ export class WindowSolver {
     return this.geometry.position(v);
   }
 
-  private edgeToTarget(half: number, len: number, p: Vec3): number {
-    const { positions: x, triangles: t } = this.mesh;
-    const a = 3 * t[half],
-      b = 3 * t[next(half)];
-    const d = Math.hypot(
-      p[0] - (x[a] + x[b]) / 2,
-      p[1] - (x[a + 1] + x[b + 1]) / 2,
-      p[2] - (x[a + 2] + x[b + 2]) / 2,
-    );
-    return Math.max(0, d - len / 2);
-  }
-
   private vertexAt(p: SurfacePoint): number {
     const corner = cornerAt(p);
     return corner < 0 ? -1 : this.mesh.triangles[3 * p.face + corner];
   }
-}
-
-/** Length t along unit direction e, from the edge's start, of its crossing with the ray P + k d; `parallel` when they never meet. */
-function crossing(
-  px: number,
-  py: number,
-  dx: number,
-  dy: number,
-  ex: number,
-  ey: number,
-  parallel: number,
-): number {
-  const den = ex * dy - ey * dx;
-  return den === 0 ? parallel : (px * dy - py * dx) / den;
-}
-
-function pointDistance(
-  root: Root,
-  x: number,
-  y: number,
-  sx: number,
-  sy: number,
-  cos: number,
-  sin: number,
-): number {
-  return root.kind === 'point'
-    ? root.sigma + Math.hypot(x - sx, y - sy)
-    : Math.abs(sin * (x - sx) + cos * (y - sy));
-}
-
-const windowDistance = (root: Root, x: number, sx: number, sy: number, cos: number, sin: number): number =>
-  pointDistance(root, x, 0, sx, sy, cos, sin);
-
-function leastDistance(
-  root: Root,
-  b0: number,
-  b1: number,
-  sx: number,
-  sy: number,
-  cos: number,
-  sin: number,
-): number {
-  if (root.kind === 'point') {
-    const x = Math.max(b0, Math.min(sx, b1));
-    return root.sigma + Math.hypot(x - sx, sy);
-  }
-  return Math.min(windowDistance(root, b0, sx, sy, cos, sin), windowDistance(root, b1, sx, sy, cos, sin));
 }
