@@ -4,7 +4,7 @@ import type { Vec3 } from '../core/base/vec.ts';
 import { newProject } from '../core/project/new-project.ts';
 import type { Element, Project, Setup } from '../core/project/schema.ts';
 import { type WorkerClient, WorkFailure, wasStopped } from '../worker/client.ts';
-import type { PartPicture, Probe } from '../worker/pictures.ts';
+import type { CopperPicture, PartPicture, Probe } from '../worker/pictures.ts';
 import type { Ray } from '../worker/session.ts';
 import { type Act, apply, freeId, nameOf } from './document.ts';
 import { createFollower } from './follow.ts';
@@ -182,7 +182,7 @@ export function createStore(workers: Workers) {
           set({ tool: { ...tool, live: null } });
           continue;
         }
-        const to = snapped(probe.point, snap);
+        const to = snapped(probe, snap);
         const run = await workers.live.call('run', { from: tool.route[tool.route.length - 1]!, to });
         const now = get().tool;
         if (now.kind === 'trace' && now.route === tool.route) set({ tool: { ...now, live: { to, ...run } } });
@@ -210,13 +210,15 @@ export function createStore(workers: Workers) {
     set({ hover: { probe, triangle, element: triangle < 0 ? -1 : copper!.element[triangle]! } });
   }
 
-  /** The middle of a pad within `reach` mm of the point, or the point itself. */
-  function snapped(p: Vec3, reach: number): Vec3 {
-    let best: { at: Vec3; far: number } | null = null;
+  /** The middle of a pad within `reach` mm of the place and on the same side of its wall, or the place itself. */
+  function snapped({ at: p, normal }: Probe, reach: number): [number, number, number] {
+    const { copper } = current(get());
+    let best: { at: [number, number, number]; far: number } | null = null;
     for (const e of get().project?.circuit.elements ?? []) {
       if (e.kind !== 'pad') continue;
       const far = Math.hypot(p[0] - e.at[0], p[1] - e.at[1], p[2] - e.at[2]) - padRadius(e.shape) * 0.7;
-      if (far < reach && (!best || far < best.far)) best = { at: e.at, far };
+      if (far < reach && (!best || far < best.far) && !(copper && turnedAway(copper, e, normal)))
+        best = { at: e.at, far };
     }
     return best?.at ?? p;
   }
@@ -256,7 +258,7 @@ export function createStore(workers: Workers) {
         element.kind === 'trace' &&
         element.path
       )
-        return insertPoint(element.id, element.path, probe!.point);
+        return insertPoint(element.id, element.path, probe!.at);
       return select([element.id]);
     }
     if (!probe) return;
@@ -265,21 +267,21 @@ export function createStore(workers: Workers) {
         id: freeId(s.project, 'p'),
         kind: 'pad',
         net: s.pen.net,
-        at: round3(probe.point),
+        at: probe.at,
         shape: s.pen.shape,
         turn: 0,
       };
       act({ kind: 'add-element', element });
       return;
     }
-    await extend(snapped(probe.point, snap));
+    await extend(snapped(probe, snap));
   }
 
   async function extend(to: Vec3): Promise<void> {
     const { tool } = get();
     if (tool.kind !== 'trace') return;
     const last = tool.route[tool.route.length - 1];
-    if (!last) return set({ tool: { ...tool, route: [round3(to)], live: null } });
+    if (!last) return set({ tool: { ...tool, route: [to], live: null } });
     if (Math.hypot(last[0] - to[0], last[1] - to[1], last[2] - to[2]) < SAME_PLACE) return;
     const known = tool.live && tool.live.to === to ? tool.live : null;
     const run =
@@ -296,7 +298,7 @@ export function createStore(workers: Workers) {
         'There is no way over the surface to this place',
         'choose a place on the same piece of the part',
       );
-    set({ tool: { ...now, route: [...now.route, round3(to)], runs: [...now.runs, run.points], live: null } });
+    set({ tool: { ...now, route: [...now.route, to], runs: [...now.runs, run.points], live: null } });
   }
 
   /** Ends the trace being drawn; fewer than two places make none. */
@@ -331,7 +333,7 @@ export function createStore(workers: Workers) {
     else select([]);
   }
 
-  function insertPoint(id: string, path: Float32Array, at: Vec3): void {
+  function insertPoint(id: string, path: Float32Array, at: [number, number, number]): void {
     const e = get().project?.circuit.elements.find((x) => x.id === id);
     if (e?.kind !== 'trace') return;
     const nearest = (p: readonly number[]) => {
@@ -345,7 +347,7 @@ export function createStore(workers: Workers) {
     const here = nearest(at);
     let index = e.route.findIndex((r, i) => i > 0 && nearest(r.at) >= here);
     if (index < 0) index = e.route.length - 1;
-    act({ kind: 'add-point', id, index, at: round3(at) });
+    act({ kind: 'add-point', id, index, at });
   }
 
   let dragging: { gesture: string; waiting: Ray | null; running: Promise<void> | null } | null = null;
@@ -362,9 +364,9 @@ export function createStore(workers: Workers) {
         const probe = await pick(next);
         const e = get().project?.circuit.elements.find((x) => x.id === id);
         if (!probe || !e) continue;
-        if (e.kind === 'pad') act({ kind: 'move-pad', id, at: round3(probe.point) }, mine.gesture);
+        if (e.kind === 'pad') act({ kind: 'move-pad', id, at: probe.at }, mine.gesture);
         else {
-          const at = round3(snapped(probe.point, snap));
+          const at = snapped(probe, snap);
           act({ kind: 'move-point', id, index, at }, mine.gesture);
           const points = (e.kind === 'trace' ? e.route : e.outline).map((p) => p.at);
           const round = e.kind === 'region';
@@ -573,15 +575,27 @@ export const setupsOf = (project: Project): Setup[] =>
     ? [{ name: 'auto', pose: { rotate: [0, 0, 0, 1], move: [0, 0, 0] } }]
     : project.setups;
 
-const round3 = (p: Vec3): [number, number, number] => [r(p[0]), r(p[1]), r(p[2])];
-/** To 0.1 µm: far below what a bench can hold, and project files stay readable. */
-const r = (x: number): number => Math.round(x * 1e4) / 1e4 + 0;
-
 export function padRadius(shape: State['pen']['shape']): number {
   if ('circle' in shape) return shape.circle / 2;
   if ('rect' in shape) return Math.hypot(...shape.rect) / 2;
   if ('slot' in shape) return Math.max(...shape.slot) / 2;
   return Math.max(...shape.outline.map(([u, v]) => Math.hypot(u, v)));
+}
+
+/** Whether the copper in the middle of a pad looks away from a direction; false while it is not laid. */
+function turnedAway(copper: CopperPicture, pad: { id: string; at: Vec3 }, normal: Vec3): boolean {
+  const laid = copper.elements.find((e) => e.id === pad.id);
+  if (!laid) return false;
+  const { positions: x, normals: n, corners } = copper;
+  let [nearest, cosine] = [Infinity, 1];
+  for (const v of corners.subarray(3 * laid.first, 3 * (laid.first + laid.count))) {
+    const [i, j, k] = [3 * v, 3 * v + 1, 3 * v + 2];
+    const far = Math.hypot(x[i]! - pad.at[0], x[j]! - pad.at[1], x[k]! - pad.at[2]);
+    if (far >= nearest) continue;
+    nearest = far;
+    cosine = n[i]! * normal[0] + n[j]! * normal[1] + n[k]! * normal[2];
+  }
+  return cosine < 0;
 }
 
 /** Net of the pad that stands at this place: a trace that begins on a pad belongs to it. */

@@ -104,6 +104,8 @@ export interface PlanPicture {
 /** What stands under the pointer. */
 export interface Probe {
   point: Vec3;
+  /** The point as a project keeps it. */
+  at: [number, number, number];
   normal: Vec3;
   face: number;
   height: number;

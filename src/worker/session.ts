@@ -14,8 +14,9 @@ import { layerOfSamples } from '../core/layers/assign.ts';
 import type { SetupPlan } from '../core/layers/plan.ts';
 import { canGo, planLayers } from '../core/layers/plan-layers.ts';
 import type { SurfaceQueries } from '../core/mesh/queries.ts';
+import { roundedPlace } from '../core/mesh/rounded.ts';
 import type { SurfaceMesh } from '../core/mesh/surface-mesh.ts';
-import { barycentric, type SurfacePoint } from '../core/mesh/surface-point.ts';
+import { barycentric, faceNormal, type SurfacePoint } from '../core/mesh/surface-point.ts';
 import { type CornerNormals, normalAt } from '../core/part/normals.ts';
 import { loadPart, type Part, type Units } from '../core/part/part.ts';
 import { runJob, setupsOf } from '../core/pipeline.ts';
@@ -238,6 +239,7 @@ function probeAt(
   const blocked = queries.firstHit(addScaled(point, normal, LIFT), toward);
   return {
     point,
+    at: roundedPlace(queries, point, faceNormal(mesh, face)),
     normal,
     face,
     height: bench[2],

@@ -240,3 +240,78 @@ describe('saved or not', () => {
     expect(s().selection).toEqual([]);
   });
 });
+
+describe('a wall thinner than any rounding', () => {
+  /** A sheet of 0.02 µm: rounded to 0.1 µm both its sides go to the upper one. */
+  const sheet = (): Uint8Array => {
+    const [x, y, low, high] = [30, 20, 5.12346, 5.12348];
+    const v = (i: number) => [i & 1 ? x : 0, i & 2 ? y : 0, i & 4 ? high : low];
+    const quads = [
+      [0, 2, 3, 1],
+      [4, 5, 7, 6],
+      [0, 1, 5, 4],
+      [2, 6, 7, 3],
+      [0, 4, 6, 2],
+      [1, 3, 7, 5],
+    ];
+    const facets = quads.flatMap(([a, b, c, d]) => [
+      [a!, b!, c!],
+      [a!, c!, d!],
+    ]);
+    const bytes = new Uint8Array(84 + 50 * facets.length);
+    const view = new DataView(bytes.buffer);
+    view.setUint32(80, facets.length, true);
+    facets.forEach((f, i) => {
+      f.flatMap(v).forEach((n, k) => {
+        view.setFloat32(84 + 50 * i + 12 + 4 * k, n, true);
+      });
+    });
+    return bytes;
+  };
+  const up = (x: number, y: number) => ({ origin: [x, y, -100] as Vec3, direction: [0, 0, 1] as Vec3 });
+  /** Which way the copper of an element looks: +1 up, -1 down, 0 mixed. */
+  const looks = (id: string) => {
+    const c = current(s()).copper!;
+    const e = c.elements.find((x) => x.id === id)!;
+    const z = [...c.corners.subarray(3 * e.first, 3 * (e.first + e.count))].map((v) =>
+      Math.sign(c.normals[3 * v + 2]!),
+    );
+    return z.every((n) => n > 0) ? 1 : z.every((n) => n < 0) ? -1 : 0;
+  };
+  beforeEach(async () => {
+    const project = domeProject('sheet.stl');
+    project.circuit.elements = [];
+    await store.openProject(writeProject(project), 'sheet.drape.json', 'ref', {
+      ref: 'part',
+      bytes: sheet(),
+    });
+    await store.settled();
+  });
+
+  test('copper is laid on the side that was clicked', async () => {
+    store.setTool('pad');
+    for (const [i, x] of [4.3, 9.1, 15.7, 22.2].entries())
+      await store.press(i % 2 === 0 ? down(x, 11.3) : up(x, 11.3), 0, false);
+    await store.settled();
+    const ids = s().project!.circuit.elements.map((e) => e.id);
+    expect(ids.map(looks)).toEqual([1, -1, 1, -1]);
+  });
+
+  test('a trace drawn on one side does not end on a pad of the other', async () => {
+    store.setTool('pad');
+    await store.press(up(9.1, 11.3), 0, false);
+    await store.press(down(20.3, 11.3), 0, false);
+    await store.settled();
+    store.setTool('trace');
+    await store.press(down(9.15, 11.32), 0.5, false);
+    await store.press(down(20.35, 11.32), 0.5, false);
+    await store.finish();
+    await store.settled();
+    const [under, over, trace] = s().project!.circuit.elements;
+    expect(trace!.kind === 'trace' && trace.route.map((p) => [p.at[0], p.at[1]])).toEqual([
+      [9.15, 11.32],
+      [20.3, 11.3],
+    ]);
+    expect([under!, over!, trace!].map((e) => looks(e.id))).toEqual([-1, 1, 1]);
+  });
+});

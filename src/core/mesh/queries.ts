@@ -24,8 +24,10 @@ export interface SurfaceQueries {
   /**
    * Surface point nearest to `p`, or null when none lies within `within` mm.
    * Equal distances go to the lowest face number, so that the answer never depends on the tree.
+   * @param facing  any length; only faces whose outside is turned that way count, by less than a right angle: so a place
+   *                seen from outside never goes to the other side of a thin wall
    */
-  nearest(p: Vec3, within?: number): NearestHit | null;
+  nearest(p: Vec3, within?: number, facing?: Vec3): NearestHit | null;
   /** First face met by the ray from `origin` along the unit `direction`, from either side; null when none within `far` mm. */
   firstHit(origin: Vec3, direction: Vec3, far?: number): RayHit | null;
   /** Whether anything stands on the segment: quicker than `firstHit`. */
@@ -57,8 +59,8 @@ export function serializeQueries(queries: SurfaceQueries): SurfaceTree {
 export function restoreQueries(mesh: SurfaceMesh, tree: SurfaceTree): SurfaceQueries {
   const walk = walker(mesh, tree);
   const queries: SurfaceQueries = {
-    nearest: (p, within = Infinity) => {
-      const face = walk.nearest(p[0], p[1], p[2], within);
+    nearest: (p, within = Infinity, facing) => {
+      const face = walk.nearest(p[0], p[1], p[2], within, facing);
       return face < 0
         ? null
         : { point: [walk.foot[0], walk.foot[1], walk.foot[2]], face, distance: Math.sqrt(walk.foot[3]) };
@@ -155,7 +157,7 @@ function walker(mesh: SurfaceMesh, { boxes, links, order }: SurfaceTree) {
     return dx * dx + dy * dy + dz * dz;
   }
 
-  function nearest(px: number, py: number, pz: number, within: number): number {
+  function nearest(px: number, py: number, pz: number, within: number, facing?: Vec3): number {
     let best = within * within;
     let face = -1;
     let depth = 0;
@@ -175,6 +177,7 @@ function walker(mesh: SurfaceMesh, { boxes, links, order }: SurfaceTree) {
         const f = order[i];
         nearestOnFace(x, 3 * t[3 * f], 3 * t[3 * f + 1], 3 * t[3 * f + 2], px, py, pz, near);
         if (near[3] < best || (near[3] === best && (face < 0 || f < face))) {
+          if (facing && !turnedTo(x, 3 * t[3 * f], 3 * t[3 * f + 1], 3 * t[3 * f + 2], facing)) continue;
           best = near[3];
           face = f;
           foot.set(near);
@@ -279,6 +282,19 @@ function walker(mesh: SurfaceMesh, { boxes, links, order }: SurfaceTree) {
   }
 
   return { nearest, ray, foot };
+}
+
+/** Whether the outside of a triangle is turned toward a direction. Corners are offsets into `x`. */
+function turnedTo(x: Float64Array, a: number, b: number, c: number, facing: Vec3): boolean {
+  const ux = x[b] - x[a],
+    uy = x[b + 1] - x[a + 1],
+    uz = x[b + 2] - x[a + 2];
+  const vx = x[c] - x[a],
+    vy = x[c + 1] - x[a + 1],
+    vz = x[c + 2] - x[a + 2];
+  return (
+    (uy * vz - uz * vy) * facing[0] + (uz * vx - ux * vz) * facing[1] + (ux * vy - uy * vx) * facing[2] > 0
+  );
 }
 
 /**
