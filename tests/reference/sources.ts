@@ -18,6 +18,11 @@ export const sources = {
       'J. Milnor, A problem in cartography, Amer. Math. Monthly 76 (1969) 1101: least distortion of a spherical cap',
     seen: 'theorem from memory, values by formula',
   },
+  'karney-2013': {
+    title:
+      'C. F. F. Karney, Algorithms for geodesics, J. Geodesy 87 (2013) 43: lengths on spheroids, by quadrature of his integrals; geographiclib-geodesic 2.2.0 where the body is nearly round',
+    seen: 'computed',
+  },
   'gray-tubes': { title: 'A. Gray, Tubes, 1990 (Weyl’s formula): areas of bands', seen: 'formula' },
   'iso-11146': { title: 'ISO 11146-1: beam parameter product, M²', seen: 'formula, from memory' },
   siegman: { title: 'A. E. Siegman, Lasers, 1986: w(z), peak fluence', seen: 'formula' },

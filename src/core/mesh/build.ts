@@ -3,6 +3,7 @@ import { Fault, InputError } from '../base/news.ts';
 import type { RunContext } from '../base/run-context.ts';
 import { flipCaps, hasFlat } from './caps.ts';
 import { orient } from './orient.ts';
+import { splitFans } from './split-fans.ts';
 import type { Soup } from './stl.ts';
 import type { SurfaceMesh } from './surface-mesh.ts';
 import { splitAtCorners } from './t-junctions.ts';
@@ -16,8 +17,7 @@ export const MM_PER_UNIT = { mm: 1, cm: 10, m: 1000, um: 0.001, inch: 25.4 } as 
  * Welds, drops facets of no area and facets drawn twice, splits edges at corners that lie on them, pairs edges, winds
  * pieces alike and outward.
  *
- * A vertex where fans meet that share no edge (two cones tip to tip) stays one vertex: whoever walks around it goes by
- * half-edges, and so stays in one fan.
+ * Where fans meet that share no edge (two cones tip to tip), each has a vertex of its own.
  *
  * @param soup        facets, in the file's unit
  * @param unitsScale  millimetres in one unit of the file
@@ -42,8 +42,9 @@ export function buildMesh(soup: Soup, unitsScale: number, ctx: RunContext, file 
   ctx.step('load', 2 * facets, 3 * facets);
   const joined = mendJunctions(whole, welded.positions, welded.distance);
   const { partner, crowded } = joined.edges;
-  const { positions, triangles } = renumber(joined.triangles, welded.positions, unitsScale);
-  const { twin, pieceOf, pieces, turned, disagreeing } = orient(positions, triangles, partner);
+  const { positions: places, triangles } = renumber(joined.triangles, welded.positions, unitsScale);
+  const { twin, pieceOf, pieces, turned, disagreeing } = orient(places, triangles, partner);
+  const positions = splitFans(places, triangles, twin);
   let flipped = 0;
   for (const t of turned) flipped += t;
   ctx.step('load', 3 * facets, 3 * facets);
