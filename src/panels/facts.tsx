@@ -4,7 +4,7 @@ import type { Element } from '../core/project/schema.ts';
 import { type Margin, marginsOf, placeOf } from '../store/margins.ts';
 import { current, type State } from '../store/state.ts';
 import { show } from '../store/units.ts';
-import { Fact, NumberField, TextField } from './fields.tsx';
+import { ChoiceField, Fact, NumberField, TextField } from './fields.tsx';
 import { useLook, useWindow } from './window.tsx';
 
 export function Facts() {
@@ -91,6 +91,29 @@ function One({ element: e, state }: { element: Element; state: State }) {
           open
           onValue={(width) => edit('width', { width })}
         />
+      )}
+      {e.kind === 'trace' && (
+        <div className="two">
+          <ChoiceField
+            label="Ends"
+            value={e.ends ?? 'round'}
+            options={[
+              ['round', 'round'],
+              ['square', 'square'],
+              ['butt', 'butt'],
+            ]}
+            onValue={(ends) => edit('ends', { ends })}
+          />
+          <ChoiceField
+            label="Bends"
+            value={e.bends ?? 'round'}
+            options={[
+              ['round', 'round'],
+              ['miter', 'mitred'],
+            ]}
+            onValue={(bends) => edit('bends', { bends })}
+          />
+        </div>
       )}
       {e.kind === 'pad' && <PadFields e={e} edit={edit} />}
       {laid && (

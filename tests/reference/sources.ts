@@ -23,6 +23,10 @@ export const sources = {
       'C. F. F. Karney, Algorithms for geodesics, J. Geodesy 87 (2013) 43: lengths on spheroids, by quadrature of his integrals; geographiclib-geodesic 2.2.0 where the body is nearly round',
     seen: 'computed',
   },
+  'svg-2': {
+    title: 'W3C SVG 2, ch. 13: line caps, line joins, miter limit',
+    seen: 'words from memory, areas by formula',
+  },
   'gray-tubes': { title: 'A. Gray, Tubes, 1990 (Weyl’s formula): areas of bands', seen: 'formula' },
   'iso-11146': { title: 'ISO 11146-1: beam parameter product, M²', seen: 'formula, from memory' },
   siegman: { title: 'A. E. Siegman, Lasers, 1986: w(z), peak fluence', seen: 'formula' },

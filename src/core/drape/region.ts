@@ -5,7 +5,7 @@ import { faceNormal } from '../mesh/surface-point.ts';
 import type { Region } from '../project/schema.ts';
 import { type Band, band } from './band.ts';
 import { type Draped, layOut } from './element.ts';
-import { boxBound, heldDistance } from './lower-bound.ts';
+import { heldDistance } from './lower-bound.ts';
 import { AREA_STEP } from './pad.ts';
 import { joinRoute, type Place } from './route.ts';
 import { selfCrossing } from './self-crossing.ts';
@@ -48,7 +48,6 @@ export function drapeRegion(
       findings: [{ rule: 'crossed', element: region.id, at: crossed, text: 'the outline crosses itself' }],
     };
   const depth = (path.length / (2 * Math.PI)) * DEPTH;
-  const far = boxBound(path.points);
   // As far outside as inside: at a sharp corner the side that is nearer must be heard on both of its sides.
   const rim = band(solver, path, { left: depth, right: depth, closed: true, stops: route.stops });
   // Fill lines run along the longest line from corner to corner, and keep their distance from it.
@@ -61,7 +60,7 @@ export function drapeRegion(
       (face, p) => {
         const at = rim.at(face, p);
         if (!at || at.distance > depth)
-          return { edge: heldDistance(null, depth, () => far(p)), hatch: 0, along: 0 };
+          return { edge: heldDistance(null, depth, () => rim.far(p)), hatch: 0, along: 0 };
         const h = hatch?.at(face, p);
         if (!h && at.across > 0) blind = true;
         return { edge: at.across > 0 ? -at.distance : at.distance, hatch: h ? h.across : 0, along: 0 };

@@ -1,11 +1,13 @@
-/** A trace: the strip of half its width around the shortest path through its route points, with round ends. */
+/** A trace: the strip of half its width around the shortest path through its route points. */
 import type { WindowSolver } from '../geodesic/windows.ts';
 import type { Trace } from '../project/schema.ts';
 import { band } from './band.ts';
 import type { CopperElement } from './copper.ts';
 import { type Draped, layOut, MARGIN } from './element.ts';
-import { boxBound, heldDistance } from './lower-bound.ts';
+import { lengthen } from './lengthen.ts';
+import { heldDistance } from './lower-bound.ts';
 import { joinRoute, type Place } from './route.ts';
+import { type Strip, stripDistance, stripHatch, stripReach } from './strip.ts';
 
 /** Longest patch edge inside a trace, mm: model.md §5's step. */
 export const traceStep = (width: number): number => Math.min(0.1, width / 4);
@@ -33,16 +35,44 @@ export function drapeTrace(solver: WindowSolver, trace: Trace, places: readonly 
       ],
     };
   const half = trace.width / 2;
+  const strip: Strip = {
+    half,
+    ends: trace.ends ?? 'round',
+    bends: trace.bends ?? 'round',
+    length: path.length,
+  };
   const reach = half + MARGIN;
-  const field = band(solver, path, { left: reach, right: reach, stops: route.stops });
-  const far = boxBound(path.points);
+  // A square end is that of a longer strip.
+  const {
+    path: middle,
+    lead,
+    pieces,
+  } = strip.ends === 'square' ? lengthen(solver.mesh, path, half) : { path, lead: 0, pieces: 0 };
+  let farthest = half;
+  const field = band(solver, middle, {
+    left: reach,
+    right: reach,
+    stops: route.stops.map((i) => i + pieces),
+    ...(strip.bends === 'round'
+      ? {}
+      : {
+          bendReach: (turn) => {
+            const most = stripReach(strip, turn);
+            farthest = Math.max(farthest, most);
+            return most + MARGIN;
+          },
+        }),
+  });
+  const bends = field.bends.map((b) => ({ ...b, along: b.along - lead }));
   const laid = layOut(
     solver.mesh,
     field.faces,
     (face, p) => {
       const at = field.at(face, p);
-      const edge = heldDistance(at?.distance ?? null, reach, () => far(p)) - half;
-      return at ? { edge, hatch: at.across, along: at.along } : { edge, hatch: 0, along: 0 };
+      if (at) at.along -= lead;
+      const seen = at && stripDistance(strip, at, bends);
+      const edge = heldDistance(seen, reach, () => field.far(p) - (farthest - half)) - half;
+      return at ? { edge, hatch: stripHatch(strip, at), along: at.along } : { edge, hatch: 0, along: 0 };
     },
     traceStep(trace.width),
   );

@@ -132,6 +132,9 @@ const trace = z.looseObject({
   net,
   width: positive,
   route: z.array(place).min(2),
+  /** How it is finished, in the words of SVG 2; left out, round. A mitre past four times the width is bevelled. */
+  ends: z.enum(['round', 'square', 'butt']).optional(),
+  bends: z.enum(['round', 'miter']).optional(),
 });
 const pad = z.looseObject({
   id,
