@@ -234,10 +234,12 @@ function pass(g: FaceGeometry, exit: Exit): Walker | null {
   const fan = g.fan(half);
   if (fan.border) return null;
   const own = g.cornerAngle(half);
-  // Angle of the way that the line came, from the half-edge.
+  // Angle of the way that the line came, from the half-edge. A line that passed a hair beside the vertex over another edge
+  // came from outside this corner: its faces are unfolded around the vertex, and so is its angle.
   const came = exit.share === 0 ? Math.atan2(exit.out, -exit.along) : own - Math.atan2(exit.out, exit.along);
-  const back = fan.angles[fan.halves.indexOf(half)] + clamp(came, 0, own);
-  return atAngle(g, fan, (back + fan.total / 2) % fan.total);
+  const back = fan.angles[fan.halves.indexOf(half)] + came;
+  const out = (back + fan.total / 2) % fan.total;
+  return atAngle(g, fan, out < 0 ? out + fan.total : out);
 }
 
 const headingOf = ({ half, dx, dy }: Walker): Heading => ({ half, dx, dy });
