@@ -1,14 +1,14 @@
 /** From loose facets to the surface that every later stage works on. */
 import { Fault, InputError } from '../base/news.ts';
 import type { RunContext } from '../base/run-context.ts';
-import { flipCaps, hasFlat } from './caps.ts';
+import { flipCaps, hasFlat, isFlat } from './caps.ts';
 import { orient } from './orient.ts';
 import { splitFans } from './split-fans.ts';
 import type { Soup } from './stl.ts';
-import type { SurfaceMesh } from './surface-mesh.ts';
+import type { Mended, SurfaceMesh } from './surface-mesh.ts';
 import { splitAtCorners } from './t-junctions.ts';
-import { pairEdges } from './twins.ts';
-import { weld } from './weld.ts';
+import { type Edges, pairEdges } from './twins.ts';
+import { weldDistance, weldExact, weldNear } from './weld.ts';
 
 /** Millimetres in one unit of the file. */
 export const MM_PER_UNIT = { mm: 1, cm: 10, m: 1000, um: 0.001, inch: 25.4 } as const;
@@ -28,22 +28,11 @@ export const MM_PER_UNIT = { mm: 1, cm: 10, m: 1000, um: 0.001, inch: 25.4 } as 
 export function buildMesh(soup: Soup, unitsScale: number, ctx: RunContext, file = 'part'): SurfaceMesh {
   if (!(unitsScale > 0 && unitsScale < Infinity)) throw new Fault(`units scale ${unitsScale}`);
   const facets = soup.corners.length / 9;
-  const welded = weld(soup.corners, ctx);
-  const kept = keepFacets(welded.vertex);
-  const whole = mendCaps(cornersOf(welded.vertex, kept.facetOfFace), kept, welded.positions, welded.distance);
-  if (whole.facetOfFace.length === 0)
-    throw new InputError({
-      code: 'no-area',
-      file,
-      place: '',
-      problem: 'none of the facets has an area',
-      mend: 'export the part again',
-    });
+  const joined = join(soup.corners, ctx, file);
   ctx.step('load', 2 * facets, 3 * facets);
-  const joined = mendJunctions(whole, welded.positions, welded.distance);
-  const { partner, crowded } = joined.edges;
-  const { positions: places, triangles } = renumber(joined.triangles, welded.positions, unitsScale);
-  const { twin, pieceOf, pieces, turned, disagreeing } = orient(places, triangles, partner);
+  const places = scaled(joined.positions, unitsScale);
+  const { triangles } = joined;
+  const { twin, pieceOf, pieces, turned, disagreeing } = orient(places, triangles, joined.edges.partner);
   const positions = splitFans(places, triangles, twin);
   let flipped = 0;
   for (const t of turned) flipped += t;
@@ -60,15 +49,77 @@ export function buildMesh(soup: Soup, unitsScale: number, ctx: RunContext, file 
     closed: pieces.every((p) => p.closed),
     area: pieces.reduce((s, p) => s + p.area, 0),
     volume: pieces.reduce((s, p) => s + p.volume, 0),
+    mended: { ...joined.mended, flipped, nonManifoldEdges: joined.edges.crowded + disagreeing },
+  };
+}
+
+interface Joined {
+  /** In the file's unit, 3 a vertex. */
+  positions: Float64Array;
+  triangles: Uint32Array;
+  edges: Edges;
+  facetOfFace: Int32Array;
+  mended: Pick<Mended, 'welded' | 'degenerate' | 'duplicate' | 'split'>;
+}
+
+/** Facets by their vertices, joined edge to edge. Where every edge joins two facets as it stands there is nothing to look for. */
+function join(corners: Float64Array, ctx: RunContext, file: string): Joined {
+  const exact = weldExact(corners, ctx);
+  const { vertex: triangles, positions } = exact;
+  const edges = isWhole(positions, triangles, weldDistance(corners));
+  if (edges)
+    return {
+      positions,
+      triangles,
+      edges,
+      facetOfFace: new Int32Array(triangles.length / 3).map((_, f) => f),
+      mended: { welded: 0, degenerate: 0, duplicate: 0, split: 0 },
+    };
+  const welded = weldNear(exact, weldDistance(corners));
+  const kept = keepFacets(welded.vertex);
+  const whole = mendCaps(cornersOf(welded.vertex, kept.facetOfFace), kept, welded.positions, welded.distance);
+  if (whole.facetOfFace.length === 0)
+    throw new InputError({
+      code: 'no-area',
+      file,
+      place: '',
+      problem: 'none of the facets has an area',
+      mend: 'export the part again',
+    });
+  const mended = mendJunctions(whole, welded.positions, welded.distance);
+  return {
+    ...renumber(mended.triangles, welded.positions),
+    edges: mended.edges,
+    facetOfFace: mended.facetOfFace,
     mended: {
       welded: welded.joined,
       degenerate: kept.degenerate + whole.caps,
       duplicate: kept.duplicate,
-      flipped,
-      split: joined.split,
-      nonManifoldEdges: crowded + disagreeing,
+      split: mended.split,
     },
   };
+}
+
+/** The pairing of edges, when each joins two facets, no two facets are the same and none is flat; otherwise null. */
+function isWhole(x: Float64Array, triangles: Uint32Array, distance: number): Edges | null {
+  for (let h = 0; h < triangles.length; h += 3) {
+    const [a, b, c] = [triangles[h], triangles[h + 1], triangles[h + 2]];
+    if (a === b || b === c || c === a || isFlat(x, a, b, c, distance)) return null;
+  }
+  const edges = pairEdges(triangles, x.length / 3);
+  const { partner } = edges;
+  if (edges.crowded > 0 || triangles.length === 0) return null;
+  for (let h = 0; h < partner.length; h += 3) {
+    if (partner[h] < 0 || partner[h + 1] < 0 || partner[h + 2] < 0) return null;
+    const g = (partner[h] / 3) | 0;
+    if (((partner[h + 1] / 3) | 0) === g && ((partner[h + 2] / 3) | 0) === g) return null;
+  }
+  return edges;
+}
+
+function scaled(x: Float64Array, scale: number): Float64Array {
+  if (scale !== 1) for (let i = 0; i < x.length; i++) x[i] *= scale;
+  return x;
 }
 
 interface Kept {
@@ -176,8 +227,8 @@ function sameCorners(vertex: Uint32Array, f: number, lo: number, mid: number, hi
   return Math.min(a, b, c) === lo && Math.max(a, b, c) === hi && (a ^ b ^ c ^ lo ^ hi) === mid;
 }
 
-/** Vertices that faces use, in order of first use, in mm. */
-function renumber(from: Uint32Array, x: Float64Array, scale: number) {
+/** Vertices that faces use, in order of first use. */
+function renumber(from: Uint32Array, x: Float64Array) {
   const number = new Int32Array(x.length / 3).fill(-1);
   const triangles = new Uint32Array(from.length);
   const positions = new Float64Array(x.length);
@@ -186,7 +237,7 @@ function renumber(from: Uint32Array, x: Float64Array, scale: number) {
     const v = from[c];
     if (number[v] < 0) {
       number[v] = count;
-      for (let k = 0; k < 3; k++) positions[3 * count + k] = x[3 * v + k] * scale;
+      for (let k = 0; k < 3; k++) positions[3 * count + k] = x[3 * v + k];
       count++;
     }
     triangles[c] = number[v];

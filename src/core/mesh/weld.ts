@@ -19,12 +19,18 @@ export interface Welded {
   distance: number;
 }
 
-/** @param corners  3 a corner; –0 counts as +0 */
-export function weld(corners: Float64Array, ctx: RunContext): Welded {
-  const exact = weldExact(corners, ctx);
+/** Distance below which two places are meant to be one. @param corners  3 a corner */
+export function weldDistance(corners: Float64Array): number {
   let largest = 0;
-  for (let i = 0; i < corners.length; i++) largest = Math.max(largest, Math.abs(corners[i]));
-  const distance = WELD_ULPS * FLOAT32_ULP * largest;
+  for (let i = 0; i < corners.length; i++) {
+    const x = Math.abs(corners[i]);
+    if (x > largest) largest = x;
+  }
+  return WELD_ULPS * FLOAT32_ULP * largest;
+}
+
+/** Joins places within the weld distance. @param exact  from `weldExact` */
+export function weldNear(exact: Exact, distance: number): Welded {
   const to = joinNear(exact.positions, distance);
   const count = exact.positions.length / 3;
   const number = new Uint32Array(count);
@@ -38,31 +44,41 @@ export function weld(corners: Float64Array, ctx: RunContext): Welded {
   return { vertex, positions, joined: count - kept, distance };
 }
 
-function weldExact(corners: Float64Array, ctx: RunContext): { vertex: Uint32Array; positions: Float64Array } {
+export interface Exact {
+  /** Vertex of each corner. */
+  vertex: Uint32Array;
+  /** 3 a vertex, in order of first appearance. */
+  positions: Float64Array;
+}
+
+/** One vertex for corners that are the same bit for bit. @param corners  3 a corner; –0 counts as +0 */
+export function weldExact(corners: Float64Array, ctx: RunContext): Exact {
   const n = corners.length / 3;
   const vertex = new Uint32Array(n);
   let positions = new Float64Array(Math.max(30, n));
-  const key = new Float64Array(3);
+  // Places as float32, as files hold them: half the bits to hash, and what that makes equal is told apart below.
+  const key = new Float32Array(3);
   const bits = new Int32Array(key.buffer);
   let size = 1 << Math.max(4, Math.ceil(Math.log2(n / 3 + 1)));
   let table = new Int32Array(size).fill(-1);
   let count = 0;
   // Finalizer of MurmurHash3 (Appleby, public domain): spreads the low bits, which grids leave empty.
   const slotOf = (): number => {
-    let h = 0;
-    for (let i = 0; i < 6; i++) {
-      h = Math.imul(h ^ bits[i], 0x85ebca6b);
-      h ^= h >>> 15;
-    }
-    h = Math.imul(h, 0xc2b2ae35);
+    let h = Math.imul(bits[0], 0x85ebca6b);
+    h = Math.imul(h ^ (h >>> 15) ^ bits[1], 0x85ebca6b);
+    h = Math.imul(h ^ (h >>> 15) ^ bits[2], 0x85ebca6b);
+    h = Math.imul(h ^ (h >>> 15), 0xc2b2ae35);
     return (h ^ (h >>> 16)) & (size - 1);
   };
   for (let c = 0; c < n; c++) {
     if (c % 262144 === 0) ctx.step('load', n + c, 3 * n);
     // x + 0 turns –0 into +0.
-    const x = (key[0] = corners[3 * c] + 0);
-    const y = (key[1] = corners[3 * c + 1] + 0);
-    const z = (key[2] = corners[3 * c + 2] + 0);
+    const x = corners[3 * c] + 0;
+    const y = corners[3 * c + 1] + 0;
+    const z = corners[3 * c + 2] + 0;
+    key[0] = x;
+    key[1] = y;
+    key[2] = z;
     let s = slotOf();
     let v = table[s];
     while (v >= 0 && (positions[3 * v] !== x || positions[3 * v + 1] !== y || positions[3 * v + 2] !== z)) {
