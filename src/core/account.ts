@@ -5,6 +5,7 @@ import type { Vec3 } from './base/vec.ts';
 import { focusedBeam, halfDepth } from './beam/beam.ts';
 import { netReports } from './copper/nets.ts';
 import { plating } from './copper/plating.ts';
+import { unionArea } from './copper/union-area.ts';
 import type { Copper, CopperElement } from './drape/copper.ts';
 import type { DrapeFinding } from './drape/element.ts';
 import { triangleArea } from './drape/level-lines.ts';
@@ -33,8 +34,8 @@ export function openReport(
   findings: readonly DrapeFinding[],
 ): Report {
   const beam = focusedBeam(project.head);
-  const area = copper.elements.reduce((sum, e) => sum + e.area, 0);
-  const plated = plating(area, project.copper);
+  // Whatever its net: where elements lie over each other there is one layer of copper.
+  const plated = plating(unionArea(copper.elements.map((e) => e.copper)), project.copper);
   return {
     format: 'beamdrape-report',
     version: 1,

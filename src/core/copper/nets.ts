@@ -5,11 +5,12 @@ import type { Project } from '../project/schema.ts';
 import { guideCurrent, stripResistance } from './conduct.ts';
 import { type Contact, contacts } from './contacts.ts';
 import { solveResistance } from './network.ts';
+import { unionArea } from './union-area.ts';
 
 /**
  * @returns one a net, in the order of first appearance; elements without a net are left out.
  * Resistances count traces along their centre lines between the places where other copper of the net meets them;
- * pads and regions count as one potential. Areas of elements that overlap are counted in each.
+ * pads and regions count as one potential. The area is that of all copper of the net together, each place counted once.
  */
 export function netReports(project: Project, copper: Copper): NetReport[] {
   const names = [...new Set(copper.elements.map((e) => e.net).filter((n) => n !== ''))];
@@ -20,7 +21,7 @@ export function netReports(project: Project, copper: Copper): NetReport[] {
     return {
       name,
       pieces: pieceCount(elements.length, joined),
-      area: elements.reduce((sum, e) => sum + e.area, 0),
+      area: unionArea(elements.map((e) => e.copper)),
       resistance_mohm: padPairs(project, elements, joined),
       current_A: widths.length > 0 ? guideCurrent(Math.min(...widths), project.copper) : 0,
     };
