@@ -5,7 +5,7 @@ export interface Step {
   name: string;
   before: Project;
   after: Project;
-  /** Acts of the same gesture join into one step; null never joins. */
+  /** Acts of the same gesture join into one step, named after the first; null never joins. */
   gesture: string | null;
 }
 
@@ -29,7 +29,7 @@ export function record(
   if (before === after) return h;
   const last = h.past[h.past.length - 1];
   if (gesture !== null && last?.gesture === gesture)
-    return { past: [...h.past.slice(0, -1), { ...last, name, after }], future: [] };
+    return { past: [...h.past.slice(0, -1), { ...last, after }], future: [] };
   return { past: [...h.past, { name, before, after, gesture }].slice(-DEPTH), future: [] };
 }
 

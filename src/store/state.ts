@@ -38,7 +38,7 @@ export type Tool =
       /** Way over the surface between each two of them. */
       runs: Float32Array[];
       /** From the last place to the pointer. */
-      live: { to: Vec3; points: Float32Array | null; length: number } | null;
+      live: { to: Vec3; points: Float32Array | null; length: number; sure: boolean } | null;
     }
   | { kind: 'pad' };
 

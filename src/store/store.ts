@@ -4,7 +4,7 @@ import type { Vec3 } from '../core/base/vec.ts';
 import { newProject } from '../core/project/new-project.ts';
 import type { Element, Project, Setup } from '../core/project/schema.ts';
 import { type WorkerClient, WorkFailure, wasStopped } from '../worker/client.ts';
-import type { CopperPicture, PartPicture, Probe } from '../worker/pictures.ts';
+import type { CopperPicture, LiveRun, PartPicture, Probe } from '../worker/pictures.ts';
 import type { Ray } from '../worker/session.ts';
 import { type Act, apply, freeId, nameOf } from './document.ts';
 import { createFollower } from './follow.ts';
@@ -183,9 +183,18 @@ export function createStore(workers: Workers) {
           continue;
         }
         const to = snapped(probe, snap);
-        const run = await workers.live.call('run', { from: tool.route[tool.route.length - 1]!, to });
-        const now = get().tool;
-        if (now.kind === 'trace' && now.route === tool.route) set({ tool: { ...now, live: { to, ...run } } });
+        const from = tool.route[tool.route.length - 1]!;
+        const hold = { hand: `draw ${tool.route.length} from ${from.join()}`, name: 'live' };
+        const show = (run: LiveRun) => {
+          const now = get().tool;
+          if (now.kind === 'trace' && now.route === tool.route)
+            set({ tool: { ...now, live: { to, ...run } } });
+        };
+        const glance = await workers.live.call('glance', { from, to, hold });
+        show(glance);
+        // A far way is looked into once the pointer rests.
+        for (let t = 0; !glance.sure && waiting === null && t < REST; t += FRAME) await pause(FRAME);
+        if (!glance.sure && waiting === null) show(await workers.live.call('run', { from, to }));
       }
     } catch (error) {
       fail(error, 'Following the pointer');
@@ -283,7 +292,7 @@ export function createStore(workers: Workers) {
     const last = tool.route[tool.route.length - 1];
     if (!last) return set({ tool: { ...tool, route: [to], live: null } });
     if (Math.hypot(last[0] - to[0], last[1] - to[1], last[2] - to[2]) < SAME_PLACE) return;
-    const known = tool.live && tool.live.to === to ? tool.live : null;
+    const known = tool.live?.sure && tool.live.to === to ? tool.live : null;
     const run =
       known ??
       (await workers.live.call('run', { from: last, to }).catch((error: unknown) => {
@@ -350,11 +359,27 @@ export function createStore(workers: Workers) {
     act({ kind: 'add-point', id, index, at });
   }
 
-  let dragging: { gesture: string; waiting: Ray | null; running: Promise<void> | null } | null = null;
+  interface Drag {
+    gesture: string;
+    waiting: Ray | null;
+    running: Promise<void> | null;
+    /** The ways to the dragged point, from the points before and after it; where it was at first. */
+    ways: { name: 'before' | 'after'; from: Vec3; was: Vec3 }[];
+    id: string;
+    index: number;
+  }
+  let dragging: Drag | null = null;
 
   /** Drags a point of an element to where the ray meets the part; `end` makes it one step. */
   function drag(id: string, index: number, ray: Ray, snap: number): void {
-    dragging ??= { gesture: `drag ${++asked}`, waiting: null, running: null };
+    dragging ??= {
+      gesture: `drag ${++asked}`,
+      waiting: null,
+      running: null,
+      ways: waysTo(id, index),
+      id,
+      index,
+    };
     const mine = dragging;
     mine.waiting = ray;
     mine.running ??= (async () => {
@@ -368,12 +393,10 @@ export function createStore(workers: Workers) {
         else {
           const at = snapped(probe, snap);
           act({ kind: 'move-point', id, index, at }, mine.gesture);
-          const points = (e.kind === 'trace' ? e.route : e.outline).map((p) => p.at);
-          const round = e.kind === 'region';
-          const before = points[index - 1] ?? (round ? points[points.length - 1] : undefined);
-          const after = points[index + 1] ?? (round ? points[0] : undefined);
           const runs = await Promise.all(
-            [before, after].flatMap((p) => (p ? [workers.live.call('run', { from: p, to: at })] : [])),
+            mine.ways.map(({ name, from, was }) =>
+              workers.live.call('pull', { from, to: at, hold: { hand: mine.gesture, name, was } }),
+            ),
           );
           set({ preview: runs.flatMap((r) => (r.points ? [r.points] : [])) });
         }
@@ -382,12 +405,50 @@ export function createStore(workers: Workers) {
     })().catch((error) => fail(error, 'Moving the point'));
   }
 
+  function waysTo(id: string, index: number): Drag['ways'] {
+    const e = get().project?.circuit.elements.find((x) => x.id === id);
+    if (!e || e.kind === 'pad') return [];
+    const points = (e.kind === 'trace' ? e.route : e.outline).map((p) => p.at);
+    const was = points[index]!;
+    const round = e.kind === 'region';
+    const before = points[index - 1] ?? (round ? points[points.length - 1] : undefined);
+    const after = points[index + 1] ?? (round ? points[0] : undefined);
+    return [
+      ...(before ? [{ name: 'before' as const, from: before, was }] : []),
+      ...(after ? [{ name: 'after' as const, from: after, was }] : []),
+    ];
+  }
+
+  /**
+   * Lets go. Routes are shortest ways from point to point; where a dragged way is not the shortest any more, points are
+   * added that hold it on its side, in the same step.
+   */
   async function endDrag(): Promise<void> {
     const mine = dragging;
     dragging = null;
     await mine?.running;
+    if (mine) await pinDown(mine).catch((error) => fail(error, 'Holding the way'));
     set((s) => ({ history: seal(s.history), preview: [] }));
     follower.wake();
+  }
+
+  async function pinDown({ gesture, ways, id, index }: Drag): Promise<void> {
+    const [before, after] = await Promise.all(
+      (['before', 'after'] as const).map(async (name) =>
+        ways.some((w) => w.name === name) ? workers.live.call('pins', { hand: gesture, name }) : [],
+      ),
+    );
+    // The later ones first, so that numbers of earlier points stay; those after run from the far point to this one.
+    for (const at of after!) act({ kind: 'add-point', id, index: index + 1, at }, gesture);
+    for (const at of [...before!].reverse()) act({ kind: 'add-point', id, index, at }, gesture);
+    const added = before!.length + after!.length;
+    if (added > 0)
+      notify(
+        'done',
+        added === 1
+          ? 'A point was added that keeps the way on its side, where another is shorter'
+          : `${added} points were added that keep the way on its side, where another is shorter`,
+      );
   }
 
   return {
@@ -566,6 +627,11 @@ export function createStore(workers: Workers) {
     settled: follower.settled,
   };
 }
+
+/** A pointer that has not moved for this long rests, ms; how often that is looked at. */
+const REST = 240;
+const FRAME = 16;
+const pause = (ms: number): Promise<void> => new Promise((done) => setTimeout(done, ms));
 
 /** Two clicks closer than this are one, mm: well under the narrowest trace. */
 const SAME_PLACE = 0.02;

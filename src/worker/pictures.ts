@@ -118,6 +118,8 @@ export interface LiveRun {
   /** Way over the surface, 3 a point; null when there is none. */
   points: Float32Array | null;
   length: number;
+  /** Known to be the shortest. */
+  sure: boolean;
 }
 
 export interface ExportResult {

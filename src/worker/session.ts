@@ -9,7 +9,7 @@ import type { Copper, CopperElement } from '../core/drape/copper.ts';
 import { type Draper, drapeElement, prepareDraper } from '../core/drape/drape.ts';
 import type { Draped, DrapeFinding } from '../core/drape/element.ts';
 import { triangleArea } from '../core/drape/level-lines.ts';
-import { shortestWith } from '../core/geodesic/shortest.ts';
+import { type GeodesicPath, shortestWith } from '../core/geodesic/shortest.ts';
 import { layerOfSamples } from '../core/layers/assign.ts';
 import type { SetupPlan } from '../core/layers/plan.ts';
 import { canGo, planLayers } from '../core/layers/plan-layers.ts';
@@ -27,6 +27,7 @@ import type { SetupReach } from '../core/reach/result.ts';
 import { gapRule } from '../core/rules/gap.ts';
 import { widthRule } from '../core/rules/width.ts';
 import { creases } from './creases.ts';
+import { HeldPaths, type Hold } from './held-paths.ts';
 import {
   type CopperPicture,
   ELSEWHERE,
@@ -60,6 +61,7 @@ export type Session = ReturnType<typeof createSession>;
 export function createSession() {
   let part: Part | null = null;
   let draper: Draper | null = null;
+  let held: HeldPaths | null = null;
   let project: Project | null = null;
   let copper: Copper | null = null;
   let reached: { key: string; copper: Copper; value: SetupReach[] } | null = null;
@@ -79,6 +81,8 @@ export function createSession() {
     openPart(a: { bytes: Uint8Array; file: string; units: Units }, ctx: RunContext): PartPicture {
       part = loadPart(a.bytes, a.file, a.units, ctx);
       draper = prepareDraper(part);
+      const { mesh: surface, queries } = part;
+      held = new HeldPaths(draper.solver, (p) => surfacePoint(surface, queries, p));
       laid.clear();
       copper = null;
       const { mesh, normals } = part;
@@ -192,17 +196,42 @@ export function createSession() {
       return hit === null ? null : probeAt(mesh, queries, normals, hit.point, hit.face, a.setup, a.head);
     },
 
-    /** The shortest way from the last point of a route to where the ray meets the part. */
+    /** The shortest way from one place to another. */
     run(a: { from: Vec3; to: Vec3 }): LiveRun {
       const { mesh, queries } = needPart();
+      return liveRun(
+        shortestWith(draper!.solver, surfacePoint(mesh, queries, a.from), surfacePoint(mesh, queries, a.to)),
+        true,
+      );
+    },
+
+    /** The way to where the pointer is now: the shortest if it can be had at once. */
+    glance(a: { from: Vec3; to: Vec3; hold: Hold }): LiveRun {
+      const { mesh, queries } = needPart();
       const [from, to] = [surfacePoint(mesh, queries, a.from), surfacePoint(mesh, queries, a.to)];
-      const path = shortestWith(draper!.solver, from, to);
-      return path === null
-        ? { points: null, length: 0 }
-        : { points: Float32Array.from(path.points), length: path.length };
+      const { path, sure } = held!.glance(a.hold, from, to);
+      return liveRun(path, sure);
+    },
+
+    /** The way held there pulled after a point, on its side of holes and humps. */
+    pull(a: { from: Vec3; to: Vec3; hold: Hold }): LiveRun {
+      const { mesh, queries } = needPart();
+      const [from, to] = [surfacePoint(mesh, queries, a.from), surfacePoint(mesh, queries, a.to)];
+      return liveRun(held!.follow(a.hold, from, to), false);
+    },
+
+    /** Places that a held way needs as route points to stay on its side, from its first end to the dragged one. */
+    pins(a: Hold): Vec3[] {
+      const { mesh, queries } = needPart();
+      return held!.pins(a).map((p) => roundedPlace(queries, p.point, faceNormal(mesh, p.face)));
     },
   };
 }
+
+const liveRun = (path: GeodesicPath | null, sure: boolean): LiveRun =>
+  path === null
+    ? { points: null, length: 0, sure }
+    : { points: Float32Array.from(path.points), length: path.length, sure };
 
 export const posesOf = (project: Project): Setup[] =>
   project.setups === 'auto'

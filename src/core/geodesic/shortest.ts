@@ -47,8 +47,8 @@ export function shortestWith(
   return arrival.distance === Infinity ? known : traceBack(solver, arrival, to);
 }
 
-/** A path that is taut and may be the shortest; null when there is none. */
-function tautWith(solver: WindowSolver, from: SurfacePoint, to: SurfacePoint): GeodesicPath | null {
+/** A path that is taut and may be the shortest: what can be had at once however far it is. Null when there is none. */
+export function tautWith(solver: WindowSolver, from: SurfacePoint, to: SurfacePoint): GeodesicPath | null {
   const { mesh } = solver;
   const face = sharedFace(mesh, from, to);
   if (face >= 0) return gatherPath([positionOf(mesh, from), positionOf(mesh, to)], [face]);

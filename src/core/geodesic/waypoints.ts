@@ -1,0 +1,52 @@
+/** Places that hold a path where it is, though between its ends another way is shorter. */
+import { distance, type Vec3 } from '../base/vec.ts';
+import { barycentric } from '../mesh/surface-point.ts';
+import type { GeodesicPath } from './geodesic-path.ts';
+import { shortestWith } from './shortest.ts';
+import type { WindowSolver } from './windows.ts';
+
+/** A path this much longer than the shortest, as a share, is another one: it goes round something on its other side. */
+const OTHER = 1e-6;
+/** A path is halved at most this often; a piece of a thousandth of a locally shortest path is the shortest. */
+const HALVINGS = 10;
+
+/**
+ * Places on a locally shortest path, in order, such that the shortest ways from one to the next are the path: none where
+ * the path is the shortest as it is.
+ */
+export function waypoints(
+  solver: WindowSolver,
+  path: GeodesicPath,
+  halvings = HALVINGS,
+): { face: number; point: Vec3 }[] {
+  const { mesh } = solver;
+  const last = path.faces.length;
+  const point = (i: number): Vec3 => [path.points[3 * i], path.points[3 * i + 1], path.points[3 * i + 2]];
+  const at = (face: number, p: Vec3) => ({ face, bary: barycentric(mesh, face, p) });
+  if (last < 2 || halvings === 0) return [];
+  const shortest = shortestWith(solver, at(path.faces[0], point(0)), at(path.faces[last - 1], point(last)));
+  if (shortest === null || path.length <= shortest.length * (1 + OTHER)) return [];
+  let i = 0;
+  let length = 0;
+  for (; i + 1 < last && length < path.length / 2; i++) length += distance(point(i), point(i + 1));
+  // Inside a face rather than on an edge, where the path is sure to pass.
+  const [p, q] = [point(i), point(i + 1)];
+  const middle: Vec3 = [(p[0] + q[0]) / 2, (p[1] + q[1]) / 2, (p[2] + q[2]) / 2];
+  const face = path.faces[i];
+  const half = distance(p, q) / 2;
+  const first: GeodesicPath = {
+    points: Float64Array.from([...path.points.subarray(0, 3 * i + 3), ...middle]),
+    faces: path.faces.slice(0, i + 1),
+    length: length + half,
+  };
+  const second: GeodesicPath = {
+    points: Float64Array.from([...middle, ...path.points.subarray(3 * i + 3)]),
+    faces: path.faces.slice(i),
+    length: path.length - length - half,
+  };
+  return [
+    ...waypoints(solver, first, halvings - 1),
+    { face, point: middle },
+    ...waypoints(solver, second, halvings - 1),
+  ];
+}
