@@ -4,6 +4,8 @@
  *
  *   --sizes 50000,200000    other sizes
  *   --json FILE             the table as JSON, too
+ *
+ * `npm run bench -- geodesic` measures paths over the surface instead (`geodesic.ts`).
  */
 import { writeFileSync } from 'node:fs';
 import { availableParallelism, cpus } from 'node:os';
@@ -20,9 +22,32 @@ import { readStl } from '../../src/core/mesh/stl.ts';
 import { buildNormals } from '../../src/core/part/normals.ts';
 import { checkReach } from '../../src/core/reach/reach.ts';
 import { prepareGround, scanLayer } from '../../src/core/scan/scan-layer.ts';
+import { measureGeodesics, measurePatch, measureWhole, printGeodesics } from './geodesic.ts';
 import { stoneProject, stoneStl } from './part.ts';
 
-const { values } = parseArgs({ options: { sizes: { type: 'string' }, json: { type: 'string' } } });
+const { values, positionals } = parseArgs({
+  options: { sizes: { type: 'string' }, json: { type: 'string' }, levels: { type: 'string' } },
+  allowPositionals: true,
+});
+if (positionals[0] === 'geodesic') {
+  const levels = (values.levels ?? '5,6,7,8').split(',').map(Number);
+  measureGeodesics(4);
+  const each = <T>(of: (level: number) => T, some = levels): T[] =>
+    some.map((level) => {
+      process.stderr.write(`${20 * 4 ** level} triangles …\n`);
+      return of(level);
+    });
+  const patches = levels.filter((level) => level > 5);
+  printGeodesics(
+    each(measureGeodesics),
+    each(measurePatch, patches.length > 0 ? patches : levels),
+    each(
+      measureWhole,
+      levels.filter((level) => level < 7),
+    ),
+  );
+  process.exit(0);
+}
 const sizes = (values.sizes ?? '50000,200000,1000000').split(',').map(Number);
 
 interface Row {

@@ -81,6 +81,8 @@ export class WindowSolver {
   /** What gave that distance: window number, or -1 - root. */
   private readonly via: Int32Array;
   private run = 0;
+  /** Third corner in the frame of a half-edge, 2 a half-edge, zeros where nobody has asked: many windows ask for the same. */
+  private readonly apexes: Float64Array;
   /** Whether shortest paths may bend at a vertex. */
   private readonly bending: Uint8Array;
   /** Distance at which a vertex last sent windows out, so that it does so once. */
@@ -95,6 +97,7 @@ export class WindowSolver {
     this.stamp = new Int32Array(n);
     this.via = new Int32Array(n);
     this.bending = new Uint8Array(n);
+    this.apexes = new Float64Array(2 * mesh.triangles.length);
   }
 
   /**
@@ -383,8 +386,14 @@ export class WindowSolver {
     }
     const hr = next(half);
     const hl = previous(half);
-    const [cx, cy] = this.geometry.apex(half, len);
-    if (cy <= 0) return;
+    let cx = this.apexes[2 * half];
+    let cy = this.apexes[2 * half + 1];
+    if (cy === 0) {
+      [cx, cy] = this.geometry.apex(half, len);
+      this.apexes[2 * half] = cx;
+      this.apexes[2 * half + 1] = cy;
+    }
+    if (!(cy > 0)) return;
     // Bounding rays.
     let d0x: number, d0y: number, d1x: number, d1y: number;
     if (root.kind === 'point') {
