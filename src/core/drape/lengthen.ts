@@ -14,6 +14,10 @@ export interface Longer {
   pieces: number;
 }
 
+/** At a rim the path goes on no farther than rounding does: this share of the way asked is none, for it has no direction. */
+const LEAST = 1e-6;
+const NOTHING: SurfacePath = { points: new Float64Array(3), faces: new Int32Array(0), length: 0 };
+
 /** @param by  mm at either end */
 export function lengthen(mesh: SurfaceMesh, path: SurfacePath, by: number): Longer {
   const n = path.faces.length;
@@ -21,7 +25,8 @@ export function lengthen(mesh: SurfaceMesh, path: SurfacePath, by: number): Long
   const on = (piece: number, from: number, to: number): SurfacePath => {
     const [a, b] = [at(from), at(to)];
     const start: SurfacePoint = { face: path.faces[piece], bary: barycentric(mesh, path.faces[piece], b) };
-    return straightest(mesh, start, [b[0] - a[0], b[1] - a[1], b[2] - a[2]], by).path;
+    const { path: more } = straightest(mesh, start, [b[0] - a[0], b[1] - a[1], b[2] - a[2]], by);
+    return more.length > LEAST * by ? more : NOTHING;
   };
   const lead = on(0, 1, 0);
   const tail = on(n - 1, n - 1, n);

@@ -54,7 +54,15 @@ describe('on dirty meshes', () => {
         return { at: positionOf(mesh, { face, bary: [1 - u - v, u, v] }) };
       };
       const elements = [
-        { id: 't', kind: 'trace', net: '', width: 0.3 + random(), route: [place(), place(), place()] },
+        {
+          id: 't',
+          kind: 'trace',
+          net: '',
+          width: 0.3 + random(),
+          route: [place(), place(), place()],
+          ends: (['round', 'square', 'butt'] as const)[seed % 3],
+          bends: (['round', 'miter'] as const)[seed % 2],
+        },
         {
           id: 'p',
           kind: 'pad',

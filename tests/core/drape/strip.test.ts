@@ -50,6 +50,22 @@ describe('ends and bends in the project file', () => {
     expect(lay({ ends: 'square' }).area).toBeGreaterThan(lay({}).area + 0.05);
   });
 
+  it.each([-10, -9.8])('a square end is cut by the rim that it reaches over, start at %d', (x) => {
+    const mesh = plate(20, 14, 3, 2);
+    const places = [
+      [x, 1.3, 0],
+      [-7.2, 1.3, 0],
+    ].map(([a, b, c]) => placeAt(mesh, [a, b, c]));
+    const e = drapeTrace(
+      new WindowSolver(mesh),
+      { id: 't', kind: 'trace', net: '', width: 0.6, route: [], ends: 'square' },
+      places,
+    ).element!;
+    // From the rim at -10 to 0.3 past the end.
+    expect(e.area).toBeCloseTo(0.6 * 3.1, 3);
+    expect(e.length).toBeCloseTo(-7.2 - x, 9);
+  });
+
   it('the fill runs into a mitre and to the corners of a square end', () => {
     const mesh = plate(20, 14, 3, 2);
     const places = [
