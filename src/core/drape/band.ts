@@ -20,8 +20,8 @@ export interface BandPlace {
   across: number;
   /** Arc length of the foot, mm; beyond an end it goes on. */
   along: number;
-  /** Set where the path is nearest at a bend, on its outer side. */
-  bend: { turn: number; off: number } | null;
+  /** Set where the path is nearest at a bend, on its outer side: number of the bend, angle from the middle of its sector. */
+  bend: { number: number; off: number } | null;
 }
 
 /** A place where the path turns, as the surface beside it knows it. */
@@ -32,6 +32,9 @@ export interface Bend {
   side: 1 | -1;
   /** Angle of the sector between the two pieces' normals on that side, radians, positive. */
   turn: number;
+  /** Pieces of the path that meet in it. */
+  before: number;
+  after: number;
 }
 
 export interface Band {
@@ -50,6 +53,8 @@ export interface BandOptions {
   closed?: boolean;
   /** Numbers of the path points where it may bend. */
   stops: readonly number[];
+  /** Arc length at the path's first point, mm; default 0. */
+  start?: number;
   /** Reach about a bend where it is more than that of the sides, mm. */
   bendReach?: (turn: number) => number;
 }
@@ -65,6 +70,7 @@ export function band(solver: WindowSolver, path: SurfacePath, options: BandOptio
     return [b[0] - a[0], b[1] - a[1], b[2] - a[2]];
   };
   const startOf = new Float64Array(n + 1);
+  startOf[0] = options.start ?? 0;
   for (let i = 0; i < n; i++) {
     const d = direction(i);
     startOf[i + 1] = startOf[i] + Math.hypot(d[0], d[1], d[2]);
@@ -132,17 +138,19 @@ export function band(solver: WindowSolver, path: SurfacePath, options: BandOptio
   const field = new SurfaceField(solver);
   const turns = turnsNow();
   const far = boxBound(path.points);
+  const bends: Bend[] = [];
+  /** Number of the bend that each joint is on its left, and on its right; -1 where it is none. */
+  const bendOf = joints.map((j, k) =>
+    ([1, -1] as const).map((side): number => {
+      const turn = sector(turns[k], side);
+      if (j.before < 0 || j.after < 0 || turn <= 0) return -1;
+      return bends.push({ along: startOf[j.index], side, turn, before: j.before, after: j.after }) - 1;
+    }),
+  );
   return {
     faces: field.faces,
     far,
-    bends: joints.flatMap((j, k): Bend[] =>
-      j.before < 0 || j.after < 0
-        ? []
-        : ([1, -1] as const).flatMap((side): Bend[] => {
-            const turn = sector(turns[k], side);
-            return turn > 0 ? [{ along: startOf[j.index], side, turn }] : [];
-          }),
-    ),
+    bends,
     at(face, p) {
       const seen = field.nearest(face, p);
       if (!seen) return null;
@@ -168,12 +176,12 @@ export function band(solver: WindowSolver, path: SurfacePath, options: BandOptio
       // From the middle of the side's angles, where its outer sector lies.
       const { left, scale } = turns[k];
       const off = (side > 0 ? turned - left / 2 : turned - (left + 2 * Math.PI) / 2) / scale;
-      const turn = sector(turns[k], side);
+      const number = bendOf[k][side > 0 ? 0 : 1];
       return {
         distance,
         across: side * distance,
         along: s,
-        bend: turn > 0 && Math.abs(off) <= turn / 2 + SECTOR ? { turn, off } : null,
+        bend: number >= 0 && Math.abs(off) <= bends[number].turn / 2 + SECTOR ? { number, off } : null,
       };
     },
   };

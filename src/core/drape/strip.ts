@@ -4,11 +4,11 @@
  * The words are those of the open standard SVG 2 (W3C, ch. 13: `stroke-linecap`, `stroke-linejoin`,
  * `stroke-miterlimit`). On a curved surface a place is taken by its Fermi coordinates about the path (band.ts): along
  * it and across. A square end is the plain end of a path carried straight on (lengthen.ts), so that its corners are true.
- * A mitre is drawn in polar coordinates about the bend, which are true along their radii and, r from the bend, short of
- * their own length by a share of (r/R)²/6 across them, R the radius of curvature: on a sphere of R 2 mm the mitre of a
- * strip 1 mm wide is off by 5 µm at a right angle, by 10 µm at 105° and by 76 µm at the limit.
+ * A mitre is drawn in polar coordinates about the bend, whose heights over the sides carried straight on are put right for
+ * the surface's curvature.
  */
 import type { BandPlace, Bend } from './band.ts';
+import { heightOver } from './mitre-curvature.ts';
 
 export type Ends = 'round' | 'square' | 'butt';
 export type Bends = 'round' | 'miter';
@@ -25,8 +25,13 @@ export interface Strip {
   length: number;
 }
 
+/** A bend, and how the surface curves beside it (mitre-curvature.ts), 1/mm². */
+export interface CurvedBend extends Bend {
+  curvature: number;
+}
+
 /** Whether a bend that leaves this sector open outside, radians, may be mitred: SVG's 1 / sin(θ/2), θ the angle between the pieces. */
-const mitred = (strip: Strip, turn: number): boolean =>
+export const mitred = (strip: Strip, turn: number): boolean =>
   strip.bends === 'miter' && Math.cos(turn / 2) >= 1 / MITER_LIMIT;
 
 /** How far from a bend that leaves this sector open outside, radians, the strip reaches, mm. */
@@ -39,7 +44,7 @@ export const stripReach = (strip: Strip, turn: number): number =>
  * Where a trace runs back over its own butt end, the end is cut out of it.
  * @param bends  of the band that `at` comes from
  */
-export function stripDistance(strip: Strip, at: BandPlace, bends: readonly Bend[]): number {
+export function stripDistance(strip: Strip, at: BandPlace, bends: readonly CurvedBend[]): number {
   const { half, ends, length } = strip;
   const side = bendDistance(strip, at, bends);
   if (ends === 'round') return side;
@@ -49,12 +54,22 @@ export function stripDistance(strip: Strip, at: BandPlace, bends: readonly Bend[
 }
 
 /** Coordinate whose level lines fill the strip: `across`, carried on into a mitre along its sides. */
-export const stripHatch = (strip: Strip, at: BandPlace): number =>
-  at.bend && mitred(strip, at.bend.turn)
-    ? Math.sign(at.across) * at.distance * Math.cos(at.bend.turn / 2 - Math.abs(at.bend.off))
+export const stripHatch = (strip: Strip, at: BandPlace, bends: readonly CurvedBend[]): number =>
+  at.bend && mitred(strip, bends[at.bend.number].turn)
+    ? Math.sign(at.across) * mitreHeight(at.bend, at.distance, bends)
     : at.across;
 
-function bendDistance(strip: Strip, at: BandPlace, bends: readonly Bend[]): number {
+/** Distance of a place in a bend's outer sector from the nearer of its two sides' lines, carried straight on. */
+function mitreHeight(
+  { number, off }: { number: number; off: number },
+  r: number,
+  bends: readonly CurvedBend[],
+): number {
+  const { turn, curvature } = bends[number];
+  return heightOver(r, Math.cos(turn / 2 - Math.abs(off)), curvature);
+}
+
+function bendDistance(strip: Strip, at: BandPlace, bends: readonly CurvedBend[]): number {
   const { half } = strip;
   if (at.bend && strip.bends === 'round') return at.distance;
   if (!at.bend) {
@@ -69,10 +84,11 @@ function bendDistance(strip: Strip, at: BandPlace, bends: readonly Bend[]): numb
     }
     return distance;
   }
-  const { turn, off } = at.bend;
+  const { turn } = bends[at.bend.number];
+  const { off } = at.bend;
   const r = at.distance;
   // Within both sides, each carried straight on.
-  if (mitred(strip, turn)) return r * Math.cos(turn / 2 - Math.abs(off));
+  if (mitred(strip, turn)) return mitreHeight(at.bend, r, bends);
   const out = r * Math.cos(off) - half * Math.cos(turn / 2);
   const past = r * Math.sin(Math.abs(off)) - half * Math.sin(turn / 2);
   return half + (past > 0 ? Math.hypot(out, past) : out);

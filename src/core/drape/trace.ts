@@ -6,8 +6,9 @@ import type { CopperElement } from './copper.ts';
 import { type Draped, layOut, MARGIN } from './element.ts';
 import { lengthen } from './lengthen.ts';
 import { heldDistance } from './lower-bound.ts';
+import { mitreCurvature } from './mitre-curvature.ts';
 import { joinRoute, type Place } from './route.ts';
-import { type Strip, stripDistance, stripHatch, stripReach } from './strip.ts';
+import { mitred, type Strip, stripDistance, stripHatch, stripReach } from './strip.ts';
 
 /** Longest patch edge inside a trace, mm: model.md §5's step. */
 export const traceStep = (width: number): number => Math.min(0.1, width / 4);
@@ -53,6 +54,7 @@ export function drapeTrace(solver: WindowSolver, trace: Trace, places: readonly 
     left: reach,
     right: reach,
     stops: route.stops.map((i) => i + pieces),
+    start: -lead,
     ...(strip.bends === 'round'
       ? {}
       : {
@@ -63,16 +65,20 @@ export function drapeTrace(solver: WindowSolver, trace: Trace, places: readonly 
           },
         }),
   });
-  const bends = field.bends.map((b) => ({ ...b, along: b.along - lead }));
+  const bends = field.bends.map((bend) => ({
+    ...bend,
+    curvature: mitred(strip, bend.turn) ? mitreCurvature(solver.mesh, middle, field, bend, half) : 0,
+  }));
   const laid = layOut(
     solver.mesh,
     field.faces,
     (face, p) => {
       const at = field.at(face, p);
-      if (at) at.along -= lead;
       const seen = at && stripDistance(strip, at, bends);
       const edge = heldDistance(seen, reach, () => field.far(p) - (farthest - half)) - half;
-      return at ? { edge, hatch: stripHatch(strip, at), along: at.along } : { edge, hatch: 0, along: 0 };
+      return at
+        ? { edge, hatch: stripHatch(strip, at, bends), along: at.along }
+        : { edge, hatch: 0, along: 0 };
     },
     traceStep(trace.width),
   );

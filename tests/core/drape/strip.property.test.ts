@@ -43,15 +43,15 @@ describe('fields of strips on a plane', () => {
           left: reach,
           right: reach,
           stops: stops.map((i) => i + longer.pieces),
+          start: -longer.lead,
           bendReach: (turn) => stripReach(strip, turn) + reach,
         });
-        const shifted = field.bends.map((b) => ({ ...b, along: b.along - longer.lead }));
+        const bent = field.bends.map((b) => ({ ...b, curvature: 0 }));
         const look = (p: readonly [number, number]) => {
           const { face } = placeAt(mesh, [p[0], p[1], 0]).surface;
           const at = field.at(face, [p[0], p[1], 0]);
           if (!at || at.distance > reach) return null;
-          at.along -= longer.lead;
-          return { at, distance: stripDistance(strip, at, shifted), hatch: stripHatch(strip, at) };
+          return { at, distance: stripDistance(strip, at, bent), hatch: stripHatch(strip, at, bent) };
         };
         for (let k = 0; k < 400; k++) {
           const near = route[Math.floor(random() * 3)];

@@ -136,7 +136,7 @@ describe(`${source('do-carmo')}: outlines are true to 0.01 mm where the surface 
   };
   const fine = sphere(R, 6);
 
-  it.each(widths.flatMap((w) => [0.75, 0.45].map((lon) => [w, lon] as const)))(
+  it.each(widths.flatMap((w) => [0.75, 0.15, -0.15].map((lon) => [w, lon] as const)))(
     'a mitred bend and square ends on a sphere, half-width %d, second leg towards longitude %d',
     (w, lon) => {
       const route = [onSphere(0.1, -0.3), onSphere(0.1, 0.6), onSphere(0.9, lon)];
