@@ -39,6 +39,16 @@ export class FaceGeometry {
     return [b[0] - a[0], b[1] - a[1], b[2] - a[2]];
   }
 
+  edgeLength(h: number): number {
+    const { positions: x, triangles: t } = this.mesh;
+    const a = 3 * t[h],
+      b = 3 * t[next(h)];
+    const dx = x[b] - x[a],
+      dy = x[b + 1] - x[a + 1],
+      dz = x[b + 2] - x[a + 2];
+    return Math.sqrt(dx * dx + dy * dy + dz * dz);
+  }
+
   /** Third corner in the local frame of half-edge h. */
   apex(h: number, len: number): [number, number] {
     const { positions: x, triangles: t } = this.mesh;

@@ -65,9 +65,7 @@ export class FlipPaths {
   private layWay(from: SurfacePoint, a: number, to: SurfacePoint, b: number, way: EdgeWay): number[] | null {
     const { flips } = this;
     const { triangles } = flips.mesh;
-    const halves = way.steps.map((step) =>
-      step >= 0 ? flips.take(step) : flips.twin(flips.take(-1 - step)),
-    );
+    const halves = way.steps.flatMap((step) => this.layStep(step));
     let v = way.start;
     for (const step of way.steps) v = step >= 0 ? triangles[next(step)] : triangles[-1 - step];
     // An end inside a face or on an edge has an edge to each corner of its faces.
@@ -82,6 +80,20 @@ export class FlipPaths {
       halves.push(flips.twin(last));
     }
     return halves;
+  }
+
+  /** Half-edges of one step of a way: two where an end of the path lies on that edge. */
+  private layStep(step: number): number[] {
+    const { flips } = this;
+    const h = step >= 0 ? step : -1 - step;
+    const k = flips.take(h);
+    const middle = flips.head(k);
+    const halves = [k];
+    if (middle >= flips.vertices) {
+      const { half, out } = flips.inserted[middle - flips.vertices];
+      halves.push(h === half ? out : flips.twin(flips.take(half)));
+    }
+    return step >= 0 ? halves : halves.reverse().map((half) => flips.twin(half));
   }
 
   /** Half-edge from the place `at`, vertex v, to vertex w; -1 where none. */

@@ -81,8 +81,11 @@ export class WindowSolver {
   /** What gave that distance: window number, or -1 - root. */
   private readonly via: Int32Array;
   private run = 0;
-  /** Third corner in the frame of a half-edge, 2 a half-edge, zeros where nobody has asked: many windows ask for the same. */
-  private readonly apexes: Float64Array;
+  /**
+   * 3 a half-edge: its length, and the third corner of its face in its frame; zeros where nobody has asked. Always from the
+   * positions: handed on from face to face, the rounding of one sliver would end up in the next.
+   */
+  private readonly shapes: Float64Array;
   /** Whether shortest paths may bend at a vertex. */
   private readonly bending: Uint8Array;
   /** Distance at which a vertex last sent windows out, so that it does so once. */
@@ -97,7 +100,7 @@ export class WindowSolver {
     this.stamp = new Int32Array(n);
     this.via = new Int32Array(n);
     this.bending = new Uint8Array(n);
-    this.apexes = new Float64Array(2 * mesh.triangles.length);
+    this.shapes = new Float64Array(3 * mesh.triangles.length);
   }
 
   /**
@@ -246,7 +249,7 @@ export class WindowSolver {
       // The twin runs the other way: its start is the end of h.
       const [ax, ay] = this.inRoot(root, this.position(mesh.triangles[t]));
       const [bx, by] = this.inRoot(root, this.position(mesh.triangles[next(t)]));
-      const len = Math.sqrt((bx - ax) * (bx - ax) + (by - ay) * (by - ay));
+      const len = this.shape(t, 0);
       const ex = (bx - ax) / len;
       const ey = (by - ay) / len;
       let b0 = 0;
@@ -386,13 +389,8 @@ export class WindowSolver {
     }
     const hr = next(half);
     const hl = previous(half);
-    let cx = this.apexes[2 * half];
-    let cy = this.apexes[2 * half + 1];
-    if (cy === 0) {
-      [cx, cy] = this.geometry.apex(half, len);
-      this.apexes[2 * half] = cx;
-      this.apexes[2 * half + 1] = cy;
-    }
+    const cx = this.shape(half, 1);
+    const cy = this.shapes[3 * half + 2];
     if (!(cy > 0)) return;
     // Bounding rays.
     let d0x: number, d0y: number, d1x: number, d1y: number;
@@ -416,7 +414,7 @@ export class WindowSolver {
     }
     if (left <= 0 && mesh.twin[hl] >= 0) {
       // Some rays pass left of the apex: onto the edge from a to c. The end nearer to a is the one that b may beat.
-      const l = Math.sqrt(cx * cx + cy * cy);
+      const l = this.shape(mesh.twin[hl], 0);
       const ex = cx / l,
         ey = cy / l;
       const t0 = b0 <= 0 ? 0 : crossing(b0, 0, d0x, d0y, ex, ey, 0);
@@ -426,7 +424,7 @@ export class WindowSolver {
     }
     if (right >= 0 && mesh.twin[hr] >= 0) {
       // Some pass right of it: onto the edge from c to b. The end nearer to b is the one that a may beat.
-      const l = Math.sqrt((len - cx) * (len - cx) + cy * cy);
+      const l = this.shape(mesh.twin[hr], 0);
       const ex = (len - cx) / l,
         ey = -cy / l;
       const t0 = left <= 0 ? 0 : crossing(b0 - cx, -cy, d0x, d0y, ex, ey, 0);
@@ -476,6 +474,19 @@ export class WindowSolver {
       sin * ex + cos * ey,
       length,
     );
+  }
+
+  /** Number i of what `shapes` holds of a half-edge. */
+  private shape(half: number, i: number): number {
+    const o = 3 * half;
+    if (this.shapes[o] === 0) {
+      const len = this.geometry.edgeLength(half);
+      const [cx, cy] = this.geometry.apex(half, len);
+      this.shapes[o] = len;
+      this.shapes[o + 1] = cx;
+      this.shapes[o + 2] = cy;
+    }
+    return this.shapes[o + i];
   }
 
   private reachVertex(v: number, d: number, via: number, corner: number): void {
