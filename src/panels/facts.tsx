@@ -40,7 +40,6 @@ function Everything({ state }: { state: State }) {
   const project = state.project!;
   const { copper, plan } = current(state);
   const nets = new Set(project.circuit.elements.map((e) => e.net).filter(Boolean));
-  const area = copper?.elements.reduce((n, e) => n + e.area, 0) ?? 0;
   const length = copper?.elements.reduce((n, e) => n + (e.kind === 'trace' ? e.length : 0), 0) ?? 0;
   return (
     <>
@@ -49,7 +48,9 @@ function Everything({ state }: { state: State }) {
         <Fact label="Elements">{project.circuit.elements.length}</Fact>
         <Fact label="Nets">{nets.size}</Fact>
         <Fact label="Trace length">{show(length, 1)} mm</Fact>
-        <Fact label="Copper">{show(area, 1)} mm²</Fact>
+        <Fact label="Copper">
+          {copper && copper.covered !== null ? `${show(copper.covered, 1)} mm²` : '…'}
+        </Fact>
         {plan && <Fact label="Layers">{plan.layers.length}</Fact>}
       </dl>
       <p className="dim">Click copper to see its margins.</p>

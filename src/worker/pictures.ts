@@ -53,6 +53,8 @@ export interface CopperPicture {
   findings: DrapeFinding[];
   /** Shop rules that the copper breaks; empty while elements are pending. */
   rules: RuleFinding[];
+  /** Copper on the surface, mm², each place counted once; null while elements are pending. */
+  covered: number | null;
   /** Part frame, 3 a vertex. */
   positions: Float32Array;
   normals: Float32Array;

@@ -5,6 +5,7 @@ import { poseFrame } from '../core/base/pose.ts';
 import type { RunContext } from '../core/base/run-context.ts';
 import { addScaled, at3, dot, normalize, type Vec3 } from '../core/base/vec.ts';
 import { focusedBeam, usableDepth } from '../core/beam/beam.ts';
+import { unionArea } from '../core/copper/union-area.ts';
 import type { Copper, CopperElement } from '../core/drape/copper.ts';
 import { type Draper, drapeElement, prepareDraper } from '../core/drape/drape.ts';
 import type { Draped, DrapeFinding } from '../core/drape/element.ts';
@@ -141,7 +142,15 @@ export function createSession() {
       copper = { elements };
       const { limits } = project;
       const rules = pending > 0 ? [] : [...widthRule(elements, limits), ...gapRule(elements, limits)];
-      return { ...copperPicture(copper, here, posesOf(project)), problems, findings, rules, pending };
+      const covered = pending > 0 ? null : unionArea(elements.map((e) => e.copper));
+      return {
+        ...copperPicture(copper, here, posesOf(project)),
+        problems,
+        findings,
+        rules,
+        pending,
+        covered,
+      };
     },
 
     /** @throws InputError with every problem found in the text */
@@ -281,7 +290,7 @@ function copperPicture(
   copper: Copper,
   part: Part,
   setups: Setup[],
-): Omit<CopperPicture, 'problems' | 'findings' | 'rules' | 'pending'> {
+): Omit<CopperPicture, 'problems' | 'findings' | 'rules' | 'pending' | 'covered'> {
   const triangles = copper.elements.reduce((n, e) => n + e.copper.triangles.length / 3, 0);
   const vertices = copper.elements.reduce((n, e) => n + e.copper.positions.length / 3, 0);
   const positions = new Float32Array(3 * vertices);
