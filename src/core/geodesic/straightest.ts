@@ -6,7 +6,7 @@ import { Fault } from '../base/news.ts';
 import { add, clamp, distance, dot, normalize, scale, type Vec3 } from '../base/vec.ts';
 import { faceOf, next, previous, type SurfaceMesh } from '../mesh/surface-mesh.ts';
 import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
-import { type Fan, FaceGeometry } from './face-geometry.ts';
+import { FaceGeometry, type Fan } from './face-geometry.ts';
 import type { GeodesicPath } from './shortest.ts';
 
 /**
