@@ -59,7 +59,7 @@ const LIBRARIES: RegExp[] = [
   /^src\/core\/drawing\/[\w-]+\.ts: (svgpath|dxf-parser|@xmldom\/xmldom)$/,
   /^src\/core\/proof\/reader-svg\.ts: @xmldom\/xmldom$/,
   /^src\/core\/project\/read\.ts: jsonc-parser$/,
-  /^src\/core\/cradle\/[\w-]+\.ts: manifold-3d$/,
+  /^src\/core\/drawing\/flat\.ts: manifold-3d$/,
 ];
 
 interface Import {
