@@ -4,7 +4,7 @@ import { defineConfig } from 'vite';
 /** The command line: one file, which is also the file of its worker threads. */
 export default defineConfig({
   define: { __VERSION__: JSON.stringify(JSON.parse(readFileSync('package.json', 'utf8')).version) },
-  assetsInclude: ['**/*.stl'],
+  assetsInclude: ['**/*.stl', '**/*.wasm'],
   build: {
     ssr: 'src/cli/cli.ts',
     outDir: 'out/cli',

@@ -8,3 +8,7 @@ declare module '*?inline' {
   const url: string;
   export default url;
 }
+declare module '*?url' {
+  const url: string;
+  export default url;
+}
