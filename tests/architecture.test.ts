@@ -56,7 +56,7 @@ const LIBRARIES: RegExp[] = [
   /^src\/core\/project\/schema\.ts: zod$/,
   /^src\/core\/[\w/-]+\.ts: robust-predicates$/,
   /^src\/core\/geodesic\/[\w-]+\.ts: flatbush$/,
-  /^src\/core\/drawing\/[\w-]+\.ts: (svgpath|dxf-parser|@xmldom\/xmldom)$/,
+  /^src\/core\/drawing\/svg-xml\.ts: @xmldom\/xmldom$/,
   /^src\/core\/proof\/reader-svg\.ts: @xmldom\/xmldom$/,
   /^src\/core\/project\/read\.ts: jsonc-parser$/,
   /^src\/core\/drawing\/flat\.ts: manifold-3d$/,

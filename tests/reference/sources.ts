@@ -27,6 +27,15 @@ export const sources = {
     title: 'W3C SVG 2, ch. 13: line caps, line joins, miter limit',
     seen: 'words from memory, areas by formula',
   },
+  'svg-2-drawings': {
+    title:
+      'W3C SVG 2, ch. 8 (coordinates, viewBox), 9 (path data), 10 (shapes), 13 (fill rules), app. B (arcs by their ends); CSS Values: units',
+    seen: 'units and rules of arcs as quoted in check-values.md §8, the rest from memory; numbers by formula',
+  },
+  'dxf-reference': {
+    title: 'DXF reference: group codes, units of $INSUNITS, bulges, extrusion',
+    seen: 'LWPOLYLINE quoted in check-values.md §8, the rest from memory; arcs by formula',
+  },
   'gray-tubes': { title: 'A. Gray, Tubes, 1990 (Weyl’s formula): areas of bands', seen: 'formula' },
   'iso-11146': { title: 'ISO 11146-1: beam parameter product, M²', seen: 'formula, from memory' },
   siegman: { title: 'A. E. Siegman, Lasers, 1986: w(z), peak fluence', seen: 'formula' },

@@ -1,0 +1,204 @@
+/** Flattened chains to what a drawing is made of: areas with fill rules worked out, strokes, dots. */
+import { randomFrom } from '../base/random.ts';
+import type { Area, Bends, Ends, Stroke } from './drawing.ts';
+import { BadShape } from './findings.ts';
+import { type Flat, type Rule, ringArea } from './flat.ts';
+import { arcPieces, type Chain } from './flatten.ts';
+
+/**
+ * What the rule calls inside, open chains closed by a straight line: one area for each separate piece.
+ * @throws BadShape `too-tangled`
+ */
+export function areasOf(chains: readonly Chain[], rule: Rule, flat: Flat, tangle: Tangle): Area[] {
+  const rings = chains.map((c) => c.points).filter((p) => p.length >= 6);
+  if (rings.length === 0) return [];
+  if (rings.length === 1 && isConvex(rings[0])) return [{ kind: 'area', rings: [turnedLeft(rings[0])] }];
+  tangle.check(rings);
+  return pieces(flat.union(rings, rule)).map((one) => ({ kind: 'area', rings: one }));
+}
+
+/** One turn, all corners to one side: pads are, and need no clipping. */
+function isConvex(ring: Float64Array): boolean {
+  const n = ring.length;
+  let [left, right, turns] = [false, false, 0];
+  let [dx, dy] = [ring[0] - ring[n - 2], ring[1] - ring[n - 1]];
+  for (let i = 0; i < n; i += 2) {
+    const j = (i + 2) % n;
+    const [ex, ey] = [ring[j] - ring[i], ring[j + 1] - ring[i + 1]];
+    const turn = dx * ey - dy * ex;
+    if (turn > 0) left = true;
+    else if (turn < 0) right = true;
+    else if (dx * ex + dy * ey <= 0) return false;
+    // Ways that go up and then down again: once in a ring that turns once.
+    if (dy > 0 !== ey > 0) turns++;
+    [dx, dy] = [ex, ey];
+  }
+  return left !== right && turns === 2;
+}
+
+function turnedLeft(ring: Float64Array): Float64Array {
+  if (ringArea(ring) > 0) return ring;
+  const out = new Float64Array(ring.length);
+  for (let i = 0, j = ring.length - 2; j >= 0; i += 2, j -= 2) [out[i], out[i + 1]] = [ring[j], ring[j + 1]];
+  return out;
+}
+
+/**
+ * Rings that do not cross, outlines left and holes right round, by outline: each hole belongs to the smallest outline
+ * around it.
+ */
+export function pieces(rings: readonly Float64Array[]): Float64Array[][] {
+  const known = rings.map((ring) => ({ ring, area: ringArea(ring), box: boxOf(ring) }));
+  const outlines = known.filter((r) => r.area > 0).map((r) => ({ ...r, holes: [] as Float64Array[] }));
+  if (outlines.length === 1) return [[...rings].sort((a, b) => ringArea(b) - ringArea(a))];
+  const bySize = [...outlines].sort((a, b) => a.area - b.area);
+  for (const hole of known) {
+    if (!(hole.area < 0)) continue;
+    const [x, y] = [(hole.ring[0] + hole.ring[2]) / 2, (hole.ring[1] + hole.ring[3]) / 2];
+    const around = bySize.find(
+      ({ ring, area, box }) =>
+        area > -hole.area && x >= box[0] && x <= box[2] && y >= box[1] && y <= box[3] && inside(ring, x, y),
+    );
+    around?.holes.push(hole.ring);
+  }
+  return outlines.map(({ ring, holes }) => [ring, ...holes]);
+}
+
+function boxOf(ring: Float64Array): [number, number, number, number] {
+  const box: [number, number, number, number] = [Infinity, Infinity, -Infinity, -Infinity];
+  for (let i = 0; i < ring.length; i += 2) {
+    box[0] = Math.min(box[0], ring[i]);
+    box[1] = Math.min(box[1], ring[i + 1]);
+    box[2] = Math.max(box[2], ring[i]);
+    box[3] = Math.max(box[3], ring[i + 1]);
+  }
+  return box;
+}
+
+/** Does a ray to the right meet the ring an odd number of times? */
+function inside(ring: Float64Array, x: number, y: number): boolean {
+  let odd = false;
+  for (let i = 0, j = ring.length - 2; i < ring.length; j = i, i += 2) {
+    if (ring[i + 1] > y === ring[j + 1] > y) continue;
+    if (x < ring[i] + ((y - ring[i + 1]) / (ring[j + 1] - ring[i + 1])) * (ring[j] - ring[i])) odd = !odd;
+  }
+  return odd;
+}
+
+/** Chains as lines of one width. A chain of one point is a dot where ends are round or square, and nothing where they are butt. */
+export function strokesOf(
+  chains: readonly Chain[],
+  width: number,
+  ends: Ends,
+  bends: Bends,
+  tolerance: number,
+): (Stroke | Area)[] {
+  const out: (Stroke | Area)[] = [];
+  for (const { points, closed } of chains) {
+    if (points.length >= 6) out.push({ kind: 'stroke', points, closed, width, ends, bends });
+    else if (points.length === 4)
+      // There and back has corners at its ends: round ones, or such as a square cut makes.
+      out.push({
+        kind: 'stroke',
+        points,
+        closed: false,
+        width,
+        ends: closed ? (bends === 'round' ? 'round' : 'butt') : ends,
+        bends,
+      });
+    else if (ends !== 'butt') out.push({ kind: 'area', rings: [dot(points, width / 2, ends, tolerance)] });
+  }
+  return out;
+}
+
+/** A disc, or a square along the axes, as SVG 2 draws the caps of a line of no length. */
+function dot(at: Float64Array, r: number, ends: Ends, tolerance: number): Float64Array {
+  const n = ends === 'round' ? arcPieces(r, 2 * Math.PI, tolerance) : 4;
+  const reach = ends === 'round' ? r : r * Math.SQRT2;
+  const ring = new Float64Array(2 * n);
+  for (let i = 0; i < n; i++) {
+    const angle = (2 * Math.PI * (i + 0.5)) / n;
+    ring[2 * i] = at[0] + reach * Math.cos(angle);
+    ring[2 * i + 1] = at[1] + reach * Math.sin(angle);
+  }
+  return ring;
+}
+
+/** Sides of one figure: a sweep over more takes seconds, however plain they lie. */
+const MOST_SIDES = 500_000;
+/** Sides up to which a sweep is over in a moment, whatever lies abreast. */
+const FEW = 2000;
+/** Sides up to which nobody looks. */
+const NONE = 16;
+/** Pairs of sides looked at, for each side and at most. */
+const SAMPLE = 20;
+const MOST_SAMPLE = 400_000;
+/** Crossings in a drawing, and pairs of sides that one line across meets: each a few seconds of sweeping. */
+const MOST_CROSSINGS = 2e6;
+const MOST_ABREAST = 1e8;
+
+export interface Tangle {
+  /** @throws BadShape `too-tangled` */
+  check(rings: readonly Float64Array[]): void;
+}
+
+/**
+ * Refuses what would take minutes to clip: a sweep costs by the crossings there are and by the sides it meets at once. Both
+ * are estimated from random pairs of sides and add up over a drawing; drawings of circuits lie far below.
+ */
+export function tangle(): Tangle {
+  let [crossed, alongside] = [0, 0];
+  return {
+    check(rings) {
+      const sides = rings.reduce((n, r) => n + r.length / 2, 0);
+      if (sides > MOST_SIDES)
+        throw new BadShape(
+          'too-tangled',
+          `it has ${sides} sides, more than the ${MOST_SIDES} that are clipped`,
+        );
+      if (sides <= NONE) return;
+      const { crossings, abreast } = estimate(rings, sides);
+      crossed += crossings;
+      if (sides > FEW) alongside += abreast;
+      if (crossed > MOST_CROSSINGS)
+        throw new BadShape('too-tangled', `outlines cross one another some ${Math.round(crossed)} times`);
+      if (alongside > MOST_ABREAST)
+        throw new BadShape('too-tangled', `too many of its ${sides} sides lie abreast of one another`);
+    },
+  };
+}
+
+function estimate(rings: readonly Float64Array[], sides: number): { crossings: number; abreast: number } {
+  const ends = new Float64Array(4 * sides);
+  let k = 0;
+  for (const r of rings)
+    for (let i = 0; i < r.length; i += 2) {
+      const j = (i + 2) % r.length;
+      ends[k++] = r[i];
+      ends[k++] = r[i + 1];
+      ends[k++] = r[j];
+      ends[k++] = r[j + 1];
+    }
+  const random = randomFrom(sides);
+  const sample = Math.min(SAMPLE * sides, MOST_SAMPLE);
+  let [met, level] = [0, 0];
+  for (let s = 0; s < sample; s++) {
+    const a = 4 * Math.floor(random() * sides);
+    const b = 4 * Math.floor(random() * sides);
+    const low = Math.max(Math.min(ends[a + 1], ends[a + 3]), Math.min(ends[b + 1], ends[b + 3]));
+    const high = Math.min(Math.max(ends[a + 1], ends[a + 3]), Math.max(ends[b + 1], ends[b + 3]));
+    if (low > high) continue;
+    level++;
+    if (cross(ends, a, b) && cross(ends, b, a)) met++;
+  }
+  const pairs = (sides / sample) * sides;
+  return { crossings: (met * pairs) / 2, abreast: level * pairs };
+}
+
+/** Does the line through side a part the ends of side b? */
+function cross(e: Float64Array, a: number, b: number): boolean {
+  const [dx, dy] = [e[a + 2] - e[a], e[a + 3] - e[a + 1]];
+  const left = dx * (e[b + 1] - e[a + 1]) - dy * (e[b] - e[a]);
+  const right = dx * (e[b + 3] - e[a + 1]) - dy * (e[b + 2] - e[a]);
+  return left > 0 !== right > 0 && left !== 0 && right !== 0;
+}
