@@ -65,6 +65,16 @@ export const sources = {
   },
   'xml-1': { title: 'W3C XML 1.0: names and ids', seen: 'from memory' },
   'rfc-4180': { title: 'RFC 4180: comma-separated values', seen: 'from memory' },
+  'gerber-2022': {
+    title: 'Gerber Layer Format Specification, 2022.02: commands, apertures, macros, polarity',
+    seen: 'words from memory, areas by formula',
+  },
+  'circular-segments': {
+    title: 'Elementary geometry of a circle’s segments: bulge = tan(angle / 4)',
+    seen: 'formula',
+  },
+  'nc-drill': { title: 'IPC-NC-349: zeros, formats, slots of drill files', seen: 'from memory' },
+  'ipc-d-356a': { title: 'IPC-D-356A: columns of the netlist’s records', seen: 'from memory' },
   rotation: { title: 'Closed forms of rotations by quaternions', seen: 'formula' },
 } as const;
 
