@@ -27,7 +27,7 @@ export class HeldPaths {
     this.place = place;
   }
 
-  /** The held path with its ends moved; another hand lets go of what was held before. */
+  /** The held path with its ends moved, or the shortest where that cannot be made; another hand lets go of what was held before. */
   follow(hold: Hold, from: SurfacePoint, to: SurfacePoint): GeodesicPath | null {
     let old = this.held(hold);
     if (!old && hold.was) old = shortestWith(this.solver, from, this.place(hold.was));

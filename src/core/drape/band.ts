@@ -10,8 +10,8 @@ import { ON_EDGE, type PointSource, type SegmentSource } from '../geodesic/roots
 import { polarAngle, SurfaceField } from '../geodesic/surface-field.ts';
 import type { WindowSolver } from '../geodesic/windows.ts';
 import { barycentric, type SurfacePoint } from '../mesh/surface-point.ts';
+import { boxBound } from './box-bound.ts';
 import type { SurfacePath } from './copper.ts';
-import { boxBound } from './lower-bound.ts';
 
 export interface BandPlace {
   /** Distance from the path, mm, never negative. */

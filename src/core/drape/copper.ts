@@ -63,6 +63,8 @@ export interface CopperElement {
   area: number;
   /** Largest |length ratio - 1| along the element's copper. */
   stretch: number;
+  /** Of a drawing's element: where that is, and the ratios of length on the part to length drawn, along its line and across. */
+  stretched?: { along: number; across: number; at: Vec3 };
 }
 
 export interface Copper {

@@ -6,8 +6,8 @@ import type { MapLimit } from '../geodesic/map-limits.ts';
 import type { WindowSolver } from '../geodesic/windows.ts';
 import { faceNormal } from '../mesh/surface-point.ts';
 import type { Pad } from '../project/schema.ts';
+import { boxBound, heldDistance } from './box-bound.ts';
 import { type Draped, layOut, lineLength, MARGIN, TRUE_TO } from './element.ts';
-import { boxBound, heldDistance } from './lower-bound.ts';
 import type { Place } from './route.ts';
 import { circumradius, type FlatShape, flatDistance, perimeter } from './shapes.ts';
 

@@ -2,10 +2,10 @@
 import type { WindowSolver } from '../geodesic/windows.ts';
 import type { Trace } from '../project/schema.ts';
 import { band } from './band.ts';
+import { heldDistance } from './box-bound.ts';
 import type { CopperElement } from './copper.ts';
 import { type Draped, layOut, MARGIN } from './element.ts';
 import { lengthen } from './lengthen.ts';
-import { heldDistance } from './lower-bound.ts';
 import { mitreCurvature } from './mitre-curvature.ts';
 import { joinRoute, type Place } from './route.ts';
 import { mitred, type Strip, stripDistance, stripHatch, stripReach } from './strip.ts';

@@ -4,7 +4,8 @@
  * N. Sharp and K. Crane, "You can find geodesic paths in triangle meshes by just flipping edges", ACM Trans. Graph. 39
  * (2020) 249: where the path makes an angle below π on one side of a vertex, the edges inside that angle are flipped out
  * of the way and the path takes the outer arc (FlipOut); the sharpest angle goes first. Each step makes the path shorter
- * and keeps its homotopy class, so it ends at a path that is straight everywhere.
+ * and keeps its homotopy class, so it ends at a path that is straight everywhere, but where it runs along itself or crosses
+ * itself at a vertex: there it may stay bent, for an angle with another piece of the path in it is left alone.
  */
 import type { Vec3 } from '../base/vec.ts';
 import { faceOf, next, type SurfaceMesh } from '../mesh/surface-mesh.ts';
@@ -17,7 +18,7 @@ import { fillRing } from './ring.ts';
 import { cornerAt, ON_EDGE } from './roots.ts';
 import { KeyHeap } from './window-store.ts';
 
-/** A bend below this, radians, is straight: it makes a path longer by less than a 1e-13th. */
+/** A bend below this, radians, is straight: it makes a path longer by about a 1e-13th. */
 const STRAIGHT = 1e-6;
 /** Steps that no path needs; flips end by themselves, and this only stops rounding from going round in circles. */
 const STEPS = 200;
@@ -132,8 +133,9 @@ export class FlipPaths {
       while (heap.size > 0) {
         if (left-- === 0) return false;
         const node = heap.pop();
-        // The angle between two edges is the surface's own: it changes only with the edges.
-        if (this.half[node] !== GONE && this.after[node] === this.seen[node]) this.flipOut(node);
+        if (this.half[node] === GONE || this.after[node] !== this.seen[node] || !this.stillBends(node))
+          continue;
+        if (!this.flipOut(node)) return false;
       }
     }
   }
@@ -178,6 +180,16 @@ export class FlipPaths {
     this.heap.push(node, angle);
   }
 
+  /**
+   * Whether a queued joint may still be cut off. The angle between two edges is the surface's own, but another piece of the
+   * path may lie in it by now: then the last round asks again.
+   */
+  private stillBends(node: number): boolean {
+    const back = this.flips.twin(this.half[node]);
+    const out = this.half[this.after[node]];
+    return back === out || (this.onLeft[node] ? this.wedge(out, back) : this.wedge(back, out)) < Math.PI;
+  }
+
   /** Angle counter-clockwise from half-edge k to half-edge `end` around their start; Infinity over a border or an edge of the path. */
   private wedge(k: number, end: number): number {
     const { flips } = this;
@@ -193,7 +205,7 @@ export class FlipPaths {
   }
 
   /** Replaces the two pieces at a joint by the outer arc of the faces on one side, once edges that are in its way are flipped out. */
-  private flipOut(node: number): void {
+  private flipOut(node: number): boolean {
     const { flips } = this;
     const left = this.onLeft[node];
     const other = this.after[node];
@@ -206,7 +218,7 @@ export class FlipPaths {
     let arc: number[] = [];
     if (back !== out) {
       const [first, end] = left ? [out, back] : [back, out];
-      this.clear(first, end);
+      if (!this.clear(first, end)) return false;
       for (let k = first; k !== end; k = flips.twin(flips.previous(k))) arc.push(flips.next[k]);
       if (left) arc = arc.reverse().map((k) => flips.twin(k));
     }
@@ -217,13 +229,15 @@ export class FlipPaths {
     if (q >= 0) this.before[q] = last;
     this.look(p);
     for (const m of made) this.look(m);
+    return true;
   }
 
   /** Flips edges strictly between two half-edges around their start until the outer arc bends nowhere inward. */
-  private clear(first: number, end: number): void {
+  private clear(first: number, end: number): boolean {
     const { flips } = this;
     let k = flips.twin(flips.previous(first));
-    while (k !== end) {
+    for (let left = STEPS * STEPS; k !== end; left--) {
+      if (left === 0) return false;
       const outer = flips.corner(flips.next[k]) + flips.corner(flips.twin(k));
       const onward = flips.twin(flips.previous(k));
       if (outer < Math.PI - STRAIGHT && flips.canFlip(k)) {
@@ -233,6 +247,7 @@ export class FlipPaths {
         k = before === first ? onward : before;
       } else k = onward;
     }
+    return true;
   }
 
   /** The path over the surface. */

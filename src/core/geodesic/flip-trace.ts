@@ -6,6 +6,9 @@ import { AT_POINT, type FlipMesh, NONE } from './flip-mesh.ts';
 
 /** How far from its end, as a share of its length, an edge may come out by rounding. */
 const MISS = 1e-7;
+/** More than the angles around any vertex of a printable part, radians. */
+const TURN = 1e3;
+
 /**
  * Appends the crossings of half-edge k and its end to `points`, whose last one is its start, and the faces between.
  * @returns whether the walk came out at the end of the edge
@@ -133,7 +136,8 @@ function outward(flips: FlipMesh, k: number) {
   }
   let half = flips.base[k];
   if (half < 0) return null;
-  for (;;) {
+  // Once round the vertex is more than any direction needs; a direction that is no number ends here too.
+  for (const first = half; ; ) {
     const angle = flips.geometry.cornerAngle(half);
     if (turn <= angle) break;
     const t = mesh.twin[previous(half)];
@@ -143,6 +147,7 @@ function outward(flips: FlipMesh, k: number) {
     }
     turn -= angle;
     half = t;
+    if (half === first && !(turn < TURN)) return null;
   }
   return { half, px: 0, py: 0, dx: Math.cos(turn), dy: Math.sin(turn), onHalf: true };
 }

@@ -1,7 +1,8 @@
 /** Shortest paths over the surface between two places, exact on the polyhedron. */
+import { Fault } from '../base/news.ts';
 import { distance, type Vec3 } from '../base/vec.ts';
 import { faceOf, next, type SurfaceMesh } from '../mesh/surface-mesh.ts';
-import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
+import { barycentric, positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
 import { wayBeside } from './beside-path.ts';
 import { EdgeWays, pathOfWay } from './edge-ways.ts';
 import { FlipPaths, sharedFace } from './flip-path.ts';
@@ -19,6 +20,9 @@ const MANY_FACES = 60;
 const ROUNDING = 1e-13;
 /** How much longer than the distance that windows found, as a share, the path traced through them may be by rounding. */
 const TRACED = 1e-12;
+
+/** Rounding that a sum of three lengths may have, as a share. */
+const SLIPPED = 1e-9;
 
 /** One path on one mesh. Where the same mesh is asked again, prepare a `WindowSolver` and use `shortestWith`. */
 export const shortestPath = (mesh: SurfaceMesh, from: SurfacePoint, to: SurfacePoint): GeodesicPath | null =>
@@ -66,8 +70,9 @@ export function tautWith(solver: WindowSolver, from: SurfacePoint, to: SurfacePo
 
 /**
  * The locally shortest path that an old path becomes when its ends move a little: it stays on the old path's side of
- * holes and humps, and costs by the path, not by the part (`flip-path.ts`).
- * @returns null when it cannot be made from the old path: ask for the shortest then
+ * holes, and of humps where faces are small beside them; it costs by the path, not by the part (`flip-path.ts`).
+ * @returns null when it cannot be made from the old path, or comes out longer than the old one and the moves together:
+ *          ask for the shortest then
  */
 export function followWith(
   solver: WindowSolver,
@@ -75,9 +80,23 @@ export function followWith(
   from: SurfacePoint,
   to: SurfacePoint,
 ): GeodesicPath | null {
+  const { mesh } = solver;
   const { ways, flips } = helpersOf(solver);
-  const way = wayBeside(ways, solver.mesh, old, from, to);
-  return way && flips.tauten(from, to, way);
+  const way = wayBeside(ways, mesh, old, from, to);
+  const path = way && flips.tauten(from, to, way);
+  if (!path) return null;
+  const last = old.faces.length;
+  const end = (i: number, face: number): SurfacePoint => ({
+    face,
+    bary: barycentric(mesh, face, [old.points[3 * i], old.points[3 * i + 1], old.points[3 * i + 2]]),
+  });
+  // The old path and the moves are a way on the same side: a longer answer slipped over something.
+  const moves = [
+    tautWith(solver, end(0, old.faces[0]), from),
+    tautWith(solver, end(last, old.faces[last - 1]), to),
+  ];
+  const most = old.length + (moves[0]?.length ?? Infinity) + (moves[1]?.length ?? Infinity);
+  return path.length <= most * (1 + SLIPPED) ? path : null;
 }
 
 interface Helpers {
@@ -121,7 +140,7 @@ export function traceBack(solver: WindowSolver, arrival: Arrival, to: SurfacePoi
     const root = solver.roots[r];
     if (w >= 0) {
       const q = solver.look(w, p, Infinity);
-      if (!q) break;
+      if (!q) throw new Fault(`window ${w} does not see the place that it was reached by`);
       for (let k = w; k >= 0; k = windows.parent[k]) {
         const h = windows.half[k];
         const len = windows.num[8 * k + 7];

@@ -7,7 +7,7 @@ import { add, clamp, distance, dot, normalize, scale, type Vec3 } from '../base/
 import { faceOf, next, previous, type SurfaceMesh } from '../mesh/surface-mesh.ts';
 import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
 import { FaceGeometry, type Fan } from './face-geometry.ts';
-import type { GeodesicPath } from './shortest.ts';
+import type { GeodesicPath } from './geodesic-path.ts';
 
 /**
  * A line that meets an edge this near one of its ends, as a share of the edge, meets the vertex: far above what rounding

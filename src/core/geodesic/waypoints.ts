@@ -7,18 +7,20 @@ import type { WindowSolver } from './windows.ts';
 
 /** A path this much longer than the shortest, as a share, is another one: it goes round something on its other side. */
 const OTHER = 1e-6;
+/** A path is cut within these shares of a piece. */
+const INSIDE = [0.1, 0.9] as const;
 /** A path is halved at most this often; a piece of a thousandth of a locally shortest path is the shortest. */
 const HALVINGS = 10;
 
 /**
  * Places on a locally shortest path, in order, such that the shortest ways from one to the next are the path: none where
- * the path is the shortest as it is.
+ * the path is the shortest as it is, or as short as it (another as short may then be laid).
+ * @returns faces and places in the part frame, mm, from the path's start to its end
  */
-export function waypoints(
-  solver: WindowSolver,
-  path: GeodesicPath,
-  halvings = HALVINGS,
-): { face: number; point: Vec3 }[] {
+export const waypoints = (solver: WindowSolver, path: GeodesicPath): { face: number; point: Vec3 }[] =>
+  held(solver, path, HALVINGS);
+
+function held(solver: WindowSolver, path: GeodesicPath, halvings: number): { face: number; point: Vec3 }[] {
   const { mesh } = solver;
   const last = path.faces.length;
   const point = (i: number): Vec3 => [path.points[3 * i], path.points[3 * i + 1], path.points[3 * i + 2]];
@@ -28,12 +30,22 @@ export function waypoints(
   if (shortest === null || path.length <= shortest.length * (1 + OTHER)) return [];
   let i = 0;
   let length = 0;
-  for (; i + 1 < last && length < path.length / 2; i++) length += distance(point(i), point(i + 1));
-  // Inside a face rather than on an edge, where the path is sure to pass.
+  // The piece that holds the middle is cut itself: it may be nearly the whole path.
+  while (i + 1 < last && length + distance(point(i), point(i + 1)) < path.length / 2) {
+    length += distance(point(i), point(i + 1));
+    i++;
+  }
   const [p, q] = [point(i), point(i + 1)];
-  const middle: Vec3 = [(p[0] + q[0]) / 2, (p[1] + q[1]) / 2, (p[2] + q[2]) / 2];
+  const whole = distance(p, q);
+  // Off its ends, which lie on edges: inside the face the path is sure to pass.
+  const share = Math.min(INSIDE[1], Math.max(INSIDE[0], (path.length / 2 - length) / whole));
+  const middle: Vec3 = [
+    p[0] + share * (q[0] - p[0]),
+    p[1] + share * (q[1] - p[1]),
+    p[2] + share * (q[2] - p[2]),
+  ];
   const face = path.faces[i];
-  const half = distance(p, q) / 2;
+  const half = share * whole;
   const first: GeodesicPath = {
     points: Float64Array.from([...path.points.subarray(0, 3 * i + 3), ...middle]),
     faces: path.faces.slice(0, i + 1),
@@ -45,8 +57,8 @@ export function waypoints(
     length: path.length - length - half,
   };
   return [
-    ...waypoints(solver, first, halvings - 1),
+    ...held(solver, first, halvings - 1),
     { face, point: middle },
-    ...waypoints(solver, second, halvings - 1),
+    ...held(solver, second, halvings - 1),
   ];
 }

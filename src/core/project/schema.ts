@@ -187,6 +187,7 @@ export const projectSchema = z.looseObject({
 });
 
 export type Project = z.infer<typeof projectSchema>;
+export type Drape = Project['circuit']['drapes'][number];
 export type Head = Project['head'];
 export type Material = Project['material'];
 export type Limits = Project['limits'];

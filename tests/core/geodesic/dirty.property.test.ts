@@ -1,6 +1,5 @@
 import { describe, expect, it } from 'vitest';
 import { at3, distance, type Vec3 } from '../../../src/core/base/vec.ts';
-import { edgeBound } from '../../../src/core/geodesic/edge-bound.ts';
 import { logMap } from '../../../src/core/geodesic/log-map.ts';
 import {
   followWith,
@@ -14,6 +13,7 @@ import { WindowSolver } from '../../../src/core/geodesic/windows.ts';
 import { checkMesh } from '../../../src/core/mesh/check-mesh.ts';
 import { positionOf, type SurfacePoint } from '../../../src/core/mesh/surface-point.ts';
 import { anyPlace, type Dirty, dirtyMesh, offFace } from '../helpers/dirty.ts';
+import { edgeBound } from '../helpers/edge-bound.ts';
 
 const SEEDS = 520;
 /** Share of a length, or of the part's size, that rounding may cost. */

@@ -1,11 +1,11 @@
 import { describe, expect, it } from 'vitest';
 import { randomFrom } from '../../../src/core/base/random.ts';
 import type { Vec3 } from '../../../src/core/base/vec.ts';
-import { edgeBound } from '../../../src/core/geodesic/edge-bound.ts';
 import { shortestPath, shortestWith } from '../../../src/core/geodesic/shortest.ts';
 import { WindowSolver } from '../../../src/core/geodesic/windows.ts';
 import type { SurfaceMesh } from '../../../src/core/mesh/surface-mesh.ts';
 import { barycentric, positionOf, type SurfacePoint } from '../../../src/core/mesh/surface-point.ts';
+import { edgeBound } from '../helpers/edge-bound.ts';
 import { gridMesh, meshFrom, placeAt, plate } from '../helpers/surfaces.ts';
 
 /** A lopsided bump with hills, hollows and a saddle. */

@@ -1,8 +1,8 @@
 /** An upper bound on the distance between two surface points: the shortest way along edges. */
-import { distance } from '../base/vec.ts';
-import type { SurfaceMesh } from '../mesh/surface-mesh.ts';
-import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
-import { EdgeWays } from './edge-ways.ts';
+import { distance } from '../../../src/core/base/vec.ts';
+import { EdgeWays } from '../../../src/core/geodesic/edge-ways.ts';
+import type { SurfaceMesh } from '../../../src/core/mesh/surface-mesh.ts';
+import { positionOf, type SurfacePoint } from '../../../src/core/mesh/surface-point.ts';
 
 /** @returns length in mm; Infinity when no way over the surface joins them */
 export function edgeBound(mesh: SurfaceMesh, from: SurfacePoint, to: SurfacePoint): number {

@@ -1,0 +1,205 @@
+/**
+ * A drawing laid on the part (model.md §10): its origin on the anchor, every place at the flat coordinates that the map of
+ * the surface gives it. What the surface does to lengths is measured, not hidden.
+ */
+import { radiansFromDegrees } from '../base/brands.ts';
+import type { Vec2, Vec3 } from '../base/vec.ts';
+import type { Area, Drawing, Hole, Shape, Stroke } from '../drawing/drawing.ts';
+import type { WindowSolver } from '../geodesic/windows.ts';
+import type { Drape } from '../project/schema.ts';
+import type { CopperElement } from './copper.ts';
+import { type DrapeFinding, layOut, lineLength, MARGIN, TRUE_TO } from './element.ts';
+import { evenLengths } from './even-lengths.ts';
+import { type FlatFigure, flatFigure } from './flat-figure.ts';
+import { flatReader, mapPatch } from './map-patch.ts';
+import { areaStretch, chordLength, lineStretch, steepest } from './map-stretch.ts';
+import { AREA_STEP } from './pad.ts';
+import { PatchWalk } from './patch-walk.ts';
+import type { Place } from './route.ts';
+import { traceStep } from './trace.ts';
+
+export interface DrawingDraped {
+  elements: CopperElement[];
+  findings: DrapeFinding[];
+}
+
+/** One shape, moved so that the drawing's origin is at 0. */
+interface Moved {
+  id: string;
+  net: string;
+  shape: Shape;
+  figure: Stroke | Area;
+  flat: FlatFigure;
+}
+
+/**
+ * @param drape   where the drawing lies; layers named `skip` are left out
+ * @param anchor  surface place nearest to `drape.anchor`
+ * @returns elements in the drawing's order, and what could not be laid: the rest is kept
+ */
+export function drapeDrawing(
+  solver: WindowSolver,
+  drape: Drape,
+  drawing: Drawing,
+  anchor: Place,
+): DrawingDraped {
+  const shapes = movedShapes(drape, drawing);
+  const holes = drawing.holes.map((h) => movedHole(h, drape.origin));
+  const farthest = Math.max(0, ...shapes.map((s) => farthestCorner(s.flat.box)));
+  if (shapes.length === 0) return { elements: [], findings: [] };
+  const radius = farthest + MARGIN;
+  const patch = mapPatch(solver, anchor, radius, radiansFromDegrees(drape.turn), drape.mirror);
+  const limits = patch.limits((u, v) => nearestEdge(shapes, u, v));
+  if (drape.evenLengths) evenLengths(patch, (u, v) => nearestEdge(shapes, u, v));
+  const walk = new PatchWalk(patch);
+  const read = flatReader(patch);
+  const chord = chordLength(solver.mesh, patch, radius);
+  const findings: DrapeFinding[] = limits
+    .filter((limit) => limit.measure < -TRUE_TO)
+    .map((limit) => ({ rule: 'beyond-map', element: drape.id, at: limit.at, text: BEYOND[limit.kind] }));
+  // Flat lengths grow by at most this on the way over the part: fields far from copper must not grow by more than 1.
+  const steep = Math.min(steepest(patch), TORN);
+  const elements: CopperElement[] = [];
+  for (const own of shapes) {
+    const near = holes.filter((h) => boxesMeet(own.flat.box, holeBox(h)));
+    const evaluate = (face: number, p: Vec3) => {
+      const at = read(face, p);
+      if (!at) return { edge: Math.max(MARGIN, distanceTo(p, anchor.point) - farthest), hatch: 0, along: 0 };
+      const field = own.flat.at(at[0], at[1]);
+      const edge = near.reduce((e, h) => Math.max(e, holeEdge(h, at[0], at[1])), field.edge);
+      return { ...field, edge: edge > 0 ? edge / steep : edge };
+    };
+    const triangles = walk.within(grown(own.flat.box, MARGIN));
+    const faces = [...new Set([...triangles].map((t) => patch.face[t]))].sort((a, b) => a - b);
+    const { figure } = own;
+    const step = figure.kind === 'stroke' ? traceStep(figure.width) : AREA_STEP;
+    const laid = layOut(solver.mesh, faces, evaluate, step);
+    if (laid.copper.face.length === 0) {
+      findings.push({
+        rule: 'no-copper',
+        element: own.id,
+        at: anchor.point,
+        text: 'nothing of it lies on the surface',
+      });
+      continue;
+    }
+    const line = figure.kind === 'stroke' ? walk.line(figure.points, figure.closed) : null;
+    if (line?.left)
+      findings.push({
+        rule: 'left-map',
+        element: own.id,
+        at: endOf(line.path.points),
+        text: 'its line leaves the surface that the drawing reaches: it stops there',
+      });
+    const worst =
+      figure.kind === 'stroke'
+        ? lineStretch(walk, figure.points, figure.closed, chord)
+        : areaStretch(walk, own.flat, chord);
+    const middle = laid.copper.positions.length / 6;
+    const o = 3 * Math.floor(middle);
+    elements.push({
+      id: own.id,
+      kind: own.shape.role,
+      net: own.net,
+      width: figure.kind === 'stroke' ? figure.width : 0,
+      ...(line ? { path: line.path } : {}),
+      anchor: line
+        ? endOf(line.path.points.subarray(0, 3))
+        : [laid.copper.positions[o], laid.copper.positions[o + 1], laid.copper.positions[o + 2]],
+      ...laid,
+      length: line ? line.path.length : laid.outline.reduce((sum, loop) => sum + lineLength(loop), 0),
+      drawnLength: own.flat.length,
+      stretch: worst.stretch,
+      stretched: worst,
+    });
+  }
+  return { elements, findings };
+}
+
+const BEYOND = {
+  border: 'the surface ends inside the drawing: what lies beyond has no place',
+  'cut locus': 'ways over the surface from either side meet inside the drawing: it is torn there',
+  saddle: 'a sharp inner corner lies inside the drawing: what lies behind it is squeezed',
+} as const;
+
+function movedShapes(drape: Drape, drawing: Drawing): Moved[] {
+  const [ou, ov] = drape.origin;
+  const taken = new Set<string>();
+  let n = 0;
+  return drawing.shapes
+    .filter((s) => drape.drawingLayers[s.layer] !== 'skip')
+    .map((shape) => {
+      n++;
+      let id = `${drape.id}/${shape.id ?? n}`;
+      // Two shapes of one name: the later ones are told apart by their number.
+      if (taken.has(id)) id = `${id}.${n}`;
+      taken.add(id);
+      const figure = moved(shape.figure, ou, ov);
+      const net =
+        (shape.id !== null ? drape.nets[shape.id] : undefined) ?? drape.nets[shape.layer] ?? shape.net ?? '';
+      return { id, net, shape, figure, flat: flatFigure(figure) };
+    });
+}
+
+const shift = (points: Float64Array, ou: number, ov: number): Float64Array =>
+  points.map((x, i) => x - (i % 2 === 0 ? ou : ov));
+
+const moved = (figure: Stroke | Area, ou: number, ov: number): Stroke | Area =>
+  figure.kind === 'stroke'
+    ? { ...figure, points: shift(figure.points, ou, ov) }
+    : { ...figure, rings: figure.rings.map((r) => shift(r, ou, ov)) };
+
+const movedHole = (hole: Hole, [ou, ov]: Vec2): Hole => ({
+  ...hole,
+  at: [hole.at[0] - ou, hole.at[1] - ov],
+  to: [hole.to[0] - ou, hole.to[1] - ov],
+});
+
+type Box = readonly [number, number, number, number];
+
+const farthestCorner = ([lu, lv, hu, hv]: Box): number =>
+  Math.hypot(Math.max(-lu, hu, 0), Math.max(-lv, hv, 0));
+
+const grown = ([lu, lv, hu, hv]: Box, by: number): Box => [lu - by, lv - by, hu + by, hv + by];
+
+const boxesMeet = (a: Box, b: Box): boolean => a[0] <= b[2] && b[0] <= a[2] && a[1] <= b[3] && b[1] <= a[3];
+
+function holeBox({ at, to, diameter }: Hole): Box {
+  const r = diameter / 2;
+  return [
+    Math.min(at[0], to[0]) - r,
+    Math.min(at[1], to[1]) - r,
+    Math.max(at[0], to[0]) + r,
+    Math.max(at[1], to[1]) + r,
+  ];
+}
+
+/** How far a place lies inside a hole, mm, negative outside: copper ends at its rim. */
+function holeEdge({ at, to, diameter }: Hole, u: number, v: number): number {
+  const [eu, ev] = [to[0] - at[0], to[1] - at[1]];
+  const ee = eu * eu + ev * ev;
+  const t = ee > 0 ? Math.max(0, Math.min(1, ((u - at[0]) * eu + (v - at[1]) * ev) / ee)) : 0;
+  return diameter / 2 - Math.hypot(u - at[0] - t * eu, v - at[1] - t * ev);
+}
+
+/** Signed distance to the nearest shape; shapes whose boxes are farther than what is found are not asked. */
+function nearestEdge(shapes: readonly Moved[], u: number, v: number): number {
+  let best = Infinity;
+  for (const { flat } of shapes) {
+    const [lu, lv, hu, hv] = flat.box;
+    const away = Math.hypot(Math.max(lu - u, 0, u - hu), Math.max(lv - v, 0, v - hv));
+    if (away < best) best = Math.min(best, Math.max(away, flat.at(u, v).edge));
+    if (away === 0) best = Math.min(best, flat.at(u, v).edge);
+  }
+  return best;
+}
+
+/** A torn map has triangles of no end: refining follows nothing there. */
+const TORN = 3;
+
+const distanceTo = (p: Vec3, q: Vec3): number => Math.hypot(p[0] - q[0], p[1] - q[1], p[2] - q[2]);
+
+const endOf = (points: Float64Array): Vec3 => {
+  const o = points.length - 3;
+  return [points[o], points[o + 1], points[o + 2]];
+};
