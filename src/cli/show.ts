@@ -131,6 +131,7 @@ function unwritten(report: Report): string {
     ]);
   for (const e of report.elements)
     for (const [reason, at] of reasons(e)) rows.push([e.id, reason, where(at)]);
+  for (const r of report.rules) if (r.text) rows.push([r.elements.join(', '), r.text, where(r.at)]);
   for (const id of report.unreached.elements)
     if (!rows.some((r) => r[0] === id)) rows.push([id, 'no layer reaches all of it', '']);
   if (rows.length === 0) return 'Everything can be written.';
@@ -151,8 +152,9 @@ function reasons(e: ElementReport): [string, readonly number[] | undefined][] {
 }
 
 function rulesBlock(report: Report): string {
-  if (report.rules.length === 0) return 'Shop rules: nothing to say.';
-  const rows = report.rules.map((r) => [
+  const measured = report.rules.filter((r) => !r.text);
+  if (measured.length === 0) return 'Shop rules: nothing to say.';
+  const rows = measured.map((r) => [
     r.level,
     r.rule,
     `${fixed(r.value, 3)}`,

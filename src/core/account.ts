@@ -23,6 +23,7 @@ import { fieldShare } from './reach/field.ts';
 import { reachElement } from './reach/reach.ts';
 import { type ElementReach, REASONS, type Reason, type SetupReach } from './reach/result.ts';
 import { gapRule } from './rules/gap.ts';
+import { stretchRule } from './rules/stretch.ts';
 import { widthRule } from './rules/width.ts';
 import type { LayerScan } from './scan/strokes.ts';
 
@@ -60,10 +61,13 @@ export function openReport(
         limit: 0,
         elements: [f.element],
         at: at(f.at),
+        text: f.text,
       })),
-      ...[...widthRule(copper.elements, project.limits), ...gapRule(copper.elements, project.limits)].map(
-        (x) => ({ ...x, value: r(x.value), at: at(x.at) }),
-      ),
+      ...[
+        ...widthRule(copper.elements, project.limits),
+        ...gapRule(copper.elements, project.limits),
+        ...stretchRule(copper.elements, project.limits),
+      ].map((x) => ({ ...x, value: r(x.value), at: at(x.at) })),
     ],
     setups: [],
     unreached: { length: 0, elements: [] },

@@ -58,7 +58,7 @@ const HINTS: readonly (readonly [id: string, text: string])[] = [
     'hint-offset',
     'Drag the marker in the strip below: it moves the stage. Copper that is then out of focus turns red.',
   ],
-  ['hint-trace', 'Choose Trace and click along the dome: the run follows the surface the shortest way.'],
+  ['hint-trace', 'Choose Trace and click along the part: the run follows the surface the shortest way.'],
   ['hint-files', 'Open Files to write what the laser needs, one set a layer, with the Z to set for each.'],
 ];
 

@@ -115,9 +115,10 @@ export function CircuitStep() {
       {[
         ...(copper?.problems ?? []).map((p) => `${p.place}: ${p.problem}; ${p.mend}.`),
         ...(copper?.findings ?? []).map((f) => `${f.element}: ${f.text}.`),
-        ...(copper?.rules ?? []).map(
-          (r) =>
-            `${r.elements.join(' and ')}: ${r.rule} ${show(r.value, 3)} mm, ${r.level === 'error' ? 'at least' : 'better'} ${show(r.limit, 2)} mm.`,
+        ...(copper?.rules ?? []).map((r) =>
+          r.rule === 'stretch'
+            ? `${r.elements.join(' and ')}: lengths differ from the drawing by up to ${show(100 * r.value, 1)} %, ${r.level === 'error' ? 'at most' : 'better'} ${show(100 * r.limit, 1)} %.`
+            : `${r.elements.join(' and ')}: ${r.rule} ${show(r.value, 3)} mm, ${r.level === 'error' ? 'at least' : 'better'} ${show(r.limit, 2)} mm.`,
         ),
       ].map((t) => (
         <p key={t} className="wrong">

@@ -17,7 +17,11 @@ function Failing({ report }: { report: Report }) {
       ids: report.elements.filter((e) => !e[c].ok).map((e) => e.id),
     })),
     ...report.rules.map((r) => ({
-      what: `${r.rule} ${show(r.value, 2)} of ${show(r.limit, 2)} mm (${r.level})`,
+      what:
+        r.text ??
+        (r.rule === 'stretch'
+          ? `stretch ${show(100 * r.value, 1)} of ${show(100 * r.limit, 1)} % (${r.level})`
+          : `${r.rule} ${show(r.value, 2)} of ${show(r.limit, 2)} mm (${r.level})`),
       ids: r.elements,
     })),
   ].filter((r) => r.ids.length > 0);

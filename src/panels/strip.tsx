@@ -281,7 +281,7 @@ function Strip({ project }: { project: Project }) {
           : lost > 1e-4
             ? `With these layers ${show(lost, 2)} mm² of copper is not reached.`
             : layers.length > 0
-              ? `${layers.length} layers reach all copper that can be in focus. Drag the marker to move the focus; click a band to see its layer alone, drag it to move the layer.`
+              ? `${layers.length === 1 ? '1 layer reaches' : `${layers.length} layers reach`} all copper that can be in focus. Drag the marker to move the focus; click a band to see its layer alone, drag it to move the layer.`
               : ''}
       </p>
     </section>

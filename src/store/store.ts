@@ -445,9 +445,7 @@ export function createStore(workers: Workers) {
     if (added > 0)
       notify(
         'done',
-        added === 1
-          ? 'A point was added that keeps the way on its side, where another is shorter'
-          : `${added} points were added that keep the way on its side, where another is shorter`,
+        `${added === 1 ? 'A point was' : `${added} points were`} added to ${id}: the way stays on this side, where the shortest would change sides`,
       );
   }
 

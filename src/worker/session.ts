@@ -26,6 +26,7 @@ import type { Head, Project, Setup } from '../core/project/schema.ts';
 import { checkReach } from '../core/reach/reach.ts';
 import type { SetupReach } from '../core/reach/result.ts';
 import { gapRule } from '../core/rules/gap.ts';
+import { stretchRule } from '../core/rules/stretch.ts';
 import { widthRule } from '../core/rules/width.ts';
 import { creases } from './creases.ts';
 import { HeldPaths, type Hold } from './held-paths.ts';
@@ -141,7 +142,10 @@ export function createSession() {
       for (const key of laid.keys()) if (!keep.has(key)) laid.delete(key);
       copper = { elements };
       const { limits } = project;
-      const rules = pending > 0 ? [] : [...widthRule(elements, limits), ...gapRule(elements, limits)];
+      const rules =
+        pending > 0
+          ? []
+          : [...widthRule(elements, limits), ...gapRule(elements, limits), ...stretchRule(elements, limits)];
       const covered = pending > 0 ? null : unionArea(elements.map((e) => e.copper));
       return {
         ...copperPicture(copper, here, posesOf(project)),

@@ -66,7 +66,7 @@ test('a trace dragged more than half round a post stays on its side when it is l
   const turn = Math.atan2(end[1], end[0]) + 2 * Math.PI;
   expect(copper.length).toBeGreaterThan(0.995 * R * (turn - 0.1));
   expect(copper.length).toBeLessThan(1.005 * Math.hypot(R * (turn - 0.1), 1));
-  expect(s().notices.map((n) => n.text)).toEqual([expect.stringContaining('keep')]);
+  expect(s().notices.map((n) => n.text)).toEqual([expect.stringContaining('added to t1')]);
   expect(s().history.past.map((x) => x.name)).toEqual(['move point 2 of t1']);
   store.undo();
   expect(t1().route).toEqual(route);

@@ -65,3 +65,6 @@ export interface DrapeFinding {
 export type Draped =
   | { element: CopperElement; findings: DrapeFinding[] }
   | { element: null; findings: DrapeFinding[] };
+
+/** A place as messages name it. */
+export const told = (p: Vec3): string => `[${p.map((x) => Math.round(x * 1e3) / 1e3).join(', ')}]`;

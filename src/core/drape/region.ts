@@ -5,7 +5,7 @@ import { faceNormal } from '../mesh/surface-point.ts';
 import type { Region } from '../project/schema.ts';
 import { type Band, band } from './band.ts';
 import { heldDistance } from './box-bound.ts';
-import { type Draped, layOut } from './element.ts';
+import { type Draped, layOut, told } from './element.ts';
 import { AREA_STEP } from './pad.ts';
 import { joinRoute, type Place } from './route.ts';
 import { selfCrossing } from './self-crossing.ts';
@@ -29,7 +29,7 @@ export function drapeRegion(
           rule: 'no-way',
           element: region.id,
           at: corners[route.unreached % corners.length].point,
-          text: 'no way over the surface joins the corners of the outline',
+          text: `no way over the surface between ${told(corners[(route.unreached + corners.length - 1) % corners.length].point)} and ${told(corners[route.unreached % corners.length].point)}; draw a region on each piece of the part`,
         },
       ],
     };

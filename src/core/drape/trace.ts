@@ -4,7 +4,7 @@ import type { Trace } from '../project/schema.ts';
 import { band } from './band.ts';
 import { heldDistance } from './box-bound.ts';
 import type { CopperElement } from './copper.ts';
-import { type Draped, layOut, MARGIN } from './element.ts';
+import { type Draped, layOut, MARGIN, told } from './element.ts';
 import { lengthen } from './lengthen.ts';
 import { mitreCurvature } from './mitre-curvature.ts';
 import { joinRoute, type Place } from './route.ts';
@@ -23,7 +23,7 @@ export function drapeTrace(solver: WindowSolver, trace: Trace, places: readonly 
           rule: 'no-way',
           element: trace.id,
           at: places[route.unreached].point,
-          text: `no way over the surface between route points ${route.unreached - 1} and ${route.unreached}`,
+          text: `no way over the surface between ${told(places[route.unreached - 1].point)} and ${told(places[route.unreached].point)}; draw a trace on each piece of the part`,
         },
       ],
     };

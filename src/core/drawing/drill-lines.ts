@@ -1,10 +1,11 @@
-/** Text line by line, without an array of all lines. */
+/** Text line by line, without an array of all lines; ends are LF, CR LF or, in files that have neither, CR. */
 export function* lines(text: string): Generator<{ text: string; line: number }> {
+  const end = text.includes('\n') ? '\n' : '\r';
   let from = 0;
   for (let line = 1; from < text.length; line++) {
-    let to = from;
-    while (to < text.length && text.charCodeAt(to) !== 10 && text.charCodeAt(to) !== 13) to++;
-    yield { text: text.slice(from, to), line };
-    from = to + (text.charCodeAt(to) === 13 && text.charCodeAt(to + 1) === 10 ? 2 : 1);
+    const next = text.indexOf(end, from);
+    const to = next < 0 ? text.length : next;
+    yield { text: text.slice(from, text[to - 1] === '\r' ? to - 1 : to), line };
+    from = to + 1;
   }
 }

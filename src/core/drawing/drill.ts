@@ -45,7 +45,7 @@ export function readDrill(text: string, file: string, options: DrawingOptions, c
 const STRIDE = 65536;
 
 /** What a hole takes in memory, in points. */
-const HOLE_COST = 4;
+const HOLE_COST = 6;
 
 /** Lines of headers that say nothing about holes. */
 const NO_CHANGE = /^(M48|M95|%|FMT,.*|VER,.*|DETECT,.*|ATC,.*|M47.*|M06|M0?8|M0?9|G0?5|G81|G40|F\d.*|S\d.*)$/;
@@ -87,7 +87,12 @@ class Reader {
   }
 
   take(text: string, place: string): void {
-    if (text.startsWith(';')) {
+    // Most lines of a long file.
+    if (text[0] === 'X' || text[0] === 'Y') {
+      this.#move(text, place);
+      return;
+    }
+    if (text[0] === ';') {
       this.#comment(text.slice(1));
       return;
     }
@@ -104,7 +109,7 @@ class Reader {
     else if (/^M1[67]$/.test(text)) this.#down = false;
     else if (/^T\d/.test(text)) this.#takeTool(text);
     else if (/^R\d+([XY]|$)/.test(text)) this.#repeat(text, place);
-    else if (/^(G00?|G0?1|G85)?[XY]|^G00?$/.test(text)) this.#move(text, place);
+    else if (/^(G00?|G0?1|G85)[XY]|^G00?$/.test(text)) this.#move(text, place);
     else if (NO_CHANGE.test(text)) {
       this.known ||= text === 'M48';
       if (text === 'M48') this.#header = true;
@@ -141,14 +146,14 @@ class Reader {
 
   #move(text: string, place: string): void {
     this.known = true;
-    const [first, second] = text.split('G85');
-    const g = /^G(\d+)/.exec(first);
+    const [first, second] = text.includes('G') ? text.split('G85') : [text];
+    const g = first[0] === 'G' ? /^G(\d+)/.exec(first) : null;
     if (g) this.#routing = true;
     // G00 moves the router without cutting, down or not.
     const cut = this.#routing && this.#down && (g === null || Number(g[1]) !== 0);
     const from = [this.#x, this.#y] as const;
     // In a slot both places may leave a letter out: it keeps its value.
-    if (first !== '') this.#goTo(first.replace(/^G\d+/, ''));
+    if (first !== '') this.#goTo(g === null ? first : first.slice(g[0].length));
     if (second !== undefined) {
       const start = [this.#x, this.#y] as const;
       this.#goTo(second);

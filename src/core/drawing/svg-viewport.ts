@@ -25,7 +25,7 @@ export function readViewBox(text: string): Box {
  * @param aspect  value of preserveAspectRatio; null for the default, xMidYMid meet
  * @throws BadShape `bad-size`
  */
-export function fit(box: Box, to: Box, aspect: string | null): Matrix {
+export function fitted(box: Box, to: Box, aspect: string | null): Matrix {
   let [sx, sy] = [to.width / box.width, to.height / box.height];
   let [x, y] = [to.x, to.y];
   const words = (aspect ?? '').split(/\s+/).filter((w) => w !== '' && w !== 'defer');
@@ -77,7 +77,7 @@ export function readPage(get: (name: string) => string | null, unit: number | nu
     width: w ?? (h ? (h * box.width) / box.height : box.width * px),
     height: h ?? (w ? (w * box.height) / box.width : box.height * px),
   };
-  return { toMm: fit(box, page, get('preserveAspectRatio')), view: box, assumed };
+  return { toMm: fitted(box, page, get('preserveAspectRatio')), view: box, assumed };
 }
 
 /** A share of a window that nobody knows is no size. */

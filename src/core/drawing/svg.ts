@@ -14,7 +14,7 @@ import { lengthOf, PX } from './svg-length.ts';
 import { diagonalOf, drawShape, SHAPES } from './svg-shapes.ts';
 import { classesOf, INITIAL, type Sheet, type Style, styleOf, styleSheet } from './svg-style.ts';
 import { readTransform } from './svg-transform.ts';
-import { type Box, fit, type Page, readPage, readViewBox } from './svg-viewport.ts';
+import { type Box, fitted, type Page, readPage, readViewBox } from './svg-viewport.ts';
 import { MOST_DEPTH, readXml, tooDeep, type XmlNode } from './svg-xml.ts';
 
 /** Elements drawn, those that `use` draws again counted each time: ten lines of `use` can ask for 10¹⁰. */
@@ -238,7 +238,7 @@ function viewport(node: XmlNode, use: XmlNode | null, here: Around): Around {
     throw new BadShape('bad-size', `this ${node.name} has no size that could be worked out`);
   return {
     ...here,
-    matrix: times(here.matrix, fit(inner, box, node.attributes.get('preserveAspectRatio') ?? null)),
+    matrix: times(here.matrix, fitted(inner, box, node.attributes.get('preserveAspectRatio') ?? null)),
     view: inner,
   };
 }

@@ -118,6 +118,9 @@ function after(report: Report): string {
   return `<section><h2>After the last layer</h2><p>Clean the part, then plate: ${n(p.area_dm2, 3)} dm² of copper (${n(p.load, 2)} dm²/L), about ${n(p.time_min, 0)} minutes, ${n(p.copper_g * 1000, 1)} mg of copper. Rate and load are this project’s own numbers; the bath’s data sheet decides.</p></section>`;
 }
 
+/** Rules that are no lengths. */
+const UNIT: Record<string, string> = { stretch: ' of the drawn length' };
+
 function notWritten(report: Report): string {
   const rows = report.elements
     .map((e) => ({ id: e.id, why: reasons(e) }))
@@ -127,7 +130,7 @@ function notWritten(report: Report): string {
     .filter((r) => r.level === 'error')
     .map(
       (r) =>
-        `<tr><th>${text(r.elements.join(', '))}</th><td>${text(`${r.rule}: ${n(r.value, 3)} mm, limit ${n(r.limit, 3)} mm`)}</td></tr>`,
+        `<tr><th>${text(r.elements.join(', '))}</th><td>${text(r.text ?? `${r.rule}: ${n(r.value, 3)}${UNIT[r.rule] ?? ' mm'}, limit ${n(r.limit, 3)}${UNIT[r.rule] ?? ' mm'}`)}</td></tr>`,
     );
   const p = report.proof;
   const proof =

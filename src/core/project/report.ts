@@ -68,6 +68,8 @@ export interface RuleFinding {
   limit: number;
   elements: string[];
   at: Vec3;
+  /** What a measured value does not say: an element that could not be laid, or not as drawn. `value` and `limit` are 0 then. */
+  text?: string;
 }
 
 export interface SetupReport {

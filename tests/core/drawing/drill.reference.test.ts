@@ -177,10 +177,10 @@ describe('hostile files', () => {
     expect(problem(text)).toEqual([code, place]);
   });
 
-  test('a million holes are read, two million are refused', () => {
+  test('half a million holes are read, a million are refused', () => {
     const line = Array.from({ length: 1000 }, (_, i) => `X${i}Y${i * 7}`).join('\n');
     const many = (k: number): string[] => [...head, ...new Array(k).fill(line), 'M30'];
-    expect(read(many(1000)).holes.length).toBe(1_000_000);
-    expect(problem(many(2000))[0]).toBe('too-large');
+    expect(read(many(500)).holes.length).toBe(500_000);
+    expect(problem(many(1000))[0]).toBe('too-large');
   });
 });

@@ -201,8 +201,12 @@ describe(source('svg-2-drawings'), () => {
     const inner = page(
       `<svg x="3" y="4" width="100" height="50" viewBox="0 0 200 200" ${said}>${line}</svg>`,
     );
-    stroke(outer).points.forEach((c, i) => near(c, want[i], 1e-12));
-    stroke(inner).points.forEach((c, i) => near(c, want[i] + (i % 2 === 0 ? 3 : -4), 1e-12));
+    stroke(outer).points.forEach((c, i) => {
+      near(c, want[i], 1e-12);
+    });
+    stroke(inner).points.forEach((c, i) => {
+      near(c, want[i] + (i % 2 === 0 ? 3 : -4), 1e-12);
+    });
   });
 
   it('a viewBox that begins elsewhere is shifted to the corner; one side alone fixes the other', () => {
@@ -214,7 +218,9 @@ describe(source('svg-2-drawings'), () => {
       'width="100%" height="25mm"',
     ]) {
       const d = read(`<svg ${size} viewBox="-30 7 50 50">${line}</svg>`);
-      [0, 0, 25, -25].forEach((c, i) => near(stroke(d).points[i], c, 1e-12));
+      [0, 0, 25, -25].forEach((c, i) => {
+        near(stroke(d).points[i], c, 1e-12);
+      });
     }
   });
 
