@@ -1,9 +1,8 @@
 /** Flattened chains to what a drawing is made of: areas with fill rules worked out, strokes, dots. */
-import { randomFrom } from '../base/random.ts';
 import type { Area, Bends, Ends, Stroke } from './drawing.ts';
-import { BadShape } from './findings.ts';
 import { type Flat, type Rule, ringArea } from './flat.ts';
 import { arcPieces, type Chain } from './flatten.ts';
+import type { Tangle } from './tangle.ts';
 
 /**
  * What the rule calls inside, open chains closed by a straight line: one area for each separate piece.
@@ -122,83 +121,4 @@ function dot(at: Float64Array, r: number, ends: Ends, tolerance: number): Float6
     ring[2 * i + 1] = at[1] + reach * Math.sin(angle);
   }
   return ring;
-}
-
-/** Sides of one figure: a sweep over more takes seconds, however plain they lie. */
-const MOST_SIDES = 500_000;
-/** Sides up to which a sweep is over in a moment, whatever lies abreast. */
-const FEW = 2000;
-/** Sides up to which nobody looks. */
-const NONE = 16;
-/** Pairs of sides looked at, for each side and at most. */
-const SAMPLE = 20;
-const MOST_SAMPLE = 400_000;
-/** Crossings in a drawing, and pairs of sides that one line across meets: each a few seconds of sweeping. */
-const MOST_CROSSINGS = 2e6;
-const MOST_ABREAST = 1e8;
-
-export interface Tangle {
-  /** @throws BadShape `too-tangled` */
-  check(rings: readonly Float64Array[]): void;
-}
-
-/**
- * Refuses what would take minutes to clip: a sweep costs by the crossings there are and by the sides it meets at once. Both
- * are estimated from random pairs of sides and add up over a drawing; drawings of circuits lie far below.
- */
-export function tangle(): Tangle {
-  let [crossed, alongside] = [0, 0];
-  return {
-    check(rings) {
-      const sides = rings.reduce((n, r) => n + r.length / 2, 0);
-      if (sides > MOST_SIDES)
-        throw new BadShape(
-          'too-tangled',
-          `it has ${sides} sides, more than the ${MOST_SIDES} that are clipped`,
-        );
-      if (sides <= NONE) return;
-      const { crossings, abreast } = estimate(rings, sides);
-      crossed += crossings;
-      if (sides > FEW) alongside += abreast;
-      if (crossed > MOST_CROSSINGS)
-        throw new BadShape('too-tangled', `outlines cross one another some ${Math.round(crossed)} times`);
-      if (alongside > MOST_ABREAST)
-        throw new BadShape('too-tangled', `too many of its ${sides} sides lie abreast of one another`);
-    },
-  };
-}
-
-function estimate(rings: readonly Float64Array[], sides: number): { crossings: number; abreast: number } {
-  const ends = new Float64Array(4 * sides);
-  let k = 0;
-  for (const r of rings)
-    for (let i = 0; i < r.length; i += 2) {
-      const j = (i + 2) % r.length;
-      ends[k++] = r[i];
-      ends[k++] = r[i + 1];
-      ends[k++] = r[j];
-      ends[k++] = r[j + 1];
-    }
-  const random = randomFrom(sides);
-  const sample = Math.min(SAMPLE * sides, MOST_SAMPLE);
-  let [met, level] = [0, 0];
-  for (let s = 0; s < sample; s++) {
-    const a = 4 * Math.floor(random() * sides);
-    const b = 4 * Math.floor(random() * sides);
-    const low = Math.max(Math.min(ends[a + 1], ends[a + 3]), Math.min(ends[b + 1], ends[b + 3]));
-    const high = Math.min(Math.max(ends[a + 1], ends[a + 3]), Math.max(ends[b + 1], ends[b + 3]));
-    if (low > high) continue;
-    level++;
-    if (cross(ends, a, b) && cross(ends, b, a)) met++;
-  }
-  const pairs = (sides / sample) * sides;
-  return { crossings: (met * pairs) / 2, abreast: level * pairs };
-}
-
-/** Does the line through side a part the ends of side b? */
-function cross(e: Float64Array, a: number, b: number): boolean {
-  const [dx, dy] = [e[a + 2] - e[a], e[a + 3] - e[a + 1]];
-  const left = dx * (e[b + 1] - e[a + 1]) - dy * (e[b] - e[a]);
-  const right = dx * (e[b + 3] - e[a + 1]) - dy * (e[b + 2] - e[a]);
-  return left > 0 !== right > 0 && left !== 0 && right !== 0;
 }

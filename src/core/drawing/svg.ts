@@ -4,7 +4,7 @@
  */
 import { InputError } from '../base/news.ts';
 import type { RunContext } from '../base/run-context.ts';
-import { areasOf, strokesOf, type Tangle, tangle } from './chains.ts';
+import { areasOf, strokesOf } from './chains.ts';
 import type { Drawing, DrawingOptions, Shape } from './drawing.ts';
 import { BadShape, type Findings, findings, tooLarge } from './findings.ts';
 import type { Flat } from './flat.ts';
@@ -16,6 +16,7 @@ import { classesOf, INITIAL, type Sheet, type Style, styleOf, styleSheet } from 
 import { readTransform } from './svg-transform.ts';
 import { type Box, fitted, type Page, readPage, readViewBox } from './svg-viewport.ts';
 import { MOST_DEPTH, readXml, tooDeep, type XmlNode } from './svg-xml.ts';
+import { type Tangle, tangle } from './tangle.ts';
 
 /** Elements drawn, those that `use` draws again counted each time: ten lines of `use` can ask for 10¹⁰. */
 const MOST_DRAWN = 300_000;
