@@ -18,6 +18,7 @@ import { type Failure, failureOf } from '../worker/protocol.ts';
 import { type NamedFile, standAlone } from '../worker/stand-alone.ts';
 import { tasks } from '../worker/tasks.ts';
 import type { Settings, Units } from './args.ts';
+import { flatForNode } from './flat.ts';
 import { proveRun } from './prove-run.ts';
 
 /** Worker data that tells the program's file to do a job. */
@@ -86,6 +87,8 @@ async function answer(
     projectText: request.projectText,
     unknown,
     part: request.part,
+    drawings: request.others,
+    flat: flatForNode,
   };
   const { report, files } = await runJob(
     input,

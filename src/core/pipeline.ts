@@ -4,7 +4,7 @@
  */
 
 import { collisionsOf, elementReports, layerReport, openReport, partsOfReport } from './account.ts';
-import { InputError } from './base/news.ts';
+import { Fault, InputError } from './base/news.ts';
 import type { RunContext } from './base/run-context.ts';
 import { focusedBeam } from './beam/beam.ts';
 import type { Copper } from './drape/copper.ts';
@@ -12,11 +12,17 @@ import {
   type CircuitDraped,
   checkPlaces,
   type DrapeTask,
+  type DrawingTask,
   drapeShared,
   drapeTasks,
+  drawingTasks,
   gatherCircuit,
 } from './drape/drape.ts';
+import type { DrawingDraped } from './drape/drape-drawing.ts';
 import type { Draped } from './drape/element.ts';
+import { DEFAULTS, type Drawing } from './drawing/drawing.ts';
+import type { Flat } from './drawing/flat.ts';
+import { readDrawing } from './drawing/read-drawing.ts';
 import { layerCsv } from './files/csv.ts';
 import { layerFile, safeNames } from './files/names.ts';
 import { type OutputFile, textFile } from './files/output.ts';
@@ -24,6 +30,7 @@ import { jobSheet } from './files/sheet.ts';
 import { layerSvg } from './files/svg.ts';
 import type { SetupPlan } from './layers/plan.ts';
 import { planLayers } from './layers/plan-layers.ts';
+import { MM_PER_UNIT } from './mesh/build.ts';
 import { loadPart, type Part } from './part/part.ts';
 import type { ProofReport, Report } from './project/report.ts';
 import type { Project, Setup } from './project/schema.ts';
@@ -54,7 +61,16 @@ export interface JobInput {
   projectText: string;
   /** Fields of the file that the project does not know, by JSON path. */
   unknown?: readonly string[];
-  part: { file: string; bytes: Uint8Array };
+  part: NamedBytes;
+  /** Drawings by the names that the project gives them. */
+  drawings?: readonly NamedBytes[];
+  /** Loads what drawings need for the outlines of overlapping figures. */
+  flat?: () => Promise<Flat>;
+}
+
+export interface NamedBytes {
+  file: string;
+  bytes: Uint8Array;
 }
 
 export interface JobOptions {
@@ -67,6 +83,10 @@ export interface JobResult {
   /** `report.json`, `sheet.html` and the scan files. Empty after `stopAfter`. */
   files: OutputFile[];
 }
+
+const noFlat = (): Promise<Flat> => {
+  throw new Fault('a job with drawings needs plane booleans');
+};
 
 const FORMATS: readonly ProofFormat[] = ['csv', 'svg'];
 
@@ -83,7 +103,8 @@ export async function runJob(
   const { project, projectFile } = input;
   const setups = setupsOf(project, projectFile);
   const part = loadPart(input.part.bytes, input.part.file, project.part.units, ctx);
-  const { copper, findings } = await layCircuit(project, projectFile, part, ctx, workers);
+  const drawings = await readDrawings(project, input.drawings ?? [], input.flat ?? noFlat, ctx);
+  const { copper, findings } = await layCircuit(project, projectFile, part, drawings, ctx, workers);
   const reach = checkReach(project, setups, part, copper, ctx);
   const report = openReport(project, input.unknown ?? [], part, copper, findings);
   if (options.stopAfter === 'reach') {
@@ -162,16 +183,49 @@ export async function layCircuit(
   project: Project,
   file: string,
   part: Part,
+  drawings: ReadonlyMap<string, Drawing>,
   ctx: RunContext,
   workers: Workers,
 ): Promise<CircuitDraped> {
   checkPlaces(project, file, part);
   const tasks = drapeTasks(project, file);
-  ctx.step('drape', 0, tasks.length);
-  const draped = await workers.map<DrapeTask, Draped>('lay element', drapeShared(part), tasks, (done) =>
-    ctx.step('drape', done, tasks.length),
+  const drawn = drawingTasks(project, drawings, file);
+  const all = tasks.length + drawn.length;
+  ctx.step('drape', 0, all);
+  const shared = drapeShared(part);
+  const draped = await workers.map<DrapeTask, Draped>('lay element', shared, tasks, (done) =>
+    ctx.step('drape', done, all),
   );
-  return gatherCircuit(draped);
+  const laid = await workers.map<DrawingTask, DrawingDraped>('lay drawing', shared, drawn, (done) =>
+    ctx.step('drape', tasks.length + done, all),
+  );
+  return gatherCircuit(draped, laid);
+}
+
+/**
+ * Every drawing that a drape needs, read.
+ * @param files  drawings by the names that the project gives them
+ * @returns by the id of the drape
+ * @throws InputError of the readers
+ */
+export async function readDrawings(
+  project: Project,
+  files: readonly NamedBytes[],
+  flat: () => Promise<Flat>,
+  ctx: RunContext,
+): Promise<Map<string, Drawing>> {
+  const read = new Map<string, Drawing>();
+  for (const drape of project.circuit.drapes) {
+    const file = files.find((f) => f.file === drape.drawing);
+    if (!file) throw new Fault(`the bytes of ${drape.drawing} were not handed over`);
+    const options = {
+      ...DEFAULTS,
+      unit: drape.units ? MM_PER_UNIT[drape.units] : null,
+      ...(drape.lineWidth ? { lineWidth: drape.lineWidth } : {}),
+    };
+    read.set(drape.id, readDrawing(file.bytes, drape.drawing, options, await flat(), ctx));
+  }
+  return read;
 }
 
 /** The read-back proof, one file a task. */

@@ -6,9 +6,10 @@ import { radiansFromDegrees } from '../base/brands.ts';
 import type { Vec2, Vec3 } from '../base/vec.ts';
 import type { Area, Drawing, Hole, Shape, Stroke } from '../drawing/drawing.ts';
 import type { WindowSolver } from '../geodesic/windows.ts';
+import { barycentric } from '../mesh/surface-point.ts';
 import type { Drape } from '../project/schema.ts';
 import type { CopperElement } from './copper.ts';
-import { type DrapeFinding, layOut, lineLength, MARGIN, TRUE_TO } from './element.ts';
+import { type Draped, type DrapeFinding, layOut, lineLength, MARGIN, TRUE_TO } from './element.ts';
 import { evenLengths } from './even-lengths.ts';
 import { type FlatFigure, flatFigure } from './flat-figure.ts';
 import { flatReader, mapPatch } from './map-patch.ts';
@@ -16,7 +17,7 @@ import { areaStretch, chordLength, lineStretch, steepest } from './map-stretch.t
 import { AREA_STEP } from './pad.ts';
 import { PatchWalk } from './patch-walk.ts';
 import type { Place } from './route.ts';
-import { traceStep } from './trace.ts';
+import { drapeTrace, traceStep } from './trace.ts';
 
 export interface DrawingDraped {
   elements: CopperElement[];
@@ -61,6 +62,12 @@ export function drapeDrawing(
   const steep = Math.min(steepest(patch), TORN);
   const elements: CopperElement[] = [];
   for (const own of shapes) {
+    if (drape.lay === 'pulled straight' && own.figure.kind === 'stroke') {
+      const pulled = pullStraight(solver, walk, own, own.figure);
+      if (pulled.element) elements.push(pulled.element);
+      findings.push(...pulled.findings);
+      continue;
+    }
     const near = holes.filter((h) => boxesMeet(own.flat.box, holeBox(h)));
     const evaluate = (face: number, p: Vec3) => {
       const at = read(face, p);
@@ -114,6 +121,54 @@ export function drapeDrawing(
     });
   }
   return { elements, findings };
+}
+
+/**
+ * A line whose corners lie where the drawing has them and whose runs are shortest ways of true width: the strip is laid as
+ * a trace of the project is.
+ */
+function pullStraight(solver: WindowSolver, walk: PatchWalk, own: Moved, stroke: Stroke): Draped {
+  const places: Place[] = [];
+  const { points, closed } = stroke;
+  for (let i = 0; i < points.length / 2 + (closed ? 1 : 0); i++) {
+    const j = i % (points.length / 2);
+    const [u, v] = [points[2 * j], points[2 * j + 1]];
+    const t = walk.locate(u, v);
+    if (t < 0) break;
+    const point = walk.place(t, u, v);
+    const face = walk.faceOf(t);
+    places.push({ point, surface: { face, bary: barycentric(solver.mesh, face, point) } });
+  }
+  const left: DrapeFinding | null =
+    places.length < points.length / 2
+      ? {
+          rule: 'left-map',
+          element: own.id,
+          at: places[places.length - 1]?.point ?? [0, 0, 0],
+          text: 'its line leaves the surface that the drawing reaches: it stops there',
+        }
+      : null;
+  if (places.length < 2) return { element: null, findings: left ? [left] : [] };
+  const laid = drapeTrace(
+    solver,
+    {
+      id: own.id,
+      kind: 'trace',
+      net: own.net,
+      width: stroke.width,
+      route: places.map((p) => ({ at: [...p.point] as [number, number, number] })),
+      ends: stroke.ends,
+      bends: stroke.bends === 'miter' ? 'miter' : 'round',
+    },
+    places,
+  );
+  const drawn = own.flat.length;
+  const element = laid.element && {
+    ...laid.element,
+    drawnLength: drawn,
+    stretch: left ? 0 : Math.abs(laid.element.length / drawn - 1),
+  };
+  return { element, findings: left ? [...laid.findings, left] : laid.findings } as Draped;
 }
 
 const BEYOND = {

@@ -1,11 +1,13 @@
 /** Circuit + part → copper on the surface. */
-import { InputError, type InputProblem } from '../base/news.ts';
+import { Fault, InputError, type InputProblem } from '../base/news.ts';
 import type { RunContext } from '../base/run-context.ts';
+import type { Drawing } from '../drawing/drawing.ts';
 import { WindowSolver } from '../geodesic/windows.ts';
 import { restoreQueries, type SurfaceQueries, type SurfaceTree, serializeQueries } from '../mesh/queries.ts';
 import type { SurfaceMesh } from '../mesh/surface-mesh.ts';
-import type { Element, Project } from '../project/schema.ts';
+import type { Drape, Element, Project } from '../project/schema.ts';
 import type { Copper } from './copper.ts';
+import { type DrawingDraped, drapeDrawing } from './drape-drawing.ts';
 import type { Draped, DrapeFinding } from './element.ts';
 import { drapePad } from './pad.ts';
 import { drapeRegion } from './region.ts';
@@ -39,23 +41,28 @@ export interface CircuitDraped {
 
 /**
  * Lays every element of the circuit on the part, one after the other.
- * @throws InputError `far-from-surface` with every point that is, `drawing-not-read` for drapes of drawings
+ * @throws InputError `far-from-surface` with every point that is
  */
 export function drapeCircuit(
   project: Project,
   file: string,
   part: DrapePart,
   ctx: RunContext,
+  drawings: ReadonlyMap<string, Drawing> = new Map(),
 ): CircuitDraped {
   const draper = prepareDraper(part);
   checkPlaces(project, file, part);
   const tasks = drapeTasks(project, file);
+  const drawn = drawingTasks(project, drawings, file);
   const draped = tasks.map(({ element, path }, i) => {
     ctx.step('drape', i, tasks.length);
     return drapeElement(draper, element, path, file);
   });
   ctx.step('drape', tasks.length, tasks.length);
-  return gatherCircuit(draped);
+  return gatherCircuit(
+    draped,
+    drawn.map((task) => drapeDrawingOn(draper, task)),
+  );
 }
 
 /** What the elements of a circuit share when they are laid on other threads: plain data. */
@@ -71,6 +78,38 @@ export interface DrapeTask {
   file: string;
 }
 
+/** A drawing to be laid whole: its own task. */
+export interface DrawingTask {
+  drape: Drape;
+  drawing: Drawing;
+  /** JSON path of the drape, and the file it stands in. */
+  path: string;
+  file: string;
+}
+
+/** @param drawings  by the id of the drape that needs them */
+export const drawingTasks = (
+  project: Project,
+  drawings: ReadonlyMap<string, Drawing>,
+  file: string,
+): DrawingTask[] =>
+  project.circuit.drapes.map((drape, i) => {
+    const drawing = drawings.get(drape.id);
+    if (!drawing) throw new Fault(`the drawing of drape ${drape.id} was not read`);
+    return { drape, drawing, path: `$.circuit.drapes[${i}]`, file };
+  });
+
+/** A task on whatever thread it runs. @throws InputError `far-from-surface` */
+export function layDrawing(shared: DrapeShared, task: DrawingTask): DrawingDraped {
+  return drapeDrawingOn(draperOf(shared), task);
+}
+
+export function drapeDrawingOn(draper: Draper, { drape, drawing, path, file }: DrawingTask): DrawingDraped {
+  const { mesh, queries } = draper.part;
+  const anchor = pull(queries, mesh, drape.anchor, { file, place: `${path}.anchor` });
+  return drapeDrawing(draper.solver, drape, drawing, anchor);
+}
+
 /** One independent task an element. */
 export const drapeTasks = (project: Project, file: string): DrapeTask[] =>
   project.circuit.elements.map((element, i) => ({ element, path: `$.circuit.elements[${i}]`, file }));
@@ -84,19 +123,31 @@ const drapers = new WeakMap<DrapeShared, Draper>();
 
 /** A task on whatever thread it runs; the draper is prepared once for the same shared data. */
 export function layElement(shared: DrapeShared, task: DrapeTask): Draped {
+  return drapeElement(draperOf(shared), task.element, task.path, task.file);
+}
+
+function draperOf(shared: DrapeShared): Draper {
   let draper = drapers.get(shared);
   if (!draper) {
     draper = prepareDraper({ mesh: shared.mesh, queries: restoreQueries(shared.mesh, shared.tree) });
     drapers.set(shared, draper);
   }
-  return drapeElement(draper, task.element, task.path, task.file);
+  return draper;
 }
 
 /** Results of the tasks, in their order, as one circuit. */
-export function gatherCircuit(draped: readonly Draped[]): CircuitDraped {
+export function gatherCircuit(
+  draped: readonly Draped[],
+  drawn: readonly DrawingDraped[] = [],
+): CircuitDraped {
   return {
-    copper: { elements: draped.flatMap((d) => (d.element ? [d.element] : [])) },
-    findings: draped.flatMap((d) => d.findings),
+    copper: {
+      elements: [
+        ...draped.flatMap((d) => (d.element ? [d.element] : [])),
+        ...drawn.flatMap((d) => d.elements),
+      ],
+    },
+    findings: [...draped, ...drawn].flatMap((d) => d.findings),
   };
 }
 
@@ -119,14 +170,14 @@ function placesOf(part: DrapePart, element: Element, path: string, file: string)
 /** Names every bad point of the file at once, before any work is done. */
 export function checkPlaces(project: Project, file: string, part: DrapePart): void {
   const problems: InputProblem[] = [];
-  if (project.circuit.drapes.length > 0)
-    problems.push({
-      code: 'drawing-not-read',
-      file,
-      place: '$.circuit.drapes[0]',
-      problem: 'this release does not read drawings',
-      mend: 'draw the circuit as elements',
-    });
+  project.circuit.drapes.forEach((drape, i) => {
+    try {
+      pull(part.queries, part.mesh, drape.anchor, { file, place: `$.circuit.drapes[${i}].anchor` });
+    } catch (error) {
+      if (!(error instanceof InputError)) throw error;
+      problems.push(...error.problems);
+    }
+  });
   project.circuit.elements.forEach((element, i) => {
     try {
       placesOf(part, element, `$.circuit.elements[${i}]`, file);

@@ -68,6 +68,11 @@ export class PatchWalk {
     return found;
   }
 
+  /** Face of the part that triangle t lies in. */
+  faceOf(t: number): number {
+    return this.patch.face[t];
+  }
+
   /** Place on the part of a flat place in triangle t. */
   place(t: number, u: number, v: number): Vec3 {
     return this.weigh(t, this.weights(t, u, v) ?? [1 / 3, 1 / 3, 1 / 3]);

@@ -46,7 +46,7 @@ export function* blocks(text: string): Generator<Block> {
     }
     const raw = text.slice(from, at);
     yield {
-      text: (broken ? raw.replace(/[\r\n]/g, '') : raw).trim(),
+      text: broken ? raw.replace(/[\r\n]/g, '').trim() : raw.trim(),
       line: begun,
       extended,
       first,

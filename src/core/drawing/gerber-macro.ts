@@ -55,9 +55,11 @@ export function macroRings(
       continue;
     }
     if (/^0(\D|$)/.test(text)) continue;
-    const [code, ...numbers] = text
-      .split(',')
-      .map((t, i) => (i === 0 ? Number(t) : evaluate(t, values, line)));
+    const [first, ...rest] = text.split(',');
+    if (!/^\s*\d{1,3}\s*$/.test(first))
+      throw new BadShape('bad-macro', `"${text.slice(0, 40)}" in line ${line} is no primitive`);
+    const code = Number(first);
+    const numbers = rest.map((t) => evaluate(t, values, line));
     const shape = primitive(code, numbers, line, tools);
     if (!shape) continue;
     if (shape.on !== on) {

@@ -2,7 +2,7 @@
 import type { Area, Shape, Stroke } from './drawing.ts';
 import { type Findings, inReach, tooLarge } from './findings.ts';
 import type { Flat } from './flat.ts';
-import { circleRing, convexHull, reversed } from './gerber-arcs.ts';
+import { arcCorners, convexHull, reversed } from './gerber-arcs.ts';
 import { rotation } from './matrix.ts';
 
 export interface Mark {
@@ -39,8 +39,8 @@ export function placedRings(
     const out = new Float64Array(ring.length);
     for (let i = 0; i < ring.length; i += 2) {
       const [u, v] = [mx * ring[i], my * ring[i + 1]];
-      out[i] = c * u - s * v + x;
-      out[i + 1] = s * u + c * v + y;
+      out[i] = inReach(c * u - s * v + x);
+      out[i + 1] = inReach(s * u + c * v + y);
     }
     return p.mirrorX !== p.mirrorY ? reversed(out) : out;
   });
@@ -169,17 +169,37 @@ export function outline(
   const { points: p, closed, width, ends } = figure;
   const n = p.length / 2;
   const rings: Float64Array[] = [];
-  const disc = circleRing(0, 0, width / 2, tolerance, spend);
   for (let k = 0; k + (closed ? 0 : 1) < n; k++) {
     const j = (k + 1) % n;
     const [from, to] = [
       [p[2 * k], p[2 * k + 1]],
       [p[2 * j], p[2 * j + 1]],
     ] as const;
-    rings.push(ends === 'round' ? sweep(disc, from, to) : squareEnded(from, to, width));
-    spend(rings[k].length / 2);
+    rings.push(
+      ends === 'round' ? roundEnded(from, to, width, tolerance, spend) : squareEnded(from, to, width),
+    );
   }
   return rings;
+}
+
+/** Its sides lie where the stroke's do, and its ends hold as much as half discs. */
+function roundEnded(
+  [ax, ay]: readonly [number, number],
+  [bx, by]: readonly [number, number],
+  w: number,
+  tolerance: number,
+  spend: (n: number) => void,
+): Float64Array {
+  const r = w / 2;
+  const angle = Math.atan2(by - ay, bx - ax);
+  const [ux, uy] = [r * Math.cos(angle), r * Math.sin(angle)];
+  const right = angle - Math.PI / 2;
+  const ring = [bx + uy, by - ux];
+  arcCorners(ring, [bx, by], r, r, right, Math.PI, tolerance, spend);
+  ring.push(bx - uy, by + ux, ax - uy, ay + ux);
+  arcCorners(ring, [ax, ay], r, r, right + Math.PI, Math.PI, tolerance, spend);
+  ring.push(ax + uy, ay - ux);
+  return Float64Array.from(ring);
 }
 
 function squareEnded(

@@ -359,7 +359,8 @@ export class Plotter {
 
 /** @throws BadShape where no such repeat can be */
 export function repeatCount(word: string | undefined): number {
-  const n = word === undefined ? 1 : Number(word);
-  if (!(Number.isInteger(n) && n >= 1)) throw new BadShape('bad-repeat', `nothing is repeated ${word} times`);
+  const n = word === undefined ? 1 : /^\d{1,9}$/.test(word) ? Number(word) : Number.NaN;
+  if (!(Number.isInteger(n) && n >= 1))
+    throw new BadShape('bad-repeat', `nothing is repeated ${word?.slice(0, 40)} times`);
   return n;
 }

@@ -31,14 +31,28 @@ export function readFormat(text: string): Format {
 
 /** A decimal point overrides the format. @returns units of the file @throws BadShape `bad-number` */
 export function coordinate(word: string, { whole, after }: Digits, leftOut: Format['leftOut']): number {
-  const m = /^([-+]?)(\d*)(\.\d*)?$/.exec(word);
-  if (!m || (m[2] === '' && (m[3] ?? '.') === '.') || m[2].length > MOST_DIGITS)
-    throw new BadShape('bad-number', `"${word.slice(0, 40)}" is no coordinate`);
-  if (m[3] !== undefined) return Number(word);
-  const digits = leftOut === 'trailing' ? m[2].padEnd(whole + after, '0') : m[2];
-  const v = Number(digits) / 10 ** after;
-  return m[1] === '-' ? -v : v;
+  const sign = word[0] === '-' || word[0] === '+' ? 1 : 0;
+  const n = word.length - sign;
+  if (word.includes('.') || n > MOST_DIGITS) return decimal(word);
+  if (n === 0) throw noCoordinate(word);
+  let v = 0;
+  for (let k = sign; k < word.length; k++) {
+    const digit = word.charCodeAt(k) - 48;
+    if (digit < 0 || digit > 9) throw noCoordinate(word);
+    v = 10 * v + digit;
+  }
+  if (leftOut === 'trailing' && n < whole + after) v *= 10 ** (whole + after - n);
+  v /= 10 ** after;
+  return word[0] === '-' ? -v : v;
 }
+
+function decimal(word: string): number {
+  if (!/^[-+]?(\d{1,15}\.\d*|\.\d+)$/.test(word)) throw noCoordinate(word);
+  return Number(word);
+}
+
+const noCoordinate = (word: string): BadShape =>
+  new BadShape('bad-number', `"${word.slice(0, 40)}" is no coordinate`);
 
 /** A double holds this many digits of any number. */
 const MOST_DIGITS = 15;
@@ -64,23 +78,22 @@ export function readWords(text: string): Words | null {
     while (at < n && NUMBER[text.charCodeAt(at)] === 1) at++;
     if (letter === ' ' && at === from) continue;
     if (at === from) return null;
-    const number = text.slice(from, at);
     switch (letter) {
       case 'X':
-        words.x = number;
+        words.x = text.slice(from, at);
         break;
       case 'Y':
-        words.y = number;
+        words.y = text.slice(from, at);
         break;
       case 'I':
-        words.i = number;
+        words.i = text.slice(from, at);
         break;
       case 'J':
-        words.j = number;
+        words.j = text.slice(from, at);
         break;
       default: {
-        const code = /^\d{1,9}$/.test(number) ? Number(number) : Number.NaN;
-        if (Number.isNaN(code)) return null;
+        const code = whole(text, from, at);
+        if (code < 0) return null;
         if (letter === 'G') words.g.push(code);
         else if (letter === 'D' && words.d === null) words.d = code;
         else if (letter === 'M' && words.m === null) words.m = code;
@@ -89,6 +102,18 @@ export function readWords(text: string): Words | null {
     }
   }
   return words;
+}
+
+/** A number without sign or point; -1 where it is none or has more than nine digits. */
+function whole(text: string, from: number, to: number): number {
+  if (to - from > 9) return -1;
+  let v = 0;
+  for (let k = from; k < to; k++) {
+    const digit = text.charCodeAt(k) - 48;
+    if (digit < 0) return -1;
+    v = 10 * v + digit;
+  }
+  return v;
 }
 
 /** Characters of a number. */

@@ -41,7 +41,8 @@ export function readGerber(
   let count = 0;
   for (const block of blocks(text)) {
     if (count++ % STRIDE === 0) ctx.step('load', block.line, 0);
-    found.at(`line ${block.line}`, () => reader.take(block));
+    const place = `line ${block.line}`;
+    found.at(place, () => reader.take(block, place));
     if (reader.ended) break;
   }
   const marks = found.at('end', () => reader.finish()) ?? [];
@@ -92,13 +93,12 @@ class Reader {
     return this.#plot.attributes.fileFunction ?? this.file.replace(/^.*[\\/]/, '').replace(/\.[^.]*$/, '');
   }
 
-  take(block: Block): void {
-    const place = `line ${block.line}`;
+  take(block: Block, place: string): void {
     if (!block.ended)
       this.found.note('unfinished', place, `"${block.text.slice(0, 40)}" has no * behind it.`);
     if (block.extended) this.#extended(block, place);
     else {
-      const comment = /^G0*4(.*)$/.exec(block.text);
+      const comment = COMMENT.exec(block.text);
       if (comment) {
         this.#known = true;
         // Attributes for readers of older files stand in comments.
@@ -323,6 +323,8 @@ class Reader {
     return this.#format;
   }
 }
+
+const COMMENT = /^G(?:04|4(?!\d))(.*)$/;
 
 /** Deprecated commands that change nothing as they stand. */
 const NO_CHANGE =

@@ -147,6 +147,8 @@ const pad = z.looseObject({
 const region = z.looseObject({ id, kind: z.literal('region'), net, outline: z.array(place).min(3) });
 const element = z.discriminatedUnion('kind', [trace, pad, region]);
 
+const units = z.enum(['mm', 'cm', 'm', 'um', 'inch']);
+
 const drape = z.looseObject({
   id,
   drawing: z.string().min(1),
@@ -157,6 +159,12 @@ const drape = z.looseObject({
   evenLengths: z.boolean().default(true),
   drawingLayers: z.record(z.string(), z.string()).default({}),
   nets: z.record(z.string(), z.string()).default({}),
+  /** As drawn, or its lines pulled straight from corner to corner. */
+  lay: z.enum(['as drawn', 'pulled straight']).optional(),
+  /** Unit of a drawing that names none. */
+  units: units.optional(),
+  /** Width of lines that have none, mm. */
+  lineWidth: positive.optional(),
 });
 
 const circuit = z.looseObject({
@@ -170,7 +178,7 @@ export const projectSchema = z.looseObject({
   name: z.string().min(1),
   part: z.looseObject({
     file: z.string().min(1),
-    units: z.enum(['mm', 'cm', 'm', 'um', 'inch']).default('mm'),
+    units: units.default('mm'),
     sha256: z.string().optional(),
   }),
   head,
