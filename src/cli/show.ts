@@ -93,10 +93,14 @@ function headline(report: Report): string {
   return `${report.project}: ${what}${report.ok ? 'every check holds' : 'NOT EVERY CHECK HOLDS'}.`;
 }
 
-const unknownLines = (report: Report): string[] =>
-  report.unknownFields.length
+const unknownLines = (report: Report): string[] => [
+  ...(report.unknownFields.length
     ? [`Not understood, kept as they are: ${report.unknownFields.join(', ')}.`]
-    : [];
+    : []),
+  ...(report.drawings ?? []).flatMap((d) =>
+    d.notes.map((n) => `${d.file}, ${n.place}: ${n.text}${n.count > 1 ? ` (${n.count} times)` : ''}.`),
+  ),
+];
 
 function setupBlock(setup: Report['setups'][number]): string {
   if (setup.layers.length === 0) return `Setup "${setup.name}" has nothing to write.`;

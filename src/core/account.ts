@@ -9,6 +9,7 @@ import { unionArea } from './copper/union-area.ts';
 import type { Copper, CopperElement } from './drape/copper.ts';
 import type { DrapeFinding } from './drape/element.ts';
 import { triangleArea } from './drape/level-lines.ts';
+import type { Drawing } from './drawing/drawing.ts';
 import { extentOf } from './files/layer-picture.ts';
 import { reportNumber as r } from './files/numbers.ts';
 import { layerOfSamples } from './layers/assign.ts';
@@ -16,7 +17,7 @@ import type { Layer, SetupPlan } from './layers/plan.ts';
 import { bestSetup, canGo, heightGrid } from './layers/plan-layers.ts';
 import { partReport } from './mesh/summary.ts';
 import type { Part } from './part/part.ts';
-import type { ElementReport, Report, SetupReport } from './project/report.ts';
+import type { DrawingReport, ElementReport, Report, SetupReport } from './project/report.ts';
 import type { Project, Setup } from './project/schema.ts';
 import { collision } from './reach/collision.ts';
 import { fieldShare } from './reach/field.ts';
@@ -27,12 +28,30 @@ import { stretchRule } from './rules/stretch.ts';
 import { widthRule } from './rules/width.ts';
 import type { LayerScan } from './scan/strokes.ts';
 
+const drawingReports = (project: Project, drawings: ReadonlyMap<string, Drawing>): DrawingReport[] =>
+  project.circuit.drapes.flatMap((drape) => {
+    const drawing = drawings.get(drape.id);
+    return drawing
+      ? [
+          {
+            drape: drape.id,
+            file: drape.drawing,
+            shapes: drawing.shapes.length,
+            holes: drawing.holes.length,
+            layers: [...drawing.layers],
+            notes: drawing.notes.map((n) => ({ ...n })),
+          },
+        ]
+      : [];
+  });
+
 export function openReport(
   project: Project,
   unknown: readonly string[],
   part: Part,
   copper: Copper,
   findings: readonly DrapeFinding[],
+  drawings: ReadonlyMap<string, Drawing> = new Map(),
 ): Report {
   const beam = focusedBeam(project.head);
   // Whatever its net: where elements lie over each other there is one layer of copper.
@@ -52,6 +71,7 @@ export function openReport(
       halfDepth: r(halfDepth(beam, project.limits.depth, project.material)),
       truncated: beam.truncated,
     },
+    ...(drawings.size > 0 ? { drawings: drawingReports(project, drawings) } : {}),
     elements: [],
     rules: [
       ...findings.map((f) => ({

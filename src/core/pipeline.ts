@@ -106,7 +106,7 @@ export async function runJob(
   const drawings = await readDrawings(project, input.drawings ?? [], input.flat ?? noFlat, ctx);
   const { copper, findings } = await layCircuit(project, projectFile, part, drawings, ctx, workers);
   const reach = checkReach(project, setups, part, copper, ctx);
-  const report = openReport(project, input.unknown ?? [], part, copper, findings);
+  const report = openReport(project, input.unknown ?? [], part, copper, findings, drawings);
   if (options.stopAfter === 'reach') {
     report.elements = elementReports(project, setups, part, copper, reach, null, ctx);
     report.ok = holds(report);

@@ -5,6 +5,7 @@
  */
 import Module, { type CrossSection, type FillRule, type ManifoldToplevel } from 'manifold-3d';
 import { Fault } from '../base/news.ts';
+import { outlinesOf } from './flat-nesting.ts';
 
 /** Step of the grid that coordinates are rounded to, mm. Corners lie within half of it, crossings within one step. */
 export const GRID = 2 ** -27;
@@ -14,7 +15,7 @@ const FARTHEST = 1e9;
 
 /**
  * Rings are 2 a point, mm, the first point not repeated. Given rings may cross and overlap; rings of answers do not, outlines
- * run counter-clockwise and holes clockwise, each starts at its leftmost (then lowest) point, and rings are in the order of
+ * run counter-clockwise and holes clockwise, none goes twice through a point, each starts at its leftmost (then lowest) point, and rings are in the order of
  * these points. Rings of less than three points count as nothing. Coordinates that are not finite are a `Fault`.
  */
 export interface Flat {
@@ -71,13 +72,7 @@ function flatOf({ CrossSection }: ManifoldToplevel): Flat {
     },
     difference: (from, off) => join(from, off, 'subtract'),
     intersection: (a, b) => join(a, b, 'intersect'),
-    split(rings) {
-      const whole = figure(rings);
-      const parts = whole?.decompose() ?? [];
-      const out = parts.map(outlineFirst).filter((r) => r.length > 0);
-      for (const c of [whole, ...parts]) c?.delete();
-      return out.sort((a, b) => byPoints(a[0], b[0]));
-    },
+    split,
     area: (rings) => rings.reduce((sum, r) => sum + ringArea(r), 0),
   };
 }
@@ -95,15 +90,46 @@ function pairs(ring: Float64Array): [number, number][] {
 }
 
 function ringsOf(figure: CrossSection): Float64Array[] {
-  return figure
-    .toPolygons()
+  return inOrder(figure.toPolygons());
+}
+
+/** Rings in their form: none goes twice through a point, and none is without area. */
+function inOrder(polygons: readonly Polygon[]): Float64Array[] {
+  return polygons
+    .flatMap(apart)
     .filter((p) => p.length >= 3)
     .map(fromLeft)
+    .filter((r) => ringArea(r) !== 0)
     .sort(byPoints);
 }
 
+type Polygon = readonly (readonly [number, number])[];
+
+/** A ring that touches itself in points as the rings between these points: copper that hangs by a point does not hang. */
+function apart(polygon: Polygon): Polygon[] {
+  // A number for each point tells quickly that all differ; where two are the same, the points are looked at themselves.
+  const seen = new Set<number>();
+  for (const [x, y] of polygon) seen.add(x + y * Math.E);
+  if (seen.size === polygon.length) return [polygon];
+  const out: Polygon[] = [];
+  const way: (readonly [number, number])[] = [];
+  const at = new Map<string, number>();
+  for (const p of polygon) {
+    const key = `${p[0]} ${p[1]}`;
+    const before = at.get(key);
+    if (before !== undefined) {
+      const loop = way.splice(before);
+      for (const [x, y] of loop) at.delete(`${x} ${y}`);
+      out.push(loop);
+    }
+    at.set(key, way.length);
+    way.push(p);
+  }
+  return [...out, way];
+}
+
 /** The same ring from its leftmost point on, the lowest of these. */
-function fromLeft(polygon: readonly (readonly [number, number])[]): Float64Array {
+function fromLeft(polygon: Polygon): Float64Array {
   const n = polygon.length;
   let first = 0;
   for (let i = 1; i < n; i++) {
@@ -125,10 +151,17 @@ function byPoints(a: Float64Array, b: Float64Array): number {
   return a.length - b.length;
 }
 
-/** One area: its one counter-clockwise ring, then its holes. */
-function outlineFirst(part: CrossSection): Float64Array[] {
-  const rings = ringsOf(part);
-  return [...rings.filter((r) => ringArea(r) > 0), ...rings.filter((r) => ringArea(r) < 0)];
+function split(rings: readonly Float64Array[]): Float64Array[][] {
+  const clean = inOrder(rings.map(pairs));
+  const isHole = clean.map((r) => ringArea(r) < 0);
+  const outline = outlinesOf(clean, isHole);
+  const areas = clean.map((): Float64Array[] => []);
+  clean.forEach((r, k) => {
+    if (!isHole[k]) areas[k].unshift(r);
+    // A hole in nothing is what rounding leaves of a sliver.
+    else if (outline[k] >= 0) areas[outline[k]].push(r);
+  });
+  return areas.filter((a) => a.length > 0);
 }
 
 /** Shoelace formula, mm², counter-clockwise above 0. From the first corner: differences are small where coordinates are not. */

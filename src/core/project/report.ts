@@ -33,6 +33,8 @@ export interface Report {
     halfDepth: number;
     truncated: boolean;
   };
+  /** Drawings as they were read, in the order of the drapes; left out where the circuit has none. */
+  drawings?: DrawingReport[];
   elements: ElementReport[];
   rules: RuleFinding[];
   setups: SetupReport[];
@@ -42,6 +44,17 @@ export interface Report {
   plating: PlatingReport;
   proof: ProofReport | null;
   timing?: Record<string, number>;
+}
+
+export interface DrawingReport {
+  /** Id of the drape, and the file. */
+  drape: string;
+  file: string;
+  shapes: number;
+  holes: number;
+  layers: string[];
+  /** What was left out or had to be assumed: where first, and how often. */
+  notes: { code: string; place: string; text: string; count: number }[];
 }
 
 export interface ElementReport {

@@ -171,4 +171,37 @@ describe('theorems over random figures, seed 5101', () => {
       expect(Math.abs(sum - flat.area(cut))).toBeLessThan(4 * slack(...a, ...b));
     }
   });
+
+  test('separate areas are those that manifold-3d itself finds, on a coarse grid where rings touch', async () => {
+    const { default: Module } = await import('manifold-3d');
+    const module = await Module();
+    module.setup();
+    let holes = 0;
+    let parts = 0;
+    for (let round = 0; round < 150; round++) {
+      const step = (n: number): number => Math.floor(random() * n);
+      const solid = Array.from({ length: 30 }, () => box(step(16), step(16), 1 + step(5), 1 + step(5)));
+      const slant = Array.from({ length: 12 }, () => regular(4, step(16), step(16), 1 + step(3)));
+      const off = Array.from({ length: 40 }, () =>
+        random() < 0.5 ? box(step(18), step(18), 1, 1) : regular(4, step(18), step(18), 1),
+      );
+      const cut = flat.difference([...solid, ...slant], off);
+      const mine = flat.split(cut);
+      holes += cut.length - mine.length;
+      parts += mine.length;
+      const whole = new module.CrossSection(
+        cut.map((r) =>
+          Array.from({ length: r.length / 2 }, (_, i): [number, number] => [r[2 * i], r[2 * i + 1]]),
+        ),
+        'NonZero',
+      );
+      const theirs = whole.decompose();
+      const byArea = (list: number[]): number[] =>
+        list.sort((a, b) => a - b).map((a) => Number(a.toFixed(5)));
+      expect(byArea(mine.map((p) => flat.area(p)))).toEqual(byArea(theirs.map((c) => c.area())));
+      for (const c of [whole, ...theirs]) c.delete();
+    }
+    expect(holes).toBeGreaterThan(300);
+    expect(parts).toBeGreaterThan(500);
+  });
 });
