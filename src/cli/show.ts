@@ -57,6 +57,9 @@ export function showCheck(report: Report): string {
       ? table(['element', 'net', 'mm', 'angle', 'shaded', 'of field', 'dose J/cm²'], rows)
       : '  The circuit has no copper.',
     '',
+    ...report.rules.flatMap((r) =>
+      r.text ? [`${r.level}: ${r.elements.length ? `${r.elements.join(', ')}: ` : ''}${r.text}.`] : [],
+    ),
     rulesBlock(report),
     '',
   ].join('\n');

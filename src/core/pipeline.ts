@@ -6,6 +6,7 @@
 import { collisionsOf, elementReports, layerReport, openReport, partsOfReport } from './account.ts';
 import { Fault, InputError } from './base/news.ts';
 import type { RunContext } from './base/run-context.ts';
+import { decodeUtf8 } from './base/utf8.ts';
 import { focusedBeam } from './beam/beam.ts';
 import type { Copper } from './drape/copper.ts';
 import {
@@ -18,10 +19,11 @@ import {
   drawingTasks,
   gatherCircuit,
 } from './drape/drape.ts';
-import type { DrawingDraped } from './drape/drape-drawing.ts';
+import { type DrawingDraped, elementsAt } from './drape/drape-drawing.ts';
 import type { Draped } from './drape/element.ts';
 import { DEFAULTS, type Drawing } from './drawing/drawing.ts';
 import type { Flat } from './drawing/flat.ts';
+import { readNetlist } from './drawing/netlist.ts';
 import { readDrawing } from './drawing/read-drawing.ts';
 import { layerCsv } from './files/csv.ts';
 import { layerFile, safeNames } from './files/names.ts';
@@ -44,6 +46,7 @@ import {
 } from './proof/prove.ts';
 import { checkReach } from './reach/reach.ts';
 import type { SetupReach } from './reach/result.ts';
+import { connectivityRule, joinedPieces, netlistRule } from './rules/connectivity.ts';
 import { prepareGround, scanLayer } from './scan/scan-layer.ts';
 import type { LayerScan } from './scan/strokes.ts';
 
@@ -84,6 +87,33 @@ export interface JobResult {
   files: OutputFile[];
 }
 
+/** Opens and shorts of the copper as it lies, against its nets and against the project's netlist. */
+function connections(
+  project: Project,
+  copper: Copper,
+  drawings: ReadonlyMap<string, Drawing>,
+  files: readonly NamedBytes[],
+  ctx: RunContext,
+): Report['rules'] {
+  const { elements } = copper;
+  const piece = joinedPieces(elements);
+  const found = connectivityRule(elements, piece);
+  if (project.netlist === undefined) return found;
+  const file = files.find((f) => f.file === project.netlist);
+  if (!file) throw new Fault(`the bytes of ${project.netlist} were not handed over`);
+  const netlist = readNetlist(decodeUtf8(file.bytes), project.netlist, null, ctx);
+  // A point belongs to the first drape that has copper there: a netlist does not say which drawing it is of.
+  const at = netlist.points.map((p) => p.at);
+  const index = new Map(elements.map((e, i) => [e.id, i]));
+  const on = netlist.points.map(() => -1);
+  for (const drape of project.circuit.drapes)
+    elementsAt(drape, drawings.get(drape.id)!, at).forEach((id, i) => {
+      if (on[i] < 0 && id !== null) on[i] = index.get(id) ?? -1;
+    });
+  const points = netlist.points.map((p, i) => ({ ...p, element: on[i] }));
+  return [...found, ...netlistRule(points, project.netlist, elements, piece)];
+}
+
 const noFlat = (): Promise<Flat> => {
   throw new Fault('a job with drawings needs plane booleans');
 };
@@ -107,6 +137,7 @@ export async function runJob(
   const { copper, findings } = await layCircuit(project, projectFile, part, drawings, ctx, workers);
   const reach = checkReach(project, setups, part, copper, ctx);
   const report = openReport(project, input.unknown ?? [], part, copper, findings, drawings);
+  report.rules.push(...connections(project, copper, drawings, input.drawings ?? [], ctx));
   if (options.stopAfter === 'reach') {
     report.elements = elementReports(project, setups, part, copper, reach, null, ctx);
     report.ok = holds(report);
@@ -276,8 +307,6 @@ export function setupsOf(project: Project, file: string): Setup[] {
         'give the pose itself',
       );
   });
-  if (project.netlist !== undefined)
-    throw no('$.netlist', 'this release does not compare netlists', 'leave the field out');
   if (project.cradle !== undefined)
     throw no('$.cradle', 'this release makes no cradles', 'leave the field out');
   const { axes } = project.head;

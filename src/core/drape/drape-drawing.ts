@@ -123,6 +123,17 @@ export function drapeDrawing(
   return { elements, findings };
 }
 
+/** Ids of the elements that lie at places of the drawing, null where none does. @param places  in the drawing's own axes, mm */
+export function elementsAt(
+  drape: Drape,
+  drawing: Drawing,
+  places: readonly (readonly [number, number])[],
+): (string | null)[] {
+  const shapes = movedShapes(drape, drawing);
+  const [ou, ov] = drape.origin;
+  return places.map(([u, v]) => shapes.find((s) => s.flat.at(u - ou, v - ov).edge <= 0)?.id ?? null);
+}
+
 /**
  * A line whose corners lie where the drawing has them and whose runs are shortest ways of true width: the strip is laid as
  * a trace of the project is.
