@@ -11,12 +11,13 @@ import type { Tangle } from './tangle.ts';
 export function areasOf(chains: readonly Chain[], rule: Rule, flat: Flat, tangle: Tangle): Area[] {
   const rings = chains.map((c) => c.points).filter((p) => p.length >= 6);
   if (rings.length === 0) return [];
-  if (rings.length === 1 && isConvex(rings[0])) return [{ kind: 'area', rings: [turnedLeft(rings[0])] }];
+  if (rings.length === 1 && (isConvex(rings[0]) || isSimple(rings[0])))
+    return [{ kind: 'area', rings: [turnedLeft(rings[0])] }];
   tangle.check(rings);
   return pieces(flat.union(rings, rule)).map((one) => ({ kind: 'area', rings: one }));
 }
 
-/** One turn, all corners to one side: pads are, and need no clipping. */
+/** One turn, all corners to one side: most pads are, and need no clipping. */
 function isConvex(ring: Float64Array): boolean {
   const n = ring.length;
   let [left, right, turns] = [false, false, 0];
@@ -33,6 +34,49 @@ function isConvex(ring: Float64Array): boolean {
     [dx, dy] = [ex, ey];
   }
   return left !== right && turns === 2;
+}
+
+/** Sides up to which comparing all with all is cheaper than clipping. */
+const MOST_COMPARED = 48;
+
+/** Few sides, of which no two touch but neighbours at their corner. Anything in doubt is not simple: it is clipped. */
+function isSimple(ring: Float64Array): boolean {
+  const n = ring.length / 2;
+  if (n > MOST_COMPARED) return false;
+  const at = (i: number): [number, number] => [ring[2 * (i % n)], ring[2 * (i % n) + 1]];
+  for (let i = 0; i < n; i++) {
+    const [[ax, ay], [bx, by]] = [at(i), at(i + 1)];
+    const [cx, cy] = at(i + 2);
+    if (sideOf(ax, ay, bx, by, cx, cy) === 0 && (bx - ax) * (cx - bx) + (by - ay) * (cy - by) <= 0)
+      return false;
+    for (let j = i + 2; j < n - (i === 0 ? 1 : 0); j++) {
+      const [[px, py], [qx, qy]] = [at(j), at(j + 1)];
+      const apart =
+        Math.max(px, qx) < Math.min(ax, bx) ||
+        Math.min(px, qx) > Math.max(ax, bx) ||
+        Math.max(py, qy) < Math.min(ay, by) ||
+        Math.min(py, qy) > Math.max(ay, by);
+      if (apart) continue;
+      const p = sideOf(ax, ay, bx, by, px, py);
+      const q = sideOf(ax, ay, bx, by, qx, qy);
+      if ((p > 0 && q > 0) || (p < 0 && q < 0)) continue;
+      const a = sideOf(px, py, qx, qy, ax, ay);
+      const b = sideOf(px, py, qx, qy, bx, by);
+      if (!((a > 0 && b > 0) || (a < 0 && b < 0))) return false;
+    }
+  }
+  return true;
+}
+
+/** Bound of the rounding in a 2 by 2 determinant of differences, as a share of its terms: 3 + 16 ε times ε (J. Shewchuk 1997). */
+const DOUBT = 3.3306690738754716e-16;
+
+/** Above 0 where c lies left of a to b, below 0 right; 0 on it or where rounding may have decided. */
+function sideOf(ax: number, ay: number, bx: number, by: number, cx: number, cy: number): number {
+  const left = (ax - cx) * (by - cy);
+  const right = (ay - cy) * (bx - cx);
+  const side = left - right;
+  return Math.abs(side) > DOUBT * (Math.abs(left) + Math.abs(right)) ? side : 0;
 }
 
 function turnedLeft(ring: Float64Array): Float64Array {

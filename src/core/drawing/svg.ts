@@ -19,7 +19,7 @@ import { MOST_DEPTH, readXml, tooDeep, type XmlNode } from './svg-xml.ts';
 import { type Tangle, tangle } from './tangle.ts';
 
 /** Elements drawn, those that `use` draws again counted each time: ten lines of `use` can ask for 10¹⁰. */
-const MOST_DRAWN = 300_000;
+const MOST_DRAWN = 200_000;
 
 /** Between one word to the run and the next, elements. */
 const STRIDE = 1024;

@@ -15,6 +15,9 @@ const MOST_SAMPLE = 400_000;
 const MOST_CROSSINGS = 5e5;
 const MOST_SWEPT = 6e7;
 
+/** Figures that need clipping: each takes a moment, however small. */
+const MOST_FIGURES = 30_000;
+
 export interface Tangle {
   /** @throws BadShape `too-tangled` */
   check(rings: readonly Float64Array[]): void;
@@ -26,10 +29,12 @@ export interface Tangle {
  * far below.
  */
 export function tangle(): Tangle {
-  let [crossed, met] = [0, 0];
+  let [crossed, met, figures] = [0, 0, 0];
   return {
     check(rings) {
       const sides = rings.reduce((n, r) => n + r.length / 2, 0);
+      if (++figures > MOST_FIGURES)
+        throw new BadShape('too-tangled', `more than ${MOST_FIGURES} figures have holes or many corners`);
       if (sides > MOST_SIDES)
         throw new BadShape(
           'too-tangled',

@@ -4,6 +4,7 @@ import { quiet } from '../../../src/core/base/run-context.ts';
 import { type Area, DEFAULTS, type Drawing, type Stroke } from '../../../src/core/drawing/drawing.ts';
 import type { Flat } from '../../../src/core/drawing/flat.ts';
 import { readSvg } from '../../../src/core/drawing/svg.ts';
+import { tangle } from '../../../src/core/drawing/tangle.ts';
 import { flatForTests } from '../helpers/flat.ts';
 
 let flat: Flat;
@@ -197,7 +198,7 @@ describe('hostile and broken files', () => {
     [
       'ten steps of ten uses',
       `<svg>${Array.from({ length: 10 }, (_, i) => `<g id="a${i + 1}">${`<use href="#a${i}"/>`.repeat(10)}</g>`).join('')}<path id="a0" d="M0,0H1"/></svg>`,
-      ['too-large @ line 1, use'],
+      ['too-large @ line 1, path "a0"'],
     ],
     ['a use of itself', '<svg>\n<g id="a"><use href="#a"/></g></svg>', ['use-cycle @ line 2, use']],
     [
@@ -253,12 +254,21 @@ describe('hostile and broken files', () => {
 
   it('figures that would take minutes to clip are refused: many abreast, many crossings, many of them', () => {
     const spiral = long(60_000, (i) => `L${(i / 1200) * Math.cos(i / 10)} ${(i / 1200) * Math.sin(i / 10)}`);
-    const scribble = (n: number): string =>
-      long(n, (i) => `L${((i * 7919) % 1000) / 10 + i / 1e4} ${((i * 104_729) % 997) / 20}`);
+    const scribble = (n: number): number[] =>
+      Array.from({ length: n }, (_, i) => [
+        ((i * 7919) % 1000) / 10 + i / 1e4,
+        ((i * 104_729) % 997) / 20,
+      ]).flat();
     expect(refused(page(`<path d="${spiral}"/>`))).toEqual(['too-tangled @ line 1, path']);
-    expect(refused(page(`<path d="${scribble(9000)}"/>`))).toEqual(['too-tangled @ line 1, path']);
-    const many = `<path d="${scribble(1000)}"/>`.repeat(120);
-    expect(refused(page(many))[0]).toBe('too-tangled @ line 1, path');
+    expect(refused(page(`<polygon points="${scribble(9000).join(' ')}"/>`))).toEqual([
+      'too-tangled @ line 1, polygon',
+    ]);
+    const budget = tangle();
+    const one = Float64Array.from(scribble(1000));
+    budget.check([one]);
+    expect(() => {
+      for (let i = 0; i < 120; i++) budget.check([one]);
+    }).toThrow(expect.objectContaining({ code: 'too-tangled' }));
   });
 
   it('curves of more points than a drawing may have are refused', () => {
