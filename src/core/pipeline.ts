@@ -8,6 +8,7 @@ import { Fault, InputError } from './base/news.ts';
 import type { RunContext } from './base/run-context.ts';
 import { decodeUtf8 } from './base/utf8.ts';
 import { focusedBeam } from './beam/beam.ts';
+import { connectivityRule, joinedPieces, netlistRule } from './copper/connectivity.ts';
 import type { Copper } from './drape/copper.ts';
 import {
   type CircuitDraped,
@@ -46,7 +47,6 @@ import {
 } from './proof/prove.ts';
 import { checkReach } from './reach/reach.ts';
 import type { SetupReach } from './reach/result.ts';
-import { connectivityRule, joinedPieces, netlistRule } from './rules/connectivity.ts';
 import { prepareGround, scanLayer } from './scan/scan-layer.ts';
 import type { LayerScan } from './scan/strokes.ts';
 

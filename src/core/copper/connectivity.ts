@@ -3,10 +3,9 @@
  * (IPC-D-356A: the points that a board test would probe).
  */
 import type { Vec3 } from '../base/vec.ts';
-import { contacts } from '../copper/contacts.ts';
 import type { CopperElement } from '../drape/copper.ts';
-import type { NetPoint } from '../drawing/netlist.ts';
 import type { RuleFinding } from '../project/report.ts';
+import { contacts } from './contacts.ts';
 
 /** Number of the connected piece of each element: all copper that touches, whatever its net. */
 export function joinedPieces(elements: readonly CopperElement[]): Int32Array {
@@ -53,8 +52,13 @@ export function connectivityRule(elements: readonly CopperElement[], piece: Int3
   return findings;
 }
 
-/** A point of a netlist with the element that lies there, -1 where none does. */
-export interface ProbedPoint extends NetPoint {
+/** A point of a netlist (`drawing/netlist.ts`) with the element that lies there, -1 where none does. */
+export interface ProbedPoint {
+  kind: 'through' | 'surface' | 'tooling';
+  net: string | null;
+  part: string | null;
+  pin: string | null;
+  place: string;
   element: number;
 }
 

@@ -1,9 +1,13 @@
 import { describe, expect, it } from 'vitest';
 import { quiet } from '../../../src/core/base/run-context.ts';
+import {
+  connectivityRule,
+  joinedPieces,
+  netlistRule,
+  type ProbedPoint,
+} from '../../../src/core/copper/connectivity.ts';
 import { drapeCircuit } from '../../../src/core/drape/drape.ts';
-import type { NetPoint } from '../../../src/core/drawing/netlist.ts';
 import type { Project } from '../../../src/core/project/schema.ts';
-import { connectivityRule, joinedPieces, netlistRule } from '../../../src/core/rules/connectivity.ts';
 import { partFrom, plate } from '../helpers/surfaces.ts';
 
 const pad = (id: string, net: string, x: number, y: number, d = 2) => ({
@@ -57,9 +61,7 @@ describe('what touches is one net', () => {
 
 describe('against a netlist', () => {
   const point = (net: string | null, pin: string, element: number) =>
-    ({ kind: 'surface', net, part: 'J1', pin, place: `line ${pin}`, element }) as unknown as NetPoint & {
-      element: number;
-    };
+    ({ kind: 'surface', net, part: 'J1', pin, place: `line ${pin}`, element }) satisfies ProbedPoint;
 
   it('points of one net must be joined, points of two must not, and each must lie on copper', () => {
     const laid = lay(
