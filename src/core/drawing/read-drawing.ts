@@ -4,6 +4,7 @@ import type { RunContext } from '../base/run-context.ts';
 import { decodeUtf8 } from '../base/utf8.ts';
 import type { Drawing, DrawingOptions } from './drawing.ts';
 import { readDrill } from './drill.ts';
+import { readDxf } from './dxf.ts';
 import type { Flat } from './flat.ts';
 import { readGerber } from './gerber.ts';
 import { readSvg } from './svg.ts';
@@ -25,6 +26,8 @@ export function readDrawing(
   const text = decodeUtf8(bytes);
   const head = text.slice(0, HEAD);
   if (/<svg[\s>]/i.test(head) || /\.svg$/i.test(file)) return readSvg(text, file, options, flat, ctx);
+  if (/^\s*0\s*\r?\n\s*SECTION/i.test(head) || /\.dxf$/i.test(file))
+    return readDxf(text, file, options, flat, ctx);
   if (/^M48\s*$/m.test(head) || /\.(drl|xln)$/i.test(file)) return readDrill(text, file, options, ctx);
   if (/%(FS|MO|AD|TF)/.test(head) || /\.(gbr|ger|g[tb][lso])$/i.test(file))
     return readGerber(text, file, options, ctx, flat);
