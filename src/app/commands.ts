@@ -1,6 +1,6 @@
 /** Every command of the window in one list: menus, keys and buttons all come from here. */
 import type { Menu, RecentFile } from '../bridge/host.ts';
-import type { State } from '../store/state.ts';
+import { hasCircuit, type State } from '../store/state.ts';
 import type { Store } from '../store/store.ts';
 import type { Viewport } from '../view/viewport.ts';
 import type { Documents } from './documents.ts';
@@ -46,7 +46,7 @@ export function commandList(store: Store, documents: Documents, view: () => View
       menu: 'File',
       label: () => 'Write the scan files…',
       keys: 'Mod+E',
-      enabled: (s) => hasPart(s) && (s.project?.circuit.elements.length ?? 0) > 0,
+      enabled: (s) => hasPart(s) && s.project !== null && hasCircuit(s.project),
       run: documents.exportFiles,
       line: true,
     },

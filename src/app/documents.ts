@@ -1,5 +1,6 @@
 /** Opening, saving, journal and export: the store and the host brought together. */
 import type { Host, HostEvent, Opened, RecentFile } from '../bridge/host.ts';
+import { drawingFilesIn, partFileIn } from '../bridge/project-files.ts';
 import { writeProject } from '../core/project/read.ts';
 import type { Question } from '../panels/question.ts';
 import type { Store } from '../store/store.ts';
@@ -12,7 +13,14 @@ const KEEP_EVERY = 4000;
 
 export function createDocuments(store: Store, host: Host, ask: Ask) {
   let kept = -1;
-  let keptPart: Uint8Array | null = null;
+  /** Bytes without a file that the journal holds already. */
+  const keptBytes = new Set<Uint8Array>();
+
+  async function forget(): Promise<void> {
+    keptBytes.clear();
+    await host.journal(null);
+    kept = -1;
+  }
 
   const recentListeners = new Set<(files: readonly RecentFile[]) => void>();
   const tellRecent = () =>
@@ -50,7 +58,7 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
       await store.openPart(opened.name, opened.part);
       return;
     }
-    const shown = await store.openProject(opened.text, opened.name, opened.ref, opened.part);
+    const shown = await store.openProject(opened.text, opened.name, opened.ref, opened.part, opened.drawings);
     void tellRecent();
     const { project } = store.getState();
     if (
@@ -81,9 +89,18 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
     if (!index.ok)
       return store.notify('problem', 'The demonstration is not in this build', 'build the program again');
     const text = await index.text();
-    const file = (JSON.parse(text) as { part: { file: string } }).part.file;
-    const bytes = new Uint8Array(await (await fetch(`./demo/${file}`)).arrayBuffer());
-    await store.openProject(text, 'touch-dial.drape.json', null, { ref: null, bytes });
+    const beside = async (file: string) => ({
+      file,
+      ref: null,
+      bytes: new Uint8Array(await (await fetch(`./demo/${file}`)).arrayBuffer()),
+    });
+    await store.openProject(
+      text,
+      'touch-dial.drape.json',
+      null,
+      await beside(partFileIn(text) ?? ''),
+      await Promise.all(drawingFilesIn(text).map(beside)),
+    );
   }
 
   async function saveTo(place: { ref: string; name: string } | null): Promise<boolean> {
@@ -103,11 +120,14 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
       project = store.renamePart(chosen.partFile) ?? project;
       if (chosen.writePart && s.origin.partBytes) part = { file: chosen.partFile, bytes: s.origin.partBytes };
     }
+    const used = store.drawingsInUse();
+    const placed = used.length > 0 ? await host.placeDrawings(target.ref, used) : [];
+    project = store.placeDrawings(placed.map((p, i) => ({ ...p, was: used[i]!.file }))) ?? project;
     const text = writeProject(project);
-    await host.save({ ref: target.ref, text, part });
+    const drawings = placed.flatMap((p, i) => (p.write ? [{ ref: p.ref, bytes: used[i]!.bytes }] : []));
+    await host.save({ ref: target.ref, text, part, drawings });
     store.saved({ ref: target.ref, name: target.name }, project, text);
-    await host.journal(null);
-    kept = -1;
+    await forget();
     void tellRecent();
     return true;
   }
@@ -151,24 +171,35 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
     guard('Keeping the work', async () => {
       const s = store.getState();
       if (!s.project || s.revision === kept) return;
-      kept = s.revision;
-      if (!store.unsaved()) return host.journal(null);
-      const bytes = s.origin.partRef === null && s.origin.partBytes !== keptPart ? s.origin.partBytes : null;
+      const { revision } = s;
+      kept = revision;
+      if (!store.unsaved()) {
+        await forget();
+        kept = revision;
+        return;
+      }
+      const once = (ref: string | null, bytes: Uint8Array | null) =>
+        ref === null && bytes !== null && !keptBytes.has(bytes) ? bytes : null;
+      const partBytes = once(s.origin.partRef, s.origin.partBytes);
+      const drawings = store
+        .drawingsInUse()
+        .map(({ file, ref, bytes }) => ({ file, ref, bytes: once(ref, bytes) }));
       await host.journal({
         name: s.origin.name,
         ref: s.origin.ref,
         text: writeProject(s.project),
         partFile: s.project.part.file,
         partRef: s.origin.partRef,
-        partBytes: bytes,
+        partBytes,
+        drawings,
       });
-      if (bytes) keptPart = bytes;
+      for (const sent of [partBytes, ...drawings.map((d) => d.bytes)]) if (sent) keptBytes.add(sent);
     });
   setInterval(() => void keep(), KEEP_EVERY);
 
   async function close(): Promise<void> {
     if (await mayLeave()) {
-      await host.journal(null);
+      await forget();
       host.close();
     }
   }
@@ -212,7 +243,7 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
           if (answer === null) continue;
           const back = await host.recover(lost.id, answer === 'take');
           if (back) {
-            await store.openProject(back.text, back.name, back.ref, back.part, false);
+            await store.openProject(back.text, back.name, back.ref, back.part, back.drawings, false);
             return;
           }
         }

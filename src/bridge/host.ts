@@ -14,6 +14,24 @@ export interface PartFile {
   bytes: Uint8Array;
 }
 
+/** A drawing that a project names, or that was dropped on it. */
+export interface DrawingFile {
+  /** As the project names it, relative to the project file; a bare name where no project names it yet. */
+  file: string;
+  /** Where it lies, or null when only its bytes are known. */
+  ref: string | null;
+  /** Null when the file could not be read; `problem` says why. */
+  bytes: Uint8Array | null;
+  problem?: string;
+}
+
+/**
+ * Names that a drawing may have. A project says which files are read for it: one that comes from elsewhere shall not
+ * reach what is no drawing.
+ */
+export const isDrawingName = (name: string): boolean =>
+  /\.(svg|dxf|gbr|ger|g[tb][lsop]|gko|gml?\d*|drl|xln|exc)$/i.test(name);
+
 export interface OpenedProject {
   kind: 'project';
   /** Where it lies; null when it has no place yet. */
@@ -24,6 +42,8 @@ export interface OpenedProject {
   /** Null when the part's file could not be read; `partProblem` says why. */
   part: PartFile | null;
   partProblem?: string;
+  /** Every drawing that its circuit names, each once, those that could not be read too. */
+  drawings: DrawingFile[];
 }
 
 export interface OpenedPart {
@@ -67,10 +87,20 @@ export interface Place {
   writePart: boolean;
 }
 
+/** Where a drawing lies once its project is saved. */
+export interface PlacedDrawing {
+  /** How the project must name it. */
+  file: string;
+  ref: string;
+  /** It has no file yet: its bytes go along with the save. */
+  write: boolean;
+}
+
 export interface SaveRequest {
   ref: string;
   text: string;
   part: { file: string; bytes: Uint8Array } | null;
+  drawings: { ref: string; bytes: Uint8Array }[];
 }
 
 export interface JournalEntry {
@@ -81,6 +111,8 @@ export interface JournalEntry {
   partRef: string | null;
   /** Sent once for a part without a file. */
   partBytes: Uint8Array | null;
+  /** Likewise: bytes once, and only for a drawing without a file. */
+  drawings: { file: string; ref: string | null; bytes: Uint8Array | null }[];
 }
 
 export interface MenuEntry {
@@ -113,6 +145,11 @@ export interface Host {
   recover(id: string, take: boolean): Promise<OpenedProject | null>;
   /** Asks where to save. */
   choosePlace(suggested: string, partRef: string | null, partName: string): Promise<Place | null>;
+  /** How a project saved at `project` must name its drawings, in their order. */
+  placeDrawings(
+    project: string,
+    drawings: readonly { file: string; ref: string | null }[],
+  ): Promise<PlacedDrawing[]>;
   save(request: SaveRequest): Promise<void>;
   /** Asks for a folder and writes the files into a folder of that name in it; null when the person changed their mind. */
   exportFiles(

@@ -3,6 +3,7 @@ import { z } from 'zod';
 
 const ref = z.string().min(1).max(64);
 const name = z.string().min(1).max(255);
+const many = 200;
 const bytes = z.custom<Uint8Array>((v) => v instanceof Uint8Array, 'bytes are needed');
 /** Relative, forward slashes, no step up, nothing hidden. */
 const below = z
@@ -31,6 +32,12 @@ export const requestSchema = z.discriminatedUnion('ask', [
     ref,
     text: z.string(),
     part: z.strictObject({ file: name, bytes }).nullable(),
+    drawings: z.array(z.strictObject({ ref, bytes })).max(many),
+  }),
+  z.strictObject({
+    ask: z.literal('place-drawings'),
+    project: ref,
+    drawings: z.array(z.strictObject({ file: z.string().min(1).max(4096), ref: ref.nullable() })).max(many),
   }),
   z.strictObject({
     ask: z.literal('export'),
@@ -48,6 +55,15 @@ export const requestSchema = z.discriminatedUnion('ask', [
         partFile: z.string().max(4096),
         partRef: ref.nullable(),
         partBytes: bytes.nullable(),
+        drawings: z
+          .array(
+            z.strictObject({
+              file: z.string().min(1).max(4096),
+              ref: ref.nullable(),
+              bytes: bytes.nullable(),
+            }),
+          )
+          .max(many),
       })
       .nullable(),
   }),

@@ -113,7 +113,9 @@ export function CircuitStep() {
         })}
       </ul>
       {[
-        ...(copper?.problems ?? []).map((p) => `${p.place}: ${p.problem}; ${p.mend}.`),
+        ...(copper?.problems ?? []).map(
+          (p) => `${p.file === project.name ? '' : `${p.file}, `}${p.place}: ${p.problem}; ${p.mend}.`,
+        ),
         ...(copper?.findings ?? []).map((f) => `${f.element}: ${f.text}.`),
         ...(copper?.rules ?? []).map((r) =>
           r.rule === 'stretch'

@@ -1,7 +1,7 @@
 /** Files: the scan settings, writing, and what to do at the bench, with the cautions that belong to it. */
 import { CAUTIONS } from '../core/files/cautions.ts';
 import type { Report } from '../core/project/report.ts';
-import { isUnsaved } from '../store/state.ts';
+import { hasCircuit, isUnsaved } from '../store/state.ts';
 import { show, signed } from '../store/units.ts';
 import { NumberField } from './fields.tsx';
 import { useSteady, useWindow } from './window.tsx';
@@ -61,7 +61,7 @@ export function FilesStep() {
         <button
           type="button"
           className="main"
-          disabled={!state.part || project.circuit.elements.length === 0}
+          disabled={!state.part || !hasCircuit(project)}
           onClick={() => run('export')}
         >
           Write the scan files…

@@ -24,6 +24,7 @@ export function createFollower(
   let beyondDrape = false;
   /** Revision that was followed to its end, well or not. */
   let followed = -1;
+  let handed: State['drawings'] | null = null;
 
   const late = (revision: number) => api.getState().revision !== revision;
 
@@ -42,6 +43,11 @@ export function createFollower(
       try {
         const drape = tell('Laying the copper');
         drape(null);
+        const { drawings } = api.getState();
+        if (drawings !== handed) {
+          await worker.call('holdDrawings', { files: filesOf(drawings) });
+          handed = drawings;
+        }
         // Copper is shown as it is laid; reach and plan wait for all of it.
         for (let patience = FIRST_LOOK; ; patience *= 2) {
           const copper = await worker.call('drape', { project, patience }, drape);
@@ -87,3 +93,6 @@ export function createFollower(
     },
   };
 }
+
+export const filesOf = (drawings: State['drawings']): { file: string; bytes: Uint8Array }[] =>
+  Object.entries(drawings).map(([file, { bytes }]) => ({ file, bytes }));

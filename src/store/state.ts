@@ -23,6 +23,12 @@ export interface Origin {
   partBytes: Uint8Array | null;
 }
 
+/** A drawing under the name that the project gives it. */
+export interface HeldDrawing {
+  ref: string | null;
+  bytes: Uint8Array;
+}
+
 /** Something derived from revision `revision` of the document. */
 export interface Derived<T> {
   revision: number;
@@ -76,6 +82,8 @@ export interface State {
   revision: number;
   origin: Origin;
   history: History;
+  /** By name. One that no drape uses any more is kept: undo may bring the drape back. */
+  drawings: Readonly<Record<string, HeldDrawing>>;
   part: PartPicture | null;
   copper: Derived<CopperPicture> | null;
   reach: Derived<ReachPicture[]> | null;
@@ -103,6 +111,7 @@ export const firstState: State = {
   revision: 0,
   origin: { ref: null, name: '', text: null, saved: null, partRef: null, partBytes: null },
   history: noHistory,
+  drawings: {},
   part: null,
   copper: null,
   reach: null,
@@ -121,6 +130,9 @@ export const firstState: State = {
   preview: [],
   hover: null,
 };
+
+export const hasCircuit = ({ circuit }: Project): boolean =>
+  circuit.elements.length > 0 || circuit.drapes.length > 0;
 
 export const isUnsaved = (s: State): boolean => s.project !== null && s.project !== s.origin.saved;
 

@@ -7,10 +7,20 @@ import { type WorkerClient, WorkFailure, wasStopped } from '../worker/client.ts'
 import type { CopperPicture, LiveRun, PartPicture, Probe } from '../worker/pictures.ts';
 import type { Ray } from '../worker/session.ts';
 import { type Act, apply, freeId, nameOf } from './document.ts';
-import { createFollower } from './follow.ts';
+import { createFollower, filesOf } from './follow.ts';
 import { noHistory, record, redo, seal, undo } from './history.ts';
 import { copperAt } from './margins.ts';
-import { current, firstState, isUnsaved, type Notice, type Origin, type State, type Tool } from './state.ts';
+import {
+  current,
+  firstState,
+  type HeldDrawing,
+  hasCircuit,
+  isUnsaved,
+  type Notice,
+  type Origin,
+  type State,
+  type Tool,
+} from './state.ts';
 
 export type Store = ReturnType<typeof createStore>;
 
@@ -112,7 +122,12 @@ export function createStore(workers: Workers) {
   }
 
   /** A document in place of the one before, with nothing left of it. */
-  async function show(project: Project, origin: Origin, bytes: Uint8Array | null): Promise<boolean> {
+  async function show(
+    project: Project,
+    origin: Origin,
+    bytes: Uint8Array | null,
+    drawings: State['drawings'] = {},
+  ): Promise<boolean> {
     const mine = ++opening;
     workers.heavy.stopAll();
     try {
@@ -123,12 +138,13 @@ export function createStore(workers: Workers) {
         ...firstState,
         project,
         origin: { ...origin, partBytes: bytes },
+        drawings,
         part: picture,
         revision: s.revision + 1,
         notices: [],
         pen: s.pen,
         history: noHistory,
-        step: picture ? (project.circuit.elements.length > 0 ? 'reach' : 'circuit') : 'part',
+        step: picture ? (hasCircuit(project) ? 'reach' : 'circuit') : 'part',
       });
       follower.wake();
       return true;
@@ -531,12 +547,16 @@ export function createStore(workers: Workers) {
     drop: () => inTurn(drop),
     drag,
     endDrag,
-    /** Opens a project text. The part's bytes may be missing: then the project is shown without it. */
+    /**
+     * Opens a project text. The part's bytes may be missing: then the project is shown without it. So may a drawing's:
+     * then the rest of the copper is shown.
+     */
     async openProject(
       text: string,
       name: string,
       ref: string | null,
       part: { ref: string | null; bytes: Uint8Array } | null,
+      drawings: readonly OpenedDrawing[] = [],
       saved = true,
     ): Promise<boolean> {
       try {
@@ -549,7 +569,17 @@ export function createStore(workers: Workers) {
           partRef: part?.ref ?? null,
           partBytes: null,
         };
-        const shown = await show(project, origin, part?.bytes ?? null);
+        const held = drawings.flatMap(({ file, ref: at, bytes }): [string, HeldDrawing][] =>
+          bytes ? [[file, { ref: at, bytes }]] : [],
+        );
+        const shown = await show(project, origin, part?.bytes ?? null, Object.fromEntries(held));
+        if (shown)
+          for (const d of drawings.filter((x) => x.bytes === null).slice(0, 3))
+            notify(
+              'problem',
+              `${name}: the drawing ${d.file} is missing: ${(d.problem ?? 'its file was not found').replace(/\.$/, '')}`,
+              'put the file back and open the project again',
+            );
         if (shown && unknown.length > 0)
           notify(
             'done',
@@ -598,6 +628,38 @@ export function createStore(workers: Workers) {
       follower.wake();
       return project;
     },
+    /** Drawings that the document uses, in the order of its drapes. */
+    drawingsInUse(): { file: string; ref: string | null; bytes: Uint8Array }[] {
+      const { project, drawings } = get();
+      const names = new Set(project?.circuit.drapes.map((d) => d.drawing));
+      return [...names].flatMap((file) => {
+        const held = drawings[file];
+        return held ? [{ file, ...held }] : [];
+      });
+    },
+    /**
+     * Names of drawings follow their places, as the part's does. The names before stay known: undo may bring them back.
+     * @param placed  for each name in use where it lies and how it is named from there
+     */
+    placeDrawings(placed: readonly { was: string; file: string; ref: string }[]): Project | null {
+      const s = get();
+      if (!s.project || placed.length === 0) return s.project;
+      const names = new Map(placed.map((p) => [p.was, p.file]));
+      const drawings = { ...s.drawings };
+      for (const { was, file, ref } of placed) {
+        const held = s.drawings[was];
+        if (held) drawings[was] = drawings[file] = { ...held, ref };
+      }
+      const drapes = s.project.circuit.drapes.map((d) => {
+        const drawing = names.get(d.drawing) ?? d.drawing;
+        return drawing === d.drawing ? d : { ...d, drawing };
+      });
+      const same = drapes.every((d, i) => d === s.project!.circuit.drapes[i]);
+      const project = same ? s.project : { ...s.project, circuit: { ...s.project.circuit, drapes } };
+      set({ project, drawings, revision: same ? s.revision : s.revision + 1 });
+      if (!same) follower.wake();
+      return project;
+    },
     unsaved: () => isUnsaved(get()),
     setExported: (exported: State['exported']) => set({ exported }),
     async exportFiles(projectText: string) {
@@ -606,6 +668,7 @@ export function createStore(workers: Workers) {
       await follower.settled();
       const done = busy('Making the scan files');
       try {
+        await workers.heavy.call('holdDrawings', { files: filesOf(s.drawings) });
         return await workers.heavy.call(
           'exportFiles',
           {
@@ -624,6 +687,14 @@ export function createStore(workers: Workers) {
     again: follower.again,
     settled: follower.settled,
   };
+}
+
+/** A drawing that an opened project names; null bytes where its file could not be read. */
+export interface OpenedDrawing {
+  file: string;
+  ref: string | null;
+  bytes: Uint8Array | null;
+  problem?: string;
 }
 
 /** A pointer that has not moved for this long rests, ms; how often that is looked at. */

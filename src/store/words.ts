@@ -2,7 +2,7 @@
 import { REASONS, type Reason } from '../core/reach/result.ts';
 import type { CopperPicture, PlanPicture, ReachPicture } from '../worker/pictures.ts';
 import { type Counts, countLooks } from './looks.ts';
-import { current, type State, type StepName } from './state.ts';
+import { current, hasCircuit, type State, type StepName } from './state.ts';
 import { show } from './units.ts';
 
 export interface StepWords {
@@ -72,7 +72,13 @@ export function stepWords(s: State): Record<StepName, StepWords> {
     const n = elements.filter((e) => e.kind === kind).length;
     return n === 0 ? [] : [`${n} ${word}${n === 1 ? '' : 's'}`];
   };
-  const drawn = [...count('trace', 'trace'), ...count('pad', 'pad'), ...count('region', 'region')];
+  const { drapes } = project.circuit;
+  const drawn = [
+    ...count('trace', 'trace'),
+    ...count('pad', 'pad'),
+    ...count('region', 'region'),
+    ...(drapes.length === 0 ? [] : [`${drapes.length} drawing${drapes.length === 1 ? '' : 's'}`]),
+  ];
   const broken = copper?.rules.filter((r) => r.level === 'error').length ?? 0;
   const troubles = (copper?.problems.length ?? 0) + (copper?.findings.length ?? 0);
 
@@ -112,13 +118,13 @@ export function stepWords(s: State): Record<StepName, StepWords> {
             words: `${plan.layers.length} layer${plan.layers.length === 1 ? '' : 's'}` + unreachedWords(),
             mark: unreachedWords() ? 'look' : 'good',
           }
-      : { words: elements.length ? 'Not planned yet' : 'Nothing yet', mark: 'open' },
+      : { words: hasCircuit(project) ? 'Not planned yet' : 'Nothing yet', mark: 'open' },
     files: filesWords(),
   };
 
   function reachWords(): StepWords {
     if (!copper || !reach || copper.area.length === 0)
-      return { words: elements.length ? 'Not looked yet' : 'Nothing yet', mark: 'open' };
+      return { words: drawn.length ? 'Not looked yet' : 'Nothing yet', mark: 'open' };
     const { counts, steep } = overview(copper, s.setup, reach, plan);
     const steepest = show(steep, 0);
     const bad = REASONS.filter((r) => r !== 'focus' && counts[r].elements.length > 0);

@@ -4,6 +4,7 @@ import type { InputProblem } from '../core/base/news.ts';
 import type { Vec3 } from '../core/base/vec.ts';
 import type { ElementKind } from '../core/drape/copper.ts';
 import type { DrapeFinding } from '../core/drape/element.ts';
+import type { Note } from '../core/drawing/drawing.ts';
 import type { Mended } from '../core/mesh/surface-mesh.ts';
 import type { Report, RuleFinding } from '../core/project/report.ts';
 import type { Reason } from '../core/reach/result.ts';
@@ -26,12 +27,16 @@ export interface PartPicture {
 
 export interface ElementPicture {
   id: string;
+  /** Id of the drape whose drawing it comes from; null for what the project draws itself. */
+  drape: string | null;
   kind: ElementKind;
   net: string;
   length: number;
   drawnLength: number;
   area: number;
   stretch: number;
+  /** Of a drawing's element: where lengths differ most, and the ratios to those drawn. */
+  stretched: { along: number; across: number; at: Vec3 } | null;
   anchor: Vec3;
   /** Its triangles are `first … first + count - 1`; their corners belong to it alone. */
   first: number;
@@ -42,9 +47,22 @@ export interface ElementPicture {
   path: Float32Array | null;
 }
 
+/** A drawing that was read for a drape. */
+export interface DrawingPicture {
+  /** Id of the drape. */
+  drape: string;
+  shapes: number;
+  holes: number;
+  layers: string[];
+  /** What its reader left out or assumed. */
+  notes: Note[];
+}
+
 /** The copper of all elements, one triangle after the other: T triangles on V vertices. */
 export interface CopperPicture {
   elements: ElementPicture[];
+  /** Drawings that could be read, in the order of the drapes. */
+  drawings: DrawingPicture[];
   /** Elements still to be laid, when the call's patience ran out. */
   pending: number;
   /** Elements that could not be laid: why. */

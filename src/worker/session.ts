@@ -7,7 +7,8 @@ import { addScaled, at3, dot, normalize, type Vec3 } from '../core/base/vec.ts';
 import { focusedBeam, usableDepth } from '../core/beam/beam.ts';
 import { unionArea } from '../core/copper/union-area.ts';
 import type { Copper, CopperElement } from '../core/drape/copper.ts';
-import { type Draper, drapeElement, prepareDraper } from '../core/drape/drape.ts';
+import { type Draper, drapeDrawingOn, drapeElement, prepareDraper } from '../core/drape/drape.ts';
+import type { DrawingDraped } from '../core/drape/drape-drawing.ts';
 import type { Draped, DrapeFinding } from '../core/drape/element.ts';
 import { triangleArea } from '../core/drape/level-lines.ts';
 import { type GeodesicPath, shortestWith } from '../core/geodesic/shortest.ts';
@@ -29,9 +30,11 @@ import { gapRule } from '../core/rules/gap.ts';
 import { stretchRule } from '../core/rules/stretch.ts';
 import { widthRule } from '../core/rules/width.ts';
 import { creases } from './creases.ts';
+import { HeldDrawings, type LoadFlat } from './held-drawings.ts';
 import { HeldPaths, type Hold } from './held-paths.ts';
 import {
   type CopperPicture,
+  type DrawingPicture,
   ELSEWHERE,
   type ElementPicture,
   type ExportResult,
@@ -42,7 +45,7 @@ import {
   type ReachPicture,
 } from './pictures.ts';
 import { createPool } from './pool.ts';
-import { standAlone } from './stand-alone.ts';
+import { type NamedFile, standAlone } from './stand-alone.ts';
 import { tasks } from './tasks.ts';
 import { thinned } from './thin.ts';
 
@@ -60,7 +63,12 @@ export interface Ray {
 
 export type Session = ReturnType<typeof createSession>;
 
-export function createSession() {
+const noFlat: LoadFlat = () => {
+  throw new Fault('a session with drawings needs plane booleans');
+};
+
+/** @param flat  loads what reading drawings needs, when the first one comes */
+export function createSession(flat: LoadFlat = noFlat) {
   let part: Part | null = null;
   let draper: Draper | null = null;
   let held: HeldPaths | null = null;
@@ -71,7 +79,8 @@ export function createSession() {
     if (!project || !copper) throw new Fault('no copper is laid in the worker');
     return { project, copper };
   };
-  const laid = new Map<string, Draped>();
+  const laid = new Map<string, Draped | DrawingDraped>();
+  const drawings = new HeldDrawings(flat);
 
   const needPart = (): Part => {
     if (!part) throw new Fault('no part is open in the worker');
@@ -106,6 +115,9 @@ export function createSession() {
       };
     },
 
+    /** Hands over every drawing that the document may name, in place of those before. */
+    holdDrawings: (a: { files: readonly NamedFile[] }) => drawings.hold(a.files),
+
     /**
      * Reads the project as a file would be read and lays its copper. Elements that did not change are not laid again;
      * one that cannot be laid is named in `problems`, and the others stay. After `patience` ms it gives what there is:
@@ -119,25 +131,59 @@ export function createSession() {
       const findings: DrapeFinding[] = [];
       const keep = new Set<string>();
       const until = performance.now() + (a.patience ?? Infinity);
+      const file = a.project.name;
+      const drapeOf = new Map<string, string>();
+      const read: DrawingPicture[] = [];
       let pending = 0;
-      project.circuit.elements.forEach((element, i) => {
-        ctx.step('drape', i, project!.circuit.elements.length);
-        const key = JSON.stringify(element);
+      const { elements: drawn, drapes } = project.circuit;
+      /** What lies there already, or `lay` if there is time left; undefined when not. */
+      const known = <T extends Draped | DrawingDraped>(key: string, lay: () => T): T | undefined => {
         keep.add(key);
-        try {
-          if (!laid.has(key) && performance.now() > until) {
+        if (!laid.has(key)) {
+          if (performance.now() > until) {
             pending++;
-            return;
+            return undefined;
           }
-          const known =
-            laid.get(key) ?? drapeElement(draper!, element, `$.circuit.elements[${i}]`, a.project.name);
-          laid.set(key, known);
-          if (known.element) elements.push(known.element);
-          findings.push(...known.findings);
+          laid.set(key, lay());
+        }
+        return laid.get(key) as T;
+      };
+      const each = (i: number, f: () => void): void => {
+        ctx.step('drape', i, drawn.length + drapes.length);
+        try {
+          f();
         } catch (error) {
           if (!(error instanceof InputError)) throw error;
           problems.push(...error.problems);
         }
+      };
+      drawn.forEach((element, i) => {
+        each(i, () => {
+          const one = known(JSON.stringify(element), () =>
+            drapeElement(draper!, element, `$.circuit.elements[${i}]`, file),
+          );
+          if (one?.element) elements.push(one.element);
+          findings.push(...(one?.findings ?? []));
+        });
+      });
+      drapes.forEach((drape, i) => {
+        each(drawn.length + i, () => {
+          const path = `$.circuit.drapes[${i}]`;
+          const { key, drawing } = drawings.read(drape, file, path, ctx);
+          read.push({
+            drape: drape.id,
+            shapes: drawing.shapes.length,
+            holes: drawing.holes.length,
+            layers: drawing.layers,
+            notes: drawing.notes,
+          });
+          const all = known(`${key} ${JSON.stringify(drape)}`, () =>
+            drapeDrawingOn(draper!, { drape, drawing, path, file }),
+          );
+          for (const e of all?.elements ?? []) drapeOf.set(e.id, drape.id);
+          elements.push(...(all?.elements ?? []));
+          findings.push(...(all?.findings ?? []));
+        });
       });
       for (const key of laid.keys()) if (!keep.has(key)) laid.delete(key);
       copper = { elements };
@@ -148,7 +194,8 @@ export function createSession() {
           : [...widthRule(elements, limits), ...gapRule(elements, limits), ...stretchRule(elements, limits)];
       const covered = pending > 0 ? null : unionArea(elements.map((e) => e.copper));
       return {
-        ...copperPicture(copper, here, posesOf(project)),
+        ...copperPicture(copper, here, posesOf(project), drapeOf),
+        drawings: read,
         problems,
         findings,
         rules,
@@ -187,18 +234,27 @@ export function createSession() {
       ctx: RunContext,
     ): Promise<ExportResult> {
       const { project: p, unknown } = readProject(a.projectText, a.projectFile);
+      const others = drawings.of(p, a.projectFile);
       const pool = createPool(1, tasks, () => {
         throw new Fault('one thread needs no other');
       });
       const { report, files } = await runJob(
-        { project: p, projectFile: a.projectFile, projectText: a.projectText, unknown, part: a.part },
+        {
+          project: p,
+          projectFile: a.projectFile,
+          projectText: a.projectText,
+          unknown,
+          part: a.part,
+          drawings: others,
+          flat,
+        },
         { seed: DEFAULT_SEED },
         ctx,
         pool,
       );
       return {
         report,
-        files: standAlone(files, report, { projectText: a.projectText, part: a.part, others: [] }),
+        files: standAlone(files, report, { projectText: a.projectText, part: a.part, others }),
       };
     },
 
@@ -294,7 +350,8 @@ function copperPicture(
   copper: Copper,
   part: Part,
   setups: Setup[],
-): Omit<CopperPicture, 'problems' | 'findings' | 'rules' | 'pending' | 'covered'> {
+  drapeOf: ReadonlyMap<string, string>,
+): Omit<CopperPicture, 'drawings' | 'problems' | 'findings' | 'rules' | 'pending' | 'covered'> {
   const triangles = copper.elements.reduce((n, e) => n + e.copper.triangles.length / 3, 0);
   const vertices = copper.elements.reduce((n, e) => n + e.copper.positions.length / 3, 0);
   const positions = new Float32Array(3 * vertices);
@@ -331,12 +388,14 @@ function copperPicture(
     v += x.length / 3;
     elements.push({
       id: e.id,
+      drape: drapeOf.get(e.id) ?? null,
       kind: e.kind,
       net: e.net,
       length: e.length,
       drawnLength: e.drawnLength,
       area: e.area,
       stretch: e.stretch,
+      stretched: e.stretched ? { ...e.stretched } : null,
       anchor: e.anchor,
       first,
       count: t - first,

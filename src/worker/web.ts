@@ -1,10 +1,11 @@
 /** Thin wiring: serves a session's functions in a browser worker. */
 import { Cancelled, InputError } from '../core/base/news.ts';
 import type { RunContext } from '../core/base/run-context.ts';
+import { flatForWeb } from './flat-web.ts';
 import { createSession } from './session.ts';
 import type { Failure, FromWorker, ToWorker } from './wire.ts';
 
-const session = createSession();
+const session = createSession(flatForWeb);
 /** Jobs up to this number are to stop; shared with the page, which may write it while we compute. */
 let stopUpTo: Int32Array = new Int32Array(1);
 /** Progress more often than this is not seen by anyone. */
@@ -13,13 +14,14 @@ const SPEAK_EVERY_MS = 60;
 const send = (message: FromWorker, transfer: Transferable[] = []) =>
   (self as unknown as { postMessage(m: FromWorker, t: Transferable[]): void }).postMessage(message, transfer);
 
-self.addEventListener('message', (event: MessageEvent<ToWorker>) => void hear(event.data));
+/** Calls are answered in the order they were made, though one may wait for a file. */
+let line: Promise<void> = Promise.resolve();
+self.addEventListener('message', ({ data }: MessageEvent<ToWorker>) => {
+  if (data.kind === 'stop-flag') stopUpTo = data.flag;
+  else line = line.then(() => hear(data));
+});
 
-async function hear(message: ToWorker): Promise<void> {
-  if (message.kind === 'stop-flag') {
-    stopUpTo = message.flag;
-    return;
-  }
+async function hear(message: Extract<ToWorker, { kind: 'call' }>): Promise<void> {
   const { job, name, argument } = message;
   let spoken = performance.now();
   const ctx: RunContext = {

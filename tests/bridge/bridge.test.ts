@@ -1,12 +1,20 @@
-import { existsSync, mkdirSync, mkdtempSync, readdirSync, readFileSync, writeFileSync } from 'node:fs';
+import {
+  existsSync,
+  mkdirSync,
+  mkdtempSync,
+  readdirSync,
+  readFileSync,
+  renameSync,
+  writeFileSync,
+} from 'node:fs';
 import { tmpdir } from 'node:os';
-import { join } from 'node:path';
+import { join, relative } from 'node:path';
 import { beforeEach, describe, expect, test } from 'vitest';
 import { createDesk, type Desk } from '../../src/bridge/host/desk.ts';
 import { putFolder, saveWhole } from '../../src/bridge/host/files.ts';
 import { pageAt } from '../../src/bridge/host/pages.ts';
 import { startWindow } from '../../src/bridge/host/start.ts';
-import type { OpenedProject, Place, StartNews } from '../../src/bridge/host.ts';
+import type { OpenedProject, Place, PlacedDrawing, StartNews } from '../../src/bridge/host.ts';
 import { requestSchema } from '../../src/bridge/requests.ts';
 import { pack, unpack } from '../../src/bridge/wire.ts';
 
@@ -185,7 +193,7 @@ describe('the desk', () => {
 
   test('a place that was never chosen is neither read nor written', async () => {
     for (const request of [
-      { ask: 'save', ref: 'guess', text: 'x', part: null },
+      { ask: 'save', ref: 'guess', text: 'x', part: null, drawings: [] },
       { ask: 'open-recent', ref: join(dir, 'job.drape.json') },
     ])
       expect(await desk.answer(request)).toMatchObject({
@@ -206,7 +214,7 @@ describe('the desk', () => {
       partName: 'parts/a.stl',
     });
     expect(place).toMatchObject({ name: 'x.drape.json', partFile: '../../parts/a.stl', writePart: false });
-    await value({ ask: 'save', ref: place.ref, text: 'text', part: null });
+    await value({ ask: 'save', ref: place.ref, text: 'text', part: null, drawings: [] });
     expect(readFileSync(join(dir, 'jobs', 'today', 'x.drape.json'), 'utf8')).toBe('text');
   });
 
@@ -224,6 +232,7 @@ describe('the desk', () => {
       ref: place.ref,
       text: '{}',
       part: { file: 'dropped.stl', bytes: bytes('solid') },
+      drawings: [],
     });
     expect(readFileSync(join(dir, 'dropped.stl'), 'utf8')).toBe('solid');
   });
@@ -245,6 +254,7 @@ describe('the desk', () => {
       partFile: 'p.stl',
       partRef: null,
       partBytes: bytes('solid'),
+      drawings: [],
     };
     await value({ ask: 'journal', entry });
     desk = make();
@@ -252,7 +262,6 @@ describe('the desk', () => {
     expect((await value<StartNews>({ ask: 'start' })).lost).toEqual([]);
     const journal = join(state, 'journal');
     // A process number that cannot be one: the program that kept this has ended.
-    const { renameSync } = await import('node:fs');
     for (const f of readdirSync(journal))
       renameSync(join(journal, f), join(journal, f.replace(/^\d+/, '4194999')));
     const { lost } = await value<StartNews>({ ask: 'start' });
@@ -266,11 +275,157 @@ describe('the desk', () => {
   test('an entry is taken out of the journal when the work is saved', async () => {
     await value({
       ask: 'journal',
-      entry: { name: 'x', ref: null, text: '{}', partFile: 'p.stl', partRef: null, partBytes: null },
+      entry: {
+        name: 'x',
+        ref: null,
+        text: '{}',
+        partFile: 'p.stl',
+        partRef: null,
+        partBytes: null,
+        drawings: [],
+      },
     });
     expect(readdirSync(join(state, 'journal'))).toHaveLength(1);
     await value({ ask: 'journal', entry: null });
     expect(readdirSync(join(state, 'journal'))).toEqual([]);
+  });
+});
+
+describe('drawings on the desk', () => {
+  let dir: string;
+  let state: string;
+  let desk: Desk;
+  let answers: { open?: string; place?: string };
+  const make = () =>
+    createDesk(
+      state,
+      {
+        open: async () => answers.open ?? null,
+        place: async () => answers.place ?? null,
+        folder: async () => null,
+        list: async () => [],
+      },
+      { title() {}, menu() {}, close() {} },
+      null,
+    );
+  const value = async <T>(request: unknown): Promise<T> => {
+    const reply = await desk.answer(request);
+    if (!reply.ok) throw new Error(`${reply.problem}; ${reply.mend}`);
+    return reply.value as T;
+  };
+  const project = (...drawings: string[]) =>
+    JSON.stringify({
+      part: { file: 'a.stl' },
+      circuit: { drapes: drawings.map((drawing) => ({ drawing })) },
+    });
+
+  beforeEach(() => {
+    dir = folder();
+    state = folder();
+    answers = { open: join(dir, 'job.drape.json') };
+    desk = make();
+    mkdirSync(join(dir, 'art'));
+    writeFileSync(join(dir, 'a.stl'), 'solid');
+    writeFileSync(join(dir, 'art', 'ring.svg'), '<svg/>');
+    writeFileSync(join(dir, 'secret.key'), 'key');
+    writeFileSync(
+      join(dir, 'job.drape.json'),
+      project('art/ring.svg', 'gone.gbr', 'art/ring.svg', 'secret.key'),
+    );
+  });
+
+  test('those that the project names come along, each once; a missing one says why, and what is none is not read', async () => {
+    const { drawings } = await value<OpenedProject>({ ask: 'open' });
+    expect(drawings.map((d) => [d.file, d.bytes && new TextDecoder().decode(d.bytes), d.problem])).toEqual([
+      ['art/ring.svg', '<svg/>', undefined],
+      ['gone.gbr', null, expect.stringMatching(/gone\.gbr: it is not there$/)],
+      ['secret.key', null, 'its name does not end like that of a drawing'],
+    ]);
+  });
+
+  test('saved in another folder, they are named from there; one without a file gets a free name beside the project', async () => {
+    const { drawings } = await value<OpenedProject>({ ask: 'open' });
+    const far = folder();
+    writeFileSync(join(far, 'tail.gbr'), 'of somebody else');
+    answers.place = join(far, 'x.drape.json');
+    const { ref } = await value<Place>({
+      ask: 'choose-place',
+      suggested: 'x',
+      partRef: null,
+      partName: 'a.stl',
+    });
+    const placed = await value<PlacedDrawing[]>({
+      ask: 'place-drawings',
+      project: ref,
+      drawings: [
+        { file: 'art/ring.svg', ref: drawings[0]!.ref },
+        { file: 'tail.gbr', ref: null },
+        { file: '../tail.gbr', ref: null },
+      ],
+    });
+    expect(placed.map((p) => [p.file, p.write])).toEqual([
+      [relative(far, join(dir, 'art', 'ring.svg')), false],
+      ['tail-2.gbr', true],
+      ['tail-3.gbr', true],
+    ]);
+    await value({
+      ask: 'save',
+      ref,
+      text: '{}',
+      part: null,
+      drawings: [{ ref: placed[1]!.ref, bytes: bytes('G04 mine*') }],
+    });
+    expect(readFileSync(join(far, 'tail-2.gbr'), 'utf8')).toBe('G04 mine*');
+    expect(readFileSync(join(far, 'tail.gbr'), 'utf8')).toBe('of somebody else');
+  });
+
+  test('bytes of a drawing are not written over a project, a part or what was never placed', async () => {
+    const opened = await value<OpenedProject>({ ask: 'open' });
+    for (const ref of [opened.ref, opened.part!.ref, 'guess'])
+      expect(
+        await desk.answer({
+          ask: 'save',
+          ref: opened.ref,
+          text: '{}',
+          part: null,
+          drawings: [{ ref, bytes: bytes('x') }],
+        }),
+      ).toMatchObject({ ok: false });
+    expect(readFileSync(join(dir, 'a.stl'), 'utf8')).toBe('solid');
+    expect(readFileSync(join(dir, 'job.drape.json'), 'utf8')).toContain('ring.svg');
+    expect(
+      await desk.answer({
+        ask: 'place-drawings',
+        project: opened.ref,
+        drawings: [{ file: 'run.sh', ref: null }],
+      }),
+    ).toMatchObject({ ok: false, problem: '"run.sh" is not the name of a drawing' });
+  });
+
+  test('work that was lost brings back those with a file and those without', async () => {
+    const { drawings } = await value<OpenedProject>({ ask: 'open' });
+    const entry = { name: 'job.drape.json', ref: null, text: '{}', partFile: 'a.stl', partRef: null };
+    const kept = [
+      { file: 'art/ring.svg', ref: drawings[0]!.ref, bytes: null },
+      { file: 'tail.gbr', ref: null, bytes: bytes('G04 tail*') },
+    ];
+    await value({ ask: 'journal', entry: { ...entry, partBytes: null, drawings: kept } });
+    // The second time bytes do not come again.
+    await value({
+      ask: 'journal',
+      entry: { ...entry, partBytes: null, drawings: kept.map((d) => ({ ...d, bytes: null })) },
+    });
+    const journal = join(state, 'journal');
+    for (const f of readdirSync(journal))
+      renameSync(join(journal, f), join(journal, f.replace(/^\d+/, '4194999')));
+    desk = make();
+    const { lost } = await value<StartNews>({ ask: 'start' });
+    const back = await value<OpenedProject>({ ask: 'recover', id: lost[0]!.id, take: true });
+    expect(back.drawings.map((d) => [d.file, new TextDecoder().decode(d.bytes!), d.ref !== null])).toEqual([
+      ['art/ring.svg', '<svg/>', true],
+      ['tail.gbr', 'G04 tail*', false],
+    ]);
+    expect(readdirSync(journal)).toEqual([]);
   });
 });
 

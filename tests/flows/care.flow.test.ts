@@ -182,7 +182,7 @@ describe('what the page may not do', () => {
         .beamdrape;
       return Promise.all([
         bridge.ask({ ask: 'open-recent', ref: '/etc/passwd' }),
-        bridge.ask({ ask: 'save', ref: 'made-up', text: 'x', part: null }),
+        bridge.ask({ ask: 'save', ref: 'made-up', text: 'x', part: null, drawings: [] }),
         bridge.ask({ ask: 'run', command: 'ls' }),
       ]);
     });

@@ -3,6 +3,7 @@ import { Cancelled, InputError } from '../../src/core/base/news.ts';
 import type { RunContext } from '../../src/core/base/run-context.ts';
 import { type Port, type WorkerClient, workerClient } from '../../src/worker/client.ts';
 import { createSession, type Session } from '../../src/worker/session.ts';
+import { flatForTests } from '../core/helpers/flat.ts';
 import type { FromWorker, ToWorker } from '../../src/worker/wire.ts';
 
 export interface FakeWorker {
@@ -14,7 +15,7 @@ export interface FakeWorker {
   release(): void;
 }
 
-export function fakeWorker(session: Partial<Session> = createSession()): FakeWorker {
+export function fakeWorker(session: Partial<Session> = createSession(flatForTests)): FakeWorker {
   let flag: Int32Array = new Int32Array(1);
   let held: (() => void)[] = [];
   const port: Port = {

@@ -2,20 +2,24 @@
  * The host's side of one window: answers its requests, keeps the list of places that the person chose,
  * the journal of unsaved work and the small settings. Knows Node, not which window it serves.
  */
-import { randomBytes } from 'node:crypto';
+import { createHash, randomBytes } from 'node:crypto';
 import { existsSync, mkdirSync, readdirSync, readFileSync } from 'node:fs';
 import { rm } from 'node:fs/promises';
 import { basename, dirname, join, relative, resolve, sep } from 'node:path';
 import {
+  type DrawingFile,
   HostError,
+  isDrawingName,
   type LostWork,
   type Opened,
   type OpenedProject,
   type PartFile,
   type Place,
+  type PlacedDrawing,
   type RecentFile,
   type StartNews,
 } from '../host.ts';
+import { drawingFilesIn, partFileIn } from '../project-files.ts';
 import { type Reply, type Request, requestSchema } from '../requests.ts';
 import { putFolder, readWhole, saveWhole } from './files.ts';
 
@@ -109,6 +113,9 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
       name: basename(path),
       text,
       ...(await partOf(text, dirname(path))),
+      drawings: await Promise.all(
+        drawingFilesIn(text).map((file) => drawingOf(file, resolve(dirname(path), file))),
+      ),
     };
   }
 
@@ -126,6 +133,42 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
     } catch (error) {
       return { part: null, partProblem: (error as Error).message };
     }
+  }
+
+  /** A drawing that a project names `file`. */
+  async function drawingOf(file: string, path: string): Promise<DrawingFile> {
+    const missing = (problem: string): DrawingFile => ({ file, ref: null, bytes: null, problem });
+    if (!isDrawingName(path)) return missing('its name does not end like that of a drawing');
+    try {
+      return { file, ref: refOf(path), bytes: await readWhole(path) };
+    } catch (error) {
+      if (!(error instanceof HostError)) throw error;
+      return missing(error.news.problem);
+    }
+  }
+
+  /** What has a file keeps it; what has none is put beside the project, under a name that is free there. */
+  function placeDrawings({
+    project,
+    drawings,
+  }: Extract<Request, { ask: 'place-drawings' }>): PlacedDrawing[] {
+    const folder = dirname(pathOf(project));
+    const taken = new Set<string>();
+    return drawings.map(({ file, ref }) => {
+      if (ref !== null) {
+        const path = pathOf(ref);
+        const same = resolve(folder, file) === path;
+        return { file: same ? file : relative(folder, path).split(sep).join('/'), ref, write: false };
+      }
+      const name = (file.split(/[\\/]/).pop() as string).replace(/[^\p{L}\p{N}._ -]/gu, '_');
+      if (!isDrawingName(name))
+        throw new HostError({
+          problem: `"${name}" is not the name of a drawing`,
+          mend: 'give the drawing such a name',
+        });
+      const path = freePath(folder, name, taken);
+      return { file: basename(path), ref: refOf(path), write: true };
+    });
   }
 
   function lost(): LostWork[] {
@@ -152,7 +195,7 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
     if (!lost().some((l) => l.id === id))
       throw new HostError({ problem: 'there is no such work', mend: 'open the saved project instead' });
     const path = join(journalFolder, id);
-    const side = path.replace(/\.json$/, '.part');
+    const side = besides(path, 'part');
     let back: OpenedProject | null = null;
     if (take) {
       const e = JSON.parse(readFileSync(path, 'utf8')) as {
@@ -161,6 +204,7 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
         text: string;
         partFile: string;
         partPath: string | null;
+        drawings?: { file: string; path: string | null }[];
       };
       const partPath = e.partPath ?? (existsSync(side) ? side : null);
       back = {
@@ -171,21 +215,26 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
         part: partPath
           ? { file: e.partFile, ref: e.partPath ? refOf(e.partPath) : null, bytes: await readWhole(partPath) }
           : null,
+        drawings: await Promise.all(
+          (e.drawings ?? []).map(async ({ file, path: at }) => {
+            if (at !== null) return drawingOf(file, at);
+            const kept = besides(path, sideName(file));
+            return existsSync(kept)
+              ? { file, ref: null, bytes: await readWhole(kept) }
+              : { file, ref: null, bytes: null, problem: 'it was not kept' };
+          }),
+        ),
       };
     }
-    await rm(path, { force: true });
-    await rm(side, { force: true });
+    await forget(path);
     return back;
   }
 
   async function journal(entry: Extract<Request, { ask: 'journal' }>['entry']): Promise<void> {
-    const side = journalFile.replace(/\.json$/, '.part');
-    if (entry === null) {
-      await rm(journalFile, { force: true });
-      await rm(side, { force: true });
-      return;
-    }
-    if (entry.partBytes) await saveWhole(side, entry.partBytes);
+    if (entry === null) return forget(journalFile);
+    if (entry.partBytes) await saveWhole(besides(journalFile, 'part'), entry.partBytes);
+    for (const d of entry.drawings)
+      if (d.bytes) await saveWhole(besides(journalFile, sideName(d.file)), d.bytes);
     await saveWhole(
       journalFile,
       JSON.stringify({
@@ -195,8 +244,16 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
         text: entry.text,
         partFile: entry.partFile,
         partPath: entry.partRef ? pathOf(entry.partRef) : null,
+        drawings: entry.drawings.map((d) => ({ file: d.file, path: d.ref ? pathOf(d.ref) : null })),
       }),
     );
+  }
+
+  /** Takes an entry out of the journal with the files kept beside it. */
+  async function forget(entry: string): Promise<void> {
+    const own = basename(entry).replace(/json$/, '');
+    for (const f of readdirSync(journalFolder))
+      if (f.startsWith(own)) await rm(join(journalFolder, f), { force: true });
   }
 
   async function meet(r: Request): Promise<unknown> {
@@ -237,6 +294,8 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
         };
         return place;
       }
+      case 'place-drawings':
+        return placeDrawings(r);
       case 'save': {
         const path = pathOf(r.ref);
         if (r.part) {
@@ -247,6 +306,15 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
               mend: 'give the part such a name',
             });
           await saveWhole(beside, r.part.bytes);
+        }
+        for (const d of r.drawings) {
+          const at = pathOf(d.ref);
+          if (!isDrawingName(at))
+            throw new HostError({
+              problem: `"${basename(at)}" is not the name of a drawing`,
+              mend: 'give the drawing such a name',
+            });
+          await saveWhole(at, d.bytes);
         }
         await saveWhole(path, r.text);
         await remember(path);
@@ -300,12 +368,19 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
   };
 }
 
-function partFileIn(text: string): string | null {
-  try {
-    const file = (JSON.parse(text) as { part?: { file?: unknown } }).part?.file;
-    return typeof file === 'string' ? file : null;
-  } catch {
-    return null;
+const besides = (entry: string, ending: string): string => entry.replace(/json$/, ending);
+
+/** Bytes of a drawing stand in the journal under a name that any file system takes. */
+const sideName = (file: string): string =>
+  `${createHash('sha256').update(file).digest('hex').slice(0, 16)}.drawing`;
+
+function freePath(folder: string, name: string, taken: Set<string>): string {
+  const dot = name.lastIndexOf('.');
+  for (let n = 1; ; n++) {
+    const path = join(folder, n === 1 ? name : `${name.slice(0, dot)}-${n}${name.slice(dot)}`);
+    if (taken.has(path.toLowerCase()) || existsSync(path)) continue;
+    taken.add(path.toLowerCase());
+    return path;
   }
 }
 

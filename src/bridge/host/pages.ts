@@ -26,6 +26,9 @@ const KINDS: Record<string, string> = {
   '.png': 'image/png',
   '.woff2': 'font/woff2',
   '.stl': 'model/stl',
+  '.gbr': 'text/plain',
+  '.drl': 'text/plain',
+  '.dxf': 'text/plain',
 };
 
 export interface Page {

@@ -43,6 +43,11 @@ export function common(ask: Ask) {
     openRecent: (ref: string) => ask<Awaited<ReturnType<Host['openRecent']>>>({ ask: 'open-recent', ref }),
     recover: (id: string, take: boolean) =>
       ask<Awaited<ReturnType<Host['recover']>>>({ ask: 'recover', id, take }),
+    placeDrawings: (
+      project: string,
+      drawings: Parameters<Host['placeDrawings']>[1],
+    ): ReturnType<Host['placeDrawings']> =>
+      ask({ ask: 'place-drawings', project, drawings: drawings.map(({ file, ref }) => ({ file, ref })) }),
     save: (r: Parameters<Host['save']>[0]) => ask<void>({ ask: 'save', ...r }),
     journal: (entry: Parameters<Host['journal']>[0]) => ask<void>({ ask: 'journal', entry }),
     recent: () => ask<Awaited<ReturnType<Host['recent']>>>({ ask: 'recent' }),

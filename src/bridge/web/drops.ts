@@ -1,7 +1,8 @@
 /** Dropped files of which only the bytes are known: what a browser gives, or a drag out of another program. */
-import { HostError, type Opened } from '../host.ts';
+import { type DrawingFile, HostError, isDrawingName, type Opened } from '../host.ts';
+import { drawingFilesIn } from '../project-files.ts';
 
-/** A project dropped like this brings its part along, or finds none. */
+/** A project dropped like this brings its part and its drawings along, or finds none. */
 export async function openDropped(files: readonly File[]): Promise<Opened | null> {
   const bytesOf = async (f: File) => new Uint8Array(await f.arrayBuffer());
   const project = files.find((f) => /\.json$/i.test(f.name));
@@ -15,6 +16,20 @@ export async function openDropped(files: readonly File[]): Promise<Opened | null
       text,
       part: part ? { file: part.name, ref: null, bytes: await bytesOf(part) } : null,
       ...(part ? {} : { partProblem: 'drop the project together with its part' }),
+      drawings: await Promise.all(
+        drawingFilesIn(text).map(async (file): Promise<DrawingFile> => {
+          const last = file.split(/[\\/]/).pop();
+          const found = files.find((f) => f.name === last && isDrawingName(f.name));
+          return found
+            ? { file, ref: null, bytes: await bytesOf(found) }
+            : {
+                file,
+                ref: null,
+                bytes: null,
+                problem: 'it was not dropped together with the project',
+              };
+        }),
+      ),
     };
   }
   if (part)
