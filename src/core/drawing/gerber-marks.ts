@@ -68,7 +68,7 @@ export function pointsOf({ figure }: Mark): number {
 }
 
 /** Points that clipping may take in before the file is too large: 5 s of work. */
-const MOST_CLIPPED = 1_000_000;
+const MOST_CLIPPED = 600_000;
 
 /**
  * Dark marks less the clear ones that come later. Strokes that no clear mark touches stay strokes; what is touched becomes areas,
@@ -106,7 +106,7 @@ export function erased(
     const own = ringsOf(mark);
     count(own);
     count(off);
-    if (flat.intersection(own, off).length === 0) return [mark];
+    if (!flat.meet(own, off)) return [mark];
     return flat.split(flat.difference(own, off)).map((rings): Mark => {
       return { ...mark, figure: { kind: 'area', rings } };
     });

@@ -9,7 +9,7 @@
 import { InputError } from '../base/news.ts';
 import type { RunContext } from '../base/run-context.ts';
 import type { Drawing, DrawingOptions } from './drawing.ts';
-import { BadShape, type Findings, findings, inReach } from './findings.ts';
+import { BadShape, type Findings, findings, inReach, tooLarge } from './findings.ts';
 import type { Flat } from './flat.ts';
 import { readAperture } from './gerber-apertures.ts';
 import { readAttribute } from './gerber-attributes.ts';
@@ -38,6 +38,7 @@ export function readGerber(
 ): Drawing {
   const found = findings(file, MEND);
   const reader = new Reader(file, options, found, flat);
+  checkLength(text, file);
   let count = 0;
   for (const block of blocks(text)) {
     if (count++ % STRIDE === 0) ctx.step('load', block.line, 0);
@@ -63,6 +64,15 @@ export function readGerber(
 }
 
 const STRIDE = 65536;
+
+/** Two seconds of reading. */
+const MOST_BLOCKS = 2_000_000;
+
+function checkLength(text: string, file: string): void {
+  let count = 0;
+  for (let at = text.indexOf('*'); at >= 0; at = text.indexOf('*', at + 1))
+    if (++count > MOST_BLOCKS) throw tooLarge(file, '', `more than ${MOST_BLOCKS} commands`);
+}
 
 class Reader {
   /** M02 has come. */
