@@ -109,6 +109,9 @@ describe('the form of answers', () => {
     expect(flat.union([ring(0, 0, 1, 1)])).toEqual([]);
     expect(flat.split([])).toEqual([]);
     expect(flat.intersection([box(0, 0, 1, 1)], [])).toEqual([]);
+    expect(flat.meet([box(0, 0, 1, 1)], [])).toBe(false);
+    expect(flat.meet([box(0, 0, 1, 1)], [box(1, 0, 1, 1)])).toBe(false);
+    expect(flat.meet([box(0, 0, 1, 1)], [box(0.9, 0.9, 1, 1)])).toBe(true);
     expect(flat.difference([], [box(0, 0, 1, 1)])).toEqual([]);
     expect(flat.difference([box(0, 0, 1, 1)], [])).toEqual([box(0, 0, 1, 1)]);
     expect(flat.difference([box(0, 0, 1, 1)], [box(-1, -1, 3, 3)])).toEqual([]);
@@ -116,7 +119,8 @@ describe('the form of answers', () => {
 
   test('what is not finite is refused as our own mistake', () => {
     for (const bad of [Number.NaN, Infinity, 1e10])
-      expect(() => flat.union([ring(0, 0, 1, 0, 1, bad)])).toThrow(/a ring goes through/);
+      for (const work of [flat.union, flat.split])
+        expect(() => work([ring(0, 0, 1, 0, 1, bad)])).toThrow(/a ring goes through/);
   });
 
   test('a second loading gives the same bits', async () => {
@@ -156,6 +160,7 @@ describe('theorems over random figures, seed 5101', () => {
       const of = (rings: Float64Array[]): number => flat.area(rings);
       const [A, B, both] = [of(flat.union(a)), of(flat.union(b)), of(flat.intersection(a, b))];
       const most = 4 * slack(...a, ...b);
+      expect(flat.meet(a, b)).toBe(both > 0);
       expect(Math.abs(of(flat.union([...a, ...b])) - (A + B - both))).toBeLessThan(most);
       expect(Math.abs(of(flat.difference(a, b)) - (A - both))).toBeLessThan(most);
     }
@@ -172,34 +177,58 @@ describe('theorems over random figures, seed 5101', () => {
     }
   });
 
-  test('separate areas are those that manifold-3d itself finds, on a coarse grid where rings touch', async () => {
-    const { default: Module } = await import('manifold-3d');
-    const module = await Module();
-    module.setup();
+  test('separate areas are those that a flood over the triangles of a coarse grid finds, where rings touch', () => {
+    const [least, most] = [-6, 26];
+    const side = most - least;
     let holes = 0;
     let parts = 0;
     for (let round = 0; round < 150; round++) {
       const step = (n: number): number => Math.floor(random() * n);
-      const solid = Array.from({ length: 30 }, () => box(step(16), step(16), 1 + step(5), 1 + step(5)));
-      const slant = Array.from({ length: 12 }, () => regular(4, step(16), step(16), 1 + step(3)));
+      const diamond = (x: number, y: number, r: number): Float64Array =>
+        ring(x + r, y, x, y + r, x - r, y, x, y - r);
+      const solid = Array.from({ length: 42 }, (_, k) =>
+        k % 3 > 0
+          ? box(step(16), step(16), 1 + step(5), 1 + step(5))
+          : diamond(step(16), step(16), 1 + step(3)),
+      );
       const off = Array.from({ length: 40 }, () =>
-        random() < 0.5 ? box(step(18), step(18), 1, 1) : regular(4, step(18), step(18), 1),
+        random() < 0.5 ? box(step(18), step(18), 1, 1) : diamond(step(18), step(18), 1),
       );
-      const cut = flat.difference([...solid, ...slant], off);
-      const mine = flat.split(cut);
-      holes += cut.length - mine.length;
-      parts += mine.length;
-      const whole = new module.CrossSection(
-        cut.map((r) =>
-          Array.from({ length: r.length / 2 }, (_, i): [number, number] => [r[2 * i], r[2 * i + 1]]),
-        ),
-        'NonZero',
-      );
-      const theirs = whole.decompose();
-      const byArea = (list: number[]): number[] =>
-        list.sort((a, b) => a - b).map((a) => Number(a.toFixed(5)));
-      expect(byArea(mine.map((p) => flat.area(p)))).toEqual(byArea(theirs.map((c) => c.area())));
-      for (const c of [whole, ...theirs]) c.delete();
+      const inBox = (r: Float64Array, x: number, y: number): boolean => {
+        const [cx, cy] = [(Math.min(r[0], r[4]) + Math.max(r[0], r[4])) / 2, (r[3] + r[7]) / 2];
+        return r[1] === r[3]
+          ? x > r[0] && x < r[2] && y > r[1] && y < r[5]
+          : Math.abs(x - cx) + Math.abs(y - cy) < (r[0] - r[4]) / 2;
+      };
+      // Each square of 1 falls into four triangles by its diagonals: east, north, west, south of its middle.
+      const filled = new Uint8Array(4 * side * side);
+      for (let t = 0; t < filled.length; t++) {
+        const cell = t >> 2;
+        const x = least + (cell % side) + 0.5 + [1, 0, -1, 0][t & 3] / 3;
+        const y = least + Math.floor(cell / side) + 0.5 + [0, 1, 0, -1][t & 3] / 3;
+        if (solid.some((r) => inBox(r, x, y)) && !off.some((r) => inBox(r, x, y))) filled[t] = 1;
+      }
+      const want: number[] = [];
+      for (let t = 0; t < filled.length; t++) {
+        let count = 0;
+        const todo = [t];
+        while (todo.length > 0) {
+          const u = todo.pop()!;
+          if (filled[u] !== 1) continue;
+          filled[u] = 2;
+          count++;
+          const cell = u >> 2;
+          todo.push((cell << 2) | ((u + 1) & 3), (cell << 2) | ((u + 3) & 3));
+          todo.push(((cell + [1, side, -1, -side][u & 3]) << 2) | ((u + 2) & 3));
+        }
+        if (count > 0) want.push(count / 4);
+      }
+      const cut = flat.difference(solid, off);
+      const found = flat.split(cut);
+      holes += cut.length - found.length;
+      parts += found.length;
+      const sorted = (list: number[]): number[] => list.sort((a, b) => a - b);
+      expect(sorted(found.map((p) => Number(flat.area(p).toFixed(5))))).toEqual(sorted(want));
     }
     expect(holes).toBeGreaterThan(300);
     expect(parts).toBeGreaterThan(500);
