@@ -119,7 +119,7 @@ function after(report: Report): string {
 }
 
 /** Rules that are no lengths. */
-const UNIT: Record<string, string> = { stretch: ' of the drawn length' };
+const UNIT: Record<string, string> = { stretch: ' of the drawn length', 'sharp-edge': '°' };
 
 function notWritten(report: Report): string {
   const rows = report.elements
