@@ -53,16 +53,20 @@ function looker(rings: readonly Float64Array[]): (ring: number) => number {
   return (k) => {
     const own = rings[k];
     const [x, y] = own;
-    // The hole's lower edge at its first point: of the two, the one that runs lower.
+    // The hole's two edges at its first point, both to the right of it; the copper is on the other side.
     const [f, l] = [2, own.length - 2];
-    const lower = Math.min(Math.atan2(own[f + 1] - y, own[f] - x), Math.atan2(own[l + 1] - y, own[l] - x));
+    const edges = [Math.atan2(own[f + 1] - y, own[f] - x), Math.atan2(own[l + 1] - y, own[l] - x)];
+    const lower = Math.min(...edges);
+    const outside = 2 * Math.PI - (Math.max(...edges) - lower);
     let best = null as Seen | null;
     near(x, (ring, i) => {
       if (ring === k) return;
       const r = rings[ring];
       const j = (i + 2) % r.length;
       const seen = see(x, y, lower, ring, r[i], r[i + 1], r[j], r[j + 1]);
-      if (seen && (best === null || nearer(seen, best))) best = seen;
+      // What touches from within the hole is an island.
+      if (!seen || (seen.touches && seen.turn >= outside)) return;
+      if (best === null || nearer(seen, best)) best = seen;
     });
     return best === null ? NOTHING : best.ring;
   };

@@ -104,6 +104,23 @@ describe('the form of answers', () => {
     expect(parts.every((p) => ringArea(p[0]) > 0)).toBe(true);
   });
 
+  test('where a hole begins, islands in it, other holes and other areas may touch it', () => {
+    const diamond = (x: number, y: number, r: number): Float64Array =>
+      ring(x + r, y, x, y + r, x - r, y, x, y - r);
+    // All touch in (2, 4): a hole and the island in it, to the right; another hole to the left.
+    const rings = [
+      ...[box(-6, -4, 20, 16), turned(diamond(5, 4, 3)), diamond(3.5, 4, 1.5), turned(diamond(1, 4, 1))],
+      // Below the holes an area of its own, in a hole of its own.
+      ...[turned(box(0, -3, 9, 3)), box(1, -2, 7, 1)],
+    ];
+    const parts = flat.split(rings);
+    expect(parts.map((p) => [p.length, flat.area(p)])).toEqual([
+      [4, 320 - 18 - 2 - 27],
+      [1, 7],
+      [1, 4.5],
+    ]);
+  });
+
   test('nothing is an answer, and rings of two points are nothing', () => {
     expect(flat.union([])).toEqual([]);
     expect(flat.union([ring(0, 0, 1, 1)])).toEqual([]);
