@@ -107,17 +107,27 @@ describe('the form of answers', () => {
   test('where a hole begins, islands in it, other holes and other areas may touch it', () => {
     const diamond = (x: number, y: number, r: number): Float64Array =>
       ring(x + r, y, x, y + r, x - r, y, x, y - r);
-    // All touch in (2, 4): a hole and the island in it, to the right; another hole to the left.
-    const rings = [
-      ...[box(-6, -4, 20, 16), turned(diamond(5, 4, 3)), diamond(3.5, 4, 1.5), turned(diamond(1, 4, 1))],
-      // Below the holes an area of its own, in a hole of its own.
-      ...[turned(box(0, -3, 9, 3)), box(1, -2, 7, 1)],
-    ];
-    const parts = flat.split(rings);
-    expect(parts.map((p) => [p.length, flat.area(p)])).toEqual([
-      [4, 320 - 18 - 2 - 27],
-      [1, 7],
+    const outer = box(-6, -4, 20, 16);
+    const hole = turned(diamond(5, 4, 3));
+    const within = diamond(3.5, 4, 1.5);
+    const left = turned(diamond(0.5, 4, 1.5));
+    const withinLeft = diamond(1, 4, 1);
+    // All touch in (2, 4): a hole and an island in it to the right, the same to the left.
+    const areas = (...rings: Float64Array[]): number[][] =>
+      flat.split(rings).map((p) => [p.length, flat.area(p)]);
+    expect(areas(outer, hole, within)).toEqual([
+      [2, 320 - 18],
       [1, 4.5],
+    ]);
+    expect(areas(withinLeft, within, left, hole, outer)).toEqual([
+      [3, 320 - 18 - 4.5],
+      [1, 2],
+      [1, 4.5],
+    ]);
+    // Below the hole an area of its own, in a hole of its own.
+    expect(areas(outer, hole, turned(box(0, -3, 9, 3)), box(1, -2, 7, 1))).toEqual([
+      [3, 320 - 18 - 27],
+      [1, 7],
     ]);
   });
 
