@@ -31,10 +31,8 @@ export function openBridge(): void {
     const desk = deskOf(event);
     if (!desk || !Array.isArray(raw)) return REFUSED;
     const paths = raw.filter((p): p is string => typeof p === 'string' && p !== '');
-    const path = paths.find((p) => /\.json$/i.test(p)) ?? paths.find((p) => /\.stl$/i.test(p)) ?? paths[0];
-    if (path === undefined) return { ok: true, value: null };
     try {
-      return { ok: true, value: await desk.openPath(path) };
+      return { ok: true, value: await desk.openPaths(paths) };
     } catch (error) {
       const news =
         error instanceof HostError

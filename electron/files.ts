@@ -8,11 +8,30 @@ export const stateFolder = (): string => join(app.getPath('userData'), 'work');
 
 export function systemDialogs(window: BrowserWindow): Dialogs {
   return {
-    async open() {
+    async open(what) {
+      const documents = { name: 'Parts and projects', extensions: ['stl', 'drape.json', 'json'] };
+      const drawings = {
+        name: 'Drawings',
+        extensions: [
+          'svg',
+          'dxf',
+          'gbr',
+          'ger',
+          'gtl',
+          'gbl',
+          'gts',
+          'gbs',
+          'gto',
+          'gko',
+          'drl',
+          'xln',
+          'exc',
+        ],
+      };
       const chosen = await dialog.showOpenDialog(window, {
         properties: ['openFile'],
         filters: [
-          { name: 'Parts and projects', extensions: ['stl', 'drape.json', 'json'] },
+          ...(what === 'drawing' ? [drawings, documents] : [documents, drawings]),
           { name: 'All files', extensions: ['*'] },
         ],
       });

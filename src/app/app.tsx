@@ -57,7 +57,10 @@ export function App({ store, host, questions }: { store: Store; host: Host; ques
   const view = useRef<Viewport | null>(null);
   const [dismissed, setDismissed] = useState<ReadonlySet<string> | null>(null);
   const [asked, setAsked] = useState<Asked[]>([]);
-  const documents = useMemo(() => createDocuments(store, host, questions.ask), [store, host, questions]);
+  const documents = useMemo(
+    () => createDocuments(store, host, questions.ask, (at) => view.current?.rays(at) ?? []),
+    [store, host, questions],
+  );
   const [recent, setRecent] = useState<readonly RecentFile[]>([]);
   useEffect(() => documents.onRecent(setRecent), [documents]);
   const commands = useMemo(
@@ -110,7 +113,7 @@ export function App({ store, host, questions }: { store: Store; host: Host; ques
     const drop = (e: DragEvent) => {
       e.preventDefault();
       const files = [...(e.dataTransfer?.files ?? [])];
-      if (files.length > 0) void documents.openDropped(files);
+      if (files.length > 0) void documents.openDropped(files, { x: e.clientX, y: e.clientY });
     };
     addEventListener('dragover', over);
     addEventListener('drop', drop);

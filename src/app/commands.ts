@@ -23,6 +23,13 @@ export function commandList(store: Store, documents: Documents, view: () => View
   const hasPart = (s: State) => s.part !== null;
   return [
     { id: 'open', menu: 'File', label: () => 'Open…', keys: 'Mod+O', run: documents.open },
+    {
+      id: 'lay-drawing',
+      menu: 'File',
+      label: () => 'Lay a drawing…',
+      enabled: hasPart,
+      run: documents.openDrawing,
+    },
     { id: 'demo', menu: 'File', label: () => 'Open the demonstration', run: documents.openDemo },
     {
       id: 'save',

@@ -1,9 +1,19 @@
 /** Opening, saving, journal and export: the store and the host brought together. */
-import type { Host, HostEvent, Opened, RecentFile } from '../bridge/host.ts';
+import type {
+  Host,
+  HostEvent,
+  Opened,
+  OpenedDrawings,
+  OpenedPart,
+  OpenedProject,
+  OpenWhat,
+  RecentFile,
+} from '../bridge/host.ts';
 import { drawingFilesIn, partFileIn } from '../bridge/project-files.ts';
 import { writeProject } from '../core/project/read.ts';
 import type { Question } from '../panels/question.ts';
 import type { Store } from '../store/store.ts';
+import type { Ray } from '../worker/session.ts';
 
 export type Ask = (question: Question) => Promise<{ answer: string | null; entry: string }>;
 export type Documents = ReturnType<typeof createDocuments>;
@@ -11,7 +21,19 @@ export type Documents = ReturnType<typeof createDocuments>;
 /** How often unsaved work is kept, ms. */
 const KEEP_EVERY = 4000;
 
-export function createDocuments(store: Store, host: Host, ask: Ask) {
+/** Place of the page, px. */
+export interface Pixel {
+  x: number;
+  y: number;
+}
+
+/** @param rays  where on the part something dropped at a place of the page belongs, or what comes by no place: best first */
+export function createDocuments(
+  store: Store,
+  host: Host,
+  ask: Ask,
+  rays: (at: Pixel | null) => readonly Ray[],
+) {
   let kept = -1;
   /** Bytes without a file that the journal holds already. */
   const keptBytes = new Set<Uint8Array>();
@@ -52,8 +74,25 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
     return answer === 'drop';
   }
 
-  async function showOpened(opened: Opened | null): Promise<void> {
-    if (!opened) return;
+  /** A document takes the place of the one at hand; drawings are laid on its part. */
+  async function take(opened: Opened | null, at: Pixel | null = null): Promise<void> {
+    if (opened?.kind === 'drawings') await lay(opened, at);
+    else if (opened && (await mayLeave())) await showOpened(opened);
+  }
+
+  async function lay({ drawings }: OpenedDrawings, at: Pixel | null): Promise<void> {
+    if ((await store.layDrawings(drawings, rays(at))) !== 'no-units') return;
+    const { answer } = await ask({
+      title: 'Unit of the drawing',
+      text: `${drawings.map((d) => d.file).join(', ')}: the file does not say what one of its units is.`,
+      answers: [],
+      choices: UNITS.map(([, words]) => words),
+    });
+    const unit = UNITS.find(([, words]) => words === answer);
+    if (unit) await store.layDrawings(drawings, rays(at), unit[0]);
+  }
+
+  async function showOpened(opened: OpenedPart | OpenedProject): Promise<void> {
     if (opened.kind === 'part') {
       await store.openPart(opened.name, opened.part);
       return;
@@ -80,7 +119,7 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
       );
   }
 
-  const open = () => guard('Opening', async () => (await mayLeave()) && showOpened(await host.open()));
+  const open = (what: OpenWhat) => guard('Opening', async () => take(await host.open(what)));
 
   const openDemo = () => guard('Opening the demonstration', async () => (await mayLeave()) && fetchDemo());
 
@@ -205,12 +244,12 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
   }
 
   return {
-    open,
+    open: () => open('document'),
+    openDrawing: () => open('drawing'),
     openDemo,
-    openDropped: (files: readonly File[]) =>
-      guard('Opening', async () => (await mayLeave()) && showOpened(await host.openDropped(files))),
-    openRecent: (ref: string) =>
-      guard('Opening', async () => (await mayLeave()) && showOpened(await host.openRecent(ref))),
+    openDropped: (files: readonly File[], at: Pixel) =>
+      guard('Opening', async () => take(await host.openDropped(files), at)),
+    openRecent: (ref: string) => guard('Opening', async () => take(await host.openRecent(ref))),
     onRecent(hear: (files: readonly RecentFile[]) => void): () => void {
       recentListeners.add(hear);
       void tellRecent();
@@ -222,15 +261,14 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
     close: () => guard('Closing', close),
     hear(event: HostEvent) {
       if (event.kind === 'close-asked') void guard('Closing', close);
-      else if (event.kind === 'opened')
-        void guard('Opening', async () => (await mayLeave()) && showOpened(event.opened));
+      else if (event.kind === 'opened') void guard('Opening', () => take(event.opened));
     },
     /** What a fresh window shows: what was asked for, else lost work, else the demonstration or nothing. */
     async begin(tellDismissed: (put: readonly string[]) => void): Promise<void> {
       const news = await host.start();
       tellDismissed(news.dismissed);
       await guard('Opening', async () => {
-        if (news.opened) return showOpened(news.opened);
+        if (news.opened) return take(news.opened);
         for (const lost of news.lost) {
           const { answer } = await ask({
             title: 'Work that was not saved',
@@ -258,6 +296,14 @@ export function createDocuments(store: Store, host: Host, ask: Ask) {
       }),
   };
 }
+
+const UNITS = [
+  ['mm', 'millimetre'],
+  ['inch', 'inch'],
+  ['um', 'micrometre'],
+  ['cm', 'centimetre'],
+  ['m', 'metre'],
+] as const;
 
 async function sha256(bytes: Uint8Array): Promise<string> {
   const sum = new Uint8Array(await crypto.subtle.digest('SHA-256', bytes as Uint8Array<ArrayBuffer>));

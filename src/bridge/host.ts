@@ -52,7 +52,13 @@ export interface OpenedPart {
   part: PartFile;
 }
 
-export type Opened = OpenedProject | OpenedPart;
+/** Drawings are laid on the part that is open. Each has its bytes and a bare name. */
+export interface OpenedDrawings {
+  kind: 'drawings';
+  drawings: (DrawingFile & { bytes: Uint8Array })[];
+}
+
+export type Opened = OpenedProject | OpenedPart | OpenedDrawings;
 
 export interface RecentFile {
   ref: string;
@@ -133,13 +139,16 @@ export type HostEvent =
   | { kind: 'close-asked' }
   | { kind: 'opened'; opened: Opened };
 
+/** What a dialog offers first: any file may be chosen in either. */
+export type OpenWhat = 'document' | 'drawing';
+
 export interface Host {
   readonly kind: 'desktop' | 'browser';
   start(): Promise<StartNews>;
   /** Asks which file to open. Null when the person changed their mind. */
-  open(): Promise<Opened | null>;
+  open(what: OpenWhat): Promise<Opened | null>;
   openRecent(ref: string): Promise<Opened>;
-  /** Files dropped on the window: the first project among them, else the first part. */
+  /** Files dropped on the window: the first project among them, else the first part, else all drawings. */
   openDropped(files: readonly File[]): Promise<Opened | null>;
   /** Gives back lost work, or throws it away. */
   recover(id: string, take: boolean): Promise<OpenedProject | null>;

@@ -3,6 +3,7 @@ import { z } from 'zod';
 
 const ref = z.string().min(1).max(64);
 const name = z.string().min(1).max(255);
+const what = z.enum(['document', 'drawing']);
 const many = 200;
 const bytes = z.custom<Uint8Array>((v) => v instanceof Uint8Array, 'bytes are needed');
 /** Relative, forward slashes, no step up, nothing hidden. */
@@ -16,8 +17,8 @@ const below = z
 
 export const requestSchema = z.discriminatedUnion('ask', [
   z.strictObject({ ask: z.literal('start') }),
-  z.strictObject({ ask: z.literal('open'), named: name.optional() }),
-  z.strictObject({ ask: z.literal('list') }),
+  z.strictObject({ ask: z.literal('open'), what, named: name.optional() }),
+  z.strictObject({ ask: z.literal('list'), what }),
   z.strictObject({ ask: z.literal('open-recent'), ref }),
   z.strictObject({ ask: z.literal('recover'), id: ref, take: z.boolean() }),
   z.strictObject({

@@ -1,9 +1,12 @@
 /** Acts on the project: plain data, each with a name for the Edit menu, applied by one pure function. */
 import type { Vec3 } from '../core/base/vec.ts';
-import type { Element, Project } from '../core/project/schema.ts';
+import type { Drape, Element, Project } from '../core/project/schema.ts';
 
 export type Act =
   | { kind: 'add-element'; element: Element }
+  | { kind: 'add-drape'; drape: Drape }
+  | { kind: 'move-drape'; id: string; at: Vec3 }
+  | { kind: 'edit-drape'; id: string; what: string; change: Readonly<Partial<Drape>> }
   | { kind: 'delete'; ids: readonly string[] }
   | { kind: 'move-point'; id: string; index: number; at: Vec3 }
   | { kind: 'add-point'; id: string; index: number; at: Vec3 }
@@ -17,6 +20,12 @@ export function nameOf(act: Act): string {
   switch (act.kind) {
     case 'add-element':
       return `${act.element.kind === 'trace' ? 'draw trace' : act.element.kind === 'pad' ? 'place pad' : 'draw region'} ${act.element.id}`;
+    case 'add-drape':
+      return `lay drawing ${lastName(act.drape.drawing)}`;
+    case 'move-drape':
+      return `move drawing ${act.id}`;
+    case 'edit-drape':
+      return `change ${act.what} of ${act.id}`;
     case 'delete':
       return act.ids.length === 1 ? `delete ${act.ids[0]}` : `delete ${act.ids.length} elements`;
     case 'move-point':
@@ -34,6 +43,9 @@ export function nameOf(act: Act): string {
   }
 }
 
+/** Name of a file without its folders. */
+export const lastName = (file: string): string => file.split(/[\\/]/).pop() ?? file;
+
 /**
  * The project after the act; the same object when nothing changed. Never writes into its argument.
  * An act that does not fit (no such element, a route that would be too short) changes nothing.
@@ -44,8 +56,17 @@ export function apply(project: Project, act: Act): Project {
       return withElements(project, (list) => [...list, act.element]);
     case 'delete': {
       const gone = new Set(act.ids);
-      return withElements(project, (list) => list.filter((e) => !gone.has(e.id)));
+      return withDrapes(
+        withElements(project, (list) => list.filter((e) => !gone.has(e.id))),
+        (list) => list.filter((d) => !gone.has(d.id)),
+      );
     }
+    case 'add-drape':
+      return withDrapes(project, (list) => [...list, act.drape]);
+    case 'move-drape':
+      return editDrape(project, act.id, (d) => ({ ...d, anchor: [...act.at] }));
+    case 'edit-drape':
+      return editDrape(project, act.id, (d) => ({ ...d, ...act.change }));
     case 'move-point':
       return edit(project, act.id, (e) =>
         withPoints(e, (p) => p.map((q, i) => (i === act.index ? { ...q, at: [...act.at] } : q))),
@@ -79,6 +100,16 @@ function withElements(project: Project, f: (list: Element[]) => Element[]): Proj
   return { ...project, circuit: { ...project.circuit, elements } };
 }
 
+function withDrapes(project: Project, f: (list: Drape[]) => Drape[]): Project {
+  const before = project.circuit.drapes;
+  const drapes = f(before);
+  if (drapes.length === before.length && drapes.every((d, i) => d === before[i])) return project;
+  return { ...project, circuit: { ...project.circuit, drapes } };
+}
+
+const editDrape = (project: Project, id: string, f: (d: Drape) => Drape): Project =>
+  withDrapes(project, (list) => list.map((d) => (d.id === id ? f(d) : d)));
+
 const edit = (project: Project, id: string, f: (e: Element) => Element): Project =>
   withElements(project, (list) => list.map((e) => (e.id === id ? f(e) : e)));
 
@@ -109,6 +140,6 @@ function setAt(node: unknown, path: readonly (string | number)[], value: unknown
 
 /** The first free id with this letter: t1, t2 … */
 export function freeId(project: Project, letter: string): string {
-  const taken = new Set(project.circuit.elements.map((e) => e.id));
+  const taken = new Set([...project.circuit.elements, ...project.circuit.drapes].map((e) => e.id));
   for (let n = 1; ; n++) if (!taken.has(`${letter}${n}`)) return `${letter}${n}`;
 }

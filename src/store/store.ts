@@ -1,12 +1,12 @@
 /** The store: state, acts with undo, drawing, and the derived results that follow the document. No React here. */
 import { type StoreApi, createStore as zustandStore } from 'zustand/vanilla';
-import type { Vec3 } from '../core/base/vec.ts';
+import type { Vec2, Vec3 } from '../core/base/vec.ts';
 import { newProject } from '../core/project/new-project.ts';
-import type { Element, Project, Setup } from '../core/project/schema.ts';
-import { type WorkerClient, WorkFailure, wasStopped } from '../worker/client.ts';
+import type { Drape, Element, Project, Setup } from '../core/project/schema.ts';
+import { problemsOf, type WorkerClient, WorkFailure, wasStopped } from '../worker/client.ts';
 import type { CopperPicture, LiveRun, PartPicture, Probe } from '../worker/pictures.ts';
 import type { Ray } from '../worker/session.ts';
-import { type Act, apply, freeId, nameOf } from './document.ts';
+import { type Act, apply, freeId, lastName, nameOf } from './document.ts';
 import { createFollower, filesOf } from './follow.ts';
 import { noHistory, record, redo, seal, undo } from './history.ts';
 import { copperAt } from './margins.ts';
@@ -22,6 +22,7 @@ import {
   type Tool,
 } from './state.ts';
 
+export type { Ray } from '../worker/session.ts';
 export type Store = ReturnType<typeof createStore>;
 
 export interface Workers {
@@ -74,8 +75,11 @@ export function createStore(workers: Workers) {
 
   function become(project: Project): void {
     const s = get();
-    const ids = new Set(project.circuit.elements.map((e) => e.id));
-    const selection = s.selection.filter((id) => ids.has(id));
+    const { elements, drapes } = project.circuit;
+    const ids = new Set([...elements, ...drapes].map((e) => e.id));
+    const selection = s.selection.filter(
+      (id) => ids.has(id) || drapes.some((d) => id.startsWith(`${d.id}/`)),
+    );
     set({
       project,
       revision: s.revision + 1,
@@ -465,8 +469,101 @@ export function createStore(workers: Workers) {
       );
   }
 
+  /**
+   * Lays drawings on the part. What came together goes together: one anchor, and one origin, the middle of all of them.
+   * @param rays   the anchor is where the first of them that meets the part does
+   * @param units  of drawings that name none; without it such a drawing is `no-units`
+   * @returns `no-units` when the person is to be asked, else whether they were laid
+   */
+  async function layDrawings(
+    files: readonly { file: string; ref: string | null; bytes: Uint8Array }[],
+    rays: readonly Ray[],
+    units?: Project['part']['units'],
+  ): Promise<'laid' | 'not' | 'no-units'> {
+    const start = get();
+    if (!start.project || !start.part) {
+      notify('problem', 'A drawing is laid on a part, and none is open', 'open a part first');
+      return 'not';
+    }
+    const done = busy('Reading the drawing');
+    let boxes: [Vec2, Vec2][];
+    try {
+      boxes = [];
+      for (const { file, bytes } of files) {
+        const how = { drawing: lastName(file), ...(units ? { units } : {}) };
+        const { box } = await workers.live.call('lookAtDrawing', { bytes, how });
+        if (box) boxes.push(box);
+      }
+    } catch (error) {
+      if (units === undefined && problemsOf(error)?.some((p) => p.code === 'no-units')) return 'no-units';
+      fail(error, 'Reading the drawing');
+      return 'not';
+    } finally {
+      done.end();
+    }
+    if (boxes.length === 0) {
+      notify(
+        'problem',
+        `${lastName(files[0]!.file)} holds nothing that becomes copper`,
+        'give another drawing',
+      );
+      return 'not';
+    }
+    let anchor: [number, number, number] | null = null;
+    for (const ray of rays) anchor ??= (await pick(ray))?.at ?? null;
+    const s = get();
+    if (!anchor || !s.project || s.part !== start.part) {
+      notify('problem', 'There is no surface at this place', 'drop the drawing on the part');
+      return 'not';
+    }
+    const middle = (k: 0 | 1) =>
+      Math.round(
+        500 * (Math.min(...boxes.map(([lo]) => lo[k])) + Math.max(...boxes.map(([, hi]) => hi[k]))),
+      ) / 1000;
+    const origin: [number, number] = [middle(0), middle(1)];
+    const gesture = files.length > 1 ? `lay ${++asked}` : null;
+    const ids: string[] = [];
+    for (const { file, ref, bytes } of files) {
+      const drawing = hold(file, ref, bytes);
+      const id = freeId(get().project!, 'd');
+      ids.push(id);
+      const drape: Drape = {
+        id,
+        drawing,
+        anchor,
+        origin,
+        turn: 0,
+        mirror: false,
+        evenLengths: true,
+        drawingLayers: {},
+        nets: {},
+        ...(units ? { units } : {}),
+      };
+      act({ kind: 'add-drape', drape }, gesture);
+    }
+    set((x) => ({ history: seal(x.history), selection: ids, step: 'circuit' }));
+    return 'laid';
+  }
+
+  /** Keeps a drawing under a name that no other bytes have. */
+  function hold(file: string, ref: string | null, bytes: Uint8Array): string {
+    const { drawings } = get();
+    const name = lastName(file);
+    const dot = name.lastIndexOf('.');
+    const same = (held: HeldDrawing) =>
+      held.bytes.length === bytes.length && held.bytes.every((b, i) => b === bytes[i]);
+    for (let n = 1; ; n++) {
+      const own = n === 1 ? name : `${name.slice(0, dot)}-${n}${name.slice(dot)}`;
+      const held = drawings[own];
+      if (held && !same(held)) continue;
+      if (!held) set({ drawings: { ...drawings, [own]: { ref, bytes } } });
+      return own;
+    }
+  }
+
   return {
     api,
+    layDrawings,
     getState: get,
     subscribe: api.subscribe,
     act,

@@ -5,7 +5,7 @@ import { poseFrame } from '../core/base/pose.ts';
 import type { Vec3 } from '../core/base/vec.ts';
 import { plainDepth } from '../store/looks.ts';
 import { current, type State } from '../store/state.ts';
-import { type Store, setupsOf } from '../store/store.ts';
+import { type Ray, type Store, setupsOf } from '../store/store.ts';
 import {
   between,
   type Eye,
@@ -27,6 +27,8 @@ export interface Viewport {
   look(name: ViewName): void;
   /** Turns to a place of the part, seen along its normal. */
   showPlace(point: Vec3, normal: Vec3): void;
+  /** Rays to the part: through a place of the page where it lies in the viewport, and through the middle. Part frame. */
+  rays(at: { x: number; y: number } | null): Ray[];
   toggle(what: 'plane' | 'lens' | 'cut'): void;
   shows(what: 'plane' | 'lens' | 'cut'): boolean;
   /** Where the keyboard's cross stands, or null while the mouse leads. */
@@ -425,6 +427,12 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
     showPlace(point, normal) {
       const frame = frameOf(get());
       glide(lookingAt(eye, frame.point(partPoint(point)), frame.direction(normal)));
+    },
+    rays(at) {
+      const box = canvas.getBoundingClientRect();
+      const [x, y] = at ? [at.x - box.left, at.y - box.top] : [-1, -1];
+      const inside = x >= 0 && y >= 0 && x < width && y < height;
+      return [...(inside ? [rayAt(x, y)] : []), rayAt(width / 2, height / 2)];
     },
     toggle(what) {
       flags[what] = !flags[what];

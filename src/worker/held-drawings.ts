@@ -1,6 +1,7 @@
 /** The drawings of the document as the host handed them over, each read once for each way that a drape wants it read. */
 import { Fault, InputError } from '../core/base/news.ts';
 import type { RunContext } from '../core/base/run-context.ts';
+import type { Vec2 } from '../core/base/vec.ts';
 import { DEFAULTS, type Drawing } from '../core/drawing/drawing.ts';
 import type { Flat } from '../core/drawing/flat.ts';
 import { readDrawing } from '../core/drawing/read-drawing.ts';
@@ -89,6 +90,30 @@ export class HeldDrawings {
       return { file: own, bytes };
     });
   }
+}
+
+/** Box of all that a drawing holds, lines with their width, mm: lower left and upper right; null where it is empty. */
+export function boxOf({ shapes, holes }: Drawing): [Vec2, Vec2] | null {
+  const [lo, hi] = [
+    [Infinity, Infinity],
+    [-Infinity, -Infinity],
+  ];
+  const take = (points: ArrayLike<number>, by: number): void => {
+    for (let i = 0; i < points.length; i++) {
+      lo[i % 2] = Math.min(lo[i % 2], points[i] - by);
+      hi[i % 2] = Math.max(hi[i % 2], points[i] + by);
+    }
+  };
+  for (const { figure } of shapes)
+    if (figure.kind === 'stroke') take(figure.points, figure.width / 2);
+    else for (const ring of figure.rings) take(ring, 0);
+  for (const h of holes) take([...h.at, ...h.to], h.diameter / 2);
+  return lo[0] > hi[0]
+    ? null
+    : [
+        [lo[0], lo[1]],
+        [hi[0], hi[1]],
+      ];
 }
 
 const missing = (drawing: string, file: string, place: string): InputError =>

@@ -3,7 +3,7 @@ import { partPoint } from '../core/base/brands.ts';
 import { Fault, InputError, type InputProblem } from '../core/base/news.ts';
 import { poseFrame } from '../core/base/pose.ts';
 import type { RunContext } from '../core/base/run-context.ts';
-import { addScaled, at3, dot, normalize, type Vec3 } from '../core/base/vec.ts';
+import { addScaled, at3, dot, normalize, type Vec2, type Vec3 } from '../core/base/vec.ts';
 import { focusedBeam, usableDepth } from '../core/beam/beam.ts';
 import { unionArea } from '../core/copper/union-area.ts';
 import type { Copper, CopperElement } from '../core/drape/copper.ts';
@@ -30,7 +30,7 @@ import { gapRule } from '../core/rules/gap.ts';
 import { stretchRule } from '../core/rules/stretch.ts';
 import { widthRule } from '../core/rules/width.ts';
 import { creases } from './creases.ts';
-import { HeldDrawings, type LoadFlat } from './held-drawings.ts';
+import { boxOf, HeldDrawings, type LoadFlat, type Reading } from './held-drawings.ts';
 import { HeldPaths, type Hold } from './held-paths.ts';
 import {
   type CopperPicture,
@@ -117,6 +117,20 @@ export function createSession(flat: LoadFlat = noFlat) {
 
     /** Hands over every drawing that the document may name, in place of those before. */
     holdDrawings: (a: { files: readonly NamedFile[] }) => drawings.hold(a.files),
+
+    /**
+     * A drawing that no drape names yet, read as a drape would have it read.
+     * @throws InputError of the reader
+     */
+    async lookAtDrawing(
+      a: { bytes: Uint8Array; how: Reading },
+      ctx: RunContext,
+    ): Promise<{ box: [Vec2, Vec2] | null; shapes: number }> {
+      const alone = new HeldDrawings(flat);
+      await alone.hold([{ file: a.how.drawing, bytes: a.bytes }]);
+      const { drawing } = alone.read(a.how, '', '', ctx);
+      return { box: boxOf(drawing), shapes: drawing.shapes.length };
+    },
 
     /**
      * Reads the project as a file would be read and lays its copper. Elements that did not change are not laid again;
@@ -234,6 +248,14 @@ export function createSession(flat: LoadFlat = noFlat) {
       ctx: RunContext,
     ): Promise<ExportResult> {
       const { project: p, unknown } = readProject(a.projectText, a.projectFile);
+      if (p.netlist !== undefined)
+        throw new InputError({
+          code: 'not-yet',
+          file: a.projectFile,
+          place: '$.netlist',
+          problem: 'the window does not compare netlists',
+          mend: 'run the job from the command line, or leave the field out',
+        });
       const others = drawings.of(p, a.projectFile);
       const pool = createPool(1, tasks, () => {
         throw new Fault('one thread needs no other');

@@ -173,7 +173,7 @@ describe('the desk', () => {
 
   test('a project is opened with its part; the page sees no path of it but the folder of recent files', async () => {
     answers.open = join(dir, 'job.drape.json');
-    const opened = await value<OpenedProject>({ ask: 'open' });
+    const opened = await value<OpenedProject>({ ask: 'open', what: 'document' });
     expect(opened.name).toBe('job.drape.json');
     expect(opened.part?.file).toBe('parts/a.stl');
     expect(new TextDecoder().decode(opened.part?.bytes)).toBe('solid');
@@ -186,7 +186,7 @@ describe('the desk', () => {
   test('a project that names something else than an .stl as its part gets nothing of it', async () => {
     writeFileSync(join(dir, 'evil.drape.json'), JSON.stringify({ part: { file: '/etc/passwd' } }));
     answers.open = join(dir, 'evil.drape.json');
-    const opened = await value<OpenedProject>({ ask: 'open' });
+    const opened = await value<OpenedProject>({ ask: 'open', what: 'document' });
     expect(opened.part).toBeNull();
     expect(opened.partProblem).toContain('not an .stl');
   });
@@ -204,7 +204,7 @@ describe('the desk', () => {
 
   test('saved in another folder, the project is told how it must name its part', async () => {
     answers.open = join(dir, 'job.drape.json');
-    const opened = await value<OpenedProject>({ ask: 'open' });
+    const opened = await value<OpenedProject>({ ask: 'open', what: 'document' });
     mkdirSync(join(dir, 'jobs', 'today'), { recursive: true });
     answers.place = join(dir, 'jobs', 'today', 'x');
     const place = await value<Place>({
@@ -335,7 +335,7 @@ describe('drawings on the desk', () => {
   });
 
   test('those that the project names come along, each once; a missing one says why, and what is none is not read', async () => {
-    const { drawings } = await value<OpenedProject>({ ask: 'open' });
+    const { drawings } = await value<OpenedProject>({ ask: 'open', what: 'document' });
     expect(drawings.map((d) => [d.file, d.bytes && new TextDecoder().decode(d.bytes), d.problem])).toEqual([
       ['art/ring.svg', '<svg/>', undefined],
       ['gone.gbr', null, expect.stringMatching(/gone\.gbr: it is not there$/)],
@@ -344,7 +344,7 @@ describe('drawings on the desk', () => {
   });
 
   test('saved in another folder, they are named from there; one without a file gets a free name beside the project', async () => {
-    const { drawings } = await value<OpenedProject>({ ask: 'open' });
+    const { drawings } = await value<OpenedProject>({ ask: 'open', what: 'document' });
     const far = folder();
     writeFileSync(join(far, 'tail.gbr'), 'of somebody else');
     answers.place = join(far, 'x.drape.json');
@@ -380,7 +380,7 @@ describe('drawings on the desk', () => {
   });
 
   test('bytes of a drawing are not written over a project, a part or what was never placed', async () => {
-    const opened = await value<OpenedProject>({ ask: 'open' });
+    const opened = await value<OpenedProject>({ ask: 'open', what: 'document' });
     for (const ref of [opened.ref, opened.part!.ref, 'guess'])
       expect(
         await desk.answer({
@@ -403,7 +403,7 @@ describe('drawings on the desk', () => {
   });
 
   test('work that was lost brings back those with a file and those without', async () => {
-    const { drawings } = await value<OpenedProject>({ ask: 'open' });
+    const { drawings } = await value<OpenedProject>({ ask: 'open', what: 'document' });
     const entry = { name: 'job.drape.json', ref: null, text: '{}', partFile: 'a.stl', partRef: null };
     const kept = [
       { file: 'art/ring.svg', ref: drawings[0]!.ref, bytes: null },

@@ -10,6 +10,7 @@ import { comb } from './drawings.ts';
 import {
   choose,
   freshFolder,
+  menuLabel,
   type OpenWindow,
   openWindow,
   planned,
@@ -57,14 +58,98 @@ async function shot(name: string): Promise<void> {
   if (to) await w.page.screenshot({ path: join(to, `${name}.png`) });
 }
 
-describe('a project with a drawing', () => {
-  test('opens with its copper, in the pixels', async () => {
-    const seen = await tally(w.page);
-    expect(seen.copper).toBeGreaterThan(100);
-    expect(await w.page.locator('.notice').allTextContents()).toEqual([]);
-    await shot('open');
+/** Drops files on a place of the viewport, from its middle, as from a file manager. */
+async function drop(dx: number, dy: number, ...names: string[]): Promise<void> {
+  const box = (await w.page.getByTestId('view').boundingBox())!;
+  await w.page.evaluate(() => {
+    const input = document.createElement('input');
+    Object.assign(input, { type: 'file', id: 'drop-source', multiple: true });
+    document.body.append(input);
+  });
+  await w.page.locator('#drop-source').setInputFiles(names.map((n) => join(folder, n)));
+  await w.page.evaluate(
+    ([clientX, clientY]) => {
+      const input = document.querySelector<HTMLInputElement>('#drop-source')!;
+      const dataTransfer = new DataTransfer();
+      for (const f of input.files!) dataTransfer.items.add(f);
+      input.remove();
+      const init = { dataTransfer, bubbles: true, cancelable: true, clientX, clientY };
+      window.dispatchEvent(new DragEvent('drop', init));
+    },
+    [box.x + box.width / 2 + dx, box.y + box.height / 2 + dy] as const,
+  );
+}
+const saved = async (): Promise<Project> => {
+  await choose(w.app, 'save');
+  await w.page.waitForFunction(() => !document.querySelector('h1')?.textContent?.startsWith('•'));
+  await w.page.waitForTimeout(400);
+  return JSON.parse(readFileSync(file, 'utf8')) as Project;
+};
+
+test('a project with a drawing opens with its copper, in the pixels', async () => {
+  const seen = await tally(w.page);
+  expect(seen.copper).toBeGreaterThan(100);
+  await shot('open');
+});
+
+describe('a drawing dropped on the part', () => {
+  test('is laid where the pointer is, seen in the pixels, and named in the Edit menu', async () => {
+    await w.page.getByTestId('view').focus();
+    await w.page.keyboard.press('b');
+    await w.page.waitForTimeout(500);
+    const before = await tally(w.page);
+    writeFileSync(join(folder, 'ring.svg'), comb);
+    await drop(-90, 60, 'ring.svg');
+    await poll(() => menuLabel(w.app, 'undo')).toBe('Undo lay drawing ring.svg');
+    await poll(async () => (await tally(w.page)).copper).toBeGreaterThan(before.copper + 300);
+    await planned(w.page);
+    await shot('dropped');
+    const [, d2] = (await saved()).circuit.drapes;
+    expect(d2).toMatchObject({ id: 'd2', drawing: 'ring.svg', turn: 0 });
+    // The box of the comb with its line widths: u from 1 to 9, v from -4.3 to -0.5.
+    expect(d2!.origin).toEqual([5, -2.4]);
+    const [x, y, z] = d2!.anchor;
+    expect(x).toBeLessThan(-3);
+    expect(y).toBeLessThan(-2);
+    expect(Math.abs(z - domeHeight(x, y))).toBeLessThan(0.05);
   });
 
+  test('undone, its copper is gone; redone, it is there again', async () => {
+    const there = await tally(w.page);
+    await choose(w.app, 'undo');
+    await planned(w.page);
+    await poll(async () => (await tally(w.page)).copper).toBeLessThan(there.copper - 300);
+    await choose(w.app, 'redo');
+    await poll(async () => (await tally(w.page)).copper).toBeGreaterThan(there.copper - 60);
+    await planned(w.page);
+  });
+
+  test('that cannot be read gets the words of its reader, and nothing changes', async () => {
+    const before = await menuLabel(w.app, 'undo');
+    writeFileSync(join(folder, 'bad.svg'), '<svg xmlns="http://www.w3.org/2000/svg" width="8mm"><path');
+    await drop(0, 0, 'bad.svg');
+    await poll(() => w.page.locator('.notice.problem').allTextContents()).toContainEqual(
+      expect.stringMatching(/^bad\.svg/),
+    );
+    expect(await menuLabel(w.app, 'undo')).toBe(before);
+    await w.page.locator('.notice button').first().click();
+  });
+
+  test('without a unit is asked for one', async () => {
+    writeFileSync(
+      join(folder, 'bare.gbr'),
+      '%FSLAX24Y24*%\n%ADD10C,0.8*%\nD10*\nX0Y0D02*\nX30000Y0D01*\nM02*\n',
+    );
+    await drop(60, 60, 'bare.gbr');
+    await w.page.getByRole('button', { name: 'millimetre' }).click();
+    await poll(() => menuLabel(w.app, 'undo')).toBe('Undo lay drawing bare.gbr');
+    await planned(w.page);
+    await choose(w.app, 'undo');
+    await planned(w.page);
+  });
+});
+
+describe('a project with a drawing', () => {
   test('writes the files of the command line, byte for byte, with the drawing among them', async () => {
     await stubDialogs(w.app, { open: folder });
     await choose(w.app, 'export');
@@ -80,7 +165,7 @@ describe('a project with a drawing', () => {
     const ours = filesIn(join(folder, 'lumpy-dome-scan'));
     const theirs = filesIn(join(folder, 'cli'));
     expect([...ours.keys()]).toEqual([...theirs.keys()]);
-    expect(ours.get('source/comb.svg')!.toString()).toBe(comb);
+    for (const own of ['source/comb.svg', 'source/ring.svg']) expect(ours.get(own)!.toString()).toBe(comb);
     for (const [name, bytes] of ours) expect(bytes.equals(theirs.get(name)!), name).toBe(true);
   }, 240_000);
 

@@ -36,6 +36,23 @@ describe('acts', () => {
     [{ kind: 'remove-point', id: 't3', index: 1 }, 'remove point 2 of t3'],
     [{ kind: 'move-pad', id: 'p1', at: [0, 0, 5] }, 'move pad p1'],
     [{ kind: 'edit-element', id: 't1', what: 'width', change: { width: 2 } }, 'change width of t1'],
+    [
+      {
+        kind: 'add-drape',
+        drape: {
+          id: 'd1',
+          drawing: 'art/ring.svg',
+          anchor: [1, 2, 3],
+          origin: [0, 0],
+          turn: 0,
+          mirror: false,
+          evenLengths: true,
+          drawingLayers: {},
+          nets: {},
+        },
+      },
+      'lay drawing ring.svg',
+    ],
     [{ kind: 'set', path: ['head', 'pivot', 1], what: 'pivot along Y', value: null }, 'change pivot along Y'],
   ];
 

@@ -1,4 +1,5 @@
 import { beforeEach, describe, expect, test } from 'vitest';
+import type { Vec3 } from '../../src/core/base/vec.ts';
 import { writeProject } from '../../src/core/project/read.ts';
 import type { Project } from '../../src/core/project/schema.ts';
 import { current } from '../../src/store/state.ts';
@@ -43,6 +44,80 @@ const theComb = (text = comb): OpenedDrawing => ({ file: 'art/comb.svg', ref: 'r
 beforeEach(() => {
   heavy = fakeWorker();
   store = createStore({ heavy: heavy.client, live: fakeWorker().client });
+});
+
+describe('laying a drawing', () => {
+  const down = (x: number, y: number) => ({ origin: [x, y, 100] as Vec3, direction: [0, 0, -1] as Vec3 });
+  beforeEach(async () => {
+    await open({ ...domeProject(), circuit: { elements: [], drapes: [] } }, []);
+  });
+
+  test('puts the middle of its box on the first ray that meets the part, as one act with its name', async () => {
+    const files = [{ file: 'ring.svg', ref: null, bytes: bytes(comb) }];
+    expect(await store.layDrawings(files, [down(50, 50), down(-3, 6)])).toBe('laid');
+    const [d1] = s().project!.circuit.drapes;
+    expect(d1).toMatchObject({ id: 'd1', drawing: 'ring.svg', origin: [5, -2.4] });
+    expect(d1!.anchor[0]).toBeCloseTo(-3, 3);
+    expect(s().history.past.map((h) => h.name)).toEqual(['lay drawing ring.svg']);
+    expect(s().selection).toEqual(['d1']);
+    await store.settled();
+    expect(s().copper!.value.elements).toHaveLength(3);
+    store.undo();
+    expect(s().project!.circuit.drapes).toEqual([]);
+    expect(s().selection).toEqual([]);
+    store.redo();
+    await store.settled();
+    expect(s().copper!.value.elements).toHaveLength(3);
+  });
+
+  test('other bytes under the same name get a name of their own; the same bytes share one', async () => {
+    const lay = (text: string) =>
+      store.layDrawings([{ file: 'ring.svg', ref: null, bytes: bytes(text) }], [down(0, 0)]);
+    await lay(comb);
+    await lay(comb.replace('0.6', '0.7'));
+    await lay(comb);
+    expect(s().project!.circuit.drapes.map((d) => [d.id, d.drawing])).toEqual([
+      ['d1', 'ring.svg'],
+      ['d2', 'ring-2.svg'],
+      ['d3', 'ring.svg'],
+    ]);
+  });
+
+  test('files that come together share anchor and origin and are undone together', async () => {
+    const left = comb.replace('<rect id="pad" x="7"', '<rect id="pad" x="0"');
+    await store.layDrawings(
+      [
+        { file: 'a.svg', ref: null, bytes: bytes(comb.replace('H9', 'H6')) },
+        { file: 'b.svg', ref: null, bytes: bytes(left) },
+      ],
+      [down(2, 3)],
+    );
+    const [a, b] = s().project!.circuit.drapes;
+    expect(b!.origin).toEqual(a!.origin);
+    expect(b!.anchor).toEqual(a!.anchor);
+    // From 0, the left of the pad, to 9.3, half a line's width past the end of the spine.
+    expect(a!.origin[0]).toBe(4.65);
+    store.undo();
+    expect(s().project!.circuit.drapes).toEqual([]);
+  });
+
+  test('a bad drawing, none at all, no surface and no unit change nothing, each with its own news', async () => {
+    const lay = (file: string, text: string, ...rays: ReturnType<typeof down>[]) =>
+      store.layDrawings([{ file, ref: null, bytes: bytes(text) }], rays);
+    expect(await lay('bad.svg', '<svg', down(0, 0))).toBe('not');
+    expect(s().notices.at(-1)!.text).toMatch(/^bad\.svg/);
+    expect(await lay('a.svg', '<svg xmlns="http://www.w3.org/2000/svg" width="1mm" height="1mm"/>')).toBe(
+      'not',
+    );
+    expect(s().notices.at(-1)!.text).toMatch(/holds nothing/);
+    expect(await lay('ring.svg', comb, down(50, 0))).toBe('not');
+    expect(s().notices.at(-1)!.text).toMatch(/no surface/);
+    const gerber = '%FSLAX24Y24*%\n%ADD10C,0.8*%\nD10*\nX0Y0D02*\nX30000Y0D01*\nM02*\n';
+    const before = s().notices;
+    expect(await lay('tail.gbr', gerber, down(0, 0))).toBe('no-units');
+    expect(s().notices).toBe(before);
+    expect(s().history.past).toEqual([]);
+  });
 });
 
 describe('a project with drapes', () => {

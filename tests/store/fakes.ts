@@ -3,8 +3,8 @@ import { Cancelled, InputError } from '../../src/core/base/news.ts';
 import type { RunContext } from '../../src/core/base/run-context.ts';
 import { type Port, type WorkerClient, workerClient } from '../../src/worker/client.ts';
 import { createSession, type Session } from '../../src/worker/session.ts';
-import { flatForTests } from '../core/helpers/flat.ts';
 import type { FromWorker, ToWorker } from '../../src/worker/wire.ts';
+import { flatForTests } from '../core/helpers/flat.ts';
 
 export interface FakeWorker {
   client: WorkerClient;

@@ -13,6 +13,7 @@ import {
   type LostWork,
   type Opened,
   type OpenedProject,
+  type OpenWhat,
   type PartFile,
   type Place,
   type PlacedDrawing,
@@ -25,11 +26,11 @@ import { putFolder, readWhole, saveWhole } from './files.ts';
 
 export interface Dialogs {
   /** Path to open, or null. `named` is what a page without dialogs of its own already asked for. */
-  open(named?: string): Promise<string | null>;
+  open(what: OpenWhat, named?: string): Promise<string | null>;
   place(suggested: string, named?: string): Promise<string | null>;
   folder(named?: string): Promise<string | null>;
   /** Files that may be opened by name: only where the page asks itself. */
-  list(): Promise<string[]>;
+  list(what: OpenWhat): Promise<string[]>;
 }
 
 export interface Frame {
@@ -43,6 +44,8 @@ export interface Desk {
   answer(raw: unknown): Promise<Reply>;
   /** Opens a path that the person gave outside the page: a drop, the command line, a double click. */
   openPath(path: string): Promise<Opened>;
+  /** Of several: the first project, else the first part, else all of them as drawings. */
+  openPaths(paths: readonly string[]): Promise<Opened | null>;
 }
 
 interface Settings {
@@ -100,11 +103,7 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
       const bytes = await readWhole(path);
       return { kind: 'part', name: basename(path), part: { file: basename(path), ref: refOf(path), bytes } };
     }
-    if (!/\.json$/i.test(path))
-      throw new HostError({
-        problem: `${basename(path)} is neither a part nor a project`,
-        mend: 'open an .stl or a .drape.json file',
-      });
+    if (!/\.json$/i.test(path)) return openDrawings([path]);
     const text = new TextDecoder().decode(await readWhole(path));
     await remember(path);
     return {
@@ -117,6 +116,27 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
         drawingFilesIn(text).map((file) => drawingOf(file, resolve(dirname(path), file))),
       ),
     };
+  }
+
+  async function openDrawings(paths: readonly string[]): Promise<Opened> {
+    const other = paths.find((p) => !isDrawingName(p));
+    if (other !== undefined)
+      throw new HostError({
+        problem: `${basename(other)} is neither a part nor a project nor a drawing`,
+        mend: 'open an .stl, a .drape.json, or an SVG, DXF, Gerber or drill file',
+      });
+    return {
+      kind: 'drawings',
+      drawings: await Promise.all(
+        paths.map(async (p) => ({ file: basename(p), ref: refOf(resolve(p)), bytes: await readWhole(p) })),
+      ),
+    };
+  }
+
+  async function openPaths(paths: readonly string[]): Promise<Opened | null> {
+    const first = paths.find((p) => /\.json$/i.test(p)) ?? paths.find((p) => /\.stl$/i.test(p));
+    if (first !== undefined) return openPath(first);
+    return paths.length === 0 ? null : openDrawings(paths);
   }
 
   /** The part that a project names. What is wrong with the project itself is for its reader to say. */
@@ -271,11 +291,11 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
         return news;
       }
       case 'open': {
-        const path = await dialogs.open(r.named);
+        const path = await dialogs.open(r.what, r.named);
         return path === null ? null : openPath(path);
       }
       case 'list':
-        return dialogs.list();
+        return dialogs.list(r.what);
       case 'open-recent':
         return openPath(pathOf(r.ref));
       case 'recover':
@@ -350,6 +370,7 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
 
   return {
     openPath,
+    openPaths,
     async answer(raw) {
       const request = requestSchema.safeParse(raw);
       if (!request.success)

@@ -4,7 +4,7 @@ import { readdir } from 'node:fs/promises';
 import { createServer, type IncomingMessage, type ServerResponse } from 'node:http';
 import type { AddressInfo } from 'node:net';
 import { join } from 'node:path';
-import { HostError } from '../host.ts';
+import { HostError, isDrawingName } from '../host.ts';
 import { pack, unpack } from '../wire.ts';
 import { createDesk, type Dialogs } from './desk.ts';
 import { HEADERS, pageAt } from './pages.ts';
@@ -130,9 +130,12 @@ function dialogsIn(folder: string): Dialogs {
     return join(folder, named);
   };
   return {
-    open: async (named) => inFolder(named),
+    open: async (_what, named) => inFolder(named),
     place: async (_suggested, named) => inFolder(named),
     folder: async () => folder,
-    list: async () => (await readdir(folder)).filter((f) => /\.(stl|drape\.json)$/i.test(f)).sort(),
+    list: async (what) =>
+      (await readdir(folder))
+        .filter((f) => (what === 'drawing' ? isDrawingName(f) : /\.(stl|drape\.json)$/i.test(f)))
+        .sort(),
   };
 }

@@ -36,9 +36,9 @@ export function browserHost(person: AskPerson): Host {
   return {
     ...common(ask),
     kind: 'browser',
-    async open() {
-      const named = await person.file(await ask<string[]>({ ask: 'list' }));
-      return named === null ? null : ask<Opened>({ ask: 'open', named });
+    async open(what) {
+      const named = await person.file(await ask<string[]>({ ask: 'list', what }));
+      return named === null ? null : ask<Opened>({ ask: 'open', what, named });
     },
     openDropped,
     async choosePlace(suggested, partRef, partName) {

@@ -15,7 +15,7 @@ export function desktopHost(preload: Preload): Host {
   return {
     ...common(ask),
     kind: 'desktop',
-    open: () => ask({ ask: 'open' }),
+    open: (what) => ask({ ask: 'open', what }),
     openDropped: async (files) =>
       taken<Opened | null>(await preload.dropped([...files])) ?? openDropped(files),
     choosePlace: (suggested, partRef, partName) => ask({ ask: 'choose-place', suggested, partRef, partName }),

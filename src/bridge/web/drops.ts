@@ -38,10 +38,18 @@ export async function openDropped(files: readonly File[]): Promise<Opened | null
       name: part.name,
       part: { file: part.name, ref: null, bytes: await bytesOf(part) },
     };
-  if (files.length > 0)
+  const other = files.find((f) => !isDrawingName(f.name));
+  if (other)
     throw new HostError({
-      problem: `${files[0]!.name} is neither a part nor a project`,
-      mend: 'drop an .stl or a .drape.json file',
+      problem: `${other.name} is neither a part nor a project nor a drawing`,
+      mend: 'drop an .stl, a .drape.json, or an SVG, DXF, Gerber or drill file',
     });
-  return null;
+  return files.length === 0
+    ? null
+    : {
+        kind: 'drawings',
+        drawings: await Promise.all(
+          files.map(async (f) => ({ file: f.name, ref: null, bytes: await bytesOf(f) })),
+        ),
+      };
 }
