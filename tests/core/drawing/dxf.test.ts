@@ -149,6 +149,9 @@ describe('regions', () => {
     const d = read(hatch(0, ...nested));
     expect(d.shapes.map((_s, i) => Math.round(area(d, i) * 1e6) / 1e6)).toEqual([30, 6]);
     expect(area(read(hatch(2, ...nested)))).toBeCloseTo(70, 6);
+    // Boundaries run either way round: this one to the right.
+    expect(area(read(hatch(2, box(0, 0, 10, 7), box(9, 1, -8, 5))))).toBeCloseTo(70, 6);
+    expect(area(read(hatch(0, box(0, 0, 10, 7), box(9, 1, -8, 5))))).toBeCloseTo(30, 6);
     expect(codes(d)).toEqual([]);
     // A bulge of 1 is half a circle outwards, since the boundary runs left round.
     const round = area(read(hatch(0, box(0, 0, 10, 7, 1))));
@@ -170,6 +173,15 @@ describe('regions', () => {
     // The other way round: angles count to the right, from −270° to −90° … it bites into the box.
     const bite = found([72, 2, 10, 0, 20, 2, 40, 2, 50, 270, 51, 450, 73, 0]);
     expect(Math.abs(bite - (plain - 2 * Math.PI))).toBeLessThan(2 * off);
+    // A quarter bitten out of the corner (0, 4), from (2, 4) right round to (0, 2).
+    const corner = read(
+      hatch(0, [
+        ...[92, 1, 93, 5, 72, 1, 10, 0, 20, 0, 11, 10, 21, 0, 72, 1, 10, 10, 20, 0, 11, 10, 21, 4],
+        ...[72, 1, 10, 10, 20, 4, 11, 2, 21, 4, 72, 2, 10, 0, 20, 4, 40, 2, 50, 0, 51, 90, 73, 0],
+        ...[72, 1, 10, 0, 20, 2, 11, 0, 21, 0, 97, 0],
+      ]),
+    );
+    expect(Math.abs(area(corner) - (40 - Math.PI))).toBeLessThan(off);
     const ellipse = found([72, 3, 10, 0, 20, 2, 11, 0, 21, 2, 40, 0.5, 50, 0, 51, 180, 73, 1]);
     expect(Math.abs(ellipse - (plain + Math.PI))).toBeLessThan(2 * off);
     const spline = found([

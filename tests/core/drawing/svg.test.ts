@@ -78,6 +78,14 @@ describe('names', () => {
   });
 });
 
+it('shares are of the page’s width, its height, or its diagonal over √2', () => {
+  const d = read(
+    page('<rect width="50%" height="25%"/><path d="M0,0H9" fill="none" stroke="red" stroke-width="1%"/>'),
+  );
+  expect(flat.area((d.shapes[0].figure as Area).rings)).toBeCloseTo(50 * 20, 9);
+  expect(width(d, 1)).toBeCloseTo(Math.hypot(100, 80) / Math.SQRT2 / 100, 12);
+});
+
 describe('paint', () => {
   const line = (more: string): string => `<path d="M0,0 L9,2" fill="none" ${more}/>`;
 
@@ -263,6 +271,10 @@ describe('hostile and broken files', () => {
     expect(refused(page(`<polygon points="${scribble(9000).join(' ')}"/>`))).toEqual([
       'too-tangled @ line 1, polygon',
     ]);
+    const comb = Float64Array.from({ length: 200_000 }, (_, k) =>
+      k % 2 === 0 ? k / 2000 : ((k >> 1) % 2) * 50,
+    );
+    expect(() => tangle().check([comb])).toThrow(expect.objectContaining({ code: 'too-tangled' }));
     const budget = tangle();
     const one = Float64Array.from(scribble(1000));
     budget.check([one]);
