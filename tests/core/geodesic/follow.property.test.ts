@@ -118,3 +118,33 @@ describe.each(parts)('paths that follow far jumps on %s', (_, mesh) => {
     expect(kept / held).toBeGreaterThan(0.85);
   });
 });
+
+describe('two ways of one length', () => {
+  it('the one that is held gets a pin, and is laid on its side then', () => {
+    // A plate with a square hole in its middle; the ends opposite each other, as far from one side as from the other.
+    const corners: number[] = [];
+    for (let j = 0; j < 5; j++)
+      for (let i = 0; i < 5; i++)
+        if (i !== 2 || j !== 2)
+          corners.push(i, j, 0, i + 1, j, 0, i + 1, j + 1, 0, i, j, 0, i + 1, j + 1, 0, i, j + 1, 0);
+    const mesh = meshFrom(corners);
+    const solver = new WindowSolver(mesh);
+    const at = (x: number, y: number): SurfacePoint => {
+      const cell = Math.floor(y) * 5 + Math.floor(x) - (Math.floor(y) * 5 + Math.floor(x) > 12 ? 1 : 0);
+      const [u, v] = [x - Math.floor(x), y - Math.floor(y)];
+      return u >= v
+        ? { face: 2 * cell, bary: [1 - u, u - v, v] }
+        : { face: 2 * cell + 1, bary: [1 - v, u, v - u] };
+    };
+    for (const side of [0.7, 4.3]) {
+      const first = shortestWith(solver, at(0.5, 2.5), at(2.5, side))!;
+      const held = followWith(solver, first, at(0.5, 2.5), at(4.5, 2.5))!;
+      expect(held.length).toBeCloseTo(2 * Math.hypot(1.5, 0.5) + 1, 9);
+      const pins = waypoints(solver, held);
+      expect(pins.length).toBeLessThanOrEqual(1);
+      const through = (pins[0]?.point ??
+        shortestWith(solver, at(0.5, 2.5), at(4.5, 2.5))!.points.subarray(3, 6))[1];
+      expect(through < 2.5).toBe(side < 2.5);
+    }
+  });
+});
