@@ -14,7 +14,7 @@ export function areasOf(chains: readonly Chain[], rule: Rule, flat: Flat, tangle
   if (rings.length === 1 && (isConvex(rings[0]) || isSimple(rings[0])))
     return [{ kind: 'area', rings: [turnedLeft(rings[0])] }];
   tangle.check(rings);
-  return pieces(flat.union(rings, rule)).map((one) => ({ kind: 'area', rings: one }));
+  return flat.split(flat.union(rings, rule)).map((one) => ({ kind: 'area', rings: one }));
 }
 
 /** One turn, all corners to one side: most pads are, and need no clipping. */
@@ -84,48 +84,6 @@ function turnedLeft(ring: Float64Array): Float64Array {
   const out = new Float64Array(ring.length);
   for (let i = 0, j = ring.length - 2; j >= 0; i += 2, j -= 2) [out[i], out[i + 1]] = [ring[j], ring[j + 1]];
   return out;
-}
-
-/**
- * Rings that do not cross, outlines left and holes right round, by outline: each hole belongs to the smallest outline
- * around it.
- */
-export function pieces(rings: readonly Float64Array[]): Float64Array[][] {
-  const known = rings.map((ring) => ({ ring, area: ringArea(ring), box: boxOf(ring) }));
-  const outlines = known.filter((r) => r.area > 0).map((r) => ({ ...r, holes: [] as Float64Array[] }));
-  if (outlines.length === 1) return [[...rings].sort((a, b) => ringArea(b) - ringArea(a))];
-  const bySize = [...outlines].sort((a, b) => a.area - b.area);
-  for (const hole of known) {
-    if (!(hole.area < 0)) continue;
-    const [x, y] = [(hole.ring[0] + hole.ring[2]) / 2, (hole.ring[1] + hole.ring[3]) / 2];
-    const around = bySize.find(
-      ({ ring, area, box }) =>
-        area > -hole.area && x >= box[0] && x <= box[2] && y >= box[1] && y <= box[3] && inside(ring, x, y),
-    );
-    around?.holes.push(hole.ring);
-  }
-  return outlines.map(({ ring, holes }) => [ring, ...holes]);
-}
-
-function boxOf(ring: Float64Array): [number, number, number, number] {
-  const box: [number, number, number, number] = [Infinity, Infinity, -Infinity, -Infinity];
-  for (let i = 0; i < ring.length; i += 2) {
-    box[0] = Math.min(box[0], ring[i]);
-    box[1] = Math.min(box[1], ring[i + 1]);
-    box[2] = Math.max(box[2], ring[i]);
-    box[3] = Math.max(box[3], ring[i + 1]);
-  }
-  return box;
-}
-
-/** Does a ray to the right meet the ring an odd number of times? */
-function inside(ring: Float64Array, x: number, y: number): boolean {
-  let odd = false;
-  for (let i = 0, j = ring.length - 2; i < ring.length; j = i, i += 2) {
-    if (ring[i + 1] > y === ring[j + 1] > y) continue;
-    if (x < ring[i] + ((y - ring[i + 1]) / (ring[j + 1] - ring[i + 1])) * (ring[j] - ring[i])) odd = !odd;
-  }
-  return odd;
 }
 
 /** Chains as lines of one width. A chain of one point is a dot where ends are round or square, and nothing where they are butt. */
