@@ -11,7 +11,7 @@ import type { Vec3 } from '../base/vec.ts';
 import { logMap } from '../geodesic/log-map.ts';
 import type { MapLimit } from '../geodesic/map-limits.ts';
 import type { WindowSolver } from '../geodesic/windows.ts';
-import { faceNormal, positionOf } from '../mesh/surface-point.ts';
+import { faceNormal, positionOf, weightsIn } from '../mesh/surface-point.ts';
 import { boxBound, heldDistance } from './box-bound.ts';
 import { drawingU } from './pad.ts';
 import { refine } from './refine.ts';
@@ -165,25 +165,8 @@ function holder(patch: MapPatch, list: readonly number[], p: Vec3): number {
 }
 
 /** Weights of a triangle's corners at the foot of p in its plane. */
-function weights({ positions: x, triangles }: MapPatch, t: number, p: Vec3): Vec3 {
-  const [a, b, c] = [3 * triangles[3 * t], 3 * triangles[3 * t + 1], 3 * triangles[3 * t + 2]];
-  const ux = x[b] - x[a],
-    uy = x[b + 1] - x[a + 1],
-    uz = x[b + 2] - x[a + 2];
-  const vx = x[c] - x[a],
-    vy = x[c + 1] - x[a + 1],
-    vz = x[c + 2] - x[a + 2];
-  const px = p[0] - x[a],
-    py = p[1] - x[a + 1],
-    pz = p[2] - x[a + 2];
-  const nx = uy * vz - uz * vy,
-    ny = uz * vx - ux * vz,
-    nz = ux * vy - uy * vx;
-  const nn = nx * nx + ny * ny + nz * nz;
-  const s = ((py * vz - pz * vy) * nx + (pz * vx - px * vz) * ny + (px * vy - py * vx) * nz) / nn;
-  const r = ((uy * pz - uz * py) * nx + (uz * px - ux * pz) * ny + (ux * py - uy * px) * nz) / nn;
-  return [1 - s - r, s, r];
-}
+const weights = ({ positions, triangles }: MapPatch, t: number, p: Vec3): Vec3 =>
+  weightsIn(positions, triangles, t, p);
 
 interface FaceCells {
   around(p: Vec3): readonly number[];

@@ -9,6 +9,7 @@ import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
 import { type GeodesicPath, gatherPath } from './geodesic-path.ts';
 import { fillRing } from './ring.ts';
 import { cornerAt } from './roots.ts';
+import { toPlace, toVertex } from './vertex-lengths.ts';
 import { KeyHeap } from './window-store.ts';
 
 export interface EdgeWay {
@@ -101,19 +102,11 @@ export class EdgeWays {
   }
 
   private apart(v: number, p: Vec3): number {
-    const x = this.mesh.positions;
-    const dx = x[3 * v] - p[0],
-      dy = x[3 * v + 1] - p[1],
-      dz = x[3 * v + 2] - p[2];
-    return Math.sqrt(dx * dx + dy * dy + dz * dz);
+    return toPlace(this.mesh.positions, v, p);
   }
 
   private edge(v: number, w: number): number {
-    const x = this.mesh.positions;
-    const dx = x[3 * v] - x[3 * w],
-      dy = x[3 * v + 1] - x[3 * w + 1],
-      dz = x[3 * v + 2] - x[3 * w + 2];
-    return Math.sqrt(dx * dx + dy * dy + dz * dz);
+    return toVertex(this.mesh.positions, v, w);
   }
 }
 

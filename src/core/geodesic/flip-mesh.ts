@@ -12,6 +12,7 @@ import { faceOf, next, type SurfaceMesh } from '../mesh/surface-mesh.ts';
 import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
 import { FaceGeometry } from './face-geometry.ts';
 import { ON_EDGE } from './roots.ts';
+import { toVertex } from './vertex-lengths.ts';
 
 /** `base` of half-edges that start at an inserted point. */
 export const AT_POINT = -3;
@@ -131,7 +132,7 @@ export class FlipMesh {
     const k1 = this.next[k0];
     const k2 = this.next[k1];
     const sides = [k0, k1, k2];
-    const far = sides.map((k) => this.toVertex(at, this.tail[k]));
+    const far = sides.map((k) => this.toPoint(at, this.tail[k]));
     const out: number[] = [];
     const back: number[] = [];
     // Directions at the point, counted from half-edge k0 of the face.
@@ -156,8 +157,8 @@ export class FlipMesh {
   private splitEdge(v: number, k: number, at: SurfacePoint): number {
     const t = this.twin(k);
     const [a, b] = [this.tail[k], this.tail[t]];
-    const toA = this.toVertex(at, a);
-    const toB = this.toVertex(at, b);
+    const toA = this.toPoint(at, a);
+    const toB = this.toPoint(at, b);
     const onward = this.push(v, toB, AT_POINT, 0);
     const home = this.push(v, toA, AT_POINT, Math.PI);
     this.splitSide(v, k, onward, at, 0);
@@ -176,9 +177,9 @@ export class FlipMesh {
     const n = this.next[k];
     const p = this.next[n];
     const far = this.tail[p];
-    const cut = this.toVertex(at, far);
+    const cut = this.toPoint(at, far);
     const out = this.push(v, cut, AT_POINT, zero + angle(this.length[rest], cut, this.length[n]));
-    const atFar = angle(this.length[p], cut, this.toVertex(at, this.tail[k]));
+    const atFar = angle(this.length[p], cut, this.toPoint(at, this.tail[k]));
     const back = this.push(far, cut, this.base[p], this.turn[p] + atFar);
     this.pair(out, back);
     this.link(k, out, p);
@@ -251,16 +252,11 @@ export class FlipMesh {
   }
 
   private edge(h: number): number {
-    const { positions: x, triangles: t } = this.mesh;
-    const a = 3 * t[h];
-    const b = 3 * t[next(h)];
-    const dx = x[a] - x[b],
-      dy = x[a + 1] - x[b + 1],
-      dz = x[a + 2] - x[b + 2];
-    return Math.sqrt(dx * dx + dy * dy + dz * dz);
+    const { positions, triangles: t } = this.mesh;
+    return toVertex(positions, t[h], t[next(h)]);
   }
 
-  private toVertex(at: SurfacePoint, v: number): number {
+  private toPoint(at: SurfacePoint, v: number): number {
     const p = positionOf(this.mesh, at);
     const x = this.mesh.positions;
     return Math.hypot(x[3 * v] - p[0], x[3 * v + 1] - p[1], x[3 * v + 2] - p[2]);

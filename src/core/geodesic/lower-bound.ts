@@ -13,6 +13,7 @@ import type { Vec3 } from '../base/vec.ts';
 import { next, previous, type SurfaceMesh } from '../mesh/surface-mesh.ts';
 import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
 import { fillRing } from './ring.ts';
+import { toPlace, toVertex } from './vertex-lengths.ts';
 import { KeyHeap } from './window-store.ts';
 
 /** Belts of distance to a path's length at most, each about an edge wide; as many again lie beyond it. */
@@ -258,19 +259,11 @@ export class LowerBound {
   }
 
   private apart(v: number, p: Vec3): number {
-    const x = this.mesh.positions;
-    const dx = x[3 * v] - p[0],
-      dy = x[3 * v + 1] - p[1],
-      dz = x[3 * v + 2] - p[2];
-    return Math.sqrt(dx * dx + dy * dy + dz * dz);
+    return toPlace(this.mesh.positions, v, p);
   }
 
   private edge(v: number, w: number): number {
-    const x = this.mesh.positions;
-    const dx = x[3 * v] - x[3 * w],
-      dy = x[3 * v + 1] - x[3 * w + 1],
-      dz = x[3 * v + 2] - x[3 * w + 2];
-    return Math.sqrt(dx * dx + dy * dy + dz * dz);
+    return toVertex(this.mesh.positions, v, w);
   }
 }
 

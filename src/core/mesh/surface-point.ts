@@ -20,9 +20,12 @@ export function positionOf(mesh: SurfaceMesh, p: SurfacePoint): Vec3 {
 }
 
 /** Weights of `p` in face `f`, as of its foot in the face's plane; not clamped. */
-export function barycentric(mesh: SurfaceMesh, face: number, p: Vec3): Vec3 {
-  const { positions: x, triangles: t } = mesh;
-  const [a, b, c] = [3 * t[3 * face], 3 * t[3 * face + 1], 3 * t[3 * face + 2]];
+export const barycentric = (mesh: SurfaceMesh, face: number, p: Vec3): Vec3 =>
+  weightsIn(mesh.positions, mesh.triangles, face, p);
+
+/** The same in triangle number `t` of any list. @param x  3 a vertex. @param triangles  3 a triangle */
+export function weightsIn(x: Float64Array, triangles: Uint32Array, t: number, p: Vec3): Vec3 {
+  const [a, b, c] = [3 * triangles[3 * t], 3 * triangles[3 * t + 1], 3 * triangles[3 * t + 2]];
   const ux = x[b] - x[a],
     uy = x[b + 1] - x[a + 1],
     uz = x[b + 2] - x[a + 2];
