@@ -14,7 +14,12 @@ export function areasOf(chains: readonly Chain[], rule: Rule, flat: Flat, tangle
   if (rings.length === 1 && (isConvex(rings[0]) || isSimple(rings[0])))
     return [{ kind: 'area', rings: [turnedLeft(rings[0])] }];
   tangle.check(rings);
-  return flat.split(flat.union(rings, rule)).map((one) => ({ kind: 'area', rings: one }));
+  const whole = flat.union(rings, rule);
+  const outlines = whole.filter((r) => ringArea(r) > 0);
+  // Most figures have one outline: then all else is its holes.
+  const one =
+    outlines.length === 1 ? [[outlines[0], ...whole.filter((r) => r !== outlines[0])]] : flat.split(whole);
+  return one.map((of) => ({ kind: 'area', rings: of }));
 }
 
 /** One turn, all corners to one side: most pads are, and need no clipping. */

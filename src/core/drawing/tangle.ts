@@ -3,7 +3,7 @@ import { randomFrom } from '../base/random.ts';
 import { BadShape } from './findings.ts';
 
 /** Sides of one figure: a sweep over more takes seconds, however plain they lie. */
-const MOST_SIDES = 500_000;
+const MOST_SIDES = 250_000;
 /** Sides up to which a sweep is over in a moment, whatever lies abreast. */
 const FEW = 2000;
 /** Sides up to which nobody looks. */
@@ -12,8 +12,8 @@ const NONE = 16;
 const SAMPLE = 20;
 const MOST_SAMPLE = 400_000;
 /** Crossings in a drawing, and sides that a line sweeping up meets at all its stops together: each some three seconds. */
-const MOST_CROSSINGS = 5e5;
-const MOST_SWEPT = 6e7;
+const MOST_CROSSINGS = 4e5;
+const MOST_SWEPT = 1e7;
 
 /** Figures that need clipping: each takes a moment, however small. */
 const MOST_FIGURES = 30_000;
