@@ -89,8 +89,11 @@ export function commandList(store: Store, documents: Documents, view: () => View
       menu: 'Edit',
       label: () => 'Select all',
       keys: 'Mod+A',
-      enabled: (s) => (s.project?.circuit.elements.length ?? 0) > 0,
-      run: () => store.select(store.getState().project?.circuit.elements.map((e) => e.id) ?? []),
+      enabled: (s) => s.project !== null && hasCircuit(s.project),
+      run() {
+        const circuit = store.getState().project?.circuit;
+        store.select([...(circuit?.elements ?? []), ...(circuit?.drapes ?? [])].map((e) => e.id));
+      },
     },
     {
       id: 'tool-look',

@@ -1,10 +1,13 @@
 /** Facts about what is selected: numbers, margins with bars, and the edits that belong to it. */
 import { useMemo } from 'react';
 import type { Element } from '../core/project/schema.ts';
-import { type Margin, marginsOf, placeOf } from '../store/margins.ts';
+import { selectedDrape } from '../store/drapes.ts';
+import { marginsOf, placeOf } from '../store/margins.ts';
 import { current, type State } from '../store/state.ts';
 import { show } from '../store/units.ts';
-import { ChoiceField, Fact, NumberField, TextField } from './fields.tsx';
+import { DrapeFacts, DrawnFacts } from './drape-facts.tsx';
+import { ChoiceField, Fact, NumberField, PlaceField, TextField } from './fields.tsx';
+import { MarginRow } from './margin-row.tsx';
 import { useLook, useWindow } from './window.tsx';
 
 export function Facts() {
@@ -12,18 +15,25 @@ export function Facts() {
   const state = useLook((s) => s);
   const { project, selection } = state;
   const chosen = project?.circuit.elements.filter((e) => selection.includes(e.id)) ?? [];
+  const drape = selectedDrape(project, selection);
   return (
     <aside className="facts" aria-label="Facts">
       {!project ? (
         <p className="dim">Facts about what is selected appear here.</p>
-      ) : chosen.length === 0 ? (
+      ) : selection.length === 0 ? (
         <Everything state={state} />
-      ) : chosen.length === 1 ? (
-        <One element={chosen[0]!} state={state} />
+      ) : selection.length === 1 ? (
+        chosen.length === 1 ? (
+          <One element={chosen[0]!} state={state} />
+        ) : drape ? (
+          <DrapeFacts drape={drape} state={state} />
+        ) : (
+          <DrawnFacts id={selection[0]!} state={state} />
+        )
       ) : (
         <>
-          <h2>{chosen.length} elements</h2>
-          <p className="ids">{chosen.map((e) => e.id).join(', ')}</p>
+          <h2>{selection.length} elements</h2>
+          <p className="ids">{selection.join(', ')}</p>
           <p className="row">
             <button type="button" onClick={() => store.deleteSelected()}>
               Delete them
@@ -39,13 +49,15 @@ export function Facts() {
 function Everything({ state }: { state: State }) {
   const project = state.project!;
   const { copper, plan } = current(state);
-  const nets = new Set(project.circuit.elements.map((e) => e.net).filter(Boolean));
+  // Elements of drawings count once they are laid.
+  const elements = [...project.circuit.elements, ...(copper?.elements.filter((e) => e.drape !== null) ?? [])];
+  const nets = new Set(elements.map((e) => e.net).filter(Boolean));
   const length = copper?.elements.reduce((n, e) => n + (e.kind === 'trace' ? e.length : 0), 0) ?? 0;
   return (
     <>
       <h2>{project.name}</h2>
       <dl>
-        <Fact label="Elements">{project.circuit.elements.length}</Fact>
+        <Fact label="Elements">{elements.length}</Fact>
         <Fact label="Nets">{nets.size}</Fact>
         <Fact label="Trace length">{show(length, 1)} mm</Fact>
         <Fact label="Copper">
@@ -210,33 +222,8 @@ function PadFields({
         value={e.turn}
         onValue={(turn) => edit('turn', { turn })}
       />
-      <Place label="Place" at={e.at} onPlace={(at) => store.act({ kind: 'move-pad', id: e.id, at })} />
+      <PlaceField label="Place" at={e.at} onPlace={(at) => store.act({ kind: 'move-pad', id: e.id, at })} />
     </>
-  );
-}
-
-function Place({
-  label,
-  at,
-  onPlace,
-}: {
-  label: string;
-  at: readonly [number, number, number];
-  onPlace(at: [number, number, number]): void;
-}) {
-  return (
-    <div className="three">
-      {(['X', 'Y', 'Z'] as const).map((axis, k) => (
-        <NumberField
-          key={axis}
-          label={`${label} ${axis}`}
-          unit=""
-          quantity="length"
-          value={at[k]!}
-          onValue={(v) => onPlace(at.map((a, i) => (i === k ? v : a)) as [number, number, number])}
-        />
-      ))}
-    </div>
   );
 }
 
@@ -249,7 +236,7 @@ function Points({ e }: { e: Extract<Element, { kind: 'trace' | 'region' }> }) {
       {points.map((p, i) => (
         // biome-ignore lint/suspicious/noArrayIndexKey: a point is known by its place in the route
         <div key={i} className="point">
-          <Place
+          <PlaceField
             label={`${i + 1}`}
             at={p.at}
             onPlace={(at) => store.act({ kind: 'move-point', id: e.id, index: i, at })}
@@ -265,32 +252,6 @@ function Points({ e }: { e: Extract<Element, { kind: 'trace' | 'region' }> }) {
         </div>
       ))}
     </details>
-  );
-}
-
-function MarginRow({ margin: m, onShow }: { margin: Margin; onShow(): void }) {
-  const share = Math.max(0, Math.min(1, m.share));
-  return (
-    <div className={m.ok ? 'margin' : 'margin bad'}>
-      <span className="margin-head">
-        <span className="margin-name">
-          {m.ok ? '' : '✕ '}
-          {m.label}
-        </span>
-        <span className="margin-value">
-          {show(m.value, 2)}{' '}
-          <span className="dim">
-            of {show(m.limit, 2)} {m.unit}
-          </span>
-        </span>
-      </span>
-      <span className="bar" aria-hidden="true">
-        <span style={{ width: `${100 * share}%` }} />
-      </span>
-      <button type="button" onClick={onShow} aria-label={`Show me where: ${m.label}`}>
-        Show me
-      </button>
-    </div>
   );
 }
 

@@ -164,6 +164,32 @@ export function TickField({
   );
 }
 
+/** A place of the part, mm. */
+export function PlaceField({
+  label,
+  at,
+  onPlace,
+}: {
+  label: string;
+  at: readonly [number, number, number];
+  onPlace(at: [number, number, number]): void;
+}) {
+  return (
+    <div className="three">
+      {(['X', 'Y', 'Z'] as const).map((axis, k) => (
+        <NumberField
+          key={axis}
+          label={`${label} ${axis}`}
+          unit=""
+          quantity="length"
+          value={at[k]!}
+          onValue={(v) => onPlace(at.map((a, i) => (i === k ? v : a)) as [number, number, number])}
+        />
+      ))}
+    </div>
+  );
+}
+
 export function Fact({ label, children }: { label: string; children: ReactNode }) {
   return (
     <div className="fact">

@@ -1,4 +1,6 @@
 /** Circuit: what is drawn, and what the next stroke will be. */
+import { lastName } from '../store/document.ts';
+import { drapeSums } from '../store/drapes.ts';
 import { current } from '../store/state.ts';
 import { show } from '../store/units.ts';
 import { ChoiceField, NumberField, TextField } from './fields.tsx';
@@ -82,9 +84,46 @@ export function CircuitStep() {
           />
         )}
       </div>
-      <h3>Drawn</h3>
+      {project.circuit.drapes.length > 0 && <h3>Drawings</h3>}
+      <ul className="elements" aria-label="Drawings">
+        {project.circuit.drapes.map((d) => {
+          const read = copper?.drawings.find((r) => r.drape === d.id);
+          const { elements, area } = drapeSums(copper, d.id);
+          return (
+            <li key={d.id}>
+              <button
+                type="button"
+                aria-pressed={chosen.has(d.id)}
+                onClick={(ev) =>
+                  store.select(ev.shiftKey || ev.ctrlKey || ev.metaKey ? toggled(selection, d.id) : [d.id])
+                }
+              >
+                <span className="id">{d.id}</span>
+                <span className="dim">{lastName(d.drawing)}</span>
+                <span className="count">
+                  {elements.length > 0 ? `${elements.length} · ${show(area, 1)} mm²` : 'not laid'}
+                </span>
+              </button>
+              {read && read.notes.length > 0 && (
+                <ul className="notes" aria-label={`What the reader says of ${d.id}`}>
+                  {read.notes.map((n) => (
+                    <li key={n.code + n.place}>
+                      {n.text}
+                      {n.count > 1 ? `, ${n.count} times` : ''}
+                      {n.place ? ` (${n.count > 1 ? 'first ' : ''}${n.place})` : ''}
+                    </li>
+                  ))}
+                </ul>
+              )}
+            </li>
+          );
+        })}
+      </ul>
+      <h3>Drawn here</h3>
       {project.circuit.elements.length === 0 && (
-        <p className="dim">Nothing yet. Choose “Draw a trace” and click along the part.</p>
+        <p className="dim">
+          Nothing yet. Choose “Draw a trace” and click along the part, or drop a drawing on it.
+        </p>
       )}
       <ul className="elements" aria-label="Elements">
         {project.circuit.elements.map((e) => {

@@ -6,6 +6,7 @@ import type { Drape, Element, Project, Setup } from '../core/project/schema.ts';
 import { problemsOf, type WorkerClient, WorkFailure, wasStopped } from '../worker/client.ts';
 import type { CopperPicture, LiveRun, PartPicture, Probe } from '../worker/pictures.ts';
 import type { Ray } from '../worker/session.ts';
+import { createCarrier } from './carry.ts';
 import { type Act, apply, freeId, lastName, nameOf } from './document.ts';
 import { createFollower, filesOf } from './follow.ts';
 import { noHistory, record, redo, seal, undo } from './history.ts';
@@ -87,7 +88,7 @@ export function createStore(workers: Workers) {
       setup: Math.min(s.setup, setupsOf(project).length - 1),
     });
     if (s.project && project.part.units !== s.project.part.units) void reopenPart();
-    else if (!dragging) follower.wake();
+    else if (!dragging && !carrier.busy()) follower.wake();
   }
 
   async function reopenPart(): Promise<void> {
@@ -275,12 +276,14 @@ export function createStore(workers: Workers) {
       const hit = get().hover;
       const element = hit && hit.element >= 0 ? s.copper?.value.elements[hit.element] : undefined;
       if (!element) return add ? undefined : select([]);
+      // Copper of a drawing stands for the whole drawing first; a second click means the one element.
+      const { drape } = element;
+      const id =
+        drape !== null && !s.selection.some((x) => x === drape || x.startsWith(`${drape}/`))
+          ? drape
+          : element.id;
       if (add)
-        return select(
-          s.selection.includes(element.id)
-            ? s.selection.filter((id) => id !== element.id)
-            : [...s.selection, element.id],
-        );
+        return select(s.selection.includes(id) ? s.selection.filter((x) => x !== id) : [...s.selection, id]);
       if (
         s.selection.length === 1 &&
         s.selection[0] === element.id &&
@@ -288,7 +291,7 @@ export function createStore(workers: Workers) {
         element.path
       )
         return insertPoint(element.id, element.path, probe!.at);
-      return select([element.id]);
+      return select([id]);
     }
     if (!probe) return;
     if (s.tool.kind === 'pad') {
@@ -469,6 +472,16 @@ export function createStore(workers: Workers) {
       );
   }
 
+  const carrier = createCarrier({
+    get,
+    act,
+    pick,
+    frame: (at) => workers.live.call('frame', { at }),
+    preview: (loops) => set({ preview: loops }),
+    release: follower.wake,
+    fail,
+  });
+
   /**
    * Lays drawings on the part. What came together goes together: one anchor, and one origin, the middle of all of them.
    * @param rays   the anchor is where the first of them that meets the part does
@@ -564,6 +577,10 @@ export function createStore(workers: Workers) {
   return {
     api,
     layDrawings,
+    /** Moves a drawing's anchor to where the ray meets the part. */
+    dragDrape: carrier.drag,
+    endDrapeDrag: carrier.endDrag,
+    turnDrape: carrier.turn,
     getState: get,
     subscribe: api.subscribe,
     act,

@@ -3,6 +3,8 @@
 import { partPoint } from '../core/base/brands.ts';
 import { poseFrame } from '../core/base/pose.ts';
 import type { Vec3 } from '../core/base/vec.ts';
+import type { Drape } from '../core/project/schema.ts';
+import { selectedDrape } from '../store/drapes.ts';
 import { plainDepth } from '../store/looks.ts';
 import { current, type State } from '../store/state.ts';
 import { type Ray, type Store, setupsOf } from '../store/store.ts';
@@ -39,6 +41,8 @@ export interface Viewport {
 const STILL = 5;
 /** How near to a pad's rim or a handle counts as on it, px. */
 const SNAP = 10;
+/** One notch of the wheel, or one arrow, turns a drawing by this, degrees. */
+const NOTCH = 5;
 /** Triangles above which moving pictures are drawn coarser. */
 const MANY = 60_000;
 
@@ -133,7 +137,11 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
       scene.setReach(copper, reach, plan, plainDepth(s.project.limits, reach));
     if (copperChanged || changed((x) => x.selection)) {
       const ids = new Set(s.selection);
-      scene.setChosen((copper?.elements ?? []).filter((e) => ids.has(e.id)).flatMap((e) => e.outline));
+      scene.setChosen(
+        (copper?.elements ?? [])
+          .filter((e) => ids.has(e.id) || (e.drape !== null && ids.has(e.drape)))
+          .flatMap((e) => e.outline),
+      );
     }
     if (changed((x) => x.tool) || changed((x) => x.preview))
       scene.setLive(
@@ -230,6 +238,8 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
   function handlePlaces(s: State): Vec3[] {
     if (s.tool.kind === 'trace') return s.tool.route;
     if (s.tool.kind !== 'look' || s.selection.length !== 1) return [];
+    const drape = selectedDrape(s.project, s.selection);
+    if (drape) return [drape.anchor];
     const e = s.project?.circuit.elements.find((x) => x.id === s.selection[0]);
     return !e ? [] : e.kind === 'pad' ? [e.at] : (e.kind === 'trace' ? e.route : e.outline).map((r) => r.at);
   }
@@ -271,6 +281,15 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
     });
   }
 
+  /** The selected drawing, if its copper or its anchor is under the pointer. */
+  function drapeUnder(x: number, y: number): Drape | null {
+    const s = get();
+    const drape = s.tool.kind === 'look' ? selectedDrape(s.project, s.selection) : null;
+    if (!drape || handleAt(x, y) >= 0) return drape;
+    const over = s.hover && s.hover.element >= 0 ? s.copper?.value.elements[s.hover.element] : undefined;
+    return over?.drape === drape.id ? drape : null;
+  }
+
   // --- mouse -------------------------------------------------------------------------------------
 
   interface Grip {
@@ -284,8 +303,12 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
     moved: boolean;
     handle: number;
     element: string;
+    /** The drawing in hand, and its anchor on the screen from the pointer, px. */
+    drape: { id: string; dx: number; dy: number } | null;
   }
   let grip: Grip | null = null;
+  /** Where the pointer is over the viewport, px. */
+  let pointer: [number, number] | null = null;
   let lastClick = { time: 0, x: 0, y: 0 };
   const snap = () => SNAP * mmPerPixel();
   const local = (e: MouseEvent): [number, number] => {
@@ -298,6 +321,8 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
     cross.hidden = true;
     const [x, y] = local(e);
     const handle = e.button === 0 ? handleAt(x, y) : -1;
+    const drape = e.button === 0 && !e.shiftKey ? drapeUnder(x, y) : null;
+    const [ax, ay] = drape ? onScreen(drape.anchor) : [x, y];
     grip = {
       id: e.pointerId,
       x,
@@ -309,12 +334,14 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
       handle,
       pan: e.button === 1 || e.button === 2 || e.shiftKey,
       element: get().selection[0] ?? '',
+      drape: drape && { id: drape.id, dx: ax - x, dy: ay - y },
     };
     canvas.setPointerCapture(e.pointerId);
   };
 
   const onMove = (e: PointerEvent) => {
     const [x, y] = local(e);
+    pointer = [x, y];
     if (!grip) {
       cursor(x, y);
       store.point(rayAt(x, y), snap());
@@ -322,7 +349,8 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
     }
     if (!grip.moved && Math.hypot(x - grip.x, y - grip.y) < STILL) return;
     grip.moved = true;
-    if (grip.handle >= 0) store.drag(grip.element, grip.handle, rayAt(x, y), snap());
+    if (grip.drape) store.dragDrape(grip.drape.id, rayAt(x + grip.drape.dx, y + grip.drape.dy));
+    else if (grip.handle >= 0) store.drag(grip.element, grip.handle, rayAt(x, y), snap());
     else if (grip.pan) move(panned(eye, x - grip.lastX, y - grip.lastY, height));
     else move(orbited(eye, x - grip.lastX, y - grip.lastY));
     grip.lastX = x;
@@ -335,7 +363,8 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
     grip = null;
     if (!g) return;
     if (g.moved) {
-      if (g.handle >= 0) void store.endDrag();
+      if (g.drape) void store.endDrapeDrag();
+      else if (g.handle >= 0) void store.endDrag();
       if (flags.cut) look();
       return;
     }
@@ -352,17 +381,21 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
     e.preventDefault();
     const [x, y] = place(...local(e));
     const lines = e.deltaMode === 1 ? e.deltaY * 16 : e.deltaY;
+    const drape = e.ctrlKey ? null : drapeUnder(...local(e));
+    if (drape) return store.turnDrape(drape.id, (e.altKey ? 0.1 : 1) * Math.sign(-lines) * NOTCH);
     move(zoomed(eye, Math.exp(Math.max(-60, Math.min(60, lines)) * 0.0035), x, y, width / height));
   };
 
   const onLeave = () => {
+    pointer = null;
     if (!grip) store.point(null, 0);
   };
   const noMenu = (e: Event) => e.preventDefault();
 
   function cursor(x: number, y: number): void {
     const tool = get().tool.kind;
-    canvas.style.cursor = tool !== 'look' ? 'crosshair' : handleAt(x, y) >= 0 ? 'move' : 'default';
+    canvas.style.cursor =
+      tool !== 'look' ? 'crosshair' : handleAt(x, y) >= 0 || drapeUnder(x, y) ? 'move' : 'default';
   }
 
   // --- keys --------------------------------------------------------------------------------------
@@ -375,6 +408,8 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
     if (arrow && tool.kind !== 'look') {
       const far = e.altKey ? 1 : e.shiftKey ? 32 : 8;
       setCross(crossAt[0] + arrow[0]! * far, crossAt[1] + arrow[1]! * far);
+    } else if (arrow && arrow[0] !== 0 && turnable(e.altKey)) {
+      store.turnDrape(turnable(e.altKey)!.id, -arrow[0]! * (e.shiftKey ? 0.1 : 1) * NOTCH);
     } else if (arrow) {
       if (e.shiftKey) move(panned(eye, arrow[0]! * -30, arrow[1]! * -30, height));
       else move(orbited(eye, arrow[0]! * 18, arrow[1]! * 18));
@@ -387,6 +422,12 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
     e.preventDefault();
     e.stopPropagation();
   };
+  /** The selected drawing, if arrows are to turn it: with Alt, or while the pointer is over it. */
+  function turnable(alt: boolean): Drape | null {
+    const s = get();
+    return alt ? selectedDrape(s.project, s.selection) : pointer ? drapeUnder(...pointer) : null;
+  }
+
   let crossAt: [number, number] = [0, 0];
   function setCross(x: number, y: number): void {
     if (cross.hidden) [x, y] = [width / 2, height / 2];

@@ -11,6 +11,7 @@ import { type Draper, drapeDrawingOn, drapeElement, prepareDraper } from '../cor
 import type { DrawingDraped } from '../core/drape/drape-drawing.ts';
 import type { Draped, DrapeFinding } from '../core/drape/element.ts';
 import { triangleArea } from '../core/drape/level-lines.ts';
+import { drawingU } from '../core/drape/pad.ts';
 import { type GeodesicPath, shortestWith } from '../core/geodesic/shortest.ts';
 import { layerOfSamples } from '../core/layers/assign.ts';
 import type { SetupPlan } from '../core/layers/plan.ts';
@@ -34,6 +35,7 @@ import { boxOf, HeldDrawings, type LoadFlat, type Reading } from './held-drawing
 import { HeldPaths, type Hold } from './held-paths.ts';
 import {
   type CopperPicture,
+  type DrawingFrame,
   type DrawingPicture,
   ELSEWHERE,
   type ElementPicture,
@@ -287,6 +289,14 @@ export function createSession(flat: LoadFlat = noFlat) {
       return hit === null ? null : probeAt(mesh, queries, normals, hit.point, hit.face, a.setup, a.head);
     },
 
+    /** How a drawing would lie whose anchor is this place, pulled to the surface. */
+    frame(a: { at: Vec3 }): DrawingFrame {
+      const { mesh, queries } = needPart();
+      const hit = queries.nearest(a.at);
+      if (!hit) throw new Fault('a surface has a nearest point');
+      return drawingFrame(mesh, hit.point, hit.face);
+    },
+
     /** The shortest way from one place to another. */
     run(a: { from: Vec3; to: Vec3 }): LiveRun {
       const { mesh, queries } = needPart();
@@ -361,11 +371,17 @@ function probeAt(
     point,
     at: roundedPlace(queries, point, faceNormal(mesh, face)),
     normal,
+    frame: drawingFrame(mesh, point, face),
     face,
     height: bench[2],
     incidence: (Math.acos(Math.max(-1, Math.min(1, dot(normal, toward)))) * 180) / Math.PI,
     blockedAfter: blocked ? blocked.distance : null,
   };
+}
+
+function drawingFrame(mesh: SurfaceMesh, at: Vec3, face: number): DrawingFrame {
+  const normal = faceNormal(mesh, face);
+  return { at, u: drawingU(normal), normal };
 }
 
 function copperPicture(

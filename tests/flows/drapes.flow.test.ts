@@ -101,6 +101,8 @@ describe('a drawing dropped on the part', () => {
     writeFileSync(join(folder, 'ring.svg'), comb);
     await drop(-90, 60, 'ring.svg');
     await poll(() => menuLabel(w.app, 'undo')).toBe('Undo lay drawing ring.svg');
+    // What is selected is drawn over in another colour.
+    await w.page.keyboard.press('Escape');
     await poll(async () => (await tally(w.page)).copper).toBeGreaterThan(before.copper + 300);
     await planned(w.page);
     await shot('dropped');
@@ -112,6 +114,49 @@ describe('a drawing dropped on the part', () => {
     expect(x).toBeLessThan(-3);
     expect(y).toBeLessThan(-2);
     expect(Math.abs(z - domeHeight(x, y))).toBeLessThan(0.05);
+  });
+
+  test('is listed with what its reader left out; its facts show the stretch and where', async () => {
+    const row = w.page.locator('[aria-label=Drawings] > li').nth(1);
+    await poll(() => row.textContent()).toMatch(/d2ring\.svg.*3 · [\d.]+ mm².*text/i);
+    await row.locator('button').click();
+    await poll(() => w.page.locator('.facts h2').textContent()).toBe('Drawing d2');
+    await poll(() => w.page.locator('.facts [aria-label=Stretch]').textContent()).toMatch(
+      /Most, in d2\/\w+[\d.]+ of 15 %/,
+    );
+    await shot('facts');
+  });
+
+  test('dragged by its copper it goes along, one step of undo; the wheel over it turns it', async () => {
+    const before = (await saved()).circuit.drapes[1]!;
+    const dot = (await w.page.locator('.overlay .handle:not([hidden])').boundingBox())!;
+    const [x, y] = [dot.x + dot.width / 2, dot.y + dot.height / 2];
+    await w.page.mouse.move(x, y);
+    await w.page.mouse.down();
+    for (let i = 1; i <= 8; i++) {
+      await w.page.mouse.move(x + 8 * i, y + 5 * i);
+      await w.page.waitForTimeout(50);
+    }
+    await shot('dragging');
+    await w.page.mouse.up();
+    await poll(() => menuLabel(w.app, 'undo')).toBe('Undo move drawing d2');
+    await w.page.mouse.wheel(0, -120);
+    await w.page.mouse.wheel(0, -120);
+    await poll(() => menuLabel(w.app, 'undo')).toBe('Undo change turn of d2');
+    await w.page.waitForTimeout(600);
+    await planned(w.page);
+    const after = (await saved()).circuit.drapes[1]!;
+    expect(after.anchor[0]).toBeGreaterThan(before.anchor[0] + 3);
+    expect(after.anchor[1]).toBeLessThan(before.anchor[1] - 1.5);
+    expect(after.turn).toBe(10);
+    await choose(w.app, 'undo');
+    await poll(() => menuLabel(w.app, 'undo')).toBe('Undo move drawing d2');
+    await choose(w.app, 'undo');
+    await poll(() => menuLabel(w.app, 'undo')).toBe('Undo lay drawing ring.svg');
+    await poll(async () => (await saved()).circuit.drapes[1]).toEqual(before);
+    await w.page.getByTestId('view').focus();
+    await w.page.keyboard.press('Escape');
+    await planned(w.page);
   });
 
   test('undone, its copper is gone; redone, it is there again', async () => {

@@ -2,12 +2,13 @@ import { beforeEach, describe, expect, test } from 'vitest';
 import type { Vec3 } from '../../src/core/base/vec.ts';
 import { writeProject } from '../../src/core/project/read.ts';
 import type { Project } from '../../src/core/project/schema.ts';
+import { carried } from '../../src/store/carry.ts';
 import { current } from '../../src/store/state.ts';
 import { createStore, type OpenedDrawing, type Store } from '../../src/store/store.ts';
 import { stepWords } from '../../src/store/words.ts';
 import { domeHeight, domeProject, domeStl } from '../flows/dome.ts';
 import { comb } from '../flows/drawings.ts';
-import { type FakeWorker, fakeWorker } from './fakes.ts';
+import { type FakeWorker, fakeWorker, until } from './fakes.ts';
 
 let heavy: FakeWorker;
 let store: Store;
@@ -46,8 +47,93 @@ beforeEach(() => {
   store = createStore({ heavy: heavy.client, live: fakeWorker().client });
 });
 
+const down = (x: number, y: number) => ({ origin: [x, y, 100] as Vec3, direction: [0, 0, -1] as Vec3 });
+
+describe('a drawing in hand', () => {
+  beforeEach(() => open(combProject(), [theComb()]));
+  const drape = () => s().project!.circuit.drapes[0]!;
+  const spine = () => s().copper!.value.elements.find((e) => e.id === 'd1/spine')!;
+
+  test('a click on its copper selects the whole of it, a second one the element', async () => {
+    const at = spine().stretched!.at;
+    await store.press(down(at[0], at[1]), 0.1, false);
+    expect(s().selection).toEqual(['d1']);
+    await store.press(down(at[0], at[1]), 0.1, false);
+    expect(s().selection).toEqual(['d1/spine']);
+    store.select(['d1']);
+    store.deleteSelected();
+    expect(s().project!.circuit.drapes).toEqual([]);
+    expect(s().history.past.at(-1)!.name).toBe('delete d1');
+  });
+
+  test('its outlines follow the pointer as they are, the copper when it is let go, in one step', async () => {
+    const { revision } = s().copper!;
+    const before = s()
+      .copper!.value.elements.filter((e) => e.drape === 'd1')
+      .flatMap((e) => e.outline);
+    for (let i = 0; i <= 5; i++) store.dragDrape('d1', down(4 - i, 5 - 2 * i));
+    await until(() => s().preview.length === before.length && Math.abs(drape().anchor[0] + 1) < 1e-3);
+    expect(s().copper!.revision).toBe(revision);
+    s().preview.forEach((loop, i) => {
+      expect(loop).not.toEqual(before[i]);
+      expect(length(loop)).toBeCloseTo(length(before[i]!), 4);
+    });
+    await store.endDrapeDrag();
+    await store.settled();
+    expect(s().preview).toEqual([]);
+    expect(s().history.past.map((h) => h.name)).toEqual(['move drawing d1']);
+    expect(s().copper!.revision).toBe(s().revision);
+    const [x, y] = spine().path!;
+    expect(Math.hypot(x! + 1, y! + 5)).toBeLessThan(6);
+  });
+
+  test('turned notch by notch it is one step, and its copper lies turned', async () => {
+    const way = () => {
+      const p = spine().path!;
+      const [dx, dy] = [p.at(-3)! - p[0]!, p.at(-2)! - p[1]!];
+      return (Math.atan2(dy, dx) * 180) / Math.PI;
+    };
+    const first = way();
+    for (let i = 0; i < 4; i++) store.turnDrape('d1', 5);
+    expect(drape().turn).toBe(45);
+    await until(() => s().preview.length > 0);
+    await until(() => s().preview.length === 0);
+    await store.settled();
+    expect(way() - first).toBeGreaterThan(15);
+    expect(way() - first).toBeLessThan(25);
+    expect(s().history.past.map((h) => h.name)).toEqual(['change turn of d1']);
+    store.turnDrape('d1', -50);
+    expect(drape().turn).toBe(355);
+    await until(() => s().preview.length === 0);
+  });
+
+  test('pulled straight, without one layer, mirrored: each is an act that lays it anew', async () => {
+    store.act({ kind: 'edit-drape', id: 'd1', what: 'mirror', change: { mirror: true } });
+    expect(s().history.past.at(-1)!.name).toBe('change mirror of d1');
+    await store.settled();
+    expect(s().copper!.value.elements.filter((e) => e.drape === 'd1')).toHaveLength(3);
+    expect(s().copper!.revision).toBe(s().revision);
+  });
+});
+
+test('carried stiffly, the anchor comes to the anchor, and a turn of 90° brings u to v', () => {
+  const from = { at: [1, 2, 3], u: [1, 0, 0], normal: [0, 0, 1] } as const;
+  const to = { at: [5, 5, 5], u: [0, 0, -1], normal: [1, 0, 0] } as const;
+  const line = Float32Array.of(1, 2, 3, 4, 2, 3, 1, 4, 3, 1, 2, 8);
+  // There u is -Z and out is +X, so v = out × u is +Y.
+  expect([...carried(line, from, 0, to, 0)]).toEqual([5, 5, 5, 5, 5, 2, 5, 7, 5, 10, 5, 5]);
+  const turned = carried(line, from, 10, from, 100);
+  for (const [i, x] of [1, 2, 3, 1, 5, 3, -1, 2, 3, 1, 2, 8].entries()) expect(turned[i]).toBeCloseTo(x, 5);
+});
+
+const length = (loop: Float32Array): number => {
+  let sum = 0;
+  for (let i = 3; i < loop.length; i += 3)
+    sum += Math.hypot(loop[i]! - loop[i - 3]!, loop[i + 1]! - loop[i - 2]!, loop[i + 2]! - loop[i - 1]!);
+  return sum;
+};
+
 describe('laying a drawing', () => {
-  const down = (x: number, y: number) => ({ origin: [x, y, 100] as Vec3, direction: [0, 0, -1] as Vec3 });
   beforeEach(async () => {
     await open({ ...domeProject(), circuit: { elements: [], drapes: [] } }, []);
   });
