@@ -156,6 +156,14 @@ export function commandList(store: Store, documents: Documents, view: () => View
       line: true,
     },
     {
+      id: 'toggle-stretch',
+      menu: 'View',
+      label: (s) => (s.stretchShown ? 'Show what the beam reaches' : 'Show the stretch of drawings'),
+      keys: 'S',
+      enabled: (s) => (s.project?.circuit.drapes.length ?? 0) > 0,
+      run: () => store.showStretch(!store.getState().stretchShown),
+    },
+    {
       id: 'toggle-lens',
       menu: 'View',
       label: () => 'Lens body',

@@ -92,7 +92,7 @@ export function DrapeFacts({ drape: d, state }: { drape: Drape; state: State }) 
 
 /** The worst stretch of an element, with the way to its place. */
 function Stretch({ e, state }: { e: ElementPicture; state: State }) {
-  const { showPlace } = useWindow();
+  const { showPlace, store } = useWindow();
   const { copper } = current(state);
   const { maxStretch, safeStretch } = state.project!.limits;
   const at = e.stretched?.at ?? e.anchor;
@@ -115,6 +115,11 @@ function Stretch({ e, state }: { e: ElementPicture; state: State }) {
         {e.stretched && <Fact label="Across it">{percent(e.stretched.across)}</Fact>}
         <Fact label="Safe up to">{show(100 * safeStretch, 1)} %</Fact>
       </dl>
+      <TickField
+        label="Colour all drawings by stretch"
+        value={state.stretchShown}
+        onValue={store.showStretch}
+      />
     </section>
   );
 }

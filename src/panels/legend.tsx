@@ -1,10 +1,13 @@
 /** What the colours say, with counts. A row selects what it counts. */
 import { useMemo } from 'react';
+import type { Limits } from '../core/project/schema.ts';
 import { REASONS } from '../core/reach/result.ts';
+import { stretchRows } from '../store/drapes.ts';
 import { countLooks, plainDepth } from '../store/looks.ts';
 import { current } from '../store/state.ts';
 import { show } from '../store/units.ts';
-import { Swatch } from './swatch.tsx';
+import type { CopperPicture } from '../worker/pictures.ts';
+import { StretchSwatch, Swatch } from './swatch.tsx';
 import { useSteady, useWindow } from './window.tsx';
 
 const WORDS = {
@@ -29,6 +32,8 @@ export function Legend() {
     [copper, reach, plan, state.setup, state.show, state.offset, depth],
   );
   if (!copper || !counts || copper.elements.length === 0) return null;
+  if (state.stretchShown && state.project)
+    return <StretchLegend copper={copper} limits={state.project.limits} />;
   return (
     <section className="legend" aria-label="What the colours say">
       <p className="legend-head">{state.show === 'offset' ? 'At this offset' : 'As the layers write it'}</p>
@@ -54,6 +59,36 @@ export function Legend() {
             </li>
           );
         })}
+      </ul>
+    </section>
+  );
+}
+
+function StretchLegend({ copper, limits }: { copper: CopperPicture; limits: Limits }) {
+  const { store } = useWindow();
+  return (
+    <section className="legend" aria-label="What the colours say">
+      <p className="legend-head">Longer or shorter than drawn, at most</p>
+      <ul>
+        {stretchRows(copper, limits)
+          .filter((r) => r.look !== 'drawn-here' || r.elements.length > 0)
+          .map(({ look, words, elements, area }) => (
+            <li key={look}>
+              <button
+                type="button"
+                disabled={elements.length === 0}
+                data-stretch={look}
+                onClick={() => store.select(elements.map((e) => e.id))}
+                title="Select these"
+              >
+                <StretchSwatch look={look} />
+                <span>{words}</span>
+                <span className="count">
+                  {elements.length} <span className="dim">· {show(area, area < 10 ? 1 : 0)} mm²</span>
+                </span>
+              </button>
+            </li>
+          ))}
       </ul>
     </section>
   );

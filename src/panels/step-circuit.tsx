@@ -84,42 +84,48 @@ export function CircuitStep() {
           />
         )}
       </div>
-      {project.circuit.drapes.length > 0 && <h3>Drawings</h3>}
-      <ul className="elements" aria-label="Drawings">
-        {project.circuit.drapes.map((d) => {
-          const read = copper?.drawings.find((r) => r.drape === d.id);
-          const { elements, area } = drapeSums(copper, d.id);
-          return (
-            <li key={d.id}>
-              <button
-                type="button"
-                aria-pressed={chosen.has(d.id)}
-                onClick={(ev) =>
-                  store.select(ev.shiftKey || ev.ctrlKey || ev.metaKey ? toggled(selection, d.id) : [d.id])
-                }
-              >
-                <span className="id">{d.id}</span>
-                <span className="dim">{lastName(d.drawing)}</span>
-                <span className="count">
-                  {elements.length > 0 ? `${elements.length} · ${show(area, 1)} mm²` : 'not laid'}
-                </span>
-              </button>
-              {read && read.notes.length > 0 && (
-                <ul className="notes" aria-label={`What the reader says of ${d.id}`}>
-                  {read.notes.map((n) => (
-                    <li key={n.code + n.place}>
-                      {n.text}
-                      {n.count > 1 ? `, ${n.count} times` : ''}
-                      {n.place ? ` (${n.count > 1 ? 'first ' : ''}${n.place})` : ''}
-                    </li>
-                  ))}
-                </ul>
-              )}
-            </li>
-          );
-        })}
-      </ul>
-      <h3>Drawn here</h3>
+      {project.circuit.drapes.length > 0 && (
+        <>
+          <h3>Drawings</h3>
+          <ul className="elements" aria-label="Drawings">
+            {project.circuit.drapes.map((d) => {
+              const read = copper?.drawings.find((r) => r.drape === d.id);
+              const { elements, area } = drapeSums(copper, d.id);
+              return (
+                <li key={d.id}>
+                  <button
+                    type="button"
+                    aria-pressed={chosen.has(d.id)}
+                    onClick={(ev) =>
+                      store.select(
+                        ev.shiftKey || ev.ctrlKey || ev.metaKey ? toggled(selection, d.id) : [d.id],
+                      )
+                    }
+                  >
+                    <span className="id">{d.id}</span>
+                    <span className="dim">{lastName(d.drawing)}</span>
+                    <span className="count">
+                      {elements.length > 0 ? `${elements.length} · ${show(area, 1)} mm²` : 'not laid'}
+                    </span>
+                  </button>
+                  {read && read.notes.length > 0 && (
+                    <ul className="notes" aria-label={`What the reader says of ${d.id}`}>
+                      {read.notes.map((n) => (
+                        <li key={n.code + n.place}>
+                          {n.text}
+                          {n.count > 1 ? `, ${n.count} times` : ''}
+                          {n.place ? ` (${n.count > 1 ? 'first ' : ''}${n.place})` : ''}
+                        </li>
+                      ))}
+                    </ul>
+                  )}
+                </li>
+              );
+            })}
+          </ul>
+        </>
+      )}
+      <h3>{project.circuit.drapes.length > 0 ? 'Drawn here' : 'Drawn'}</h3>
       {project.circuit.elements.length === 0 && (
         <p className="dim">
           Nothing yet. Choose “Draw a trace” and click along the part, or drop a drawing on it.

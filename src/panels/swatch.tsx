@@ -1,5 +1,6 @@
 /** A small sample of a look, with the same pattern as the copper in the viewport. */
 import type { Reason } from '../core/reach/result.ts';
+import type { StretchRow } from '../store/drapes.ts';
 
 export function Swatch({ look }: { look: Reason | 'reached' }) {
   return (
@@ -24,6 +25,30 @@ export function Swatch({ look }: { look: Reason | 'reached' }) {
       )}
       {look === 'field' && <path className="mark" d="M2 4.5 h6 M12 4.5 h6 M6 11 h6 M16 11 h5" />}
       {look === 'dose' && <rect className="rim" x="2" y="2" width="18" height="12" rx="1" />}
+    </svg>
+  );
+}
+
+export function StretchSwatch({ look }: { look: StretchRow['look'] }) {
+  return (
+    <svg
+      className={`swatch stretch-${look}`}
+      width="22"
+      height="16"
+      viewBox="0 0 22 16"
+      aria-hidden="true"
+      focusable="false"
+    >
+      <rect className="base" x="0.5" y="0.5" width="21" height="15" rx="2" />
+      {look === 'some' && (
+        <path className="mark round" d="M4 4.5 h0 M10 4.5 h0 M16 4.5 h0 M4 11 h0 M10 11 h0 M16 11 h0" />
+      )}
+      {(look === 'much' || look === 'too-much') && (
+        <path className="mark" d="M-2 17 L8 -1 M4 17 L14 -1 M10 17 L20 -1 M16 17 L26 -1" />
+      )}
+      {look === 'too-much' && (
+        <path className="mark" d="M-2 -1 L8 17 M4 -1 L14 17 M10 -1 L20 17 M16 -1 L26 17" />
+      )}
     </svg>
   );
 }

@@ -43,6 +43,33 @@ export const selectedDrape = (project: Project | null, selection: readonly strin
 export const STRETCHES = ['little', 'some', 'much', 'too-much'] as const;
 export type StretchLook = (typeof STRETCHES)[number];
 
+export interface StretchRow {
+  look: StretchLook | 'drawn-here';
+  words: string;
+  elements: ElementPicture[];
+  /** mm² */
+  area: number;
+}
+
+/** Rows of the legend: every look of a stretch, and the copper that no drawing has. */
+export function stretchRows(copper: CopperPicture, limits: Limits): StretchRow[] {
+  const percent = (x: number) => `${Number((100 * x).toFixed(2))}`;
+  const [half, safe, most] = [limits.safeStretch / 2, limits.safeStretch, limits.maxStretch].map(percent);
+  const words: Record<StretchRow['look'], string> = {
+    little: `up to ${half} %`,
+    some: `${half} to ${safe} %, safe`,
+    much: `${safe} to ${most} %`,
+    'too-much': `more than ${most} %`,
+    'drawn-here': 'Not from a drawing',
+  };
+  return ([...STRETCHES, 'drawn-here'] as const).map((look) => {
+    const elements = copper.elements.filter(
+      (e) => (e.drape === null ? 'drawn-here' : stretchLook(e.stretch, limits)) === look,
+    );
+    return { look, words: words[look], elements, area: elements.reduce((n, e) => n + e.area, 0) };
+  });
+}
+
 /** Half the safe stretch, the safe one and the most allowed part the looks. */
 export function stretchLook(stretch: number, limits: Limits): StretchLook {
   if (stretch > limits.maxStretch) return 'too-much';

@@ -96,6 +96,8 @@ export interface State {
   /** Stage offset now, mm, up positive. */
   offset: number;
   show: Show;
+  /** Copper of drawings is coloured by its stretch instead. */
+  stretchShown: boolean;
   /** Layer shown alone, counting from 0. */
   isolated: number | null;
   selection: readonly string[];
@@ -123,6 +125,7 @@ export const firstState: State = {
   setup: 0,
   offset: 0,
   show: 'layers',
+  stretchShown: false,
   isolated: null,
   selection: [],
   tool: { kind: 'look' },

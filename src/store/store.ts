@@ -609,6 +609,7 @@ export function createStore(workers: Workers) {
     setPen: (pen: Partial<State['pen']>) => set((s) => ({ pen: { ...s.pen, ...pen } })),
     setStep: (step: State['step']) => set({ step }),
     setSetup: (setup: number) => set({ setup, isolated: null }),
+    showStretch: (stretchShown: boolean) => set({ stretchShown }),
     setShow: (show: State['show']) => set({ show, ...(show === 'offset' ? {} : { isolated: null }) }),
     /** Moves the stage; the copper is then seen as it stands at that offset. */
     setOffset: (offset: number) => set({ offset, show: 'offset' }),

@@ -1,6 +1,6 @@
 /** Shaders of the part and of the copper. The copper's rule is the one of src/store/looks.ts. */
 import { Color, DoubleSide, ShaderMaterial, Vector4 } from 'three';
-import { LOOKS } from './palette.ts';
+import { LOOKS, STRETCH_COLOURS } from './palette.ts';
 
 /** A light that travels with the eye, and a weaker one from above: shape is seen from every side. */
 const LIGHT = /* glsl */ `
@@ -102,6 +102,16 @@ export function copperMaterial() {
       uFieldMark: color(LOOKS.field.mark),
       uDose: color(LOOKS.dose.base),
       uPart: { value: new Color() },
+      /** 1: coloured by stretch. */
+      uStretch: { value: 0 },
+      uLittle: color(STRETCH_COLOURS.little.base),
+      uSome: color(STRETCH_COLOURS.some.base),
+      uSomeMark: color(STRETCH_COLOURS.some.mark),
+      uMuch: color(STRETCH_COLOURS.much.base),
+      uMuchMark: color(STRETCH_COLOURS.much.mark),
+      uTooMuch: color(STRETCH_COLOURS['too-much'].base),
+      uTooMuchMark: color(STRETCH_COLOURS['too-much'].mark),
+      uDrawnHere: color(STRETCH_COLOURS['drawn-here'].base),
       /** Stage offset, mm. */
       uOffset: { value: 0 },
       /** 1: as it stands at this offset; 0: as the layers write it. */
@@ -117,13 +127,16 @@ export function copperMaterial() {
       attribute float aUsable;
       attribute float aFails;
       attribute float aLayer;
+      attribute float aStretch;
       varying vec3 vNormal;
       varying vec3 vBench;
       varying float vHeight;
       flat varying float vUsable;
       flat varying float vFails;
       flat varying float vLayer;
+      flat varying float vStretch;
       void main() {
+        vStretch = aStretch;
         vNormal = normalMatrix * normal;
         vHeight = aHeight;
         vUsable = aUsable;
@@ -135,20 +148,34 @@ export function copperMaterial() {
       }`,
     fragmentShader: /* glsl */ `
       uniform vec3 uCopper, uFocus, uFocusMark, uIncidence, uIncidenceMark, uShade, uShadeMark, uField, uFieldMark, uDose, uPart;
-      uniform float uOffset, uAtOffset, uAlone, uGrain;
+      uniform vec3 uLittle, uSome, uSomeMark, uMuch, uMuchMark, uTooMuch, uTooMuchMark, uDrawnHere;
+      uniform float uStretch, uOffset, uAtOffset, uAlone, uGrain;
       varying vec3 vNormal;
       varying vec3 vBench;
       varying float vHeight;
       flat varying float vUsable;
       flat varying float vFails;
       flat varying float vLayer;
+      flat varying float vStretch;
       ${CUT}
+      vec3 stretched(vec2 p) {
+        if (vStretch < -0.5) return uDrawnHere;
+        if (vStretch < 0.5) return uLittle;
+        if (vStretch < 1.5) {
+          vec2 q = fract(p / 6.0) * 6.0 - 3.0;
+          return dot(q, q) < 1.6 ? uSomeMark : uSome;
+        }
+        bool slash = fract((p.x + p.y) / 8.0) < 0.28;
+        if (vStretch < 2.5) return slash ? uMuchMark : uMuch;
+        return slash || fract((p.x - p.y) / 8.0) < 0.28 ? uTooMuchMark : uTooMuch;
+      }
       void main() {
         cut(vBench);
         vec2 p = gl_FragCoord.xy / uGrain;
         int fails = int(vFails + 0.5);
         vec3 c = uCopper;
-        if ((fails & 8) != 0) {
+        if (uStretch > 0.5) c = stretched(p);
+        else if ((fails & 8) != 0) {
           float row = floor(p.y / 6.0);
           bool on = fract(p.y / 6.0) < 0.42 && fract(p.x / 12.0 + 0.5 * mod(row, 2.0)) < 0.6;
           c = on ? uFieldMark : uField;

@@ -24,6 +24,15 @@ export const LOOKS: Record<Reason | 'reached', Look> = {
   dose: { base: '#f0dcc4', mark: '#5e3d00', pattern: 'outline', words: 'Wrong dose' },
 };
 
+/** Copper by its stretch: darker and busier the more; src/app/style.css repeats the values for the legend. */
+export const STRETCH_COLOURS = {
+  little: { base: '#f3e2c9', mark: '#f3e2c9' },
+  some: { base: '#e3ab3e', mark: '#7a4c00' },
+  much: { base: '#b4481a', mark: '#f6cdb4' },
+  'too-much': { base: '#5a1030', mark: '#f2b9cf' },
+  'drawn-here': { base: '#a9a69f', mark: '#a9a69f' },
+} as const;
+
 export interface Scheme {
   background: string;
   part: string;

@@ -24,7 +24,13 @@ import { LineSegments2 } from 'three/addons/lines/LineSegments2.js';
 import { LineSegmentsGeometry } from 'three/addons/lines/LineSegmentsGeometry.js';
 import type { Vec3 } from '../core/base/vec.ts';
 import type { Head, Setup } from '../core/project/schema.ts';
-import type { CopperPicture, PartPicture, PlanPicture, ReachPicture } from '../worker/pictures.ts';
+import type {
+  CopperPicture,
+  ElementPicture,
+  PartPicture,
+  PlanPicture,
+  ReachPicture,
+} from '../worker/pictures.ts';
 import { axesOf, type Eye } from './eye.ts';
 import { copperMaterial, partMaterial, surfaceLineMaterial } from './materials.ts';
 import { LOOKS, type Scheme } from './palette.ts';
@@ -131,10 +137,20 @@ export function createScene(canvas: HTMLCanvasElement) {
     g.setIndex(new BufferAttribute(copper.corners, 1));
     const n = copper.positions.length / 3;
     g.setAttribute('aHeight', new BufferAttribute(copper.heights[setup] ?? copper.heights[0]!, 1));
-    for (const name of ['aUsable', 'aFails', 'aLayer'])
+    for (const name of ['aUsable', 'aFails', 'aLayer', 'aStretch'])
       g.setAttribute(name, new BufferAttribute(new Float32Array(n), 1));
     copperMesh.geometry = g;
     setRims(segmentsOf(copper.elements.flatMap((e) => e.outline)));
+  }
+
+  /** @param look  number of the look of a stretch, -1 for what no drawing has */
+  function setStretch(copper: CopperPicture, look: (e: ElementPicture) => number): void {
+    const a = copperMesh.geometry.getAttribute('aStretch') as BufferAttribute | undefined;
+    if (!a) return;
+    for (const e of copper.elements)
+      for (let i = 3 * e.first; i < 3 * (e.first + e.count); i++)
+        (a.array as Float32Array)[copper.corners[i]!] = look(e);
+    a.needsUpdate = true;
   }
 
   function setReach(
@@ -215,6 +231,7 @@ export function createScene(canvas: HTMLCanvasElement) {
     offset: number;
     atOffset: boolean;
     alone: number;
+    stretch: boolean;
     plane: boolean;
     lens: boolean;
     cut: [number, number, number, number] | null;
@@ -222,6 +239,7 @@ export function createScene(canvas: HTMLCanvasElement) {
     copperMat.uniforms['uOffset']!.value = look.offset;
     copperMat.uniforms['uAtOffset']!.value = look.atOffset ? 1 : 0;
     copperMat.uniforms['uAlone']!.value = look.alone;
+    copperMat.uniforms['uStretch']!.value = look.stretch ? 1 : 0;
     for (const m of [copperMat, partMat, rimMat])
       m.uniforms['uCut']!.value.set(...(look.cut ?? [0, 0, 0, 1]));
     bench.position.z = -look.offset;
@@ -277,6 +295,7 @@ export function createScene(canvas: HTMLCanvasElement) {
     setPart,
     setCopper,
     setReach,
+    setStretch,
     setPose,
     setHead,
     setView,

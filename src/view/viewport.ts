@@ -4,7 +4,7 @@ import { partPoint } from '../core/base/brands.ts';
 import { poseFrame } from '../core/base/pose.ts';
 import type { Vec3 } from '../core/base/vec.ts';
 import type { Drape } from '../core/project/schema.ts';
-import { selectedDrape } from '../store/drapes.ts';
+import { STRETCHES, selectedDrape, stretchLook } from '../store/drapes.ts';
 import { plainDepth } from '../store/looks.ts';
 import { current, type State } from '../store/state.ts';
 import { type Ray, type Store, setupsOf } from '../store/store.ts';
@@ -135,6 +135,12 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
         changed((x) => x.project?.limits))
     )
       scene.setReach(copper, reach, plan, plainDepth(s.project.limits, reach));
+    if (copper && s.project && (copperChanged || changed((x) => x.project?.limits))) {
+      const { limits } = s.project;
+      scene.setStretch(copper, (e) =>
+        e.drape === null ? -1 : STRETCHES.indexOf(stretchLook(e.stretch, limits)),
+      );
+    }
     if (copperChanged || changed((x) => x.selection)) {
       const ids = new Set(s.selection);
       scene.setChosen(
@@ -161,7 +167,7 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
       );
     }
     if (nothingElse && !flags.lens && before?.offset === s.offset) visible = false;
-    if (changed((x) => x.show) || changed((x) => x.isolated) || visible) {
+    if (changed((x) => x.show) || changed((x) => x.isolated) || changed((x) => x.stretchShown) || visible) {
       look();
       redraw();
     }
@@ -173,6 +179,7 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
       offset: s.offset,
       atOffset: s.show === 'offset',
       alone: s.isolated ?? -1,
+      stretch: s.stretchShown,
       plane: flags.plane && s.project !== null,
       lens: flags.lens && s.project !== null,
       // The half towards the eye is taken away, on the axis that the eye looks along most.

@@ -33,6 +33,9 @@ beforeAll(async () => {
   writeFileSync(join(folder, 'art', 'comb.svg'), comb);
   const p = domeProject();
   p.circuit.elements = [];
+  // The bump under the first drawing stretches it more than the open dome does the second.
+  p.limits.safeStretch = 0.01;
+  p.limits.maxStretch = 0.04;
   p.circuit.drapes = [
     {
       id: 'd1',
@@ -122,7 +125,7 @@ describe('a drawing dropped on the part', () => {
     await row.locator('button').click();
     await poll(() => w.page.locator('.facts h2').textContent()).toBe('Drawing d2');
     await poll(() => w.page.locator('.facts [aria-label=Stretch]').textContent()).toMatch(
-      /Most, in d2\/\w+[\d.]+ of 15 %/,
+      /Most, in d2\/\w+[\d.]+ of 4 %/,
     );
     await shot('facts');
   });
@@ -157,6 +160,18 @@ describe('a drawing dropped on the part', () => {
     await w.page.getByTestId('view').focus();
     await w.page.keyboard.press('Escape');
     await planned(w.page);
+  });
+
+  test('coloured by stretch, the copper and the legend say the same without colour alone', async () => {
+    await w.page.getByTestId('view').focus();
+    await w.page.keyboard.press('s');
+    const count = (look: string) => w.page.locator(`[data-stretch=${look}] .count`).textContent();
+    await poll(() => count('little')).toMatch(/^[1-6] /);
+    expect(await w.page.locator('.legend').textContent()).toMatch(/0\.5 to 1 %, safe.*more than 4 %/);
+    expect((await tally(w.page)).copper).toBeLessThan(150);
+    await shot('stretch');
+    await w.page.keyboard.press('s');
+    await poll(async () => (await tally(w.page)).copper).toBeGreaterThan(300);
   });
 
   test('undone, its copper is gone; redone, it is there again', async () => {

@@ -3,6 +3,7 @@ import type { Vec3 } from '../../src/core/base/vec.ts';
 import { writeProject } from '../../src/core/project/read.ts';
 import type { Project } from '../../src/core/project/schema.ts';
 import { carried } from '../../src/store/carry.ts';
+import { stretchRows } from '../../src/store/drapes.ts';
 import { current } from '../../src/store/state.ts';
 import { createStore, type OpenedDrawing, type Store } from '../../src/store/store.ts';
 import { stepWords } from '../../src/store/words.ts';
@@ -114,6 +115,29 @@ describe('a drawing in hand', () => {
     expect(s().copper!.value.elements.filter((e) => e.drape === 'd1')).toHaveLength(3);
     expect(s().copper!.revision).toBe(s().revision);
   });
+});
+
+test('the legend of stretch counts each element once, at the limits of the project, and what is drawn here apart', async () => {
+  const p = combProject();
+  await open(p, [theComb()]);
+  const { value: copper } = s().copper!;
+  const stretches = copper.elements.map((e) => e.stretch);
+  const rows = (limits: Partial<Project['limits']>) =>
+    stretchRows(copper, { ...p.limits, ...limits }).map((r) => [r.look, r.elements.map((e) => e.id).join()]);
+  const all = 'd1/spine,d1/2,d1/pad';
+  expect(Math.min(...stretches.slice(2))).toBeGreaterThan(0);
+  expect(rows({ safeStretch: 0, maxStretch: 0 })).toEqual([
+    ['little', ''],
+    ['some', ''],
+    ['much', ''],
+    ['too-much', all],
+    ['drawn-here', 'p1,t3'],
+  ]);
+  expect(rows({ safeStretch: 2, maxStretch: 3 })[0]).toEqual(['little', all]);
+  const spine = copper.elements[2]!.stretch;
+  expect(rows({ safeStretch: spine, maxStretch: 3 })[1]![1]).toContain('d1/spine');
+  expect(rows({ safeStretch: 0.99 * spine, maxStretch: spine })[2]![1]).toContain('d1/spine');
+  expect(stretchRows(copper, p.limits)[1]!.words).toBe('2.5 to 5 %, safe');
 });
 
 test('carried stiffly, the anchor comes to the anchor, and a turn of 90° brings u to v', () => {
