@@ -11,7 +11,8 @@ const demonstration: Plugin = {
     if (!existsSync('assets/demo')) return;
     mkdirSync(`${outDir}/demo`, { recursive: true });
     for (const file of readdirSync('assets/demo'))
-      if (/\.(drape\.json|stl|svg|dxf|gbr|drl)$/i.test(file)) cpSync(`assets/demo/${file}`, `${outDir}/demo/${file}`);
+      if (/\.(drape\.json|stl|svg|dxf|gbr|drl)$/i.test(file))
+        cpSync(`assets/demo/${file}`, `${outDir}/demo/${file}`);
   },
 };
 

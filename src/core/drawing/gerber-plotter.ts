@@ -1,8 +1,8 @@
 /** The graphics state of a Gerber file and the marks that its operations leave (2022.02, ch. 2 and 4). */
 import type { DrawingOptions } from './drawing.ts';
 import { BadShape, type Findings, inReach } from './findings.ts';
-import { arcPieces } from './flatten.ts';
 import type { Flat } from './flat.ts';
+import { arcPieces } from './flatten.ts';
 import { type Aperture, type Stamp, stampOf } from './gerber-apertures.ts';
 import { arcCorners, circleRing } from './gerber-arcs.ts';
 import { type Attributes, noAttributes } from './gerber-attributes.ts';

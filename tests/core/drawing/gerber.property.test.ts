@@ -1,6 +1,6 @@
+import { createParser } from '@tracespace/parser';
 import fc from 'fast-check';
 import gerberParser from 'gerber-parser';
-import { createParser } from '@tracespace/parser';
 import { beforeAll, describe, expect, test } from 'vitest';
 import { randomFrom } from '../../../src/core/base/random.ts';
 import type { Shape } from '../../../src/core/drawing/drawing.ts';
