@@ -5,6 +5,7 @@ import { request } from 'node:http';
 import { dirname, join } from 'node:path';
 import { type Browser, chromium, type Page } from 'playwright-core';
 import { afterAll, beforeAll, expect, test } from 'vitest';
+import { comb } from './drawings.ts';
 import { domeFolder, freshFolder, planned, poll, ROOT, step, tally } from './open-window.ts';
 
 const BROWSER = ['/usr/bin/chromium', '/usr/bin/chromium-browser', '/usr/bin/google-chrome'].find((f) =>
@@ -93,6 +94,24 @@ test('menus stand in the window; an act is named there; the save lands in the fo
   await page.getByRole('button', { name: 'File', exact: true }).click();
   await page.getByRole('menuitem', { name: 'Save Ctrl+S', exact: true }).click();
   await poll(() => JSON.parse(readFileSync(file, 'utf8')).circuit.elements[0].net).toBe('BROWSER');
+});
+
+test('a dropped drawing, of which a browser gives only the bytes, is laid and saved beside the project', async () => {
+  await page.evaluate((text) => {
+    const dataTransfer = new DataTransfer();
+    dataTransfer.items.add(new File([text], 'comb.svg', { type: 'image/svg+xml' }));
+    const box = document.querySelector('[data-testid=view]')!.getBoundingClientRect();
+    const [clientX, clientY] = [box.x + box.width / 2, box.y + box.height / 2];
+    window.dispatchEvent(
+      new DragEvent('drop', { dataTransfer, bubbles: true, cancelable: true, clientX, clientY }),
+    );
+  }, comb);
+  await poll(() => page.locator('[aria-label=Drawings] > li').textContent()).toMatch(/d1comb\.svg.*3 · /);
+  await page.keyboard.press('Control+s');
+  await poll(() => JSON.parse(readFileSync(file, 'utf8')).circuit.drapes[0]?.drawing).toBe('comb.svg');
+  expect(readFileSync(join(dirname(file), 'comb.svg'), 'utf8')).toBe(comb);
+  await page.keyboard.press('Control+z');
+  await poll(() => page.locator('[aria-label=Drawings]').count()).toBe(0);
 });
 
 test('a name that leaves the folder is refused, and "Save as" with a plain one is kept', async () => {

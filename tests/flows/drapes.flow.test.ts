@@ -1,6 +1,7 @@
 /** Drawings on the part in a real window: opened with their project, and written. */
 import { spawnSync } from 'node:child_process';
 import { mkdirSync, readdirSync, readFileSync, statSync, writeFileSync } from 'node:fs';
+import { createRequire } from 'node:module';
 import { join, relative } from 'node:path';
 import { afterAll, beforeAll, describe, expect, test } from 'vitest';
 import { writeProject } from '../../src/core/project/read.ts';
@@ -170,6 +171,20 @@ describe('a drawing dropped on the part', () => {
     expect(await w.page.locator('.legend').textContent()).toMatch(/0\.5 to 1 %, safe.*more than 4 %/);
     expect((await tally(w.page)).copper).toBeLessThan(150);
     await shot('stretch');
+    await w.page.locator('[aria-label=Drawings] button').first().click();
+    await w.page.evaluate(
+      readFileSync(createRequire(import.meta.url).resolve('axe-core/axe.min.js'), 'utf8'),
+    );
+    const found = await w.page.evaluate(async () => {
+      const { axe } = globalThis as unknown as {
+        axe: { run(o: unknown): Promise<{ violations: { id: string; nodes: { html: string }[] }[] }> };
+      };
+      const { violations } = await axe.run({ runOnly: ['wcag2a', 'wcag2aa', 'wcag22aa', 'best-practice'] });
+      return violations.map((v) => `${v.id}: ${v.nodes.map((n) => n.html.slice(0, 200)).join(' | ')}`);
+    });
+    expect(found).toEqual([]);
+    await w.page.getByTestId('view').focus();
+    await w.page.keyboard.press('Escape');
     await w.page.keyboard.press('s');
     await poll(async () => (await tally(w.page)).copper).toBeGreaterThan(300);
   });
@@ -235,6 +250,9 @@ describe('a project with a drawing', () => {
     await choose(w.app, 'save-as');
     const far = join(other, 'far.drape.json');
     await poll(() => readdirSync(other)).toContain('far.drape.json');
+    await poll(() =>
+      w.app.evaluate(({ BrowserWindow }) => BrowserWindow.getAllWindows()[0]!.getTitle()),
+    ).toBe('far.drape.json – Beamdrape');
     const p = JSON.parse(readFileSync(far, 'utf8')) as Project;
     expect(readFileSync(join(other, p.circuit.drapes[0]!.drawing), 'utf8')).toBe(comb);
     await planned(w.page);

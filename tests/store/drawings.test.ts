@@ -1,4 +1,5 @@
 import { beforeEach, describe, expect, test } from 'vitest';
+import { quiet } from '../../src/core/base/run-context.ts';
 import type { Vec3 } from '../../src/core/base/vec.ts';
 import { writeProject } from '../../src/core/project/read.ts';
 import type { Project } from '../../src/core/project/schema.ts';
@@ -7,6 +8,8 @@ import { stretchRows } from '../../src/store/drapes.ts';
 import { current } from '../../src/store/state.ts';
 import { createStore, type OpenedDrawing, type Store } from '../../src/store/store.ts';
 import { stepWords } from '../../src/store/words.ts';
+import { createSession } from '../../src/worker/session.ts';
+import { flatForTests } from '../core/helpers/flat.ts';
 import { domeHeight, domeProject, domeStl } from '../flows/dome.ts';
 import { comb } from '../flows/drawings.ts';
 import { type FakeWorker, fakeWorker, until } from './fakes.ts';
@@ -279,14 +282,37 @@ describe('a project with drapes', () => {
     expect(s().copper!.value.problems).toEqual([expect.objectContaining({ file: 'art/comb.svg' })]);
   });
 
-  test('hands the drawing over once, and an act elsewhere lays it no second time', async () => {
+  test('hands the drawing over once, whatever else changes', async () => {
     await open(combProject(), [theComb()]);
-    const before = s().copper!.value.elements.find((e) => e.id === 'd1/spine')!;
     store.act({ kind: 'delete', ids: ['t3'] });
     await store.settled();
     expect(heavy.calls.filter((c) => c === 'holdDrawings')).toHaveLength(1);
-    const after = s().copper!.value.elements.find((e) => e.id === 'd1/spine')!;
-    expect(after).toEqual({ ...before, first: expect.any(Number) });
+  });
+
+  test('is laid again only when its drape or its bytes change', async () => {
+    const session = createSession(flatForTests);
+    session.openPart({ bytes: domeStl(20, 40), file: 'dome.stl', units: 'mm' }, quiet);
+    const files = (text: string) => ({ files: [{ file: 'art/comb.svg', bytes: bytes(text) }] });
+    await session.holdDrawings(files(comb));
+    const p = combProject();
+    /** Without patience only what lies there already is given. */
+    const there = (project: Project) => {
+      const { elements, pending } = session.drape({ project, patience: -1 }, quiet);
+      return [elements.filter((e) => e.drape === 'd1').length, pending];
+    };
+    session.drape({ project: p }, quiet);
+    expect(there(p)).toEqual([3, 0]);
+    const pad = { ...p.circuit.elements[0]!, id: 'p9', net: 'new' };
+    expect(there({ ...p, circuit: { ...p.circuit, elements: [...p.circuit.elements, pad] } })).toEqual([
+      3, 1,
+    ]);
+    await session.holdDrawings(files(comb));
+    expect(there(p)).toEqual([3, 0]);
+    const turned = { ...p, circuit: { ...p.circuit, drapes: [{ ...p.circuit.drapes[0]!, turn: 26 }] } };
+    expect(there(turned)).toEqual([0, 1]);
+    session.drape({ project: p }, quiet);
+    await session.holdDrawings(files(comb.replace('0.6', '0.7')));
+    expect(there(p)).toEqual([0, 1]);
   });
 
   test('exports with the drawing beside the part', async () => {
