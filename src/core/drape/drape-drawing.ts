@@ -3,7 +3,7 @@
  * the surface gives it. What the surface does to lengths is measured, not hidden.
  */
 import { radiansFromDegrees } from '../base/brands.ts';
-import type { Vec2, Vec3 } from '../base/vec.ts';
+import { distance, type Vec2, type Vec3 } from '../base/vec.ts';
 import type { Area, Drawing, Hole, Shape, Stroke } from '../drawing/drawing.ts';
 import type { WindowSolver } from '../geodesic/windows.ts';
 import { barycentric } from '../mesh/surface-point.ts';
@@ -71,7 +71,7 @@ export function drapeDrawing(
     const near = holes.filter((h) => boxesMeet(own.flat.box, holeBox(h)));
     const evaluate = (face: number, p: Vec3) => {
       const at = read(face, p);
-      if (!at) return { edge: Math.max(MARGIN, distanceTo(p, anchor.point) - farthest), hatch: 0, along: 0 };
+      if (!at) return { edge: Math.max(MARGIN, distance(p, anchor.point) - farthest), hatch: 0, along: 0 };
       const field = own.flat.at(at[0], at[1]);
       const edge = near.reduce((e, h) => Math.max(e, holeEdge(h, at[0], at[1])), field.edge);
       return { ...field, edge: edge > 0 ? edge / steep : edge };
@@ -262,8 +262,6 @@ function nearestEdge(shapes: readonly Moved[], u: number, v: number): number {
 
 /** A torn map has triangles of no end: refining follows nothing there. */
 const TORN = 3;
-
-const distanceTo = (p: Vec3, q: Vec3): number => Math.hypot(p[0] - q[0], p[1] - q[1], p[2] - q[2]);
 
 const endOf = (points: Float64Array): Vec3 => {
   const o = points.length - 3;

@@ -170,21 +170,21 @@ function placesOf(part: DrapePart, element: Element, path: string, file: string)
 /** Names every bad point of the file at once, before any work is done. */
 export function checkPlaces(project: Project, file: string, part: DrapePart): void {
   const problems: InputProblem[] = [];
-  project.circuit.drapes.forEach((drape, i) => {
+  const collect = (check: () => unknown): void => {
     try {
-      pull(part.queries, part.mesh, drape.anchor, { file, place: `$.circuit.drapes[${i}].anchor` });
+      check();
     } catch (error) {
       if (!(error instanceof InputError)) throw error;
       problems.push(...error.problems);
     }
+  };
+  project.circuit.drapes.forEach((drape, i) => {
+    collect(() =>
+      pull(part.queries, part.mesh, drape.anchor, { file, place: `$.circuit.drapes[${i}].anchor` }),
+    );
   });
   project.circuit.elements.forEach((element, i) => {
-    try {
-      placesOf(part, element, `$.circuit.elements[${i}]`, file);
-    } catch (error) {
-      if (!(error instanceof InputError)) throw error;
-      problems.push(...error.problems);
-    }
+    collect(() => placesOf(part, element, `$.circuit.elements[${i}]`, file));
   });
   if (problems.length > 0) throw new InputError(problems[0], ...problems.slice(1));
 }

@@ -1,14 +1,16 @@
 /** The way along edges that runs right beside a path: from it flips find the path again, or where its ends have moved to. */
 import { Fault } from '../base/news.ts';
-import { distance, type Vec3 } from '../base/vec.ts';
+import { at3, type Vec3 } from '../base/vec.ts';
 import type { SurfaceMesh } from '../mesh/surface-mesh.ts';
 import type { SurfacePoint } from '../mesh/surface-point.ts';
 import type { EdgeWay, EdgeWays } from './edge-ways.ts';
 import type { GeodesicPath } from './geodesic-path.ts';
+import { toPlace, toVertex } from './vertex-lengths.ts';
 
 /**
  * A way along edges from one place to another that keeps the side of an old path between two places nearby: it passes
- * every hole and hump as the old path does, since it leaves the faces of that path only near its ends.
+ * every hole as the old path does, since it leaves the faces of that path only near its ends. It runs through corners of
+ * those faces, so on which side of a single corner it is pulled taut again is left open.
  * @returns null when the old path stays in one face, when its faces do not hang together, or when a place cannot be
  *          joined to it
  */
@@ -36,13 +38,12 @@ function chainBeside(mesh: SurfaceMesh, path: GeodesicPath) {
   for (let i = 0; i + 1 < path.faces.length; i++) {
     const [f, g] = [path.faces[i], path.faces[i + 1]];
     if (f === g) continue;
-    const at: Vec3 = [path.points[3 * i + 3], path.points[3 * i + 4], path.points[3 * i + 5]];
-    const w = nearestShared(mesh, f, g, at);
+    const w = nearestShared(mesh, f, g, at3(path.points, i + 1));
     if (w < 0) return null;
     if (v < 0) [start, face] = [w, f];
     else if (w !== v) {
       steps.push(stepIn(mesh, f, v, w));
-      length += distance(vertex(mesh, v), vertex(mesh, w));
+      length += toVertex(mesh.positions, v, w);
     }
     v = w;
     lastFace = g;
@@ -58,7 +59,7 @@ function nearestShared(mesh: SurfaceMesh, f: number, g: number, at: Vec3): numbe
   for (let i = 3 * f; i < 3 * f + 3; i++)
     for (let j = 3 * g; j < 3 * g + 3; j++) {
       if (triangles[i] !== triangles[j]) continue;
-      const d = distance(vertex(mesh, triangles[i]), at);
+      const d = toPlace(mesh.positions, triangles[i], at);
       if (d < least) [best, least] = [triangles[i], d];
     }
   return best;
@@ -74,8 +75,6 @@ function stepIn({ triangles }: SurfaceMesh, face: number, v: number, w: number):
   }
   throw new Fault(`vertices ${v} and ${w} are not corners of face ${face}`);
 }
-
-const vertex = ({ positions: x }: SurfaceMesh, v: number): Vec3 => [x[3 * v], x[3 * v + 1], x[3 * v + 2]];
 
 function atVertex({ triangles }: SurfaceMesh, face: number, v: number): SurfacePoint {
   const bary = [0, 1, 2].map((i) => (triangles[3 * face + i] === v ? 1 : 0));

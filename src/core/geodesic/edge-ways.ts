@@ -3,7 +3,7 @@
  * 1959, led by the straight line to the target (P. Hart, N. Nilsson, B. Raphael 1968), so that a search stays between the
  * two places; led harder than is right (I. Pohl 1970) it is quicker and at most as much too long.
  */
-import type { Vec3 } from '../base/vec.ts';
+import { at3, type Vec3 } from '../base/vec.ts';
 import { faceOf, next, previous, type SurfaceMesh } from '../mesh/surface-mesh.ts';
 import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
 import { type GeodesicPath, gatherPath } from './geodesic-path.ts';
@@ -118,7 +118,7 @@ export function pathOfWay(
   way: EdgeWay,
 ): GeodesicPath {
   const { positions: x, triangles } = mesh;
-  const vertex = (v: number): Vec3 => [x[3 * v], x[3 * v + 1], x[3 * v + 2]];
+  const vertex = (v: number): Vec3 => at3(x, v);
   const points = [positionOf(mesh, from), vertex(way.start)];
   const faces = [from.face];
   for (const step of way.steps) {

@@ -11,7 +11,7 @@
 import { faceOf, next, type SurfaceMesh } from '../mesh/surface-mesh.ts';
 import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
 import { FaceGeometry } from './face-geometry.ts';
-import { ON_EDGE } from './roots.ts';
+import { cornerAt, edgeAt } from './roots.ts';
 import { toVertex } from './vertex-lengths.ts';
 
 /** `base` of half-edges that start at an inserted point. */
@@ -117,11 +117,11 @@ export class FlipMesh {
 
   /** Puts a point where it is no vertex into the triangulation. @returns its vertex number, or that of the vertex it lies on */
   insert(at: SurfacePoint): number {
-    const on = at.bary.findIndex((b) => Math.abs(b - 1) <= ON_EDGE);
+    const on = cornerAt(at);
     if (on >= 0) return this.mesh.triangles[3 * at.face + on];
-    const edge = at.bary.findIndex((b) => Math.abs(b) <= ON_EDGE);
+    const edge = edgeAt(at);
     const v = this.vertices + this.inserted.length;
-    const half = edge >= 0 ? 3 * at.face + ((edge + 1) % 3) : 3 * at.face;
+    const half = edge >= 0 ? edge : 3 * at.face;
     const k = this.take(half);
     const out = edge >= 0 ? this.splitEdge(v, k, at) : this.splitFace(v, k, at);
     this.inserted.push({ at, half, onEdge: edge >= 0, out });

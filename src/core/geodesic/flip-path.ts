@@ -15,7 +15,7 @@ import { FlipMesh } from './flip-mesh.ts';
 import { walkEdge } from './flip-trace.ts';
 import { type GeodesicPath, gatherPath } from './geodesic-path.ts';
 import { fillRing } from './ring.ts';
-import { cornerAt, ON_EDGE } from './roots.ts';
+import { cornerAt, edgeAt } from './roots.ts';
 import { KeyHeap } from './window-store.ts';
 
 /** A bend below this, radians, is straight: it makes a path longer by about a 1e-13th. */
@@ -278,7 +278,7 @@ function facesOf(mesh: SurfaceMesh, p: SurfacePoint): number[] {
     ring.length = fillRing(mesh, 3 * p.face + corner, ring);
     return ring.map(faceOf);
   }
-  const edge = p.bary.findIndex((b) => Math.abs(b) <= ON_EDGE);
-  const across = edge < 0 ? -1 : mesh.twin[3 * p.face + ((edge + 1) % 3)];
+  const edge = edgeAt(p);
+  const across = edge < 0 ? -1 : mesh.twin[edge];
   return across < 0 ? [p.face] : [p.face, faceOf(across)];
 }

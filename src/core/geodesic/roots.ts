@@ -84,6 +84,12 @@ const PLAIN = {
 /** Corner of the face on which a surface point lies, -1 when it lies on none. */
 export const cornerAt = (p: SurfacePoint): number => p.bary.findIndex((b) => Math.abs(b - 1) <= ON_EDGE);
 
+/** Half-edge of its face on which a surface point that is no corner lies, -1 when it lies inside. */
+export function edgeAt(p: SurfacePoint): number {
+  const opposite = p.bary.findIndex((b) => Math.abs(b) <= ON_EDGE);
+  return opposite < 0 ? -1 : 3 * p.face + ((opposite + 1) % 3);
+}
+
 /** Roots of a point: in its face, in both faces of its edge, or all around its vertex. */
 export function pointRoots(geometry: FaceGeometry, s: PointSource): Start[] {
   const { mesh } = geometry;
@@ -100,10 +106,9 @@ export function pointRoots(geometry: FaceGeometry, s: PointSource): Start[] {
     );
   const root = { ...PLAIN, kind: 'point' as const, source: s.source, at, radius: s.radius };
   const axes = geometry.axes(f, zero);
-  const edge = s.at.bary.findIndex((b) => Math.abs(b) <= ON_EDGE);
-  if (edge < 0) return [{ root: { ...root, face: f, ...axes }, halves: [3 * f, 3 * f + 1, 3 * f + 2] }];
+  const h = edgeAt(s.at);
+  if (h < 0) return [{ root: { ...root, face: f, ...axes }, halves: [3 * f, 3 * f + 1, 3 * f + 2] }];
   // On an edge: the face across it sees the point too, in the same frame once unfolded.
-  const h = 3 * f + ((edge + 1) % 3);
   const here = { root: { ...root, face: f, ...axes }, halves: [next(h), previous(h)] };
   const t = mesh.twin[h];
   if (t < 0) return [here];

@@ -1,6 +1,6 @@
 /** Shortest paths over the surface between two places, exact on the polyhedron. */
 import { Fault } from '../base/news.ts';
-import { distance, type Vec3 } from '../base/vec.ts';
+import { at3, distance, type Vec3 } from '../base/vec.ts';
 import { faceOf, next, type SurfaceMesh } from '../mesh/surface-mesh.ts';
 import { barycentric, positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
 import { wayBeside } from './beside-path.ts';
@@ -88,7 +88,7 @@ export function followWith(
   const last = old.faces.length;
   const end = (i: number, face: number): SurfacePoint => ({
     face,
-    bary: barycentric(mesh, face, [old.points[3 * i], old.points[3 * i + 1], old.points[3 * i + 2]]),
+    bary: barycentric(mesh, face, at3(old.points, i)),
   });
   // The old path and the moves are a way on the same side: a longer answer slipped over something.
   const moves = [

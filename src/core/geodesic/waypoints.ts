@@ -1,5 +1,5 @@
 /** Places that hold a path where it is, though between its ends another way is shorter. */
-import { distance, type Vec3 } from '../base/vec.ts';
+import { at3, distance, type Vec3 } from '../base/vec.ts';
 import { barycentric } from '../mesh/surface-point.ts';
 import type { GeodesicPath } from './geodesic-path.ts';
 import { shortestWith } from './shortest.ts';
@@ -25,7 +25,7 @@ export const waypoints = (solver: WindowSolver, path: GeodesicPath): { face: num
 function held(solver: WindowSolver, path: GeodesicPath, halvings: number): { face: number; point: Vec3 }[] {
   const { mesh } = solver;
   const last = path.faces.length;
-  const point = (i: number): Vec3 => [path.points[3 * i], path.points[3 * i + 1], path.points[3 * i + 2]];
+  const point = (i: number): Vec3 => at3(path.points, i);
   const at = (face: number, p: Vec3) => ({ face, bary: barycentric(mesh, face, p) });
   if (last < 2 || halvings === 0) return [];
   const shortest = shortestWith(solver, at(path.faces[0], point(0)), at(path.faces[last - 1], point(last)));
@@ -70,7 +70,7 @@ function held(solver: WindowSolver, path: GeodesicPath, halvings: number): { fac
 
 /** Place half way along a path. */
 function middleOf(path: GeodesicPath): Vec3 {
-  const point = (i: number): Vec3 => [path.points[3 * i], path.points[3 * i + 1], path.points[3 * i + 2]];
+  const point = (i: number): Vec3 => at3(path.points, i);
   let left = path.length / 2;
   for (let i = 0; i < path.faces.length; i++) {
     const [p, q] = [point(i), point(i + 1)];
