@@ -60,7 +60,7 @@ test('the program says that it opens in a browser, and why', () => {
 
 test('the page is isolated and draws the copper', async () => {
   expect(await page.evaluate(() => crossOriginIsolated)).toBe(true);
-  expect((await tally(page)).copper).toBeGreaterThan(500);
+  await poll(async () => (await tally(page)).copper).toBeGreaterThan(500);
 });
 
 test('without the key, from another site or under another name the server refuses', async () => {

@@ -91,8 +91,7 @@ const saved = async (): Promise<Project> => {
 };
 
 test('a project with a drawing opens with its copper, in the pixels', async () => {
-  const seen = await tally(w.page);
-  expect(seen.copper).toBeGreaterThan(100);
+  await poll(async () => (await tally(w.page)).copper).toBeGreaterThan(100);
   await shot('open');
 });
 
@@ -169,7 +168,7 @@ describe('a drawing dropped on the part', () => {
     const count = (look: string) => w.page.locator(`[data-stretch=${look}] .count`).textContent();
     await poll(() => count('little')).toMatch(/^[1-6] /);
     expect(await w.page.locator('.legend').textContent()).toMatch(/0\.5 to 1 %, safe.*more than 4 %/);
-    expect((await tally(w.page)).copper).toBeLessThan(150);
+    await poll(async () => (await tally(w.page)).copper).toBeLessThan(150);
     await shot('stretch');
     await w.page.locator('[aria-label=Drawings] button').first().click();
     await w.page.evaluate(
