@@ -6,8 +6,9 @@
  * all corners move to where the rotated triangles agree the most (global, eq. 3: the cotangent Laplacian), and again. Only
  * triangles that carry copper count in full; the others hold the map together. The anchor and the direction of u there stay.
  */
+
+import { factor, type SparseRows } from '../base/sparse.ts';
 import type { MapPatch } from './map-patch.ts';
-import { factor, type SparseRows } from './sparse.ts';
 
 /** What triangles without copper count: enough to keep the map whole, too little to bend it. */
 const REST = 1e-2;

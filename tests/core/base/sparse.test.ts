@@ -1,7 +1,8 @@
 import { describe, expect, it } from 'vitest';
+import { nestedDissection } from '../../../src/core/base/nested-dissection.ts';
 import { Fault } from '../../../src/core/base/news.ts';
 import { randomFrom } from '../../../src/core/base/random.ts';
-import { factor, type SparseRows } from '../../../src/core/drape/sparse.ts';
+import { factor, type SparseRows } from '../../../src/core/base/sparse.ts';
 
 /** A grid's Laplacian with random weights, in a random order of unknowns, and a little on the diagonal. */
 function grid(n: number, random: () => number, extra: number): { rows: SparseRows; dense: number[][] } {
@@ -42,7 +43,7 @@ function grid(n: number, random: () => number, extra: number): { rows: SparseRow
   };
 }
 
-describe('Cholesky within the envelope', () => {
+describe('Cholesky by rows', () => {
   it('solves: the matrix times the answer is the right side, seeds 61 to 66', () => {
     for (let seed = 61; seed <= 66; seed++) {
       const random = randomFrom(seed);
@@ -53,6 +54,43 @@ describe('Cholesky within the envelope', () => {
         expect(row.reduce((sum, a, j) => sum + a * x[j], 0)).toBeCloseTo(b[i], 10);
       });
     }
+  });
+
+  it('solves where several pieces hang on nothing, and one unknown stands alone', () => {
+    const { rows } = grid(9, randomFrom(68), 0.5);
+    const n = rows.start.length - 1;
+    // Twice the grid and a lone unknown between the two.
+    const both: SparseRows = {
+      start: Int32Array.from([
+        ...rows.start,
+        rows.start[n] + 1,
+        ...rows.start.subarray(1).map((s) => s + rows.start[n] + 1),
+      ]),
+      column: Int32Array.from([...rows.column, n, ...rows.column.map((c) => c + n + 1)]),
+      value: Float64Array.from([...rows.value, 4, ...rows.value]),
+    };
+    const b = Float64Array.from({ length: n }, (_, i) => Math.sin(i));
+    const x = factor(both).solve(Float64Array.from([...b, 2, ...b]));
+    const alone = factor(rows).solve(b);
+    expect(x[n]).toBe(0.5);
+    alone.forEach((a, i) => {
+      expect(x[i]).toBeCloseTo(a, 10);
+      expect(x[n + 1 + i]).toBeCloseTo(a, 10);
+    });
+  });
+
+  it('the order holds every unknown once, and entries grow as n log n on grids (George 1973), seed 69', () => {
+    const cost = [12, 24, 48].map((n) => {
+      const { rows } = grid(n, randomFrom(69), 0.1);
+      expect([...nestedDissection(rows)].sort((a, b) => a - b)).toEqual(
+        Array.from({ length: n * n }, (_, i) => i),
+      );
+      return factor(rows).entries;
+    });
+    // 31/4 n² log₂ n at the most; in an envelope they would grow as n³.
+    for (const [i, n] of [12, 24, 48].entries())
+      expect(cost[i]).toBeLessThan((31 / 4) * n * n * Math.log2(n));
+    expect(cost[2] / cost[1]).toBeLessThan(6);
   });
 
   it('a matrix that is not positive definite is a fault', () => {
