@@ -18,6 +18,7 @@ import type { SurfaceMesh } from '../../src/core/mesh/surface-mesh.ts';
 import { barycentric, type SurfacePoint } from '../../src/core/mesh/surface-point.ts';
 import { COLUMNS, cppTimes } from './cpp-times.ts';
 import { lumpy, lumpySoup, RADIUS } from './lumpy.ts';
+import { median, timed } from './timed.ts';
 
 /** Directions of the sources, lopsided, and of the targets `share` of half a turn away. */
 function pair(k: number, share: number): [Vec3, Vec3] {
@@ -146,12 +147,3 @@ function place(mesh: SurfaceMesh, queries: SurfaceQueries, p: Vec3): SurfacePoin
   const hit = queries.nearest(p)!;
   return { face: hit.face, bary: barycentric(mesh, hit.face, hit.point) };
 }
-
-function timed<T>(work: () => T): [T, number] {
-  const start = process.cpuUsage();
-  const result = work();
-  const used = process.cpuUsage(start);
-  return [result, (used.user + used.system) / 1000];
-}
-
-const median = (values: number[]): number => values.sort((a, b) => a - b)[values.length >> 1];

@@ -5,7 +5,8 @@
  *   --sizes 50000,200000    other sizes
  *   --json FILE             the table as JSON, too
  *
- * `npm run bench -- geodesic` measures paths over the surface instead (`geodesic.ts`).
+ * `npm run bench -- geodesic` measures paths over the surface instead (`geodesic.ts`), `npm run bench -- drawing` what it
+ * costs to move, turn and lay a drawing (`drawing.ts`).
  */
 import { writeFileSync } from 'node:fs';
 import { availableParallelism, cpus } from 'node:os';
@@ -22,6 +23,7 @@ import { readStl } from '../../src/core/mesh/stl.ts';
 import { buildNormals } from '../../src/core/part/normals.ts';
 import { checkReach } from '../../src/core/reach/reach.ts';
 import { prepareGround, scanLayer } from '../../src/core/scan/scan-layer.ts';
+import { measureDrawing, printDrawings } from './drawing.ts';
 import { measureGeodesics, measurePatch, measureWhole, printGeodesics } from './geodesic.ts';
 import { stoneProject, stoneStl } from './part.ts';
 
@@ -45,6 +47,17 @@ if (positionals[0] === 'geodesic') {
       measureWhole,
       levels.filter((level) => level < 7),
     ),
+  );
+  process.exit(0);
+}
+if (positionals[0] === 'drawing') {
+  const levels = (values.levels ?? '5,6,7').split(',').map(Number);
+  measureDrawing(4);
+  printDrawings(
+    levels.map((level) => {
+      process.stderr.write(`${20 * 4 ** level} triangles …\n`);
+      return measureDrawing(level);
+    }),
   );
   process.exit(0);
 }

@@ -3,6 +3,7 @@
  * the surface gives it. What the surface does to lengths is measured, not hidden.
  */
 import { radiansFromDegrees } from '../base/brands.ts';
+import { quiet, type RunContext } from '../base/run-context.ts';
 import { distance, type Vec2, type Vec3 } from '../base/vec.ts';
 import type { Area, Drawing, Hole, Shape, Stroke } from '../drawing/drawing.ts';
 import type { WindowSolver } from '../geodesic/windows.ts';
@@ -37,21 +38,27 @@ interface Moved {
  * @param drape   where the drawing lies; layers named `skip` are left out
  * @param anchor  surface place nearest to `drape.anchor`
  * @returns elements in the drawing's order, and what could not be laid: the rest is kept
+ * @throws Cancelled by `ctx`, which is asked between shapes and while the map is made
  */
 export function drapeDrawing(
   solver: WindowSolver,
   drape: Drape,
   drawing: Drawing,
   anchor: Place,
+  ctx: RunContext = quiet,
 ): DrawingDraped {
   const shapes = movedShapes(drape, drawing);
   const holes = drawing.holes.map((h) => movedHole(h, drape.origin));
   const farthest = Math.max(0, ...shapes.map((s) => farthestCorner(s.flat.box)));
   if (shapes.length === 0) return { elements: [], findings: [] };
   const radius = farthest + MARGIN;
+  let done = 0;
+  const step = (): void => ctx.step('drape', done, shapes.length);
+  step();
   const patch = mapPatch(solver, anchor, radius, radiansFromDegrees(drape.turn), drape.mirror);
   const limits = patch.limits((u, v) => nearestEdge(shapes, u, v));
-  if (drape.evenLengths) evenLengths(patch, (u, v) => nearestEdge(shapes, u, v));
+  step();
+  if (drape.evenLengths) evenLengths(patch, (u, v) => nearestEdge(shapes, u, v), step);
   const walk = new PatchWalk(patch);
   const read = flatReader(patch);
   const chord = chordLength(solver.mesh, patch, radius);
@@ -62,6 +69,8 @@ export function drapeDrawing(
   const steep = Math.min(steepest(patch), TORN);
   const elements: CopperElement[] = [];
   for (const own of shapes) {
+    step();
+    done++;
     if (drape.lay === 'pulled straight' && own.figure.kind === 'stroke') {
       const pulled = pullStraight(solver, walk, own, own.figure);
       if (pulled.element) elements.push(pulled.element);
@@ -79,8 +88,8 @@ export function drapeDrawing(
     const triangles = walk.within(grown(own.flat.box, MARGIN));
     const faces = [...new Set([...triangles].map((t) => patch.face[t]))].sort((a, b) => a - b);
     const { figure } = own;
-    const step = figure.kind === 'stroke' ? traceStep(figure.width) : AREA_STEP;
-    const laid = layOut(solver.mesh, faces, evaluate, step);
+    const coarse = figure.kind === 'stroke' ? traceStep(figure.width) : AREA_STEP;
+    const laid = layOut(solver.mesh, faces, evaluate, coarse);
     if (laid.copper.face.length === 0) {
       findings.push({
         rule: 'no-copper',
@@ -190,21 +199,30 @@ const BEYOND = {
 
 function movedShapes(drape: Drape, drawing: Drawing): Moved[] {
   const [ou, ov] = drape.origin;
+  const ids = elementIds(drape, drawing);
+  return drawing.shapes.flatMap((shape, i) => {
+    const id = ids[i];
+    if (id === null) return [];
+    const figure = moved(shape.figure, ou, ov);
+    const net =
+      (shape.id !== null ? drape.nets[shape.id] : undefined) ?? drape.nets[shape.layer] ?? shape.net ?? '';
+    return [{ id, net, shape, figure, flat: flatFigure(figure) }];
+  });
+}
+
+/** Ids that the shapes of a drawing get on the part, in the drawing's order; null where their layer is left out. */
+export function elementIds(drape: Pick<Drape, 'id' | 'drawingLayers'>, drawing: Drawing): (string | null)[] {
   const taken = new Set<string>();
   let n = 0;
-  return drawing.shapes
-    .filter((s) => drape.drawingLayers[s.layer] !== 'skip')
-    .map((shape) => {
-      n++;
-      let id = `${drape.id}/${shape.id ?? n}`;
-      // Two shapes of one name: the later ones are told apart by their number.
-      if (taken.has(id)) id = `${id}.${n}`;
-      taken.add(id);
-      const figure = moved(shape.figure, ou, ov);
-      const net =
-        (shape.id !== null ? drape.nets[shape.id] : undefined) ?? drape.nets[shape.layer] ?? shape.net ?? '';
-      return { id, net, shape, figure, flat: flatFigure(figure) };
-    });
+  return drawing.shapes.map((shape) => {
+    if (drape.drawingLayers[shape.layer] === 'skip') return null;
+    n++;
+    let id = `${drape.id}/${shape.id ?? n}`;
+    // Two shapes of one name: the later ones are told apart by their number.
+    if (taken.has(id)) id = `${id}.${n}`;
+    taken.add(id);
+    return id;
+  });
 }
 
 const shift = (points: Float64Array, ou: number, ov: number): Float64Array =>

@@ -1,6 +1,6 @@
 /** Circuit + part → copper on the surface. */
 import { Fault, InputError, type InputProblem } from '../base/news.ts';
-import type { RunContext } from '../base/run-context.ts';
+import { quiet, type RunContext } from '../base/run-context.ts';
 import type { Drawing } from '../drawing/drawing.ts';
 import { WindowSolver } from '../geodesic/windows.ts';
 import { restoreQueries, type SurfaceQueries, type SurfaceTree, serializeQueries } from '../mesh/queries.ts';
@@ -61,7 +61,7 @@ export function drapeCircuit(
   ctx.step('drape', tasks.length, tasks.length);
   return gatherCircuit(
     draped,
-    drawn.map((task) => drapeDrawingOn(draper, task)),
+    drawn.map((task) => drapeDrawingOn(draper, task, ctx)),
   );
 }
 
@@ -104,10 +104,15 @@ export function layDrawing(shared: DrapeShared, task: DrawingTask): DrawingDrape
   return drapeDrawingOn(draperOf(shared), task);
 }
 
-export function drapeDrawingOn(draper: Draper, { drape, drawing, path, file }: DrawingTask): DrawingDraped {
+/** @throws InputError `far-from-surface`, Cancelled */
+export function drapeDrawingOn(
+  draper: Draper,
+  { drape, drawing, path, file }: DrawingTask,
+  ctx: RunContext = quiet,
+): DrawingDraped {
   const { mesh, queries } = draper.part;
   const anchor = pull(queries, mesh, drape.anchor, { file, place: `${path}.anchor` });
-  return drapeDrawing(draper.solver, drape, drawing, anchor);
+  return drapeDrawing(draper.solver, drape, drawing, anchor, ctx);
 }
 
 /** One independent task an element. */

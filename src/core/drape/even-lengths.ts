@@ -24,9 +24,14 @@ const HOLD = 1e-7;
 /**
  * Changes `patch.flat`.
  * @param edge  signed distance to the nearest copper of the drawing at a flat place, mm
+ * @param step  called before each round; what it throws stops the work, and the map is then of no use
  * @returns whether the map was evened; false where that would have folded it over copper: it is as it was then
  */
-export function evenLengths(patch: MapPatch, edge: (u: number, v: number) => number): boolean {
+export function evenLengths(
+  patch: MapPatch,
+  edge: (u: number, v: number) => number,
+  step: () => void = () => {},
+): boolean {
   const { triangles, flat } = patch;
   const count = triangles.length / 3;
   if (count === 0) return true;
@@ -42,6 +47,7 @@ export function evenLengths(patch: MapPatch, edge: (u: number, v: number) => num
   const handed = Math.sign(handedness(patch));
   const anchorAt = [before[2 * patch.anchor], before[2 * patch.anchor + 1]];
   for (let round = 0; round < ROUNDS; round++) {
+    step();
     const right = rightSide(patch, sides, weight, handed);
     let moved = 0;
     for (let k = 0; k < 2; k++) {
