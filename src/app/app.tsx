@@ -3,6 +3,7 @@ import { useCallback, useEffect, useMemo, useRef, useState } from 'react';
 import type { Host, RecentFile } from '../bridge/host.ts';
 import { QuestionDialog } from '../panels/dialogs.tsx';
 import { Facts } from '../panels/facts.tsx';
+import { FlatDrawing } from '../panels/flat-drawing.tsx';
 import { Journey } from '../panels/journey.tsx';
 import { Legend } from '../panels/legend.tsx';
 import { MenuBar } from '../panels/menu-bar.tsx';
@@ -128,6 +129,7 @@ export function App({ store, host, questions }: { store: Store; host: Host; ques
       store,
       run,
       showPlace: (point, normal) => view.current?.showPlace(point, normal),
+      reveal: (ids) => view.current?.reveal(ids),
       dismissed: dismissed ?? new Set(['hint-offset', 'hint-trace', 'hint-files']),
       dismiss(what) {
         setDismissed((d) => new Set([...(d ?? []), what]));
@@ -142,14 +144,17 @@ export function App({ store, host, questions }: { store: Store; host: Host; ques
       <Frame host={host} commands={commands} />
       <main>
         <Journey />
-        <div className="stage">
-          <ViewportBox store={store} onView={(v) => (view.current = v)} />
-          <Tools />
-          <Legend />
-          <ToolHelp />
-          <BusyLine />
-          <Hints />
-          <Notices />
+        <div className="middle">
+          <div className="stage">
+            <ViewportBox store={store} onView={(v) => (view.current = v)} />
+            <Tools />
+            <Legend />
+            <ToolHelp />
+            <BusyLine />
+            <Hints />
+            <Notices />
+          </div>
+          <FlatDrawing />
         </div>
         <Facts />
         <HeightStrip />

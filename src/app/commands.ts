@@ -164,6 +164,14 @@ export function commandList(store: Store, documents: Documents, view: () => View
       run: () => store.showStretch(!store.getState().stretchShown),
     },
     {
+      id: 'toggle-flat',
+      menu: 'View',
+      label: (s) => (s.flatShown ? 'Put the flat drawing away' : 'Flat drawing beside the part'),
+      keys: 'D',
+      enabled: (s) => (s.project?.circuit.drapes.length ?? 0) > 0,
+      run: () => store.showFlat(!store.getState().flatShown),
+    },
+    {
       id: 'toggle-lens',
       menu: 'View',
       label: () => 'Lens body',

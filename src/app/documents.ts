@@ -291,7 +291,7 @@ export function createDocuments(
     showHelp: () =>
       void ask({
         title: 'Keys and mouse',
-        text: 'Drag turns the view, Shift and drag (or the right button) moves it, the wheel zooms to the pointer. Arrows turn it, + and − zoom, F fits, B looks down the beam. T draws a trace, P places pads, V selects, Esc steps back. A drawing dropped on the part is laid there; selected, it is dragged by its copper, and the wheel over it (or Alt and the arrows) turns it. In the strip, arrows move the marker or a layer; Enter shows a layer alone.',
+        text: 'Drag turns the view, Shift and drag (or the right button) moves it, the wheel zooms to the pointer. Arrows turn it, + and − zoom, F fits, B looks down the beam. T draws a trace, P places pads, V selects, Esc steps back. A drawing dropped on the part is laid there; selected, it is dragged by its copper, and the wheel over it (or Alt and the arrows) turns it. D shows the flat drawing beside the part. In the strip, arrows move the marker or a layer; Enter shows a layer alone.',
         answers: [['ok', 'Close this']],
       }),
   };

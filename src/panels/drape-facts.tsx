@@ -82,6 +82,9 @@ export function DrapeFacts({ drape: d, state }: { drape: Drape; state: State }) 
       </dl>
       {worst && <Stretch e={worst} state={state} />}
       <p className="row">
+        <button type="button" aria-pressed={state.flatShown} onClick={() => store.showFlat(!state.flatShown)}>
+          Flat drawing
+        </button>
         <button type="button" onClick={() => store.deleteSelected()}>
           Delete {d.id}
         </button>

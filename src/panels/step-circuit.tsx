@@ -1,6 +1,7 @@
 /** Circuit: what is drawn, and what the next stroke will be. */
 import { lastName } from '../store/document.ts';
 import { drapeSums } from '../store/drapes.ts';
+import { toggled } from '../store/flat.ts';
 import { current } from '../store/state.ts';
 import { show } from '../store/units.ts';
 import { ChoiceField, NumberField, TextField } from './fields.tsx';
@@ -175,6 +176,3 @@ export function CircuitStep() {
     </>
   );
 }
-
-const toggled = (list: readonly string[], id: string): string[] =>
-  list.includes(id) ? list.filter((x) => x !== id) : [...list, id];

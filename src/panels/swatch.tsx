@@ -29,7 +29,7 @@ export function Swatch({ look }: { look: Reason | 'reached' }) {
   );
 }
 
-export function StretchSwatch({ look }: { look: StretchRow['look'] }) {
+export function StretchSwatch({ look }: { look: StretchRow['look'] | 'not-laid' | 'left-out' }) {
   return (
     <svg
       className={`swatch stretch-${look}`}
@@ -45,6 +45,12 @@ export function StretchSwatch({ look }: { look: StretchRow['look'] }) {
       )}
       {(look === 'much' || look === 'too-much') && (
         <path className="mark" d="M-2 17 L8 -1 M4 17 L14 -1 M10 17 L20 -1 M16 17 L26 -1" />
+      )}
+      {look === 'not-laid' && (
+        <path
+          className="mark"
+          d="M5 2 V7 M2.5 4.5 H7.5 M13 2 V7 M10.5 4.5 H15.5 M9 9 V14 M6.5 11.5 H11.5 M17 9 V14 M14.5 11.5 H19.5"
+        />
       )}
       {look === 'too-much' && (
         <path className="mark" d="M-2 -1 L8 17 M4 -1 L14 17 M10 -1 L20 17 M16 -1 L26 17" />

@@ -6,6 +6,8 @@ export function Tools() {
   const tool = useLook((s) => s.tool);
   const part = useLook((s) => s.part);
   const { past, future } = useLook((s) => s.history);
+  const drapes = useLook((s) => s.project?.circuit.drapes.length ?? 0);
+  const flat = useLook((s) => s.flatShown);
   const undo = past[past.length - 1];
   const redo = future[0];
   const pick = (kind: 'look' | 'trace' | 'pad') => store.setTool(kind);
@@ -66,6 +68,16 @@ export function Tools() {
       <button type="button" onClick={() => run('view-beam')} title="Down the beam (B)">
         Beam’s eye
       </button>
+      {drapes > 0 && (
+        <button
+          type="button"
+          aria-pressed={flat}
+          onClick={() => run('toggle-flat')}
+          title="The flat drawing beside the part (D)"
+        >
+          Flat
+        </button>
+      )}
     </div>
   );
 }

@@ -10,6 +10,8 @@ export interface WindowTools {
   /** Runs a command by its id, as the menu does. */
   run(command: string): void;
   showPlace(point: Vec3, normal: Vec3): void;
+  /** Turns the view to the first of these elements if none of them can be seen. */
+  reveal(ids: readonly string[]): void;
   dismissed: ReadonlySet<string>;
   dismiss(what: string): void;
 }
@@ -29,7 +31,11 @@ export function useSteady(): State {
   useEffect(() => {
     setState(api.getState());
     return api.subscribe((now, before) => {
-      if ((Object.keys(now) as (keyof State)[]).some((k) => k !== 'hover' && now[k] !== before[k]))
+      if (
+        (Object.keys(now) as (keyof State)[]).some(
+          (k) => k !== 'hover' && k !== 'pointed' && now[k] !== before[k],
+        )
+      )
         setState(now);
     });
   }, [api]);

@@ -98,6 +98,8 @@ export interface State {
   show: Show;
   /** Copper of drawings is coloured by its stretch instead. */
   stretchShown: boolean;
+  /** The flat drawing stands beside the part. */
+  flatShown: boolean;
   /** Layer shown alone, counting from 0. */
   isolated: number | null;
   selection: readonly string[];
@@ -106,6 +108,8 @@ export interface State {
   /** Ways over the surface to a point being dragged; the copper follows when it is let go. */
   preview: readonly Float32Array[];
   hover: { probe: Probe; element: number; triangle: number } | null;
+  /** Element under the pointer in a panel. */
+  pointed: string | null;
 }
 
 export const firstState: State = {
@@ -126,12 +130,14 @@ export const firstState: State = {
   offset: 0,
   show: 'layers',
   stretchShown: false,
+  flatShown: false,
   isolated: null,
   selection: [],
   tool: { kind: 'look' },
   pen: { width: 0.6, net: '', shape: { circle: 1.6 } },
   preview: [],
   hover: null,
+  pointed: null,
 };
 
 export const hasCircuit = ({ circuit }: Project): boolean =>

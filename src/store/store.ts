@@ -10,6 +10,7 @@ import { createCarrier } from './carry.ts';
 import { type Act, apply, freeId, lastName, nameOf } from './document.ts';
 import { createFollower, filesOf } from './follow.ts';
 import { noHistory, record, redo, seal, undo } from './history.ts';
+import { lookingActs } from './looking.ts';
 import { copperAt } from './margins.ts';
 import {
   current,
@@ -576,6 +577,7 @@ export function createStore(workers: Workers) {
 
   return {
     api,
+    ...lookingActs(api),
     layDrawings,
     /** Moves a drawing's anchor to where the ray meets the part. */
     dragDrape: carrier.drag,
@@ -609,7 +611,6 @@ export function createStore(workers: Workers) {
     setPen: (pen: Partial<State['pen']>) => set((s) => ({ pen: { ...s.pen, ...pen } })),
     setStep: (step: State['step']) => set({ step }),
     setSetup: (setup: number) => set({ setup, isolated: null }),
-    showStretch: (stretchShown: boolean) => set({ stretchShown }),
     setShow: (show: State['show']) => set({ show, ...(show === 'offset' ? {} : { isolated: null }) }),
     /** Moves the stage; the copper is then seen as it stands at that offset. */
     setOffset: (offset: number) => set({ offset, show: 'offset' }),

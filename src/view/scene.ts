@@ -64,10 +64,11 @@ export function createScene(canvas: HTMLCanvasElement) {
   const outlines = new LineSegments(new BufferGeometry(), rimMat);
   const doseLines = new LineSegments2(new LineSegmentsGeometry(), fat(3));
   const chosen = new LineSegments2(new LineSegmentsGeometry(), fat(3));
+  const pointed = new LineSegments2(new LineSegmentsGeometry(), fat(3));
   const live = new LineSegments2(new LineSegmentsGeometry(), fat(3.5));
   const beam = new LineSegments2(new LineSegmentsGeometry(), fat(1.5));
   (doseLines.material as LineMaterial).color = new Color(LOOKS.dose.mark);
-  for (const o of [partMesh, partEdges, copperMesh, outlines, doseLines, chosen, live]) {
+  for (const o of [partMesh, partEdges, copperMesh, outlines, doseLines, chosen, pointed, live]) {
     o.frustumCulled = false;
     part.add(o);
   }
@@ -259,6 +260,7 @@ export function createScene(canvas: HTMLCanvasElement) {
     rimMat.uniforms['uColor']!.value.set(s.copperEdge);
     (chosen.material as LineMaterial).color.set(s.select);
     (live.material as LineMaterial).color.set(s.live);
+    (pointed.material as LineMaterial).color.set(s.live);
     (beam.material as LineMaterial).color.set(s.live);
   }
 
@@ -285,7 +287,7 @@ export function createScene(canvas: HTMLCanvasElement) {
       eye.target[2] + back[2] * FAR,
     );
     camera.updateProjectionMatrix();
-    for (const l of [doseLines, chosen, live, beam])
+    for (const l of [doseLines, chosen, pointed, live, beam])
       (l.material as LineMaterial).resolution.set(width, height);
     renderer.render(scene, camera);
   }
@@ -301,6 +303,8 @@ export function createScene(canvas: HTMLCanvasElement) {
     setView,
     setScheme,
     setChosen: (loops: readonly Float32Array[]) => setSegments(chosen, segmentsOf(loops)),
+    /** What a panel points at. */
+    setPointed: (loops: readonly Float32Array[]) => setSegments(pointed, segmentsOf(loops)),
     setLive: (runs: readonly Float32Array[]) => setSegments(live, segmentsOf(runs)),
     /** The beam to a place, bench frame, or nothing. */
     setBeam: (from: Vec3 | null, to: Vec3 | null) =>

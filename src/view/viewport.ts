@@ -4,11 +4,12 @@ import { partPoint } from '../core/base/brands.ts';
 import { poseFrame } from '../core/base/pose.ts';
 import type { Vec3 } from '../core/base/vec.ts';
 import type { Drape } from '../core/project/schema.ts';
-import { STRETCHES, selectedDrape, stretchLook } from '../store/drapes.ts';
+import { normalNear, STRETCHES, selectedDrape, stretchLook } from '../store/drapes.ts';
 import { plainDepth } from '../store/looks.ts';
 import { current, type State } from '../store/state.ts';
 import { type Ray, type Store, setupsOf } from '../store/store.ts';
 import {
+  axesOf,
   between,
   type Eye,
   fitted,
@@ -29,6 +30,8 @@ export interface Viewport {
   look(name: ViewName): void;
   /** Turns to a place of the part, seen along its normal. */
   showPlace(point: Vec3, normal: Vec3): void;
+  /** Turns to the first of these elements if none of them faces the eye within the picture. */
+  reveal(ids: readonly string[]): void;
   /** Rays to the part: through a place of the page where it lies in the viewport, and through the middle. Part frame. */
   rays(at: { x: number; y: number } | null): Ray[];
   toggle(what: 'plane' | 'lens' | 'cut'): void;
@@ -149,6 +152,8 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
           .flatMap((e) => e.outline),
       );
     }
+    if (copperChanged || changed((x) => x.pointed))
+      scene.setPointed(copper?.elements.find((e) => e.id === s.pointed)?.outline ?? []);
     if (changed((x) => x.tool) || changed((x) => x.preview))
       scene.setLive(
         s.tool.kind === 'trace'
@@ -475,6 +480,21 @@ export function createViewport(canvas: HTMLCanvasElement, overlay: HTMLElement, 
     showPlace(point, normal) {
       const frame = frameOf(get());
       glide(lookingAt(eye, frame.point(partPoint(point)), frame.direction(normal)));
+    },
+    reveal(ids) {
+      const { copper } = current(get());
+      if (!copper) return;
+      const wanted = new Set(ids);
+      const found = copper.elements.filter((e) => wanted.has(e.id) && e.count > 0);
+      const frame = frameOf(get());
+      const { back } = axesOf(eye);
+      const seen = found.some((e) => {
+        const [x, y] = seenAt(eye, inBench(e.anchor), width / height);
+        const n = frame.direction(normalNear(copper, e, e.anchor));
+        return Math.abs(x) < 1 && Math.abs(y) < 1 && n[0] * back[0] + n[1] * back[1] + n[2] * back[2] > 0;
+      });
+      const [first] = found;
+      if (first && !seen) this.showPlace(first.anchor, normalNear(copper, first, first.anchor));
     },
     rays(at) {
       const box = canvas.getBoundingClientRect();

@@ -1,10 +1,10 @@
 /** What the window's worker hands back: flat arrays ready to draw and to ask. Lengths mm, angles degrees. */
 
 import type { InputProblem } from '../core/base/news.ts';
-import type { Vec3 } from '../core/base/vec.ts';
+import type { Vec2, Vec3 } from '../core/base/vec.ts';
 import type { ElementKind } from '../core/drape/copper.ts';
 import type { DrapeFinding } from '../core/drape/element.ts';
-import type { Note } from '../core/drawing/drawing.ts';
+import type { Bends, Ends, Note } from '../core/drawing/drawing.ts';
 import type { Mended } from '../core/mesh/surface-mesh.ts';
 import type { Report, RuleFinding } from '../core/project/report.ts';
 import type { Reason } from '../core/reach/result.ts';
@@ -56,6 +56,35 @@ export interface DrawingPicture {
   layers: string[];
   /** What its reader left out or assumed. */
   notes: Note[];
+  flat: FlatPicture;
+}
+
+/** A drawing as it was drawn, mm, u to the right and v up, thinned to what can be seen. */
+export interface FlatPicture {
+  /** Differs where anything below differs. */
+  key: string;
+  /** Element of each shape on the part; null where its layer is left out. */
+  ids: (string | null)[];
+  /** Lower left and upper right of all of it, lines with their width; null where it is empty. */
+  box: [Vec2, Vec2] | null;
+  shapes: FlatShapePicture[];
+  /** 2 a point, one ring or line after the other. */
+  points: Float32Array;
+  /** Point behind the last one of each ring or line. */
+  ends: Uint32Array;
+  /** 5 a hole: where it begins and ends (the same unless it is a slot), and its diameter. */
+  holes: Float32Array;
+}
+
+export interface FlatShapePicture {
+  /** Its rings, or its one line, are `first … first + count - 1`. */
+  first: number;
+  count: number;
+  /** Of a line, mm; 0 for an area: outlines counter-clockwise, holes clockwise. */
+  width: number;
+  closed: boolean;
+  ends: Ends;
+  bends: Bends;
 }
 
 /** The copper of all elements, one triangle after the other: T triangles on V vertices. */

@@ -31,6 +31,7 @@ import { gapRule } from '../core/rules/gap.ts';
 import { stretchRule } from '../core/rules/stretch.ts';
 import { widthRule } from '../core/rules/width.ts';
 import { creases } from './creases.ts';
+import { flatPicture } from './flat-picture.ts';
 import { boxOf, HeldDrawings, type LoadFlat, type Reading } from './held-drawings.ts';
 import { HeldPaths, type Hold } from './held-paths.ts';
 import {
@@ -192,9 +193,14 @@ export function createSession(flat: LoadFlat = noFlat) {
             holes: drawing.holes.length,
             layers: drawing.layers,
             notes: drawing.notes,
+            flat: flatPicture(drawing, drape, key),
           });
           const all = known(`${key} ${JSON.stringify(drape)}`, () =>
-            drapeDrawingOn(draper!, { drape, drawing, path, file }),
+            drapeDrawingOn(
+              draper!,
+              { drape, drawing, path, file },
+              { step: () => ctx.step('drape', drawn.length + i, drawn.length + drapes.length) },
+            ),
           );
           for (const e of all?.elements ?? []) drapeOf.set(e.id, drape.id);
           elements.push(...(all?.elements ?? []));

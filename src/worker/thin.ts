@@ -1,8 +1,12 @@
 /** Fewer points for a line that is only drawn: D. Douglas and T. Peucker, The Canadian Cartographer 10 (1973) 112. */
 
 /** @param line  3 a point; @param tolerance  mm that the thinned line may stray; @returns a line with the same ends */
-export function thinned(line: ArrayLike<number>, tolerance: number): Float32Array {
-  const n = line.length / 3;
+export const thinned = (line: ArrayLike<number>, tolerance: number): Float32Array =>
+  thinnedIn(3, line, tolerance);
+
+/** @param size  numbers a point; the rest as for `thinned` */
+export function thinnedIn(size: 2 | 3, line: ArrayLike<number>, tolerance: number): Float32Array {
+  const n = line.length / size;
   if (n < 3) return Float32Array.from(line);
   const keep = new Uint8Array(n);
   keep[0] = keep[n - 1] = 1;
@@ -12,7 +16,7 @@ export function thinned(line: ArrayLike<number>, tolerance: number): Float32Arra
     let far = tolerance;
     let at = -1;
     for (let i = a + 1; i < b; i++) {
-      const d = distanceToSegment(line, i, a, b);
+      const d = distanceToSegment(size, line, i, a, b);
       if (d > far) [far, at] = [d, i];
     }
     if (at < 0) continue;
@@ -20,22 +24,22 @@ export function thinned(line: ArrayLike<number>, tolerance: number): Float32Arra
     stack.push([a, at], [at, b]);
   }
   const out: number[] = [];
-  for (let i = 0; i < n; i++) if (keep[i]) out.push(line[3 * i], line[3 * i + 1], line[3 * i + 2]);
+  for (let i = 0; i < n; i++) if (keep[i]) for (let k = 0; k < size; k++) out.push(line[size * i + k]);
   return Float32Array.from(out);
 }
 
-function distanceToSegment(x: ArrayLike<number>, p: number, a: number, b: number): number {
-  const at = (i: number, k: number) => x[3 * i + k];
+function distanceToSegment(size: number, x: ArrayLike<number>, p: number, a: number, b: number): number {
+  const at = (i: number, k: number) => x[size * i + k];
   let dd = 0;
   let dp = 0;
-  for (let k = 0; k < 3; k++) {
+  for (let k = 0; k < size; k++) {
     const d = at(b, k) - at(a, k);
     dd += d * d;
     dp += d * (at(p, k) - at(a, k));
   }
   const t = dd > 0 ? Math.max(0, Math.min(1, dp / dd)) : 0;
   let s = 0;
-  for (let k = 0; k < 3; k++) {
+  for (let k = 0; k < size; k++) {
     const e = at(p, k) - at(a, k) - t * (at(b, k) - at(a, k));
     s += e * e;
   }
