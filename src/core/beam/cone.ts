@@ -3,6 +3,7 @@
  * The power inside radius r of a Gaussian of 1/e² radius w is 1 - exp(-2 r²/w²) (Siegman, *Lasers*), so ring k of n
  * stands where half of its own share lies inside it.
  */
+import { cosine, sine } from '../base/trig.ts';
 import type { Vec3 } from '../base/vec.ts';
 import type { Head } from '../project/schema.ts';
 
@@ -25,7 +26,7 @@ export function coneRays(head: Head): ConeRay[] {
     for (let i = 0; i < RAYS; i++) {
       // Every other ring is turned by half a step, so that the rays stand apart.
       const a = (2 * Math.PI * (i + (k % 2) / 2)) / RAYS;
-      rays.push({ offset: [r * Math.cos(a), r * Math.sin(a)], power: 1 / (RINGS * RAYS) });
+      rays.push({ offset: [r * cosine(a), r * sine(a)], power: 1 / (RINGS * RAYS) });
     }
   }
   return rays;

@@ -5,6 +5,7 @@
  * to both sides, each end and bend sends windows of its own, and the nearest wins. Lines of equal
  * distance are then equally spaced (Gauss's lemma), whatever the curvature.
  */
+import { cosine, sine } from '../base/trig.ts';
 import { dot, type Vec3 } from '../base/vec.ts';
 import { ON_EDGE, type PointSource, type SegmentSource } from '../geodesic/roots.ts';
 import { polarAngle, SurfaceField } from '../geodesic/surface-field.ts';
@@ -167,8 +168,8 @@ export function band(solver: WindowSolver, path: SurfacePath, options: BandOptio
       if (joint.before < 0 || joint.after < 0)
         return {
           distance,
-          across: distance * Math.sin(angle),
-          along: s + distance * Math.cos(angle),
+          across: distance * sine(angle),
+          along: s + distance * cosine(angle),
           bend: null,
         };
       const turned = turnOf(angle);

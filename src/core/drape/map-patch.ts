@@ -6,7 +6,9 @@
  * change them afterwards. Faces larger than the step are cut, so that the map is as true on the long slivers of a part
  * from CAD as on a fine mesh.
  */
+
 import { PairMap } from '../base/pair-map.ts';
+import { cosine, sine } from '../base/trig.ts';
 import type { Vec3 } from '../base/vec.ts';
 import { logMap } from '../geodesic/log-map.ts';
 import type { MapLimit } from '../geodesic/map-limits.ts';
@@ -59,8 +61,8 @@ export function mapPatch(
   const far = boxBound(Float64Array.from(positionOf(mesh, anchor.surface)));
   const flip = mirror ? -1 : 1;
   const flatOf = (r: number, angle: number): [number, number] => [
-    flip * r * Math.cos(angle - turn),
-    r * Math.sin(angle - turn),
+    flip * r * cosine(angle - turn),
+    r * sine(angle - turn),
   ];
   const laid = refine(
     mesh,

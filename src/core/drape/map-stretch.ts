@@ -4,6 +4,7 @@
  * A polyhedron bends at its vertices and is flat between them, and so is its map: a single small triangle says nothing
  * about the surface that the faces stand for. So ratios are taken over chords as long as a few faces are wide.
  */
+import { cosine, sine } from '../base/trig.ts';
 import type { Vec3 } from '../base/vec.ts';
 import type { SurfaceMesh } from '../mesh/surface-mesh.ts';
 import type { FlatFigure } from './flat-figure.ts';
@@ -70,7 +71,7 @@ export function areaStretch(walk: PatchWalk, figure: FlatFigure, chord: number):
     for (let v = lv + sv / 2; v < hv; v += sv) {
       if (figure.at(u, v).edge > 0) continue;
       for (let k = 0; k < 4; k++)
-        worst = worse(worst, walk, u, v, Math.cos((k * Math.PI) / 4), Math.sin((k * Math.PI) / 4), chord);
+        worst = worse(worst, walk, u, v, cosine((k * Math.PI) / 4), sine((k * Math.PI) / 4), chord);
     }
   return worst;
 }

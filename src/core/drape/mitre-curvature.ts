@@ -1,4 +1,5 @@
 /** How the surface curves beside a bend, as its mitre feels it. */
+import { cosine, tangent } from '../base/trig.ts';
 import type { Vec3 } from '../base/vec.ts';
 import { straightest } from '../geodesic/straightest.ts';
 import type { SurfaceMesh } from '../mesh/surface-mesh.ts';
@@ -42,7 +43,7 @@ export function mitreCurvature(
       mesh,
       { face, bary: barycentric(mesh, face, to) },
       [to[0] - from[0], to[1] - from[1], to[2] - from[2]],
-      half * Math.tan(bend.turn / 2),
+      half * tangent(bend.turn / 2),
     );
     if (on.stopped) return [];
     const [n, d] = [faceNormal(mesh, on.end.face), on.direction];
@@ -51,7 +52,7 @@ export function mitreCurvature(
     const seen = out.stopped ? null : band.at(out.end.face, positionOf(mesh, out.end));
     if (!seen?.bend) return [];
     const r = seen.distance;
-    const s = Math.cos(bend.turn / 2 - Math.abs(seen.bend.off));
+    const s = cosine(bend.turn / 2 - Math.abs(seen.bend.off));
     const share = 1 - half / (r * s);
     return Math.abs(share) <= MOST ? [(6 * share) / (r * r * (1 - s * s))] : [];
   });

@@ -1,5 +1,7 @@
 /** A pad: its flat shape laid on the surface in polar coordinates about its centre (model.md §10). */
+
 import { radiansFromDegrees } from '../base/brands.ts';
+import { cosine, sine } from '../base/trig.ts';
 import type { Vec3 } from '../base/vec.ts';
 import { type LogPlace, logMap } from '../geodesic/log-map.ts';
 import type { MapLimit } from '../geodesic/map-limits.ts';
@@ -14,7 +16,7 @@ import { circumradius, type FlatShape, flatDistance, perimeter } from './shapes.
 /** Longest patch edge inside pads and regions, mm: model.md §5's step. */
 export const AREA_STEP = 0.1;
 /** cos 10°: nearer to ±X than this, +X says too little about a direction in the tangent plane. */
-const NEAR_X = Math.cos((10 * Math.PI) / 180);
+const NEAR_X = cosine((10 * Math.PI) / 180);
 
 /** Direction of u at a place with unit normal n: +X in the tangent plane, +Y where the normal is within 10° of ±X. */
 export function drawingU(n: Vec3): Vec3 {
@@ -32,8 +34,8 @@ export function drapePad(solver: WindowSolver, pad: Pad, centre: Place): Draped 
   const map = logMap(solver, centre.surface, reach, zero);
   const turn = radiansFromDegrees(pad.turn);
   const flat = ({ radius, angle }: LogPlace): [number, number] => [
-    radius * Math.cos(angle - turn),
-    radius * Math.sin(angle - turn),
+    radius * cosine(angle - turn),
+    radius * sine(angle - turn),
   ];
   const far = boxBound(Float64Array.from(centre.point));
   // Hatch across the shorter side: fewer, longer lines.

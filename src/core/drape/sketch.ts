@@ -6,6 +6,7 @@
  * So a move costs by the spokes and the faces that they cross, whatever the drawing holds and however large the part is.
  * Beyond the cut locus, where `drapeDrawing` says that the drawing is torn, spokes still run on; lengths are not evened.
  */
+import { cosine, sine } from '../base/trig.ts';
 import { add, at3, cross, lerp, scale, type Vec3 } from '../base/vec.ts';
 import { straightest } from '../geodesic/straightest.ts';
 import type { SurfaceMesh } from '../mesh/surface-mesh.ts';
@@ -52,7 +53,7 @@ export function sketchLines(
   const spokes: (Spoke | undefined)[] = new Array(count);
   const spoke = (k: number): Spoke => {
     const angle = (2 * Math.PI * k) / count;
-    const toward = add(scale(zero, Math.cos(angle)), scale(quarter, Math.sin(angle)));
+    const toward = add(scale(zero, cosine(angle)), scale(quarter, sine(angle)));
     spokes[k] ??= spokeOf(straightest(mesh, anchor.surface, toward, farthest).path.points);
     return spokes[k];
   };

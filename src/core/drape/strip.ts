@@ -7,6 +7,7 @@
  * A mitre is drawn in polar coordinates about the bend, whose heights over the sides carried straight on are put right for
  * the surface's curvature.
  */
+import { cosine, sine } from '../base/trig.ts';
 import type { BandPlace, Bend } from './band.ts';
 import { heightOver } from './mitre-curvature.ts';
 
@@ -32,11 +33,11 @@ export interface CurvedBend extends Bend {
 
 /** Whether a bend that leaves this sector open outside, radians, may be mitred: SVG's 1 / sin(θ/2), θ the angle between the pieces. */
 export const mitred = (strip: Strip, turn: number): boolean =>
-  strip.bends === 'miter' && Math.cos(turn / 2) >= 1 / MITER_LIMIT;
+  strip.bends === 'miter' && cosine(turn / 2) >= 1 / MITER_LIMIT;
 
 /** How far from a bend that leaves this sector open outside, radians, the strip reaches, mm. */
 export const stripReach = (strip: Strip, turn: number): number =>
-  turn > 0 && mitred(strip, turn) ? strip.half / Math.cos(turn / 2) : strip.half;
+  turn > 0 && mitred(strip, turn) ? strip.half / cosine(turn / 2) : strip.half;
 
 /**
  * Distance to the strip's outline plus half its width, mm: what the distance from the path is for a strip that is round all over. It
@@ -66,7 +67,7 @@ function mitreHeight(
   bends: readonly CurvedBend[],
 ): number {
   const { turn, curvature } = bends[number];
-  return heightOver(r, Math.cos(turn / 2 - Math.abs(off)), curvature);
+  return heightOver(r, cosine(turn / 2 - Math.abs(off)), curvature);
 }
 
 function bendDistance(strip: Strip, at: BandPlace, bends: readonly CurvedBend[]): number {
@@ -78,7 +79,7 @@ function bendDistance(strip: Strip, at: BandPlace, bends: readonly CurvedBend[])
     // The line that cuts off a bend runs on through the copper beside it, and is the nearer outline there.
     for (const bend of bends) {
       if (mitred(strip, bend.turn)) continue;
-      const [c, s] = [Math.cos(bend.turn / 2), Math.sin(bend.turn / 2)];
+      const [c, s] = [cosine(bend.turn / 2), sine(bend.turn / 2)];
       const over = (bend.side * at.across - half) * c - Math.abs(at.along - bend.along) * s;
       distance = Math.max(distance, half + over);
     }
@@ -89,7 +90,7 @@ function bendDistance(strip: Strip, at: BandPlace, bends: readonly CurvedBend[])
   const r = at.distance;
   // Within both sides, each carried straight on.
   if (mitred(strip, turn)) return mitreHeight(at.bend, r, bends);
-  const out = r * Math.cos(off) - half * Math.cos(turn / 2);
-  const past = r * Math.sin(Math.abs(off)) - half * Math.sin(turn / 2);
+  const out = r * cosine(off) - half * cosine(turn / 2);
+  const past = r * sine(Math.abs(off)) - half * sine(turn / 2);
   return half + (past > 0 ? Math.hypot(out, past) : out);
 }

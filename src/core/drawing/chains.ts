@@ -1,4 +1,5 @@
 /** Flattened chains to what a drawing is made of: areas with fill rules worked out, strokes, dots. */
+import { cosine, sine } from '../base/trig.ts';
 import type { Area, Bends, Ends, Stroke } from './drawing.ts';
 import { type Flat, type Rule, ringArea } from './flat.ts';
 import { arcPieces, type Chain } from './flatten.ts';
@@ -124,8 +125,8 @@ function dot(at: Float64Array, r: number, ends: Ends, tolerance: number): Float6
   const ring = new Float64Array(2 * n);
   for (let i = 0; i < n; i++) {
     const angle = (2 * Math.PI * (i + 0.5)) / n;
-    ring[2 * i] = at[0] + reach * Math.cos(angle);
-    ring[2 * i + 1] = at[1] + reach * Math.sin(angle);
+    ring[2 * i] = at[0] + reach * cosine(angle);
+    ring[2 * i + 1] = at[1] + reach * sine(angle);
   }
   return ring;
 }

@@ -1,4 +1,5 @@
 /** Arcs as DXF gives them. */
+import { cosine, sine } from '../base/trig.ts';
 import type { Arc } from './flatten.ts';
 
 /**
@@ -28,6 +29,6 @@ const SAME = 1e-9;
 export const radians = (degrees: number): number => (degrees * Math.PI) / 180;
 
 export function onArc({ centre, p, q }: Arc, angle: number): [number, number] {
-  const [c, s] = [Math.cos(angle), Math.sin(angle)];
+  const [c, s] = [cosine(angle), sine(angle)];
   return [centre[0] + c * p[0] + s * q[0], centre[1] + c * p[1] + s * q[1]];
 }

@@ -1,4 +1,5 @@
 /** Lines, arcs and Bézier curves to chains of points in mm that stay within a tolerance of them. */
+import { cosine, sine } from '../base/trig.ts';
 import { inReach } from './findings.ts';
 import { apply, type Matrix, stretches } from './matrix.ts';
 
@@ -118,7 +119,7 @@ export function flatten(
       spend(n);
       for (let i = 1; i < n; i++) {
         const angle = start + (sweep * i) / n;
-        const [c, s] = [Math.cos(angle), Math.sin(angle)];
+        const [c, s] = [cosine(angle), sine(angle)];
         to(cx + c * px + s * qx, cy + c * py + s * qy);
       }
       to(...apply(toMm, u, v));

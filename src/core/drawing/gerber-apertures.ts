@@ -1,4 +1,5 @@
 /** Apertures of Gerber (2022.02, ch. 4.4): their definitions, and the copper of one flash. */
+import { cosine } from '../base/trig.ts';
 import { BadShape, inReach } from './findings.ts';
 import { ringArea } from './flat.ts';
 import { boxRing, circleRing, obroundRing, polygonRing, reversed } from './gerber-arcs.ts';
@@ -110,7 +111,7 @@ export function stampOf(code: number, { template, numbers, macro }: Aperture, to
       if (!(Number.isInteger(n) && n >= 3 && n <= MOST_CORNERS))
         throw new BadShape('bad-aperture', `aperture D${code} is a polygon of ${n} corners`);
       spend(n);
-      const inner = w * Math.cos(Math.PI / n);
+      const inner = w * cosine(Math.PI / n);
       return { ...whole, pieces: solid(polygonRing(n, 0, 0, w, numbers[2] ?? 0), inner, 3) };
     }
   }

@@ -2,6 +2,7 @@
  * Arcs that bound copper, as polygons of the same area: corners inside an arc lie as far out as makes up for what the
  * chords cut off, so that neither copper nor its resistance depends on the tolerance.
  */
+import { cosine, sine } from '../base/trig.ts';
 import { inReach } from './findings.ts';
 import { arcPieces } from './flatten.ts';
 
@@ -21,11 +22,11 @@ export function circleRing(x: number, y: number, r: number, tolerance: number, s
   const n = Math.max(FEWEST, 4 * Math.ceil(arcPieces(r, 2 * Math.PI, SHARE * tolerance) / 4));
   spend(n);
   const step = (2 * Math.PI) / n;
-  const out = r * Math.sqrt(step / Math.sin(step));
+  const out = r * Math.sqrt(step / sine(step));
   const ring = new Float64Array(2 * n);
   for (let i = 0; i < n; i++) {
-    ring[2 * i] = x + out * Math.cos(i * step);
-    ring[2 * i + 1] = y + out * Math.sin(i * step);
+    ring[2 * i] = x + out * cosine(i * step);
+    ring[2 * i + 1] = y + out * sine(i * step);
   }
   return ring;
 }
@@ -49,13 +50,13 @@ export function arcCorners(
   const k = Math.max(2, arcPieces(inReach(Math.max(r, rEnd)), sweep, SHARE * tolerance));
   spend(k);
   const d = Math.abs(sweep) / k;
-  const want = (k * d) / Math.sin(d);
+  const want = (k * d) / sine(d);
   // (k − 2) q² + 2 q − want = 0 for q = ρ / r
   const q = k === 2 ? want / 2 : (Math.sqrt(1 + (k - 2) * want) - 1) / (k - 2);
   for (let i = 1; i < k; i++) {
     const rho = q * (r + ((rEnd - r) * i) / k);
     const angle = start + (sweep * i) / k;
-    into.push(x + rho * Math.cos(angle), y + rho * Math.sin(angle));
+    into.push(x + rho * cosine(angle), y + rho * sine(angle));
   }
 }
 
@@ -87,8 +88,8 @@ export function polygonRing(n: number, x: number, y: number, diameter: number, t
   const ring = new Float64Array(2 * n);
   for (let i = 0; i < n; i++) {
     const angle = (turn * Math.PI) / 180 + (2 * Math.PI * i) / n;
-    ring[2 * i] = x + (diameter / 2) * Math.cos(angle);
-    ring[2 * i + 1] = y + (diameter / 2) * Math.sin(angle);
+    ring[2 * i] = x + (diameter / 2) * cosine(angle);
+    ring[2 * i + 1] = y + (diameter / 2) * sine(angle);
   }
   return ring;
 }

@@ -1,4 +1,5 @@
 /** What a Gerber file lays down, piece by piece in its order, and what clear pieces take away again. */
+import { cosine, sine } from '../base/trig.ts';
 import type { Area, Shape, Stroke } from './drawing.ts';
 import { type Findings, inReach, tooLarge } from './findings.ts';
 import type { Flat } from './flat.ts';
@@ -192,7 +193,7 @@ function roundEnded(
 ): Float64Array {
   const r = w / 2;
   const angle = Math.atan2(by - ay, bx - ax);
-  const [ux, uy] = [r * Math.cos(angle), r * Math.sin(angle)];
+  const [ux, uy] = [r * cosine(angle), r * sine(angle)];
   const right = angle - Math.PI / 2;
   const ring = [bx + uy, by - ux];
   arcCorners(ring, [bx, by], r, r, right, Math.PI, tolerance, spend);

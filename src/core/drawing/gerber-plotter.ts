@@ -1,4 +1,5 @@
 /** The graphics state of a Gerber file and the marks that its operations leave (2022.02, ch. 2 and 4). */
+import { cosine, sine } from '../base/trig.ts';
 import type { DrawingOptions } from './drawing.ts';
 import { BadShape, type Findings, inReach } from './findings.ts';
 import type { Flat } from './flat.ts';
@@ -274,7 +275,7 @@ export class Plotter {
       for (let k = 1; k < n; k++) {
         const r = arc.r + ((arc.rEnd - arc.r) * k) / n;
         const angle = arc.start + (arc.sweep * k) / n;
-        path.push(arc.centre[0] + r * Math.cos(angle), arc.centre[1] + r * Math.sin(angle));
+        path.push(arc.centre[0] + r * cosine(angle), arc.centre[1] + r * sine(angle));
       }
     }
     path.push(x, y);

@@ -1,4 +1,5 @@
 /** Affine maps of the plane, in the order in which SVG writes them: x' = a x + c y + e, y' = b x + d y + f. */
+import { cosine, sine } from '../base/trig.ts';
 
 export type Matrix = readonly [a: number, b: number, c: number, d: number, e: number, f: number];
 
@@ -27,7 +28,7 @@ export function rotation(degrees: number): Matrix {
   const turn = ((degrees % 360) + 360) % 360;
   const quarter = QUARTERS.get(turn);
   if (quarter) return quarter;
-  const [c, s] = [Math.cos((turn * Math.PI) / 180), Math.sin((turn * Math.PI) / 180)];
+  const [c, s] = [cosine((turn * Math.PI) / 180), sine((turn * Math.PI) / 180)];
   return [c, s, -s, c, 0, 0];
 }
 

@@ -1,4 +1,5 @@
 /** Arcs as path data gives them, by their ends (SVG 2, appendix B.2, "Elliptical arc implementation notes"). */
+import { cosine, sine } from '../base/trig.ts';
 import type { Arc } from './flatten.ts';
 
 export interface EndpointArc {
@@ -20,7 +21,7 @@ export interface EndpointArc {
 export function arcOfEnds({ from, to, rx, ry, turn, large, sweep }: EndpointArc): Arc | 'line' | 'nothing' {
   if (from[0] === to[0] && from[1] === to[1]) return 'nothing';
   if (rx === 0 || ry === 0) return 'line';
-  const [c, s] = [Math.cos((turn * Math.PI) / 180), Math.sin((turn * Math.PI) / 180)];
+  const [c, s] = [cosine((turn * Math.PI) / 180), sine((turn * Math.PI) / 180)];
   const [hx, hy] = [(from[0] - to[0]) / 2, (from[1] - to[1]) / 2];
   // B.2.4 step 1, in the ellipse's axes and divided by its radii: the arc is one of a unit circle there.
   let [a, b] = [Math.abs(rx), Math.abs(ry)];

@@ -1,4 +1,5 @@
 /** Walks an edge of a flipped triangulation over the faces of the surface, straight through each edge it crosses. */
+import { cosine, sine } from '../base/trig.ts';
 import type { Vec3 } from '../base/vec.ts';
 import { faceOf, next, previous } from '../mesh/surface-mesh.ts';
 import { positionOf } from '../mesh/surface-point.ts';
@@ -129,8 +130,8 @@ function outward(flips: FlipMesh, k: number) {
       half,
       px,
       py: point.onEdge ? 0 : py,
-      dx: Math.cos(turn),
-      dy: Math.sin(turn),
+      dx: cosine(turn),
+      dy: sine(turn),
       onHalf: point.onEdge,
     };
   }
@@ -149,7 +150,7 @@ function outward(flips: FlipMesh, k: number) {
     half = t;
     if (half === first && !(turn < TURN)) return null;
   }
-  return { half, px: 0, py: 0, dx: Math.cos(turn), dy: Math.sin(turn), onHalf: true };
+  return { half, px: 0, py: 0, dx: cosine(turn), dy: sine(turn), onHalf: true };
 }
 
 function inFrame(flips: FlipMesh, half: number, p: Vec3): [number, number] {

@@ -10,7 +10,9 @@
  * is as wide an angle, seen from its vertex, as the vertex's angles exceed 2π, which on a fine mesh of edge h is of
  * order h², so that coordinates are off sideways by that share of the way behind the vertex.
  */
+
 import { Fault } from '../base/news.ts';
+import { cosine, sine } from '../base/trig.ts';
 import { distance, type Vec3 } from '../base/vec.ts';
 import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
 import { findLimits, type MapLimit } from './map-limits.ts';
@@ -65,8 +67,8 @@ export function logMap(solver: WindowSolver, at: SurfacePoint, radius: number, z
     return {
       radius: seen.distance,
       angle,
-      u: seen.distance * Math.cos(angle),
-      v: seen.distance * Math.sin(angle),
+      u: seen.distance * cosine(angle),
+      v: seen.distance * sine(angle),
     };
   };
   return {

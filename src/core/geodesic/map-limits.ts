@@ -7,6 +7,7 @@
  * of neighbours on the net that is farther apart in the map than on the face is halved until the jump is pinned down,
  * or turns out to be a stretch.
  */
+import { sine } from '../base/trig.ts';
 import { distance, type Vec3 } from '../base/vec.ts';
 import { faceOf, next, previous, type SurfaceMesh } from '../mesh/surface-mesh.ts';
 import { FaceGeometry } from './face-geometry.ts';
@@ -91,7 +92,7 @@ export function findLimits(search: MapSearch): MapLimit[] {
       const nearer = p.place.radius < q.place.radius ? p : q;
       if (gap <= apart * (1 + ROUNDING) + ROUNDING * radius) continue;
       // The ways on either side of a clear jump lie at least this far apart in the map.
-      if (gap + apart < 2 * (nearer.place!.radius - apart) * Math.sin(CLEAR / 2)) continue;
+      if (gap + apart < 2 * (nearer.place!.radius - apart) * sine(CLEAR / 2)) continue;
       if (measure(nearer.place!) - apart >= least('cut locus')) continue;
       // At the centre itself a scaled angle stretches the map, but tears nothing.
       if (nearer.place!.radius + apart <= PINNED * radius) continue;

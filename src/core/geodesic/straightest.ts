@@ -2,7 +2,9 @@
  * Straightest lines: K. Polthier, M. Schmies, "Straightest geodesics on polyhedral surfaces", 1998. Over an edge the line
  * runs on as in the plane with both faces unfolded; through a vertex it leaves equal angles left and right (definition 1).
  */
+
 import { Fault } from '../base/news.ts';
+import { cosine, sine } from '../base/trig.ts';
 import { add, clamp, distance, dot, normalize, scale, type Vec3 } from '../base/vec.ts';
 import { faceOf, next, previous, type SurfaceMesh } from '../mesh/surface-mesh.ts';
 import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
@@ -165,7 +167,7 @@ function atAngle(g: FaceGeometry, fan: Fan, angle: number): Walker {
   while (i > 0 && fan.angles[i] > angle) i--;
   const half = fan.halves[i];
   const turn = Math.min(angle - fan.angles[i], g.cornerAngle(half));
-  return { half, x: 0, y: 0, dx: Math.cos(turn), dy: Math.sin(turn), on: 'start' };
+  return { half, x: 0, y: 0, dx: cosine(turn), dy: sine(turn), on: 'start' };
 }
 
 /** Where the walker's line leaves its face. */

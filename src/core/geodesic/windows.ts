@@ -9,7 +9,9 @@
  * window is 1-Lipschitz, which holds for both. With segment sources the result is the exact distance
  * to a path, its foot on it and its side.
  */
+
 import { Fault } from '../base/news.ts';
+import { cosine, sine } from '../base/trig.ts';
 import { dot, type Vec3 } from '../base/vec.ts';
 import { faceOf, next, previous, type SurfaceMesh } from '../mesh/surface-mesh.ts';
 import { positionOf, type SurfacePoint } from '../mesh/surface-point.ts';
@@ -259,8 +261,8 @@ export class WindowSolver {
         if (!clip) continue;
         [b0, b1] = clip;
       } else if (wedge) {
-        b0 = crossing(-ax, -ay, Math.cos(wedge[1]), Math.sin(wedge[1]), ex, ey, 0);
-        b1 = crossing(-ax, -ay, Math.cos(wedge[0]), Math.sin(wedge[0]), ex, ey, len);
+        b0 = crossing(-ax, -ay, cosine(wedge[1]), sine(wedge[1]), ex, ey, 0);
+        b1 = crossing(-ax, -ay, cosine(wedge[0]), sine(wedge[0]), ex, ey, len);
       }
       // p in the root frame is q = A + x e + y e⊥, so s = -Rᵀ A.
       this.open(t, rootIndex, -1, b0, b1, -(ax * ex + ay * ey), -(ay * ex - ax * ey), ex, ey, len);

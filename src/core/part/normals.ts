@@ -2,12 +2,13 @@
  * Smooth normals: angle-weighted vertex normals (G. Thürmer and C. Wüthrich, "Computing vertex normals
  * from polygonal facets", J. Graphics Tools 3 (1998) 43), interpolated in the face, with creases kept.
  */
+import { cosine } from '../base/trig.ts';
 import { at3, type Vec3 } from '../base/vec.ts';
 import { faceOf, next, previous, type SurfaceMesh } from '../mesh/surface-mesh.ts';
 import { barycentric } from '../mesh/surface-point.ts';
 
 /** Two faces that meet at more than this stay apart (model.md §4): cos 40°. */
-const CREASE = Math.cos((40 * Math.PI) / 180);
+const CREASE = cosine((40 * Math.PI) / 180);
 
 /** Outward unit normals at the corners, 9 numbers a face, part frame. */
 export type CornerNormals = Float64Array;

@@ -112,7 +112,10 @@ export interface NetReport {
   name: string;
   pieces: number;
   area: number;
-  resistance_mohm: { from: string; to: string; value: number }[];
+  /** Of all centre lines of its traces, mm. */
+  length: number;
+  /** From the first pad of a piece to every other. The true value of the copper's shape is at most `within` off. */
+  resistance_mohm: { from: string; to: string; value: number; within: number }[];
   current_A: number;
 }
 

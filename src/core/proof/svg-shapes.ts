@@ -1,4 +1,5 @@
 /** Coordinates in SVG: numbers, points, straight path data, transforms (SVG 2, chapters 8 and 9). */
+import { cosine, sine, tangent } from '../base/trig.ts';
 
 /** x' = a x + c y + e, y' = b x + d y + f. */
 export type Matrix = readonly [number, number, number, number, number, number];
@@ -102,10 +103,10 @@ function oneTransform(name: string, v: number[], text: string): Matrix {
   if (name === 'matrix' && fits(6)) return v as unknown as Matrix;
   if (name === 'translate' && fits(1, 2)) return [1, 0, 0, 1, v[0], v[1] ?? 0];
   if (name === 'scale' && fits(1, 2)) return [v[0], 0, 0, v[1] ?? v[0], 0, 0];
-  if (name === 'skewX' && fits(1)) return [1, 0, Math.tan(t(v[0])), 1, 0, 0];
-  if (name === 'skewY' && fits(1)) return [1, Math.tan(t(v[0])), 0, 1, 0, 0];
+  if (name === 'skewX' && fits(1)) return [1, 0, tangent(t(v[0])), 1, 0, 0];
+  if (name === 'skewY' && fits(1)) return [1, tangent(t(v[0])), 0, 1, 0, 0];
   if (name === 'rotate' && fits(1, 3)) {
-    const [c, s] = [Math.cos(t(v[0])), Math.sin(t(v[0]))];
+    const [c, s] = [cosine(t(v[0])), sine(t(v[0]))];
     const turn: Matrix = [c, s, -s, c, 0, 0];
     return v.length === 1 ? turn : times(times([1, 0, 0, 1, v[1], v[2]], turn), [1, 0, 0, 1, -v[1], -v[2]]);
   }

@@ -1,7 +1,9 @@
 /** Copper + head → what the beam can write, sample by sample and with margins (model.md §4). */
+
 import { benchPoint, partPoint, radiansFromDegrees } from '../base/brands.ts';
 import { poseFrame } from '../base/pose.ts';
 import type { RunContext } from '../base/run-context.ts';
+import { cosine } from '../base/trig.ts';
 import type { Vec3 } from '../base/vec.ts';
 import { focusedBeam, peakFluence, spotRadius, usableDepth } from '../beam/beam.ts';
 import { type ConeRay, coneRays } from '../beam/cone.ts';
@@ -90,7 +92,7 @@ export function reachElement(
     const u = beamDirection(command, head);
     const smooth = frame.direction(normalAt(mesh, normals, face, middle));
     const theta = incidenceAngle(smooth, u);
-    const cos = Math.cos(theta);
+    const cos = cosine(theta);
     const blocked = blockedShare(
       queries,
       frame,

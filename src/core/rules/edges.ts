@@ -2,6 +2,7 @@
  * Shop rules about the part's own shape (common practice, no published source): copper over a sharp edge breaks when the part
  * warms or bends, and copper at the end of the surface is undercut by the bath.
  */
+import { cosine } from '../base/trig.ts';
 import { dot, type Vec3 } from '../base/vec.ts';
 import type { CopperElement } from '../drape/copper.ts';
 import { faceOf, next, type SurfaceMesh } from '../mesh/surface-mesh.ts';
@@ -21,7 +22,7 @@ export function sharpEdgeRule(
   limits: Limits,
 ): RuleFinding[] {
   const limit = limits.sharpEdge ?? SHARP;
-  const least = Math.cos((limit * Math.PI) / 180);
+  const least = cosine((limit * Math.PI) / 180);
   return elements.flatMap((e) => {
     const sides = copperSides(e);
     let worst: { angle: number; at: Vec3 } | null = null;
