@@ -1,11 +1,11 @@
 /**
- * Moving and turning a drawing by hand: its outlines follow the pointer as a stiff card on the surface's tangent plane, and
- * the copper is laid anew when it is let go. What one hand did is one step of undo.
+ * Moving and turning a drawing by hand: its lines follow the pointer over the surface as they would lie there, and the copper
+ * is laid anew when it is let go. What one hand did is one step of undo.
  */
-import type { Vec3 } from '../core/base/vec.ts';
+import type { Vec2 } from '../core/base/vec.ts';
 import type { Drape } from '../core/project/schema.ts';
-import type { DrawingFrame, Probe } from '../worker/pictures.ts';
-import type { Ray } from '../worker/session.ts';
+import type { FlatPicture, Probe } from '../worker/pictures.ts';
+import type { Ray, SketchAsked } from '../worker/session.ts';
 import type { Act } from './document.ts';
 import type { State } from './state.ts';
 
@@ -13,8 +13,8 @@ export interface CarryTools {
   get(): State;
   act(a: Act, gesture: string): void;
   pick(ray: Ray): Promise<Probe | null>;
-  /** Axes of a drawing whose anchor is near to a place. */
-  frame(at: Vec3): Promise<DrawingFrame>;
+  /** Lines of a drawing as they would run on the part. */
+  sketch(asked: SketchAsked): Promise<Float32Array[]>;
   preview(loops: readonly Float32Array[]): void;
   /** The hand is off: the copper is laid. */
   release(): void;
@@ -28,9 +28,11 @@ const SOON = 2000;
 interface Carry {
   id: string;
   gesture: string;
-  /** Outlines as they lie, with the axes and the turn that they were laid by. */
-  loops: readonly Float32Array[];
-  before: Promise<{ frame: DrawingFrame; turn: number }>;
+  /** Lines of the drawing about its origin, 2 a point; none while it was never read. */
+  lines: readonly Float32Array[];
+  /** Whether a sketch is asked for, and another is wanted after it. */
+  sketching: boolean;
+  again: boolean;
   waiting: Ray | null;
   running: Promise<void> | null;
   timer: ReturnType<typeof setTimeout> | undefined;
@@ -48,12 +50,13 @@ export function createCarrier(tools: CarryTools) {
     if (carry?.id === id) return carry;
     const drape = drapeOf(id);
     if (!drape || carry) return null;
-    const { copper } = tools.get();
+    const read = tools.get().copper?.value.drawings.find((d) => d.drape === id);
     carry = {
       id,
       gesture,
-      loops: (copper?.value.elements ?? []).filter((e) => e.drape === id).flatMap((e) => e.outline),
-      before: tools.frame(drape.anchor).then((frame) => ({ frame, turn: drape.turn })),
+      lines: read ? linesAbout(read.flat, drape.origin) : [],
+      sketching: false,
+      again: false,
       waiting: null,
       running: null,
       timer: undefined,
@@ -61,12 +64,20 @@ export function createCarrier(tools: CarryTools) {
     return carry;
   }
 
-  async function show(mine: Carry, frame: DrawingFrame | null): Promise<void> {
-    const { frame: first, turn } = await mine.before;
-    const drape = drapeOf(mine.id);
-    if (!drape || carry !== mine) return;
-    const now = frame ?? first;
-    tools.preview(mine.loops.map((loop) => carried(loop, first, turn, now, drape.turn)));
+  /** Sketches the drawing where it is now; while one sketch is made, the next waits, and those between are left out. */
+  async function show(mine: Carry): Promise<void> {
+    mine.again = true;
+    if (mine.sketching || mine.lines.length === 0) return;
+    mine.sketching = true;
+    while (mine.again && carry === mine) {
+      mine.again = false;
+      const drape = drapeOf(mine.id);
+      if (!drape) break;
+      const { anchor: at, turn, mirror } = drape;
+      const lines = await tools.sketch({ at, turn, mirror, lines: mine.lines });
+      if (carry === mine) tools.preview(lines);
+    }
+    mine.sketching = false;
   }
 
   function end(): void {
@@ -90,7 +101,7 @@ export function createCarrier(tools: CarryTools) {
           const probe = await tools.pick(next);
           if (!probe || carry !== mine) continue;
           tools.act({ kind: 'move-drape', id, at: probe.at }, mine.gesture);
-          await show(mine, probe.frame);
+          await show(mine);
         }
         mine.running = null;
       })().catch((error) => tools.fail(error, 'Moving the drawing'));
@@ -108,38 +119,21 @@ export function createCarrier(tools: CarryTools) {
       turned = { id, gesture: mine.gesture, when: performance.now() };
       const turn = Math.round(1000 * ((((drape.turn + by) % 360) + 360) % 360)) / 1000;
       tools.act({ kind: 'edit-drape', id, what: 'turn', change: { turn } }, mine.gesture);
-      void show(mine, null).catch((error) => tools.fail(error, 'Turning the drawing'));
+      void show(mine).catch((error) => tools.fail(error, 'Turning the drawing'));
       clearTimeout(mine.timer);
       mine.timer = setTimeout(end, STILL);
     },
   };
 }
 
-/** A line of places moved as a stiff body from one frame to another. Turns in degrees, about each frame's normal. */
-export function carried(
-  line: Float32Array,
-  from: DrawingFrame,
-  turnFrom: number,
-  to: DrawingFrame,
-  turnTo: number,
-): Float32Array {
-  const [a, b] = [axes(from, turnFrom), axes(to, turnTo)];
-  const out = new Float32Array(line.length);
-  for (let i = 0; i < line.length; i += 3) {
-    const d = [0, 1, 2].map((k) => line[i + k]! - from.at[k]!);
-    const c = a.map((axis) => axis[0]! * d[0]! + axis[1]! * d[1]! + axis[2]! * d[2]!);
-    for (let k = 0; k < 3; k++)
-      out[i + k] = to.at[k]! + c[0]! * b[0]![k]! + c[1]! * b[1]![k]! + c[2]! * b[2]![k]!;
-  }
-  return out;
-}
-
-function axes({ u, normal: n }: DrawingFrame, turn: number): Vec3[] {
-  const v: Vec3 = [n[1] * u[2] - n[2] * u[1], n[2] * u[0] - n[0] * u[2], n[0] * u[1] - n[1] * u[0]];
-  const [c, s] = [Math.cos((turn * Math.PI) / 180), Math.sin((turn * Math.PI) / 180)];
-  return [
-    [c * u[0] + s * v[0], c * u[1] + s * v[1], c * u[2] + s * v[2]],
-    [c * v[0] - s * u[0], c * v[1] - s * u[1], c * v[2] - s * u[2]],
-    [n[0], n[1], n[2]],
-  ];
+/** The lines and outlines of a flat drawing, each closed where it is drawn so, moved so that `origin` is at 0. */
+function linesAbout({ shapes, points, ends }: FlatPicture, [ou, ov]: Vec2): Float32Array[] {
+  return shapes.flatMap(({ first, count, closed }) =>
+    Array.from({ length: count }, (_, k) => {
+      const ring = first + k;
+      const own = points.subarray(2 * (ring > 0 ? ends[ring - 1]! : 0), 2 * ends[ring]!);
+      const line = closed ? [...own, own[0]!, own[1]!] : own;
+      return Float32Array.from(line, (x, i) => x - (i % 2 === 0 ? ou : ov));
+    }),
+  );
 }

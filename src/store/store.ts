@@ -477,7 +477,7 @@ export function createStore(workers: Workers) {
     get,
     act,
     pick,
-    frame: (at) => workers.live.call('frame', { at }),
+    sketch: (asked) => workers.live.call('sketch', asked),
     preview: (loops) => set({ preview: loops }),
     release: follower.wake,
     fail,

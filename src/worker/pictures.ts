@@ -150,20 +150,12 @@ export interface PlanPicture {
   unreached: { element: number; length: number; reason: Reason }[];
 }
 
-/** Axes that a drawing takes from its anchor: u at no turn, and the way out of the part. Part frame, unit. */
-export interface DrawingFrame {
-  at: Vec3;
-  u: Vec3;
-  normal: Vec3;
-}
-
 /** What stands under the pointer. */
 export interface Probe {
   point: Vec3;
   /** The point as a project keeps it. */
   at: [number, number, number];
   normal: Vec3;
-  frame: DrawingFrame;
   face: number;
   height: number;
   incidence: number;

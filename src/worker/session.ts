@@ -1,5 +1,5 @@
 /** The functions behind the window, as plain calls on plain data: what web.ts serves and tests call directly. */
-import { partPoint } from '../core/base/brands.ts';
+import { partPoint, radiansFromDegrees } from '../core/base/brands.ts';
 import { Fault, InputError, type InputProblem } from '../core/base/news.ts';
 import { poseFrame } from '../core/base/pose.ts';
 import type { RunContext } from '../core/base/run-context.ts';
@@ -11,12 +11,12 @@ import { type Draper, drapeDrawingOn, drapeElement, prepareDraper } from '../cor
 import type { DrawingDraped } from '../core/drape/drape-drawing.ts';
 import type { Draped, DrapeFinding } from '../core/drape/element.ts';
 import { triangleArea } from '../core/drape/level-lines.ts';
-import { drawingU } from '../core/drape/pad.ts';
+import { sketchLines } from '../core/drape/sketch.ts';
 import { type GeodesicPath, shortestWith } from '../core/geodesic/shortest.ts';
 import { layerOfSamples } from '../core/layers/assign.ts';
 import type { SetupPlan } from '../core/layers/plan.ts';
 import { canGo, planLayers } from '../core/layers/plan-layers.ts';
-import type { SurfaceQueries } from '../core/mesh/queries.ts';
+import type { NearestHit, SurfaceQueries } from '../core/mesh/queries.ts';
 import { roundedPlace } from '../core/mesh/rounded.ts';
 import type { SurfaceMesh } from '../core/mesh/surface-mesh.ts';
 import { barycentric, faceNormal, type SurfacePoint } from '../core/mesh/surface-point.ts';
@@ -36,7 +36,6 @@ import { boxOf, HeldDrawings, type LoadFlat, type Reading } from './held-drawing
 import { HeldPaths, type Hold } from './held-paths.ts';
 import {
   type CopperPicture,
-  type DrawingFrame,
   type DrawingPicture,
   ELSEWHERE,
   type ElementPicture,
@@ -62,6 +61,17 @@ export interface Ray {
   origin: Vec3;
   /** Unit, part frame. */
   direction: Vec3;
+}
+
+/** A drawing in hand. */
+export interface SketchAsked {
+  /** Part frame, pulled to the surface. */
+  at: Vec3;
+  /** Degrees, as in the project. */
+  turn: number;
+  mirror: boolean;
+  /** About the drawing's origin, 2 a point, mm. */
+  lines: readonly Float32Array[];
 }
 
 export type Session = ReturnType<typeof createSession>;
@@ -295,12 +305,15 @@ export function createSession(flat: LoadFlat = noFlat) {
       return hit === null ? null : probeAt(mesh, queries, normals, hit.point, hit.face, a.setup, a.head);
     },
 
-    /** How a drawing would lie whose anchor is this place, pulled to the surface. */
-    frame(a: { at: Vec3 }): DrawingFrame {
+    /** Lines of a drawing as they would run on the part with this anchor: while it is moved and turned by hand. */
+    sketch({ at, turn, mirror, lines }: SketchAsked): Float32Array[] {
       const { mesh, queries } = needPart();
-      const hit = queries.nearest(a.at);
-      if (!hit) throw new Fault('a surface has a nearest point');
-      return drawingFrame(mesh, hit.point, hit.face);
+      const { point, face } = queries.nearest(at) as NearestHit;
+      const anchor = { point, surface: { face, bary: barycentric(mesh, face, point) } };
+      const flat = lines.map((l) => Float64Array.from(l));
+      return sketchLines(mesh, anchor, radiansFromDegrees(turn), mirror, flat).map((l) =>
+        Float32Array.from(l),
+      );
     },
 
     /** The shortest way from one place to another. */
@@ -377,17 +390,11 @@ function probeAt(
     point,
     at: roundedPlace(queries, point, faceNormal(mesh, face)),
     normal,
-    frame: drawingFrame(mesh, point, face),
     face,
     height: bench[2],
     incidence: (Math.acos(Math.max(-1, Math.min(1, dot(normal, toward)))) * 180) / Math.PI,
     blockedAfter: blocked ? blocked.distance : null,
   };
-}
-
-function drawingFrame(mesh: SurfaceMesh, at: Vec3, face: number): DrawingFrame {
-  const normal = faceNormal(mesh, face);
-  return { at, u: drawingU(normal), normal };
 }
 
 function copperPicture(

@@ -1,11 +1,11 @@
 /** Drawings on the part in a real window: opened with their project, and written. */
-import { spawnSync } from 'node:child_process';
 import { mkdirSync, readdirSync, readFileSync, statSync, writeFileSync } from 'node:fs';
 import { createRequire } from 'node:module';
 import { join, relative } from 'node:path';
 import { afterAll, beforeAll, describe, expect, test } from 'vitest';
 import { writeProject } from '../../src/core/project/read.ts';
 import type { Project } from '../../src/core/project/schema.ts';
+import { runCli } from '../helpers/cli.ts';
 import { domeHeight, domeProject, domeStl } from './dome.ts';
 import { comb } from './drawings.ts';
 import {
@@ -16,7 +16,6 @@ import {
   openWindow,
   planned,
   poll,
-  ROOT,
   step,
   stubDialogs,
   tally,
@@ -230,12 +229,7 @@ describe('a project with a drawing', () => {
     await poll(() => w.page.locator('[data-step=files]').textContent(), { timeout: 150_000 }).toMatch(
       /files written/,
     );
-    // On the window's own engine: sine and cosine are not the same to the last bit on each (ECMA-262 leaves them open).
-    spawnSync(
-      process.env['ELECTRON_EXE']!,
-      [join(ROOT, 'out/cli/cli.mjs'), 'run', file, '--out', join(folder, 'cli'), '--no-timing'],
-      { env: { ...process.env, ELECTRON_RUN_AS_NODE: '1' }, stdio: 'ignore' },
-    );
+    await runCli(['run', file, '--out', join(folder, 'cli'), '--no-timing']);
     const ours = filesIn(join(folder, 'lumpy-dome-scan'));
     const theirs = filesIn(join(folder, 'cli'));
     expect([...ours.keys()]).toEqual([...theirs.keys()]);
