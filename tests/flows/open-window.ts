@@ -1,5 +1,6 @@
 /** A real window for the flows: own settings folder, errors collected, closed without a question. */
-import { existsSync, mkdtempSync, rmSync, writeFileSync } from 'node:fs';
+import { existsSync, mkdtempSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
+import { createRequire } from 'node:module';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { fileURLToPath } from 'node:url';
@@ -138,3 +139,15 @@ export async function tally(page: Page): Promise<Tally> {
 export const remove = (folder: string): void => {
   if (existsSync(folder)) rmSync(folder, { recursive: true, force: true });
 };
+
+/** What axe finds wrong with the page, a line each. */
+export async function accessibility(page: Page): Promise<string[]> {
+  await page.evaluate(readFileSync(createRequire(import.meta.url).resolve('axe-core/axe.min.js'), 'utf8'));
+  return page.evaluate(async () => {
+    const { axe } = globalThis as unknown as {
+      axe: { run(o: unknown): Promise<{ violations: { id: string; nodes: { html: string }[] }[] }> };
+    };
+    const { violations } = await axe.run({ runOnly: ['wcag2a', 'wcag2aa', 'wcag22aa', 'best-practice'] });
+    return violations.map((v) => `${v.id}: ${v.nodes.map((n) => n.html.slice(0, 200)).join(' | ')}`);
+  });
+}
