@@ -58,6 +58,10 @@ export const sources = {
     seen: 'from memory',
   },
   'iec-60028': { title: 'IEC 60028: resistivity of annealed copper', seen: 'quoted' },
+  'thin-films': {
+    title: 'P. M. Hall, Resistance calculations for thin film patterns, Thin Solid Films 1 (1968) 277',
+    seen: 'corner and step from memory, the rest by formula (conformal maps)',
+  },
   'ipc-2221': { title: 'IPC-2221: I = k ΔT^0.44 A^0.725', seen: 'from memory' },
   'mallory-hajdu': {
     title: 'G. Mallory, J. Hajdu, Electroless Plating, 1990: reaction',

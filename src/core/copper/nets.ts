@@ -3,75 +3,87 @@ import type { Copper, CopperElement } from '../drape/copper.ts';
 import type { NetReport } from '../project/report.ts';
 import type { Project } from '../project/schema.ts';
 import { guideCurrent, stripResistance } from './conduct.ts';
-import { type Contact, contacts } from './contacts.ts';
-import { solveResistance } from './network.ts';
+import { IntrinsicMesh } from './intrinsic.ts';
+import { netSheet } from './net-sheet.ts';
+import { type SheetPiece, sheetPieces } from './sheet-pieces.ts';
+import { type SheetResistance, sheetResistance } from './sheet-solve.ts';
 import { unionArea } from './union-area.ts';
 
 /**
  * @returns one a net, in the order of first appearance; elements without a net are left out.
- * Resistances count traces along their centre lines between the places where other copper of the net meets them;
- * pads and regions count as one potential. The area is that of all copper of the net together, each place counted once.
+ * Traces and regions conduct with the shape that they have on the part, all of a net as one sheet; a pad counts as soldered,
+ * one potential all over. The area is that of all copper of the net together, each place counted once, and the length that
+ * of all its traces.
+ * The current is what the guide allows for the narrowest place that current from pad to pad has to pass; where no two pads
+ * are joined, for the narrowest trace.
  */
 export function netReports(project: Project, copper: Copper): NetReport[] {
   const names = [...new Set(copper.elements.map((e) => e.net).filter((n) => n !== ''))];
   return names.map((name) => {
     const elements = copper.elements.filter((e) => e.net === name);
-    const joined = contacts(elements);
-    const widths = elements.filter((e) => e.kind === 'trace').map((e) => e.width);
+    const { pieces, pairs } = padPairs(elements);
+    const traces = elements.filter((e) => e.kind === 'trace');
+    // A square of the sheet: a strip as long as it is wide.
+    const square = stripResistance(1, 1, project.copper);
+    const widths = pairs.flatMap((p) => (p.squares > 0 ? [p.narrowest] : []));
+    const narrowest = Math.min(...(widths.length > 0 ? widths : traces.map((e) => e.width)));
     return {
       name,
-      pieces: pieceCount(elements.length, joined),
+      pieces,
       area: unionArea(elements.map((e) => e.copper)),
-      resistance_mohm: padPairs(project, elements, joined),
-      current_A: widths.length > 0 ? guideCurrent(Math.min(...widths), project.copper) : 0,
+      length: traces.reduce((sum, e) => sum + e.length, 0),
+      resistance_mohm: pairs.map(({ from, to, squares, within }) => ({
+        from: elements[from].id,
+        to: elements[to].id,
+        value: squares * square,
+        within: within * square,
+      })),
+      current_A: Number.isFinite(narrowest) ? guideCurrent(narrowest, project.copper) : 0,
     };
   });
 }
 
-function pieceCount(n: number, joined: readonly Contact[]): number {
-  const parent = Array.from({ length: n }, (_, i) => i);
-  const find = (i: number): number => {
-    while (parent[i] !== i) i = parent[i] = parent[parent[i]];
-    return i;
-  };
-  for (const c of joined) parent[find(c.a)] = find(c.b);
-  return new Set(parent.map((_, i) => find(i))).size;
+interface PadPair extends SheetResistance {
+  /** Indices into the elements. */
+  from: number;
+  to: number;
 }
 
 /** Resistances between pads: every pad from the first one of its piece. */
-function padPairs(
-  project: Project,
-  elements: readonly CopperElement[],
-  joined: readonly Contact[],
-): NetReport['resistance_mohm'] {
-  // Nodes: one for each pad or region, and one for each place on a trace where something meets it.
-  let nodes = 0;
-  const body = elements.map((e) => (e.kind === 'trace' ? -1 : nodes++));
-  const taps: { s: number; node: number }[][] = elements.map(() => []);
-  const links: { a: number; b: number; ohm: number }[] = [];
-  const nodeOn = (i: number, s: number): number => {
-    if (body[i] >= 0) return body[i];
-    const known = taps[i].find((t) => Math.abs(t.s - s) < 1e-6);
-    if (known) return known.node;
-    taps[i].push({ s, node: nodes });
-    return nodes++;
-  };
-  const same: [number, number][] = joined.map((c) => [nodeOn(c.a, c.alongA), nodeOn(c.b, c.alongB)]);
-  elements.forEach((e, i) => {
-    if (e.kind !== 'trace') return;
-    const sorted = [...taps[i]].sort((a, b) => a.s - b.s);
-    for (let k = 0; k + 1 < sorted.length; k++)
-      links.push({
-        a: sorted[k].node,
-        b: sorted[k + 1].node,
-        ohm: stripResistance(sorted[k + 1].s - sorted[k].s, e.width, project.copper),
-      });
+function padPairs(elements: readonly CopperElement[]): { pieces: number; pairs: PadPair[] } {
+  const sheet = netSheet(elements);
+  const { pieces, padAt } = sheetPieces(sheet);
+  const solved = pieces.map((piece) => ({
+    piece,
+    found: piece.pads.length > 1 ? solvePiece(sheet, piece, padAt) : [],
+  }));
+  const firsts = new Map<SheetPiece, number>();
+  const pairs: PadPair[] = [];
+  elements.forEach((e, to) => {
+    if (e.kind !== 'pad') return;
+    const { piece, found } = solved.find((s) => s.piece.pads.includes(sheet.padOf[to]))!;
+    const from = firsts.get(piece);
+    if (from === undefined) {
+      firsts.set(piece, to);
+      return;
+    }
+    // The first pad of a piece is the first of its pads that touch, and so electrode 0.
+    const electrode = piece.pads.indexOf(sheet.padOf[to]);
+    pairs.push({
+      from,
+      to,
+      ...(electrode === 0 ? { squares: 0, within: 0, narrowest: Infinity } : found[electrode - 1]),
+    });
   });
-  const pads = elements.flatMap((e, i) => (e.kind === 'pad' ? [i] : []));
-  const out: NetReport['resistance_mohm'] = [];
-  for (const p of pads.slice(1)) {
-    const value = solveResistance(nodes, links, same, body[pads[0]], body[p]);
-    if (value !== null) out.push({ from: elements[pads[0]].id, to: elements[p].id, value });
-  }
-  return out;
+  return { pieces: pieces.length, pairs };
+}
+
+function solvePiece(
+  { positions, triangles }: { positions: Float64Array; triangles: Uint32Array },
+  { triangles: free, pads }: SheetPiece,
+  padAt: (a: number, b: number) => number,
+): SheetResistance[] {
+  const corners = free.flatMap((t) => [triangles[3 * t], triangles[3 * t + 1], triangles[3 * t + 2]]);
+  const mesh = new IntrinsicMesh(positions, corners, (a, b) => pads.indexOf(padAt(a, b)));
+  return sheetResistance(mesh, pads.length);
 }
