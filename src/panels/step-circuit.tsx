@@ -5,6 +5,7 @@ import { toggled } from '../store/flat.ts';
 import { current } from '../store/state.ts';
 import { show } from '../store/units.ts';
 import { ChoiceField, NumberField, TextField } from './fields.tsx';
+import { Nets } from './nets.tsx';
 import { useSteady, useWindow } from './window.tsx';
 
 export function CircuitStep() {
@@ -158,6 +159,7 @@ export function CircuitStep() {
           );
         })}
       </ul>
+      <Nets state={state} />
       {[
         ...(copper?.problems ?? []).map(
           (p) => `${p.file === project.name ? '' : `${p.file}, `}${p.place}: ${p.problem}; ${p.mend}.`,

@@ -26,6 +26,10 @@ export function createFollower(
   let followed = -1;
   let handed: State['drawings'] | null = null;
 
+  /** Number of the look at the nets that runs, 0 for none. */
+  let measuring = 0;
+  let measures = 0;
+
   const late = (revision: number) => api.getState().revision !== revision;
 
   async function follow(): Promise<void> {
@@ -34,10 +38,11 @@ export function createFollower(
       if (revision === followed) return;
       followed = revision;
       if (!project || !part) {
-        api.setState({ copper: null, reach: null, plan: null });
+        api.setState({ copper: null, reach: null, plan: null, nets: null });
         continue;
       }
       const since = performance.now();
+      let whole = false;
       const tell = (what: string) => (p: { done: number; of: number } | null) =>
         api.setState({ busy: { what, since, share: p && p.of > 0 ? p.done / p.of : null } });
       try {
@@ -56,6 +61,7 @@ export function createFollower(
           if (copper.pending === 0) break;
         }
         if (late(revision)) continue;
+        whole = true;
         beyondDrape = true;
         const look = tell('Looking where the beam reaches');
         look(null);
@@ -73,11 +79,29 @@ export function createFollower(
         beyondDrape = false;
         api.setState((s) => (s.busy?.since === since ? { busy: null } : s));
       }
+      if (whole && !late(revision)) void measure(revision);
+    }
+  }
+
+  /** Nets come last: nothing waits for them, and a change of the document stops them. */
+  async function measure(revision: number): Promise<void> {
+    const mine = ++measures;
+    measuring = mine;
+    try {
+      const nets = await worker.call('nets', null);
+      if (!late(revision)) api.setState({ nets: { revision, value: nets } });
+    } catch (error) {
+      if (wasStopped(error) || late(revision)) return;
+      api.setState({ nets: { revision, value: null } });
+      fail(error, 'Working out the nets');
+    } finally {
+      if (measuring === mine) measuring = 0;
     }
   }
 
   const wake = () => {
-    if (beyondDrape) worker.stopAll();
+    if (beyondDrape || measuring > 0) worker.stopAll();
+    measuring = 0;
     running ??= follow().finally(() => {
       running = null;
     });

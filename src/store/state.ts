@@ -2,7 +2,14 @@
 import type { Vec3 } from '../core/base/vec.ts';
 import type { Report } from '../core/project/report.ts';
 import type { PadShape, Project } from '../core/project/schema.ts';
-import type { CopperPicture, PartPicture, PlanPicture, Probe, ReachPicture } from '../worker/pictures.ts';
+import type {
+  CopperPicture,
+  NetPicture,
+  PartPicture,
+  PlanPicture,
+  Probe,
+  ReachPicture,
+} from '../worker/pictures.ts';
 import { type History, noHistory } from './history.ts';
 import type { Show } from './looks.ts';
 
@@ -88,6 +95,8 @@ export interface State {
   copper: Derived<CopperPicture> | null;
   reach: Derived<ReachPicture[]> | null;
   plan: Derived<PlanPicture[]> | null;
+  /** Null inside: it could not be worked out. */
+  nets: Derived<NetPicture[] | null> | null;
   exported: Exported | null;
   busy: Busy | null;
   notices: readonly Notice[];
@@ -122,6 +131,7 @@ export const firstState: State = {
   copper: null,
   reach: null,
   plan: null,
+  nets: null,
   exported: null,
   busy: null,
   notices: [],

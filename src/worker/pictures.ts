@@ -150,6 +150,19 @@ export interface PlanPicture {
   unreached: { element: number; length: number; reason: Reason }[];
 }
 
+/** What was worked out for a net. */
+export interface NetPicture {
+  name: string;
+  /** Parts of it that do not touch. */
+  pieces: number;
+  /** mm² */
+  area: number;
+  /** Largest resistance between two of its pads, mΩ; null where no two of them are joined. */
+  most: { from: string; to: string; value: number } | null;
+  /** Guide for a steady current, A; 0 where nothing says. */
+  current: number;
+}
+
 /** What stands under the pointer. */
 export interface Probe {
   point: Vec3;

@@ -34,6 +34,7 @@ import { creases } from './creases.ts';
 import { flatPicture } from './flat-picture.ts';
 import { boxOf, HeldDrawings, type LoadFlat, type Reading } from './held-drawings.ts';
 import { HeldPaths, type Hold } from './held-paths.ts';
+import { netPictures } from './net-pictures.ts';
 import {
   type CopperPicture,
   type DrawingPicture,
@@ -41,6 +42,7 @@ import {
   type ElementPicture,
   type ExportResult,
   type LiveRun,
+  type NetPicture,
   type PartPicture,
   type PlanPicture,
   type Probe,
@@ -258,6 +260,12 @@ export function createSession(flat: LoadFlat = noFlat) {
       return planLayers(p, setupsOf(p, p.name), c, reach, ctx).map((plan) =>
         planPicture(plan, c, reach[plan.setup]),
       );
+    },
+
+    /** Nets of the copper laid last, as they hang together. */
+    nets(_: null, ctx: RunContext): NetPicture[] {
+      const { project: p, copper: c } = needCopper();
+      return netPictures(p, c, ctx);
     },
 
     /** The files that the command line would write with --no-timing, as bytes. */
