@@ -23,10 +23,7 @@ import { collision } from './reach/collision.ts';
 import { fieldShare } from './reach/field.ts';
 import { reachElement } from './reach/reach.ts';
 import { type ElementReach, REASONS, type Reason, type SetupReach } from './reach/result.ts';
-import { borderRule, sharpEdgeRule } from './rules/edges.ts';
-import { gapRule } from './rules/gap.ts';
-import { stretchRule } from './rules/stretch.ts';
-import { widthRule } from './rules/width.ts';
+import { shopRules } from './rules/shop-rules.ts';
 import type { LayerScan } from './scan/strokes.ts';
 
 const drawingReports = (project: Project, drawings: ReadonlyMap<string, Drawing>): DrawingReport[] =>
@@ -84,13 +81,11 @@ export function openReport(
         at: at(f.at),
         text: f.text,
       })),
-      ...[
-        ...widthRule(copper.elements, project.limits),
-        ...gapRule(copper.elements, project.limits),
-        ...stretchRule(copper.elements, project.limits),
-        ...sharpEdgeRule(part.mesh, copper.elements, project.limits),
-        ...borderRule(part.mesh, copper.elements, project.limits),
-      ].map((x) => ({ ...x, value: r(x.value), at: at(x.at) })),
+      ...shopRules(part, copper.elements, project.limits).map((x) => ({
+        ...x,
+        value: r(x.value),
+        at: at(x.at),
+      })),
     ],
     setups: [],
     unreached: { length: 0, elements: [] },

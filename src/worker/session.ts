@@ -27,9 +27,7 @@ import { readProject, writeProject } from '../core/project/read.ts';
 import type { Head, Project, Setup } from '../core/project/schema.ts';
 import { checkReach } from '../core/reach/reach.ts';
 import type { SetupReach } from '../core/reach/result.ts';
-import { gapRule } from '../core/rules/gap.ts';
-import { stretchRule } from '../core/rules/stretch.ts';
-import { widthRule } from '../core/rules/width.ts';
+import { shopRules } from '../core/rules/shop-rules.ts';
 import { creases } from './creases.ts';
 import { flatPicture } from './flat-picture.ts';
 import { boxOf, HeldDrawings, type LoadFlat, type Reading } from './held-drawings.ts';
@@ -222,10 +220,7 @@ export function createSession(flat: LoadFlat = noFlat) {
       for (const key of laid.keys()) if (!keep.has(key)) laid.delete(key);
       copper = { elements };
       const { limits } = project;
-      const rules =
-        pending > 0
-          ? []
-          : [...widthRule(elements, limits), ...gapRule(elements, limits), ...stretchRule(elements, limits)];
+      const rules = pending > 0 ? [] : shopRules(here, elements, limits);
       const covered = pending > 0 ? null : unionArea(elements.map((e) => e.copper));
       return {
         ...copperPicture(copper, here, posesOf(project), drapeOf),

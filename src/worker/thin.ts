@@ -1,4 +1,5 @@
-/** Fewer points for a line that is only drawn: D. Douglas and T. Peucker, The Canadian Cartographer 10 (1973) 112. */
+/** Fewer points for a line that is only drawn. */
+import { pointsToKeep } from '../core/base/thin.ts';
 
 /** @param line  3 a point; @param tolerance  mm that the thinned line may stray; @returns a line with the same ends */
 export const thinned = (line: ArrayLike<number>, tolerance: number): Float32Array =>
@@ -6,42 +7,6 @@ export const thinned = (line: ArrayLike<number>, tolerance: number): Float32Arra
 
 /** @param size  numbers a point; the rest as for `thinned` */
 export function thinnedIn(size: 2 | 3, line: ArrayLike<number>, tolerance: number): Float32Array {
-  const n = line.length / size;
-  if (n < 3) return Float32Array.from(line);
-  const keep = new Uint8Array(n);
-  keep[0] = keep[n - 1] = 1;
-  const stack: [number, number][] = [[0, n - 1]];
-  while (stack.length > 0) {
-    const [a, b] = stack.pop()!;
-    let far = tolerance;
-    let at = -1;
-    for (let i = a + 1; i < b; i++) {
-      const d = distanceToSegment(size, line, i, a, b);
-      if (d > far) [far, at] = [d, i];
-    }
-    if (at < 0) continue;
-    keep[at] = 1;
-    stack.push([a, at], [at, b]);
-  }
-  const out: number[] = [];
-  for (let i = 0; i < n; i++) if (keep[i]) for (let k = 0; k < size; k++) out.push(line[size * i + k]);
-  return Float32Array.from(out);
-}
-
-function distanceToSegment(size: number, x: ArrayLike<number>, p: number, a: number, b: number): number {
-  const at = (i: number, k: number) => x[size * i + k];
-  let dd = 0;
-  let dp = 0;
-  for (let k = 0; k < size; k++) {
-    const d = at(b, k) - at(a, k);
-    dd += d * d;
-    dp += d * (at(p, k) - at(a, k));
-  }
-  const t = dd > 0 ? Math.max(0, Math.min(1, dp / dd)) : 0;
-  let s = 0;
-  for (let k = 0; k < size; k++) {
-    const e = at(p, k) - at(a, k) - t * (at(b, k) - at(a, k));
-    s += e * e;
-  }
-  return Math.sqrt(s);
+  const keep = pointsToKeep(size, line, tolerance);
+  return Float32Array.from(line).filter((_, i) => keep[Math.floor(i / size)]);
 }
