@@ -23,7 +23,7 @@ const CORE: Record<string, string[]> = {
   // The proof shares the head's numbers with what it judges, never the code.
   proof: ['base', 'project', 'mesh', 'part', 'drape'],
   copper: ['base', 'project', 'mesh', 'geodesic', 'drape'],
-  rules: ['base', 'project', 'mesh', 'geodesic', 'drape'],
+  rules: ['base', 'project', 'mesh', 'geodesic', 'drape', 'copper'],
 };
 
 const CORE_ROOMS = Object.keys(CORE).map((r) => `core/${r}`);

@@ -60,8 +60,12 @@ const limits = z.looseObject({
   safeGap: notNegative.default(0.5),
   safeStretch: notNegative.default(0.05),
   maxStretch: notNegative.default(0.15),
-  /** Degrees between faces that count as a sharp edge, and least distance of copper from the end of the surface, mm. */
+  /**
+   * Degrees between faces that count as a sharp edge, degrees below which an inner corner of copper is acute, and least
+   * distance of copper from the end of the surface, mm.
+   */
   sharpEdge: num.min(0).max(180).optional(),
+  acuteCorner: num.min(0).max(180).optional(),
   borderGap: notNegative.optional(),
   heightUncertainty: notNegative.default(0.3),
   maxResidual: positive.default(0.15),

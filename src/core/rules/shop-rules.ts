@@ -1,4 +1,5 @@
 /** Every shop rule that looks at copper as it lies: what report and window show. */
+import { innerCornerRule } from '../copper/inner-corners.ts';
 import type { CopperElement } from '../drape/copper.ts';
 import type { DrapePart } from '../drape/drape.ts';
 import type { RuleFinding } from '../project/report.ts';
@@ -18,4 +19,5 @@ export const shopRules = (
   ...stretchRule(elements, limits),
   ...sharpEdgeRule(part.mesh, elements, limits),
   ...borderRule(part.mesh, elements, limits),
+  ...innerCornerRule(elements, limits),
 ];
