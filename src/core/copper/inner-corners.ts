@@ -53,8 +53,13 @@ function netsOf(elements: readonly CopperElement[]): CopperElement[][] {
   return [...nets.values(), ...alone];
 }
 
+const kept = new WeakMap<NetSheet, { above: number; corners: Corner[] }>();
+
 /** Sharpest first; of several within `ONE` the sharpest. @param above  least cosine of the free angle */
-function innerCorners({ positions, triangles }: NetSheet, above: number): Corner[] {
+function innerCorners(sheet: NetSheet, above: number): Corner[] {
+  const known = kept.get(sheet);
+  if (known?.above === above) return known.corners;
+  const { positions, triangles } = sheet;
   const found: Corner[] = [];
   for (const loop of rims(positions, triangles)) {
     const { points, normals } = loop;
@@ -70,9 +75,10 @@ function innerCorners({ positions, triangles }: NetSheet, above: number): Corner
     }
   }
   found.sort((a, b) => b.cos - a.cos);
-  const kept: Corner[] = [];
-  for (const corner of found) if (!kept.some((k) => distance(k.at, corner.at) < ONE)) kept.push(corner);
-  return kept;
+  const corners: Corner[] = [];
+  for (const corner of found) if (!corners.some((k) => distance(k.at, corner.at) < ONE)) corners.push(corner);
+  kept.set(sheet, { above, corners });
+  return corners;
 }
 
 /** Place so far along a closed rim from one of its points; null where the rim is not twice as long. */

@@ -32,7 +32,19 @@ export interface NetSheet {
   padOf: Int32Array;
 }
 
+/** The sheet of elements that were asked for before is kept with the first of them: rules and resistances share it. */
+const kept = new WeakMap<CopperElement, { elements: readonly CopperElement[]; sheet: NetSheet }>();
+
 export function netSheet(elements: readonly CopperElement[]): NetSheet {
+  const known = elements.length > 0 ? kept.get(elements[0]) : undefined;
+  if (known && known.elements.length === elements.length && known.elements.every((e, i) => e === elements[i]))
+    return known.sheet;
+  const sheet = makeSheet(elements);
+  if (elements.length > 0) kept.set(elements[0], { elements: [...elements], sheet });
+  return sheet;
+}
+
+function makeSheet(elements: readonly CopperElement[]): NetSheet {
   const weld = new Weld(JOIN);
   const ownerOf = (i: number): number => (elements[i].kind === 'pad' ? i : -1);
   const triangles: number[] = [];

@@ -26,15 +26,9 @@ export function widthRule(
   elements: readonly CopperElement[],
   limits: Limits,
 ): RuleFinding[] {
-  const n = elements.length;
-  const grid = new OutlineGrid(elements, limits.safeWidth);
-  const necks = grid.pairs(
-    (a, b) => a === b,
-    ({ heading, facing }) => dot(heading, facing) < AGAINST,
-  );
-  return elements.flatMap((e, i) => {
+  return elements.flatMap((e) => {
     const drawn = e.kind === 'trace' ? { distance: e.width, at: e.anchor } : null;
-    const neck = narrowest(part, grid, i, necks.get(i * n + i) ?? []);
+    const neck = neckOf(part, e, limits.safeWidth);
     const known = drawn && (!neck || neck.distance + OUTLINES >= drawn.distance);
     const narrow = known ? drawn : neck;
     // What is measured counts as too narrow only where it is for sure.
@@ -55,14 +49,34 @@ export function widthRule(
   });
 }
 
-/** Smallest circle that fits between two sides. @param near  nearest first */
-function narrowest(
-  { mesh, queries }: DrapePart,
-  grid: OutlineGrid,
-  element: number,
-  near: readonly Near[],
-): { distance: number; at: Vec3 } | null {
-  let best: { distance: number; at: Vec3 } | null = null;
+interface Neck {
+  /** mm */
+  distance: number;
+  at: Vec3;
+}
+
+/** Copper that did not change has the neck that it had. */
+const kept = new WeakMap<CopperElement, { below: number; neck: Neck | null }>();
+
+/** Smallest circle that fits between two sides of an element, null where none is smaller than `below` mm. */
+function neckOf(part: DrapePart, element: CopperElement, below: number): Neck | null {
+  const known = kept.get(element);
+  if (known?.below === below) return known.neck;
+  const grid = new OutlineGrid([element], below);
+  const [near] = grid
+    .pairs(
+      () => true,
+      ({ heading, facing }) => dot(heading, facing) < AGAINST,
+    )
+    .values();
+  const neck = narrowest(part, grid, near ?? []);
+  kept.set(element, { below, neck });
+  return neck;
+}
+
+/** @param near  nearest first */
+function narrowest({ mesh, queries }: DrapePart, grid: OutlineGrid, near: readonly Near[]): Neck | null {
+  let best: Neck | null = null;
   for (const one of near) {
     // No circle is smaller than half the way across: those that follow are wider.
     if (best && one.distance >= best.distance) break;
@@ -74,7 +88,7 @@ function narrowest(
     // Across a slit in the copper the other side is on the right.
     if (dot(inward, normalize(sub(one.to, one.at))) < SQUARE) continue;
     const middle = addScaled(one.at, inward, width / 2);
-    if (grid.isClear(element, middle, width / 2 - OUTLINES)) best = { distance: width, at: one.at };
+    if (grid.isClear(0, middle, width / 2 - OUTLINES)) best = { distance: width, at: one.at };
   }
   return best;
 }
