@@ -1,12 +1,13 @@
 /** Facts about a drawing on the part, and about one element of it. */
 import { useMemo } from 'react';
 import type { Drape } from '../core/project/schema.ts';
-import { lastName } from '../store/document.ts';
-import { drapeSums, normalNear } from '../store/drapes.ts';
+import { type DrapeChange, lastName } from '../store/document.ts';
+import { drapeSums, LINE_WIDTH, normalNear } from '../store/drapes.ts';
 import { marginsOf, placeOf } from '../store/margins.ts';
 import { current, type State } from '../store/state.ts';
 import { show } from '../store/units.ts';
 import type { ElementPicture } from '../worker/pictures.ts';
+import { DrapeNets, DrawnNet } from './drape-nets.tsx';
 import { ChoiceField, Fact, NumberField, PlaceField, TickField } from './fields.tsx';
 import { MarginRow } from './margin-row.tsx';
 import { useWindow } from './window.tsx';
@@ -16,7 +17,7 @@ export function DrapeFacts({ drape: d, state }: { drape: Drape; state: State }) 
   const { copper } = current(state);
   const { elements, length, area, worst } = useMemo(() => drapeSums(copper, d.id), [copper, d.id]);
   const read = copper?.drawings.find((r) => r.drape === d.id);
-  const edit = (what: string, change: Partial<Drape>) =>
+  const edit = (what: string, change: DrapeChange) =>
     store.act({ kind: 'edit-drape', id: d.id, what, change });
   return (
     <>
@@ -62,6 +63,23 @@ export function DrapeFacts({ drape: d, state }: { drape: Drape; state: State }) 
         ]}
         onValue={(lay) => edit('lines', { lay })}
       />
+      <h3>How the file is read</h3>
+      <ChoiceField
+        label="Unit"
+        value={d.units ?? 'file'}
+        options={UNITS}
+        onValue={(v) => edit('unit', { units: v === 'file' ? undefined : v })}
+      />
+      <p className="dim">The unit counts only where the file says none.</p>
+      <NumberField
+        label="Lines without width"
+        unit="mm"
+        quantity="length"
+        value={d.lineWidth ?? LINE_WIDTH}
+        min={0}
+        open
+        onValue={(lineWidth) => edit('width of lines without one', { lineWidth })}
+      />
       {read &&
         read.layers.length > 1 &&
         read.layers.map((layer) => (
@@ -75,6 +93,7 @@ export function DrapeFacts({ drape: d, state }: { drape: Drape; state: State }) 
             }}
           />
         ))}
+      {read && <DrapeNets drape={d} flat={read.flat} />}
       <dl>
         <Fact label="Elements">{copper ? elements.length : '…'}</Fact>
         <Fact label="Line length">{show(length, 1)} mm</Fact>
@@ -92,6 +111,15 @@ export function DrapeFacts({ drape: d, state }: { drape: Drape; state: State }) 
     </>
   );
 }
+
+const UNITS = [
+  ['file', 'from the file'],
+  ['mm', 'millimetre'],
+  ['inch', 'inch'],
+  ['um', 'micrometre'],
+  ['cm', 'centimetre'],
+  ['m', 'metre'],
+] as const;
 
 /** The worst stretch of an element, with the way to its place. */
 function Stretch({ e, state }: { e: ElementPicture; state: State }) {
@@ -146,8 +174,8 @@ export function DrawnFacts({ id, state }: { id: string; state: State }) {
       <h2>
         {NAMES[e.kind]} {id}
       </h2>
+      <DrawnNet id={id} drape={e.drape} net={e.net} state={state} />
       <dl>
-        <Fact label="Net">{e.net || 'no net'}</Fact>
         <Fact label={e.kind === 'trace' ? 'Length' : 'Outline'}>{show(e.length, 2)} mm</Fact>
         <Fact label="As drawn">{show(e.drawnLength, 2)} mm</Fact>
         <Fact label="Copper">{show(e.area, 2)} mm²</Fact>

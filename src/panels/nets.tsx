@@ -27,7 +27,7 @@ export function Nets({ state }: { state: State }) {
         {now === 'working'
           ? 'Resistances: working out …'
           : now === null
-            ? 'They could not be worked out.'
+            ? 'Resistances are not worked out.'
             : ''}
       </p>
       <ul className="nets" aria-label="Nets">

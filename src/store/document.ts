@@ -2,11 +2,14 @@
 import type { Vec3 } from '../core/base/vec.ts';
 import type { Drape, Element, Project } from '../core/project/schema.ts';
 
+export type DrapeChange = { readonly [K in keyof Drape]?: Drape[K] | undefined };
+
 export type Act =
   | { kind: 'add-element'; element: Element }
   | { kind: 'add-drape'; drape: Drape }
   | { kind: 'move-drape'; id: string; at: Vec3 }
-  | { kind: 'edit-drape'; id: string; what: string; change: Readonly<Partial<Drape>> }
+  /** What is undefined in the change is taken out of the drape. */
+  | { kind: 'edit-drape'; id: string; what: string; change: DrapeChange }
   | { kind: 'delete'; ids: readonly string[] }
   | { kind: 'move-point'; id: string; index: number; at: Vec3 }
   | { kind: 'add-point'; id: string; index: number; at: Vec3 }
@@ -66,7 +69,7 @@ export function apply(project: Project, act: Act): Project {
     case 'move-drape':
       return editDrape(project, act.id, (d) => ({ ...d, anchor: [...act.at] }));
     case 'edit-drape':
-      return editDrape(project, act.id, (d) => ({ ...d, ...act.change }));
+      return editDrape(project, act.id, (d) => changed(d, act.change));
     case 'move-point':
       return edit(project, act.id, (e) =>
         withPoints(e, (p) => p.map((q, i) => (i === act.index ? { ...q, at: [...act.at] } : q))),
@@ -109,6 +112,12 @@ function withDrapes(project: Project, f: (list: Drape[]) => Drape[]): Project {
 
 const editDrape = (project: Project, id: string, f: (d: Drape) => Drape): Project =>
   withDrapes(project, (list) => list.map((d) => (d.id === id ? f(d) : d)));
+
+function changed(drape: Drape, change: DrapeChange): Drape {
+  const after: Record<string, unknown> = { ...drape, ...change };
+  for (const [key, value] of Object.entries(change)) if (value === undefined) delete after[key];
+  return after as Drape;
+}
 
 const edit = (project: Project, id: string, f: (e: Element) => Element): Project =>
   withElements(project, (list) => list.map((e) => (e.id === id ? f(e) : e)));

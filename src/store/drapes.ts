@@ -3,6 +3,9 @@ import type { Vec3 } from '../core/base/vec.ts';
 import type { Drape, Limits, Project } from '../core/project/schema.ts';
 import type { CopperPicture, ElementPicture } from '../worker/pictures.ts';
 
+/** Width of lines that have none in their file, mm, where the drape says no other: as the readers take it. */
+export const LINE_WIDTH = 0.5;
+
 export interface DrapeSums {
   elements: ElementPicture[];
   /** Lines on the surface, mm. */

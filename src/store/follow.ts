@@ -91,17 +91,20 @@ export function createFollower(
       const nets = await worker.call('nets', null);
       if (!late(revision)) api.setState({ nets: { revision, value: nets } });
     } catch (error) {
-      if (wasStopped(error) || late(revision)) return;
+      if (late(revision)) return;
       api.setState({ nets: { revision, value: null } });
-      fail(error, 'Working out the nets');
+      if (!wasStopped(error)) fail(error, 'Working out the nets');
     } finally {
       if (measuring === mine) measuring = 0;
     }
   }
 
   const wake = () => {
-    if (beyondDrape || measuring > 0) worker.stopAll();
-    measuring = 0;
+    // Work for the document as it is goes on.
+    if (late(followed)) {
+      if (beyondDrape || measuring > 0) worker.stopAll();
+      measuring = 0;
+    }
     running ??= follow().finally(() => {
       running = null;
     });

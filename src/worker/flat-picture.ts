@@ -59,8 +59,11 @@ function thinDrawing(drawing: Drawing): Thin {
     ends[i] = at / 2;
   });
   let first = 0;
-  const shapes = drawing.shapes.map(({ figure }, i) => {
+  const shapes = drawing.shapes.map(({ id, layer, net, figure }, i) => {
     const shape = {
+      name: id,
+      layer,
+      net,
       first,
       count: counts[i],
       ...(figure.kind === 'stroke'

@@ -77,6 +77,10 @@ export interface FlatPicture {
 }
 
 export interface FlatShapePicture {
+  /** What the drawing calls it, null where it gives no name; its layer; the net that the file names. */
+  name: string | null;
+  layer: string;
+  net: string | null;
   /** Its rings, or its one line, are `first … first + count - 1`. */
   first: number;
   count: number;

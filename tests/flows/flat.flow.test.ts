@@ -1,13 +1,16 @@
 /** The flat drawing beside the part in a real window: what is selected in one is selected in the other. */
-import { writeFileSync } from 'node:fs';
+import { readFileSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { afterAll, beforeAll, describe, expect, test } from 'vitest';
 import { writeProject } from '../../src/core/project/read.ts';
+import type { Project } from '../../src/core/project/schema.ts';
 import { domeHeight, domeProject, domeStl } from './dome.ts';
 import { board } from './drawings.ts';
 import {
   accessibility,
+  choose,
   freshFolder,
+  menuLabel,
   type OpenWindow,
   openWindow,
   planned,
@@ -37,7 +40,7 @@ beforeAll(async () => {
       mirror: false,
       evenLengths: true,
       drawingLayers: { notes: 'skip' },
-      nets: { spine: 'SIG', pad1: 'SIG', meander: 'GND' },
+      nets: { spine: 'SIG', meander: 'GND', far: 'GND' },
     },
   ];
   writeFileSync(file, writeProject(p));
@@ -220,6 +223,84 @@ describe('the flat drawing', () => {
     expect(await accessibility(w.page)).toEqual([]);
     await w.page.keyboard.press('s');
   });
+});
+
+describe('nets', () => {
+  const net = (name: string) => w.page.locator(`[data-net=${name}]`);
+  const state = () => w.page.locator('.nets-state').textContent();
+
+  test('are listed with lengths, and with resistances once they are worked out; a click selects one', async () => {
+    await step(w.page, 'circuit');
+    await poll(state, { timeout: 60_000 }).toBe('');
+    await poll(() => net('SIG').textContent()).toMatch(/1 element · (28|29)(\.\d)? mm · [\d.]+ mm²/);
+    expect(await net('SIG').textContent()).not.toMatch(/pieces/);
+    expect(await net('A').textContent()).toMatch(/no two pads.*2 elements/);
+    await net('GND').click();
+    await poll(() => w.page.locator('.facts .ids').textContent()).toBe('d1/meander, d1/far');
+    expect(await net('GND').textContent()).toMatch(/In 2 pieces that do not touch/);
+    expect(await net('GND').getAttribute('aria-pressed')).toBe('true');
+    await w.page.keyboard.down('Shift');
+    await net('SIG').click();
+    await w.page.keyboard.up('Shift');
+    await poll(heading).toBe('3 elements');
+  });
+
+  test('in pieces are said to be, and what is changed is worked out anew', async () => {
+    await option('dot').waitFor({ state: 'detached' });
+    await option('slant').click();
+    const field = w.page.getByLabel('Net', { exact: true }).last();
+    await poll(heading).toBe('Trace d1/slant');
+    await field.fill('SIG');
+    await field.press('Enter');
+    await poll(() => menuLabel(w.app, 'undo')).toBe('Undo change net of slant of d1');
+    await poll(() => net('SIG').textContent(), { timeout: 60_000 }).toMatch(
+      /2 elements.*In 2 pieces that do not touch/,
+    );
+    await choose(w.app, 'undo');
+    await poll(() => net('SIG').textContent(), { timeout: 60_000 }).toMatch(/1 element · .* mm²/);
+    expect(await net('SIG').textContent()).not.toMatch(/pieces/);
+    await planned(w.page);
+  }, 150_000);
+});
+
+describe('how a drawing is read', () => {
+  const drape = async () => {
+    await choose(w.app, 'save');
+    await w.page.waitForFunction(() => !document.querySelector('h1')?.textContent?.startsWith('•'));
+    await w.page.waitForTimeout(400);
+    return (JSON.parse(readFileSync(file, 'utf8')) as Project).circuit.drapes[0]!;
+  };
+
+  test('its unit, the width of its lines and its nets are changed in its facts, each a step of undo with its name', async () => {
+    await step(w.page, 'circuit');
+    await w.page.locator('[aria-label=Drawings] button').first().click();
+    await poll(heading).toBe('Drawing d1');
+    await w.page.getByLabel('Unit', { exact: true }).selectOption('inch');
+    await poll(() => menuLabel(w.app, 'undo')).toBe('Undo change unit of d1');
+    const width = w.page.getByLabel('Lines without width');
+    expect(await width.inputValue()).toBe('0.5');
+    await width.fill('0.01in');
+    await width.press('Enter');
+    await poll(() => menuLabel(w.app, 'undo')).toBe('Undo change width of lines without one of d1');
+    await w.page.locator('.nets-of summary').click();
+    const ring = w.page.getByLabel('ring', { exact: true });
+    expect(await ring.getAttribute('placeholder')).toBe('no net');
+    await ring.fill('RF');
+    await ring.press('Enter');
+    await poll(() => menuLabel(w.app, 'undo')).toBe('Undo change net of ring of d1');
+    await planned(w.page);
+    expect(await accessibility(w.page)).toEqual([]);
+    expect(await drape()).toMatchObject({
+      units: 'inch',
+      lineWidth: 0.254,
+      nets: { spine: 'SIG', meander: 'GND', far: 'GND', ring: 'RF' },
+    });
+    for (let i = 0; i < 3; i++) await choose(w.app, 'undo');
+    await planned(w.page);
+    const back = await drape();
+    expect('units' in back || 'lineWidth' in back).toBe(false);
+    expect(back.nets).toEqual({ spine: 'SIG', meander: 'GND', far: 'GND' });
+  }, 150_000);
 });
 
 test('the page told of no fault', () => {
