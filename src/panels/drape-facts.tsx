@@ -113,7 +113,7 @@ export function DrapeFacts({ drape: d, state }: { drape: Drape; state: State }) 
 }
 
 const UNITS = [
-  ['file', 'from the file'],
+  ['file', 'its own'],
   ['mm', 'millimetre'],
   ['inch', 'inch'],
   ['um', 'micrometre'],

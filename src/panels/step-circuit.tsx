@@ -107,7 +107,11 @@ export function CircuitStep() {
                     <span className="id">{d.id}</span>
                     <span className="dim">{lastName(d.drawing)}</span>
                     <span className="count">
-                      {elements.length > 0 ? `${elements.length} · ${show(area, 1)} mm²` : 'not laid'}
+                      {elements.length > 0
+                        ? `${elements.length} · ${show(area, 1)} mm²`
+                        : read && read.shapes === 0 && read.rims.length > 0
+                          ? `${read.holes} hole${read.holes === 1 ? '' : 's'}`
+                          : 'not laid'}
                     </span>
                   </button>
                   {read && read.notes.length > 0 && (

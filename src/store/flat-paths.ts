@@ -61,7 +61,7 @@ export function holesPath(holes: Float32Array): string {
     const r = diameter / 2;
     const far = Math.hypot(bu - au, bv - av);
     const [nu, nv] = far > 0 ? [(-(bv - av) / far) * r, ((bu - au) / far) * r] : [0, r];
-    const arc = `A${short(r)} ${short(r)} 0 0 0 `;
+    const arc = `A${short(r)} ${short(r)} 0 0 1 `;
     d += `M${short(au + nu)} ${short(av + nv)}${arc}${short(au - nu)} ${short(av - nv)}`;
     d += `L${short(bu - nu)} ${short(bv - nv)}${arc}${short(bu + nu)} ${short(bv + nv)}Z`;
   }

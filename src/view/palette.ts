@@ -42,6 +42,7 @@ export interface Scheme {
   plane: string;
   lens: string;
   live: string;
+  hole: string;
 }
 
 export const SCHEMES: Record<'light' | 'dark', Scheme> = {
@@ -54,6 +55,7 @@ export const SCHEMES: Record<'light' | 'dark', Scheme> = {
     plane: '#1d7f8a',
     lens: '#6d7378',
     live: '#00486d',
+    hole: '#23282b',
   },
   dark: {
     background: '#15191c',
@@ -64,5 +66,6 @@ export const SCHEMES: Record<'light' | 'dark', Scheme> = {
     plane: '#5cc9d3',
     lens: '#9aa4aa',
     live: '#0070c0',
+    hole: '#23282b',
   },
 };

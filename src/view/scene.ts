@@ -63,12 +63,13 @@ export function createScene(canvas: HTMLCanvasElement) {
   const rimMat = surfaceLineMaterial();
   const outlines = new LineSegments(new BufferGeometry(), rimMat);
   const doseLines = new LineSegments2(new LineSegmentsGeometry(), fat(3));
+  const holes = new LineSegments2(new LineSegmentsGeometry(), fat(2));
   const chosen = new LineSegments2(new LineSegmentsGeometry(), fat(3));
   const pointed = new LineSegments2(new LineSegmentsGeometry(), fat(3));
   const live = new LineSegments2(new LineSegmentsGeometry(), fat(3.5));
   const beam = new LineSegments2(new LineSegmentsGeometry(), fat(1.5));
   (doseLines.material as LineMaterial).color = new Color(LOOKS.dose.mark);
-  for (const o of [partMesh, partEdges, copperMesh, outlines, doseLines, chosen, pointed, live]) {
+  for (const o of [partMesh, partEdges, copperMesh, outlines, doseLines, holes, chosen, pointed, live]) {
     o.frustumCulled = false;
     part.add(o);
   }
@@ -132,6 +133,7 @@ export function createScene(canvas: HTMLCanvasElement) {
     if (!copper) {
       setRims(new Float32Array(0));
       setSegments(doseLines, new Float32Array(0));
+      setSegments(holes, new Float32Array(0));
       return;
     }
     const g = geometryOf(copper.positions, copper.normals);
@@ -142,6 +144,7 @@ export function createScene(canvas: HTMLCanvasElement) {
       g.setAttribute(name, new BufferAttribute(new Float32Array(n), 1));
     copperMesh.geometry = g;
     setRims(segmentsOf(copper.elements.flatMap((e) => e.outline)));
+    setSegments(holes, segmentsOf(copper.drawings.flatMap((d) => d.rims)));
   }
 
   /** @param look  number of the look of a stretch, -1 for what no drawing has */
@@ -260,6 +263,7 @@ export function createScene(canvas: HTMLCanvasElement) {
     rimMat.uniforms['uColor']!.value.set(s.copperEdge);
     (chosen.material as LineMaterial).color.set(s.select);
     (live.material as LineMaterial).color.set(s.live);
+    (holes.material as LineMaterial).color.set(s.hole);
     (pointed.material as LineMaterial).color.set(s.live);
     (beam.material as LineMaterial).color.set(s.live);
   }
@@ -287,7 +291,7 @@ export function createScene(canvas: HTMLCanvasElement) {
       eye.target[2] + back[2] * FAR,
     );
     camera.updateProjectionMatrix();
-    for (const l of [doseLines, chosen, pointed, live, beam])
+    for (const l of [doseLines, holes, chosen, pointed, live, beam])
       (l.material as LineMaterial).resolution.set(width, height);
     renderer.render(scene, camera);
   }

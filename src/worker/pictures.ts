@@ -57,6 +57,8 @@ export interface DrawingPicture {
   /** What its reader left out or assumed. */
   notes: Note[];
   flat: FlatPicture;
+  /** Rims of its holes on the part, closed lines of 3 a point; none while it is still to be laid. */
+  rims: Float32Array[];
 }
 
 /** A drawing as it was drawn, mm, u to the right and v up, thinned to what can be seen. */

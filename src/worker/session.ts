@@ -197,14 +197,16 @@ export function createSession(flat: LoadFlat = noFlat) {
         each(drawn.length + i, () => {
           const path = `$.circuit.drapes[${i}]`;
           const { key, drawing } = drawings.read(drape, file, path, ctx);
-          read.push({
+          const picture: DrawingPicture = {
             drape: drape.id,
             shapes: drawing.shapes.length,
             holes: drawing.holes.length,
             layers: drawing.layers,
             notes: drawing.notes,
             flat: flatPicture(drawing, drape, key),
-          });
+            rims: [],
+          };
+          read.push(picture);
           const all = known(`${key} ${JSON.stringify(drape)}`, () =>
             drapeDrawingOn(
               draper!,
@@ -212,6 +214,7 @@ export function createSession(flat: LoadFlat = noFlat) {
               { step: () => ctx.step('drape', drawn.length + i, drawn.length + drapes.length) },
             ),
           );
+          picture.rims = (all?.rims ?? []).map((rim) => Float32Array.from(rim));
           for (const e of all?.elements ?? []) drapeOf.set(e.id, drape.id);
           elements.push(...(all?.elements ?? []));
           findings.push(...(all?.findings ?? []));

@@ -167,6 +167,7 @@ describe('the look of a shape', () => {
         holes: 0,
         layers: [],
         notes: [],
+        rims: [],
         flat: flatPicture(lopsided, drape({ drawingLayers: { notes: 'skip' } }), 'k'),
       },
       c,
@@ -228,8 +229,25 @@ describe('the paths of the page', () => {
     expect(figuresOf(f, rows, [0])[0]!.d).toBe('M2 -4L12 -4L12 -8');
   });
 
-  test('a hole is a ring about its middle, a slot runs from end to end', () => {
-    expect(holesPath(Float32Array.of(3, 4, 3, 4, 2))).toBe('M3 5A1 1 0 0 0 3 3L3 3A1 1 0 0 0 3 5Z');
-    expect(holesPath(Float32Array.of(0, 0, 6, 0, 2))).toBe('M0 1A1 1 0 0 0 0 -1L6 -1A1 1 0 0 0 6 1Z');
+  test('a hole is a ring about its middle, a slot runs from end to end and bulges beyond both', () => {
+    // Read back as an SVG path, whose y is down: v turned over.
+    const areaOf = (...holes: number[]) => {
+      const d = holesPath(Float32Array.from(holes));
+      const { figure } = read(`<path transform="translate(0 20) scale(1 -1)" d="${d}"/>`).shapes[0]!;
+      const [ring] = figure.kind === 'area' ? figure.rings : [];
+      let sum = 0;
+      for (let i = 0; i < ring!.length; i += 2) {
+        const j = (i + 2) % ring!.length;
+        sum += (ring![i]! * ring![j + 1]! - ring![j]! * ring![i + 1]!) / 2;
+      }
+      return { sum, left: Math.min(...ring!.filter((_, i) => i % 2 === 0)) };
+    };
+    const round = areaOf(3, 4, 3, 4, 2);
+    expect(round.sum).toBeCloseTo(Math.PI, 1);
+    expect(round.left).toBeCloseTo(2, 2);
+    // A slot from (4, 4) to (10, 12), 10 mm long and 2 wide.
+    const slot = areaOf(4, 4, 10, 12, 2);
+    expect(Math.abs(slot.sum - (20 + Math.PI))).toBeLessThan(0.05);
+    expect(slot.left).toBeCloseTo(3, 1);
   });
 });

@@ -4,6 +4,7 @@
  */
 import { radiansFromDegrees } from '../base/brands.ts';
 import { quiet, type RunContext } from '../base/run-context.ts';
+import { cosine, sine } from '../base/trig.ts';
 import { distance, type Vec2, type Vec3 } from '../base/vec.ts';
 import type { Area, Drawing, Hole, Shape, Stroke } from '../drawing/drawing.ts';
 import type { WindowSolver } from '../geodesic/windows.ts';
@@ -23,6 +24,8 @@ import { drapeTrace, traceStep } from './trace.ts';
 export interface DrawingDraped {
   elements: CopperElement[];
   findings: DrapeFinding[];
+  /** Rims of its holes on the surface, closed lines of 3 a point; of a hole that the map does not reach, none. */
+  rims: Float64Array[];
 }
 
 /** One shape, moved so that the drawing's origin is at 0. */
@@ -49,8 +52,10 @@ export function drapeDrawing(
 ): DrawingDraped {
   const shapes = movedShapes(drape, drawing);
   const holes = drawing.holes.map((h) => movedHole(h, drape.origin));
-  const farthest = Math.max(0, ...shapes.map((s) => farthestCorner(s.flat.box)));
-  if (shapes.length === 0) return { elements: [], findings: [] };
+  // Without shapes there is no copper, and the map is for the holes alone.
+  const laid = shapes.length > 0 ? shapes.map((s) => s.flat.box) : holes.map(holeBox);
+  if (laid.length === 0) return { elements: [], findings: [], rims: [] };
+  const farthest = laid.reduce((far, box) => Math.max(far, farthestCorner(box)), 0);
   const radius = farthest + MARGIN;
   let done = 0;
   const step = (): void => ctx.step('drape', done, shapes.length);
@@ -58,7 +63,7 @@ export function drapeDrawing(
   const patch = mapPatch(solver, anchor, radius, radiansFromDegrees(drape.turn), drape.mirror);
   const limits = patch.limits((u, v) => nearestEdge(shapes, u, v));
   step();
-  if (drape.evenLengths) evenLengths(patch, (u, v) => nearestEdge(shapes, u, v), step);
+  if (drape.evenLengths && shapes.length > 0) evenLengths(patch, (u, v) => nearestEdge(shapes, u, v), step);
   const walk = new PatchWalk(patch);
   const read = flatReader(patch);
   const chord = chordLength(solver.mesh, patch, radius);
@@ -129,7 +134,8 @@ export function drapeDrawing(
       stretched: worst,
     });
   }
-  return { elements, findings };
+  const rims = holes.slice(0, MOST_RIMS).flatMap((h) => walk.line(holeRing(h), true)?.path.points ?? []);
+  return { elements, findings, rims };
 }
 
 /** Ids of the elements that lie at places of the drawing, null where none does. @param places  in the drawing's own axes, mm */
@@ -247,6 +253,25 @@ const farthestCorner = ([lu, lv, hu, hv]: Box): number =>
 const grown = ([lu, lv, hu, hv]: Box, by: number): Box => [lu - by, lv - by, hu + by, hv + by];
 
 const boxesMeet = (a: Box, b: Box): boolean => a[0] <= b[2] && b[0] <= a[2] && a[1] <= b[3] && b[1] <= a[3];
+
+/** Rims are only shown: a panel of more holes than these shows none of the rest. */
+const MOST_RIMS = 5000;
+const RIM_CORNERS = 32;
+
+/** The rim of a hole or slot as a polygon of 2 a point, half of it about each end. */
+function holeRing({ at, to, diameter }: Hole): Float64Array {
+  const r = diameter / 2;
+  const far = Math.hypot(to[0] - at[0], to[1] - at[1]);
+  const [eu, ev] = far > 0 ? [(to[0] - at[0]) / far, (to[1] - at[1]) / far] : [1, 0];
+  const out = new Float64Array(2 * (RIM_CORNERS + 2));
+  for (let i = 0; i < RIM_CORNERS + 2; i++) {
+    const [end, k] = i <= RIM_CORNERS / 2 ? [to, i] : [at, i - 1];
+    const angle = Math.PI * ((2 * k) / RIM_CORNERS - 0.5);
+    const [c, s] = [r * cosine(angle), r * sine(angle)];
+    out.set([end[0] + c * eu - s * ev, end[1] + c * ev + s * eu], 2 * i);
+  }
+  return out;
+}
 
 function holeBox({ at, to, diameter }: Hole): Box {
   const r = diameter / 2;
