@@ -73,40 +73,45 @@ interface Ring {
 
 /** Edges that only one triangle of a face has, chained. */
 function ringsOf({ positions, triangles, face }: Patch): Ring[] {
-  // Directed edges by the vertex that they leave: 1.5 million of them in a large region, so flat arrays and no map.
+  // Directed edges by the vertex that they leave: three million of them in a large region, so flat arrays and no map.
   const n = positions.length / 3;
   const start = new Int32Array(n + 1);
-  for (const v of triangles) start[v + 1]++;
+  for (let c = 0; c < triangles.length; c++) start[triangles[c] + 1]++;
   for (let v = 0; v < n; v++) start[v + 1] += start[v];
   const next = start.slice();
-  const corner = new Int32Array(triangles.length);
-  for (let c = 0; c < triangles.length; c++) corner[next[triangles[c]]++] = c;
-  const headOf = (c: number): number => triangles[c % 3 === 2 ? c - 2 : c + 1];
-  const faceOf = (c: number): number => face[(c / 3) | 0];
-  const open = new Uint8Array(triangles.length);
-  for (let c = 0; c < triangles.length; c++) {
-    const head = headOf(c);
-    open[c] = 1;
-    for (let i = start[head]; i < start[head + 1]; i++)
-      if (headOf(corner[i]) === triangles[c] && faceOf(corner[i]) === faceOf(c)) {
-        open[c] = 0;
-        break;
-      }
-  }
-  const rings: Ring[] = [];
-  for (let c = 0; c < triangles.length; c++) {
-    if (!open[c]) continue;
-    const vertices: number[] = [];
-    for (let at = c; at >= 0; ) {
-      open[at] = 0;
-      vertices.push(triangles[at]);
-      const head = headOf(at);
-      let following = -1;
-      for (let i = start[head]; i < start[head + 1] && following < 0; i++)
-        if (open[corner[i]] && faceOf(corner[i]) === faceOf(c)) following = corner[i];
-      at = following;
+  const head = new Int32Array(triangles.length);
+  const of = new Int32Array(triangles.length);
+  for (let t = 0; t < face.length; t++)
+    for (let k = 0; k < 3; k++) {
+      const i = next[triangles[3 * t + k]]++;
+      head[i] = triangles[3 * t + (k === 2 ? 0 : k + 1)];
+      of[i] = face[t];
     }
-    rings.push({ face: faceOf(c), vertices });
+  const open = new Uint8Array(triangles.length);
+  const found: number[] = [];
+  for (let v = 0; v < n; v++)
+    for (let i = start[v]; i < start[v + 1]; i++) {
+      let j = start[head[i]];
+      const end = start[head[i] + 1];
+      while (j < end && !(head[j] === v && of[j] === of[i])) j++;
+      if (j < end) continue;
+      open[i] = 1;
+      found.push(v, i);
+    }
+  const rings: Ring[] = [];
+  for (let f = 0; f < found.length; f += 2) {
+    let i = found[f + 1];
+    if (!open[i]) continue;
+    const vertices: number[] = [];
+    for (let v = found[f]; i >= 0; ) {
+      open[i] = 0;
+      vertices.push(v);
+      v = head[i];
+      let j = start[v];
+      while (j < start[v + 1] && !(open[j] && of[j] === of[i])) j++;
+      i = j < start[v + 1] ? j : -1;
+    }
+    rings.push({ face: of[found[f + 1]], vertices });
   }
   return rings;
 }

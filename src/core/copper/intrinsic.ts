@@ -4,9 +4,8 @@
  * lies flat, if the two faces are rolled out.
  *
  * Delaunay flips: A. Bobenko and B. Springborn, Discrete Comput. Geom. 38 (2007) 740; with edge lengths only, M. Fisher,
- * B. Springborn, P. Schröder and A. Bobenko, Computing 81 (2007) 199; refinement by circumcentres, N. Sharp, Y. Soliman and
- * K. Crane, ACM Trans. Graph. 38 (2019) 55, after L. Chew and J. Ruppert. Faces that rounding has left without a height get one by
- * N. Sharp and K. Crane, Comput. Graph. Forum 39 (2020) 69, §4.5.
+ * B. Springborn, P. Schröder and A. Bobenko, Computing 81 (2007) 199. Faces that rounding has left without a height get one
+ * by N. Sharp and K. Crane, Comput. Graph. Forum 39 (2020) 69, §4.5.
  */
 import { PairMap } from '../base/pair-map.ts';
 
@@ -17,10 +16,6 @@ const FLIP = -1e-10;
 
 /** What holds an edge at one potential: none, or an electrode's number. */
 const NONE = -1;
-/** A centre nearer to the middle of a side than this share of its length goes into the side. */
-const NEAR_SIDE = 0.1;
-/** Triangles that a walk to a centre may pass: Delaunay's are few. */
-const FAR = 64;
 
 export class IntrinsicMesh {
   /** Corners, 3 a triangle; side s runs from tail[s] to the next corner's vertex. */
@@ -140,7 +135,7 @@ export class IntrinsicMesh {
       waits.delete(e);
       const s = this.side[e];
       const t = this.twin[s];
-      if (!this.isInner(s) || this.cotangent(s) + this.cotangent(t) >= FLIP) continue;
+      if (!this.isInner(s) || !(this.cotangent(s) + this.cotangent(t) < FLIP)) continue;
       this.flip(s);
       for (const f of [next(s), before(s), next(t), before(t), s, t])
         if (this.edge[f] !== e && !waits.has(this.edge[f])) {
@@ -151,7 +146,7 @@ export class IntrinsicMesh {
   }
 
   /** Two triangles, wound alike, and not one on both sides. */
-  private isInner(s: number): boolean {
+  isInner(s: number): boolean {
     const t = this.twin[s];
     return (
       t !== s &&
@@ -170,7 +165,7 @@ export class IntrinsicMesh {
   }
 
   /** The other diagonal of the two triangles, rolled out. */
-  private flip(s: number): void {
+  flip(s: number): void {
     const { tail, edge, twin, side, length } = this;
     const t = twin[s];
     const e = edge[s];
@@ -194,7 +189,7 @@ export class IntrinsicMesh {
   }
 
   /** Side `to` takes the place of `from` in the ring of its edge. The tail is not touched. */
-  private move(from: number, to: number): void {
+  move(from: number, to: number): void {
     const e = this.edge[from];
     if (this.twin[from] === from) this.twin[to] = to;
     else {
@@ -207,66 +202,8 @@ export class IntrinsicMesh {
     if (this.side[e] === from) this.side[e] = to;
   }
 
-  /**
-   * Puts a vertex where the circle through a triangle's corners has its centre, walking there over flattened triangles; into
-   * the middle of an edge that is in the way, or that has the centre within its own circle while nothing lies beyond it.
-   * @returns the edges that came about or whose triangles changed
-   */
-  refine(t: number): number[] {
-    const { length, edge, twin } = this;
-    const corner = this.flat(length[edge[3 * t]], length[edge[3 * t + 1]], length[edge[3 * t + 2]]);
-    const o = circumcentre(corner);
-    let at = t;
-    for (let step = 0; step < FAR; step++) {
-      // Of each side: how far the centre lies inside of it, as a share of its length, and how far along.
-      const seen = [0, 1, 2].map((k) => along(corner, k, o));
-      const out = seen.reduce((best, s, k) => (s.inside < seen[best].inside ? k : best), 0);
-      for (let k = 0; k < 3; k++) {
-        const { inside, share } = seen[k];
-        const lies = k === out && inside < NEAR_SIDE && share > 0.25 && share < 0.75 && inside > -NEAR_SIDE;
-        const encroached = !this.isInner(3 * at + k) && inside * inside < share * (1 - share);
-        if (lies || encroached) return this.split(edge[3 * at + k]);
-      }
-      if (seen[out].inside > 0) return this.insert(at, corner, o);
-      const s = 3 * at + out;
-      if (!this.isInner(s)) return this.split(edge[s]);
-      // Over the side: the neighbour rolled out into the plane of the walk.
-      const g = twin[s];
-      const [bx, by, ax, ay] = [
-        corner[2 * ((out + 1) % 3)],
-        corner[2 * ((out + 1) % 3) + 1],
-        corner[2 * out],
-        corner[2 * out + 1],
-      ];
-      const l = length[edge[s]];
-      const [lx, , , , qx, qy] = this.flat(l, length[edge[next(g)]], length[edge[before(g)]]);
-      const [ux, uy] = [(ax - bx) / l, (ay - by) / l];
-      const q = [bx + (qx - lx) * ux - qy * uy, by + (qx - lx) * uy + qy * ux];
-      const k = g % 3;
-      corner[2 * k] = bx;
-      corner[2 * k + 1] = by;
-      corner[2 * ((k + 1) % 3)] = ax;
-      corner[2 * ((k + 1) % 3) + 1] = ay;
-      corner[2 * ((k + 2) % 3)] = q[0];
-      corner[2 * ((k + 2) % 3) + 1] = q[1];
-      at = (g / 3) | 0;
-    }
-    return this.split(this.longest(t));
-  }
-
-  private longest(t: number): number {
-    const sides = [this.edge[3 * t], this.edge[3 * t + 1], this.edge[3 * t + 2]];
-    return sides.reduce((best, e) => (this.length[e] > this.length[best] ? e : best));
-  }
-
-  /** Corners of a triangle in the plane, counter-clockwise: the first side from the origin along x. */
-  private flat(a: number, b: number, c: number): number[] {
-    const x = (a * a + c * c - b * b) / (2 * a);
-    return [0, 0, a, 0, x, (2 * heron(a, b, c)) / a];
-  }
-
   /** Three triangles for one. */
-  private insert(t: number, corner: readonly number[], o: readonly [number, number]): number[] {
+  insert(t: number, corner: readonly number[], o: readonly [number, number]): number[] {
     const { tail, edge, twin, side, length, held } = this;
     const m = this.electrode.length;
     this.electrode.push(NONE);
@@ -352,30 +289,13 @@ export class IntrinsicMesh {
   }
 }
 
-function circumcentre([, , bx, , cx, cy]: readonly number[]): [number, number] {
-  return [bx / 2, (cx * cx + cy * cy - bx * cx) / (2 * cy)];
-}
-
-/** Where a place lies along side k, and how far on its left, both as shares of its length. */
-function along(
-  corner: readonly number[],
-  k: number,
-  [x, y]: readonly [number, number],
-): { share: number; inside: number } {
-  const [a, b] = [2 * k, 2 * ((k + 1) % 3)];
-  const [dx, dy] = [corner[b] - corner[a], corner[b + 1] - corner[a + 1]];
-  const [px, py] = [x - corner[a], y - corner[a + 1]];
-  const l = dx * dx + dy * dy;
-  return { share: (px * dx + py * dy) / l, inside: (dx * py - dy * px) / l };
-}
-
 /** Area of a triangle by its sides, as W. Kahan wrote Heron's formula: right for needles too. */
-function heron(a: number, b: number, c: number): number {
+export function heron(a: number, b: number, c: number): number {
   if (a < b) [a, b] = [b, a];
   if (b < c) [b, c] = [c, b];
   if (a < b) [a, b] = [b, a];
   return Math.sqrt(Math.max(0, (a + (b + c)) * (c - (a - b)) * (c + (a - b)) * (a + (b - c)))) / 4;
 }
 
-const next = (s: number): number => (s % 3 === 2 ? s - 2 : s + 1);
-const before = (s: number): number => (s % 3 === 0 ? s + 2 : s - 1);
+export const next = (s: number): number => (s % 3 === 2 ? s - 2 : s + 1);
+export const before = (s: number): number => (s % 3 === 0 ? s + 2 : s - 1);

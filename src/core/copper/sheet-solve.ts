@@ -9,6 +9,7 @@
  * with the most are cut (W. Dörfler, SIAM J. Numer. Anal. 33 (1996) 1106) until the bounds are near enough.
  */
 import { factor, type SparseRows } from '../base/sparse.ts';
+import { cutTriangle } from './cut-triangle.ts';
 import { narrowestLine } from './equipotential.ts';
 import type { IntrinsicMesh } from './intrinsic.ts';
 
@@ -44,9 +45,15 @@ export function sheetResistance(mesh: IntrinsicMesh, electrodes: number): SheetR
       within: Math.abs(lower.pairs[i].resistance - u.resistance) / 2,
     }));
     const rough = found.flatMap((f, i) => (f.within > NEAR * f.squares ? [i] : []));
-    if (rough.length === 0 || mesh.electrode.length >= MOST_VERTICES)
-      return found.map((f, i) => ({ ...f, narrowest: narrowestLine(mesh, fieldOf(upper, i)) }));
-    refine(mesh, lacking(mesh, upper, lower, middles, rough));
+    if (
+      rough.length === 0 ||
+      mesh.electrode.length >= MOST_VERTICES ||
+      !refine(mesh, lacking(mesh, upper, lower, middles, rough))
+    )
+      return found.map((f, i) => ({
+        ...f,
+        narrowest: narrowestLine(mesh, fieldOf(upper, i), upper.pairs[i].resistance),
+      }));
   }
 }
 
@@ -217,8 +224,8 @@ function lacking(
   return out;
 }
 
-/** Cuts the triangles that lack the most: each that is still there when its turn comes. */
-function refine(mesh: IntrinsicMesh, lacks: Float64Array): void {
+/** Cuts the triangles that lack the most: each that is still there when its turn comes. @returns whether any was cut */
+function refine(mesh: IntrinsicMesh, lacks: Float64Array): boolean {
   const order = Array.from(lacks, (_, t) => t).sort((a, b) => lacks[b] - lacks[a] || a - b);
   const all = lacks.reduce((a, b) => a + b, 0);
   const chosen: { t: number; is: string }[] = [];
@@ -230,5 +237,6 @@ function refine(mesh: IntrinsicMesh, lacks: Float64Array): void {
     sum += lacks[t];
     chosen.push({ t, is: nameOf(t) });
   }
-  for (const { t, is } of chosen) if (nameOf(t) === is) mesh.makeDelaunay(mesh.refine(t));
+  for (const { t, is } of chosen) if (nameOf(t) === is) mesh.makeDelaunay(cutTriangle(mesh, t));
+  return chosen.length > 0;
 }
