@@ -1,5 +1,6 @@
 /** Results in words and tables, for a person at the laser bench. */
 import type { ElementReport, ProofReport, Report } from '../core/project/report.ts';
+import { ruleWords } from '../core/project/rule-words.ts';
 import type { Proof } from '../core/proof/prove.ts';
 import { counted, duration, facts, fixed, grouped, signed, table } from './table.ts';
 
@@ -138,7 +139,8 @@ function unwritten(report: Report): string {
     ]);
   for (const e of report.elements)
     for (const [reason, at] of reasons(e)) rows.push([e.id, reason, where(at)]);
-  for (const r of report.rules) if (r.text) rows.push([r.elements.join(', '), r.text, where(r.at)]);
+  for (const r of report.rules)
+    if (r.text && !CONNECTION.has(r.rule)) rows.push([r.elements.join(', '), r.text, where(r.at)]);
   for (const id of report.unreached.elements)
     if (!rows.some((r) => r[0] === id)) rows.push([id, 'no layer reaches all of it', '']);
   if (rows.length === 0) return 'Everything can be written.';
@@ -158,18 +160,14 @@ function reasons(e: ElementReport): [string, readonly number[] | undefined][] {
   return out;
 }
 
+/** What copper joins: told in words, and nothing that cannot be written. */
+const CONNECTION = new Set(['open', 'short']);
+
 function rulesBlock(report: Report): string {
-  const measured = report.rules.filter((r) => !r.text);
-  if (measured.length === 0) return 'Shop rules: nothing to say.';
-  const rows = measured.map((r) => [
-    r.level,
-    r.rule,
-    `${fixed(r.value, 3)}`,
-    `${fixed(r.limit, 3)}`,
-    r.elements.join(', '),
-    where(r.at),
-  ]);
-  return `Shop rules:\n${table(['level', 'rule', 'value', 'limit', 'elements', 'at x, y, z'], rows)}`;
+  const told = report.rules.filter((r) => !r.text || CONNECTION.has(r.rule));
+  if (told.length === 0) return 'Shop rules: nothing to say.';
+  const rows = told.map((r) => [r.level, r.rule, ruleWords(r), r.elements.join(', '), where(r.at)]);
+  return `Shop rules:\n${table(['level', 'rule', 'what', 'elements', 'at x, y, z'], rows)}`;
 }
 
 function proofBlock(p: ProofReport | null): string {

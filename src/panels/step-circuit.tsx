@@ -1,4 +1,5 @@
 /** Circuit: what is drawn, and what the next stroke will be. */
+import { ruleWords } from '../core/project/rule-words.ts';
 import { lastName } from '../store/document.ts';
 import { drapeSums } from '../store/drapes.ts';
 import { toggled } from '../store/flat.ts';
@@ -169,11 +170,7 @@ export function CircuitStep() {
           (p) => `${p.file === project.name ? '' : `${p.file}, `}${p.place}: ${p.problem}; ${p.mend}.`,
         ),
         ...(copper?.findings ?? []).map((f) => `${f.element}: ${f.text}.`),
-        ...(copper?.rules ?? []).map((r) =>
-          r.rule === 'stretch'
-            ? `${r.elements.join(' and ')}: lengths differ from the drawing by up to ${show(100 * r.value, 1)} %, ${r.level === 'error' ? 'at most' : 'better'} ${show(100 * r.limit, 1)} %.`
-            : `${r.elements.join(' and ')}: ${r.rule} ${show(r.value, 3)} mm, ${r.level === 'error' ? 'at least' : 'better'} ${show(r.limit, 2)} mm.`,
-        ),
+        ...(copper?.rules ?? []).map((r) => `${r.elements.join(' and ')}: ${ruleWords(r)}.`),
       ].map((t) => (
         <p key={t} className="wrong">
           {t}

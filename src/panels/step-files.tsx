@@ -1,6 +1,7 @@
 /** Files: the scan settings, writing, and what to do at the bench, with the cautions that belong to it. */
 import { CAUTIONS } from '../core/files/cautions.ts';
 import type { Report } from '../core/project/report.ts';
+import { ruleWords } from '../core/project/rule-words.ts';
 import { hasCircuit, isUnsaved } from '../store/state.ts';
 import { show, signed } from '../store/units.ts';
 import { NumberField } from './fields.tsx';
@@ -17,11 +18,7 @@ function Failing({ report }: { report: Report }) {
       ids: report.elements.filter((e) => !e[c].ok).map((e) => e.id),
     })),
     ...report.rules.map((r) => ({
-      what:
-        r.text ??
-        (r.rule === 'stretch'
-          ? `stretch ${show(100 * r.value, 1)} of ${show(100 * r.limit, 1)} % (${r.level})`
-          : `${r.rule} ${show(r.value, 2)} of ${show(r.limit, 2)} mm (${r.level})`),
+      what: `${ruleWords(r)} (${r.level})`,
       ids: r.elements,
     })),
   ].filter((r) => r.ids.length > 0);

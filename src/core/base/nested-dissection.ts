@@ -77,7 +77,8 @@ export function nestedDissection({ start, column }: SparsePattern): Int32Array {
       depth = far;
       count = spread(queue[count - 1]);
     }
-    const middle = level[queue[count >> 1]];
+    // Never the last level: what comes after the middle is not empty, and so every part is smaller than the whole.
+    const middle = Math.min(level[queue[count >> 1]], level[queue[count - 1]] - 1);
     const [before, after]: [number[], number[]] = [[], []];
     for (let i = 0; i < count; i++) {
       const v = queue[i];

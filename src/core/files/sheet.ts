@@ -3,6 +3,7 @@
  * layer from its strokes, and shows the usual cautions without ever giving a number as a safety limit.
  */
 import type { Report, SetupReport } from '../project/report.ts';
+import { ruleWords } from '../project/rule-words.ts';
 import type { Project } from '../project/schema.ts';
 import type { LayerScan } from '../scan/strokes.ts';
 import { CAUTIONS } from './cautions.ts';
@@ -118,9 +119,6 @@ function after(report: Report): string {
   return `<section><h2>After the last layer</h2><p>Clean the part, then plate: ${n(p.area_dm2, 3)} dm² of copper (${n(p.load, 2)} dm²/L), about ${n(p.time_min, 0)} minutes, ${n(p.copper_g * 1000, 1)} mg of copper. Rate and load are this project’s own numbers; the bath’s data sheet decides.</p></section>`;
 }
 
-/** Rules that are no lengths. */
-const UNIT: Record<string, string> = { stretch: ' of the drawn length', 'sharp-edge': '°' };
-
 function notWritten(report: Report): string {
   const rows = report.elements
     .map((e) => ({ id: e.id, why: reasons(e) }))
@@ -128,10 +126,7 @@ function notWritten(report: Report): string {
     .map((e) => `<tr><th>${text(e.id)}</th><td>${text(e.why.join('; '))}</td></tr>`);
   const rules = report.rules
     .filter((r) => r.level === 'error')
-    .map(
-      (r) =>
-        `<tr><th>${text(r.elements.join(', '))}</th><td>${text(r.text ?? `${r.rule}: ${n(r.value, 3)}${UNIT[r.rule] ?? ' mm'}, limit ${n(r.limit, 3)}${UNIT[r.rule] ?? ' mm'}`)}</td></tr>`,
-    );
+    .map((r) => `<tr><th>${text(r.elements.join(', '))}</th><td>${text(ruleWords(r))}</td></tr>`);
   const p = report.proof;
   const proof =
     p && !p.ok

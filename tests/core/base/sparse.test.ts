@@ -93,6 +93,24 @@ describe('Cholesky by rows', () => {
     expect(cost[2] / cost[1]).toBeLessThan(6);
   });
 
+  it('a hub that joins everything, as the pole of a fan does, is one part in the order like any other', () => {
+    const n = 200;
+    const start = [0];
+    const column: number[] = [];
+    for (let i = 0; i < n; i++) {
+      column.push(i, ...(i === 7 ? [...Array(n).keys()].filter((j) => j !== 7) : [7]));
+      start.push(column.length);
+    }
+    const value = Float64Array.from(column, (j, k) => (start.findLastIndex((s) => s <= k) === j ? n : -1));
+    const rows = { start: Int32Array.from(start), column: Int32Array.from(column), value };
+    const factors = factor(rows);
+    expect(factors.entries).toBe(2 * n - 1);
+    const x = factors.solve(new Float64Array(n).fill(1));
+    // n x₀ - x₇ = 1 for all but the hub: n x₇ - (n - 1) x₀ = 1.
+    expect(n * x[0] - x[7]).toBeCloseTo(1, 12);
+    expect(n * x[7] - (n - 1) * x[0]).toBeCloseTo(1, 12);
+  });
+
   it('a matrix that is not positive definite is a fault', () => {
     const { rows } = grid(4, randomFrom(67), -1);
     expect(() => factor(rows)).toThrow(Fault);
