@@ -30,7 +30,28 @@ export interface DrawingFile {
  * reach what is no drawing.
  */
 export const isDrawingName = (name: string): boolean =>
-  /\.(svg|dxf|gbr|ger|g[tb][lsop]|gko|gml?\d*|drl|xln|exc)$/i.test(name);
+  /\.(svg|dxf|gbr|ger|g[tb][lsop]|gko|gml?\d*|drl|xln|xnc|exc)$/i.test(name);
+
+/** Likewise for a netlist. */
+export const isNetlistName = (name: string): boolean => /\.(ipc|356|d356)$/i.test(name);
+
+/** Whether a file is read as a drawing or a netlist: by its name, or whatever its name by how it begins. */
+export const isRead = (name: string, bytes: Uint8Array): boolean =>
+  isDrawingName(name) || isNetlistName(name) || beginsLikeDrawing(bytes) || beginsLikeNetlist(bytes);
+
+/** Names that are looked at, and written beside a project, at all: drill files and netlists are often plain text. */
+export const isWritten = (name: string): boolean =>
+  isDrawingName(name) || isNetlistName(name) || /\.txt$/i.test(name);
+
+/** SVG, DXF, drill file, Gerber: as the readers tell them. */
+export const beginsLikeDrawing = (bytes: Uint8Array): boolean =>
+  /<svg[\s>]|^M48\s*$|%(FS|MO|AD|TF)/m.test(headOf(bytes)) || /^\s*0\s*\r?\n\s*SECTION/.test(headOf(bytes));
+
+/** Records of IPC-D-356A. */
+export const beginsLikeNetlist = (bytes: Uint8Array): boolean =>
+  /^(P {2}(JOB|CODE|UNITS|TITLE|NUM|REV|VER|IMAGE|NNAME)|[37][12]7)/m.test(headOf(bytes));
+
+const headOf = (bytes: Uint8Array): string => new TextDecoder().decode(bytes.subarray(0, 4096));
 
 export interface OpenedProject {
   kind: 'project';

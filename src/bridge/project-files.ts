@@ -5,11 +5,16 @@ export function partFileIn(text: string): string | null {
   return typeof file === 'string' ? file : null;
 }
 
-/** Each drawing once, in the order of the drapes. */
+/** Each drawing once, in the order of the drapes, and the netlist behind them. */
 export function drawingFilesIn(text: string): string[] {
-  const drapes = (parsed(text) as { circuit?: { drapes?: unknown } } | null)?.circuit?.drapes;
-  if (!Array.isArray(drapes)) return [];
-  const names = drapes.map((d: unknown) => (d as { drawing?: unknown } | null)?.drawing);
+  const data = parsed(text) as { circuit?: { drapes?: unknown }; netlist?: unknown } | null;
+  const drapes = data?.circuit?.drapes;
+  const names = [
+    ...(Array.isArray(drapes) ? drapes : []).map(
+      (d: unknown) => (d as { drawing?: unknown } | null)?.drawing,
+    ),
+    data?.netlist,
+  ];
   return [...new Set(names.filter((n): n is string => typeof n === 'string' && n !== ''))];
 }
 

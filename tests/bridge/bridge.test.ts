@@ -343,6 +343,31 @@ describe('drawings on the desk', () => {
     ]);
   });
 
+  test('a drill file called .txt and a netlist come along by what they hold, other text does not', async () => {
+    const drill = 'M48\r\nMETRIC,TZ\r\nT1C0.8\r\n%\r\nT1\r\nX1.0Y2.0\r\nM30\r\n';
+    writeFileSync(join(dir, 'holes.txt'), drill);
+    writeFileSync(join(dir, 'diary.txt'), 'Dear diary, M48 was a bus.\n');
+    writeFileSync(join(dir, 'net.ipc'), 'P  JOB x\n999\n');
+    const data = JSON.parse(project('holes.txt', 'diary.txt')) as object;
+    writeFileSync(join(dir, 'job.drape.json'), JSON.stringify({ ...data, netlist: 'net.ipc' }));
+    const { drawings } = await value<OpenedProject>({ ask: 'open', what: 'document' });
+    expect(drawings.map((d) => [d.file, d.bytes !== null, d.problem])).toEqual([
+      ['holes.txt', true, undefined],
+      ['diary.txt', false, 'it is neither a drawing nor a netlist'],
+      ['net.ipc', true, undefined],
+    ]);
+    answers.open = join(dir, 'holes.txt');
+    expect(await value({ ask: 'open', what: 'drawing' })).toMatchObject({
+      kind: 'drawings',
+      drawings: [{ file: 'holes.txt' }],
+    });
+    answers.open = join(dir, 'diary.txt');
+    expect(await desk.answer({ ask: 'open', what: 'drawing' })).toMatchObject({
+      ok: false,
+      problem: 'diary.txt is neither a part nor a project nor a drawing',
+    });
+  });
+
   test('saved in another folder, they are named from there; one without a file gets a free name beside the project', async () => {
     const { drawings } = await value<OpenedProject>({ ask: 'open', what: 'document' });
     const far = folder();

@@ -7,9 +7,12 @@ import { existsSync, mkdirSync, readdirSync, readFileSync } from 'node:fs';
 import { rm } from 'node:fs/promises';
 import { basename, dirname, join, relative, resolve, sep } from 'node:path';
 import {
+  beginsLikeDrawing,
   type DrawingFile,
   HostError,
   isDrawingName,
+  isRead,
+  isWritten,
   type LostWork,
   type Opened,
   type OpenedProject,
@@ -119,18 +122,16 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
   }
 
   async function openDrawings(paths: readonly string[]): Promise<Opened> {
-    const other = paths.find((p) => !isDrawingName(p));
+    const drawings = await Promise.all(
+      paths.map(async (p) => ({ file: basename(p), ref: refOf(resolve(p)), bytes: await readWhole(p) })),
+    );
+    const other = drawings.find((d) => !isDrawingName(d.file) && !beginsLikeDrawing(d.bytes));
     if (other !== undefined)
       throw new HostError({
-        problem: `${basename(other)} is neither a part nor a project nor a drawing`,
+        problem: `${other.file} is neither a part nor a project nor a drawing`,
         mend: 'open an .stl, a .drape.json, or an SVG, DXF, Gerber or drill file',
       });
-    return {
-      kind: 'drawings',
-      drawings: await Promise.all(
-        paths.map(async (p) => ({ file: basename(p), ref: refOf(resolve(p)), bytes: await readWhole(p) })),
-      ),
-    };
+    return { kind: 'drawings', drawings };
   }
 
   async function openPaths(paths: readonly string[]): Promise<Opened | null> {
@@ -158,9 +159,11 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
   /** A drawing that a project names `file`. */
   async function drawingOf(file: string, path: string): Promise<DrawingFile> {
     const missing = (problem: string): DrawingFile => ({ file, ref: null, bytes: null, problem });
-    if (!isDrawingName(path)) return missing('its name does not end like that of a drawing');
+    if (!isWritten(path)) return missing('its name does not end like that of a drawing');
     try {
-      return { file, ref: refOf(path), bytes: await readWhole(path) };
+      const bytes = await readWhole(path);
+      if (!isRead(path, bytes)) return missing('it is neither a drawing nor a netlist');
+      return { file, ref: refOf(path), bytes };
     } catch (error) {
       if (!(error instanceof HostError)) throw error;
       return missing(error.news.problem);
@@ -181,7 +184,7 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
         return { file: same ? file : relative(folder, path).split(sep).join('/'), ref, write: false };
       }
       const name = (file.split(/[\\/]/).pop() as string).replace(/[^\p{L}\p{N}._ -]/gu, '_');
-      if (!isDrawingName(name))
+      if (!isWritten(name))
         throw new HostError({
           problem: `"${name}" is not the name of a drawing`,
           mend: 'give the drawing such a name',
@@ -329,7 +332,7 @@ export function createDesk(state: string, dialogs: Dialogs, frame: Frame, startF
         }
         for (const d of r.drawings) {
           const at = pathOf(d.ref);
-          if (!isDrawingName(at))
+          if (!isWritten(at))
             throw new HostError({
               problem: `"${basename(at)}" is not the name of a drawing`,
               mend: 'give the drawing such a name',

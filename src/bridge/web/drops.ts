@@ -1,5 +1,12 @@
 /** Dropped files of which only the bytes are known: what a browser gives, or a drag out of another program. */
-import { type DrawingFile, HostError, isDrawingName, type Opened } from '../host.ts';
+import {
+  beginsLikeDrawing,
+  type DrawingFile,
+  HostError,
+  isDrawingName,
+  isRead,
+  type Opened,
+} from '../host.ts';
 import { drawingFilesIn } from '../project-files.ts';
 
 /** A project dropped like this brings its part and its drawings along, or finds none. */
@@ -19,15 +26,13 @@ export async function openDropped(files: readonly File[]): Promise<Opened | null
       drawings: await Promise.all(
         drawingFilesIn(text).map(async (file): Promise<DrawingFile> => {
           const last = file.split(/[\\/]/).pop();
-          const found = files.find((f) => f.name === last && isDrawingName(f.name));
-          return found
-            ? { file, ref: null, bytes: await bytesOf(found) }
-            : {
-                file,
-                ref: null,
-                bytes: null,
-                problem: 'it was not dropped together with the project',
-              };
+          const found = files.find((f) => f.name === last);
+          const missing = (problem: string) => ({ file, ref: null, bytes: null, problem });
+          if (!found) return missing('it was not dropped together with the project');
+          const bytes = await bytesOf(found);
+          return isRead(found.name, bytes)
+            ? { file, ref: null, bytes }
+            : missing('it is neither a drawing nor a netlist');
         }),
       ),
     };
@@ -38,18 +43,14 @@ export async function openDropped(files: readonly File[]): Promise<Opened | null
       name: part.name,
       part: { file: part.name, ref: null, bytes: await bytesOf(part) },
     };
-  const other = files.find((f) => !isDrawingName(f.name));
+  const drawings = await Promise.all(
+    files.map(async (f) => ({ file: f.name, ref: null, bytes: await bytesOf(f) })),
+  );
+  const other = drawings.find((d) => !isDrawingName(d.file) && !beginsLikeDrawing(d.bytes));
   if (other)
     throw new HostError({
-      problem: `${other.name} is neither a part nor a project nor a drawing`,
+      problem: `${other.file} is neither a part nor a project nor a drawing`,
       mend: 'drop an .stl, a .drape.json, or an SVG, DXF, Gerber or drill file',
     });
-  return files.length === 0
-    ? null
-    : {
-        kind: 'drawings',
-        drawings: await Promise.all(
-          files.map(async (f) => ({ file: f.name, ref: null, bytes: await bytesOf(f) })),
-        ),
-      };
+  return files.length === 0 ? null : { kind: 'drawings', drawings };
 }
