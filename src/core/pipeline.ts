@@ -88,7 +88,7 @@ export interface JobResult {
 }
 
 /** Opens and shorts of the copper as it lies, against its nets and against the project's netlist. */
-function connections(
+export function connections(
   project: Project,
   copper: Copper,
   drawings: ReadonlyMap<string, Drawing>,

@@ -12,7 +12,8 @@ export function Nets({ state }: { state: State }) {
   const found = now === 'working' ? null : now;
   const rows = useMemo(() => (copper ? netRows(copper, found) : []), [copper, found]);
   const chosen = useMemo(() => new Set(state.selection), [state.selection]);
-  if (!copper || rows.length === 0) return null;
+  if (!copper) return null;
+  if (rows.length === 0) return <Joined state={state} />;
   const loose = copper.elements.length - rows.reduce((n, r) => n + r.elements.length, 0);
   const take = (row: NetRow, more: boolean) => {
     const others = more ? state.selection.filter((id) => !row.elements.includes(id)) : [];
@@ -44,12 +45,40 @@ export function Nets({ state }: { state: State }) {
           </li>
         ))}
       </ul>
+      <Joined state={state} />
       {loose > 0 && (
         <p className="dim">{loose === 1 ? 'One element has no net.' : `${loose} elements have no net.`}</p>
       )}
     </>
   );
 }
+
+/** Opens and shorts, as the report has them. */
+function Joined({ state }: { state: State }) {
+  const { connections: c, copper } = state;
+  if (!c || c.revision !== copper?.revision) return null;
+  const told = [
+    ...c.value.problems.map((p) => ({
+      text: `${p.file === state.project?.name ? '' : `${p.file}, `}${p.place}: ${p.problem}; ${p.mend}.`,
+      level: 'error' as const,
+    })),
+    ...c.value.rules.map(({ text, level, elements }) => ({ text: text ?? elements.join(', '), level })),
+  ];
+  if (told.length === 0) return null;
+  return (
+    <ul className="joined" aria-label="Opens and shorts">
+      {told.slice(0, MOST_TOLD).map(({ text, level }) => (
+        <li key={text} className={level === 'error' ? 'wrong' : 'look'}>
+          {text}
+        </li>
+      ))}
+      {told.length > MOST_TOLD && <li className="dim">and {told.length - MOST_TOLD} more, in the report</li>}
+    </ul>
+  );
+}
+
+/** Opens and shorts listed at once. */
+const MOST_TOLD = 40;
 
 function NetWords({ row, working }: { row: NetRow; working: boolean }) {
   const { name, elements, length, found } = row;

@@ -38,7 +38,7 @@ export function createFollower(
       if (revision === followed) return;
       followed = revision;
       if (!project || !part) {
-        api.setState({ copper: null, reach: null, plan: null, nets: null });
+        api.setState({ copper: null, reach: null, plan: null, connections: null, nets: null });
         continue;
       }
       const since = performance.now();
@@ -88,6 +88,9 @@ export function createFollower(
     const mine = ++measures;
     measuring = mine;
     try {
+      const connections = await worker.call('connections', null);
+      if (late(revision)) return;
+      api.setState({ connections: { revision, value: connections } });
       const nets = await worker.call('nets', null);
       if (!late(revision)) api.setState({ nets: { revision, value: nets } });
     } catch (error) {

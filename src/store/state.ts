@@ -3,6 +3,7 @@ import type { Vec3 } from '../core/base/vec.ts';
 import type { Report } from '../core/project/report.ts';
 import type { PadShape, Project } from '../core/project/schema.ts';
 import type {
+  ConnectionsPicture,
   CopperPicture,
   NetPicture,
   PartPicture,
@@ -95,6 +96,7 @@ export interface State {
   copper: Derived<CopperPicture> | null;
   reach: Derived<ReachPicture[]> | null;
   plan: Derived<PlanPicture[]> | null;
+  connections: Derived<ConnectionsPicture> | null;
   /** Null inside: it could not be worked out. */
   nets: Derived<NetPicture[] | null> | null;
   exported: Exported | null;
@@ -131,6 +133,7 @@ export const firstState: State = {
   copper: null,
   reach: null,
   plan: null,
+  connections: null,
   nets: null,
   exported: null,
   busy: null,

@@ -693,7 +693,7 @@ export function createStore(workers: Workers) {
           for (const d of drawings.filter((x) => x.bytes === null).slice(0, 3))
             notify(
               'problem',
-              `${name}: the drawing ${d.file} is missing: ${(d.problem ?? 'its file was not found').replace(/\.$/, '')}`,
+              `${name}: the ${d.file === project.netlist ? 'netlist' : 'drawing'} ${d.file} is missing: ${(d.problem ?? 'its file was not found').replace(/\.$/, '')}`,
               'put the file back and open the project again',
             );
         if (shown && unknown.length > 0)
@@ -744,10 +744,11 @@ export function createStore(workers: Workers) {
       follower.wake();
       return project;
     },
-    /** Drawings that the document uses, in the order of its drapes. */
+    /** Drawings that the document uses, in the order of its drapes, and its netlist. */
     drawingsInUse(): { file: string; ref: string | null; bytes: Uint8Array }[] {
       const { project, drawings } = get();
       const names = new Set(project?.circuit.drapes.map((d) => d.drawing));
+      if (project?.netlist !== undefined) names.add(project.netlist);
       return [...names].flatMap((file) => {
         const held = drawings[file];
         return held ? [{ file, ...held }] : [];
@@ -770,8 +771,11 @@ export function createStore(workers: Workers) {
         const drawing = names.get(d.drawing) ?? d.drawing;
         return drawing === d.drawing ? d : { ...d, drawing };
       });
-      const same = drapes.every((d, i) => d === s.project!.circuit.drapes[i]);
-      const project = same ? s.project : { ...s.project, circuit: { ...s.project.circuit, drapes } };
+      const { netlist } = s.project;
+      const list = netlist === undefined ? undefined : (names.get(netlist) ?? netlist);
+      const same = list === netlist && drapes.every((d, i) => d === s.project!.circuit.drapes[i]);
+      const moved = { ...s.project, circuit: { ...s.project.circuit, drapes } };
+      const project = same ? s.project : list === undefined ? moved : { ...moved, netlist: list };
       set({ project, drawings, revision: same ? s.revision : s.revision + 1 });
       if (!same) follower.wake();
       return project;

@@ -76,7 +76,7 @@ export class HeldDrawings {
   }
 
   /**
-   * Files of a project, each once, in the order of its drapes: as the command line reads them.
+   * Files of a project, each once, in the order of its drapes, then its netlist: as the command line reads them.
    * @throws InputError `no-drawing` with every one that is not there
    */
   of(project: Project, file: string): NamedFile[] {
@@ -84,8 +84,12 @@ export class HeldDrawings {
     const lost = drapes.flatMap((d, i) =>
       this.files.has(d.drawing) ? [] : missing(d.drawing, file, `$.circuit.drapes[${i}]`).problems,
     );
+    const { netlist } = project;
+    if (netlist !== undefined && !this.files.has(netlist))
+      lost.push(...missing(netlist, file, '$.netlist', '').problems);
     if (lost.length > 0) throw new InputError(lost[0], ...lost.slice(1));
-    return [...new Set(drapes.map((d) => d.drawing))].map((name) => {
+    const names = [...drapes.map((d) => d.drawing), ...(netlist === undefined ? [] : [netlist])];
+    return [...new Set(names)].map((name) => {
       const { file: own, bytes } = this.files.get(name) as Held;
       return { file: own, bytes };
     });
@@ -116,11 +120,11 @@ export function boxOf({ shapes, holes }: Drawing): [Vec2, Vec2] | null {
       ];
 }
 
-const missing = (drawing: string, file: string, place: string): InputError =>
+const missing = (drawing: string, file: string, place: string, field = '.drawing'): InputError =>
   new InputError({
     code: 'no-drawing',
     file,
-    place: `${place}.drawing`,
+    place: `${place}${field}`,
     problem: `${drawing} is not there`,
     mend: 'put the file back and open the project again',
   });

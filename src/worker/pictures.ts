@@ -156,6 +156,13 @@ export interface PlanPicture {
   unreached: { element: number; length: number; reason: Reason }[];
 }
 
+/** How the copper is joined, against its nets and against a netlist. */
+export interface ConnectionsPicture {
+  rules: RuleFinding[];
+  /** Why the netlist could not be used. */
+  problems: InputProblem[];
+}
+
 /** What was worked out for a net. */
 export interface NetPicture {
   name: string;

@@ -28,12 +28,14 @@ import type { Head, Project, Setup } from '../core/project/schema.ts';
 import { checkReach } from '../core/reach/reach.ts';
 import type { SetupReach } from '../core/reach/result.ts';
 import { shopRules } from '../core/rules/shop-rules.ts';
+import { connectionsPicture } from './connections-picture.ts';
 import { creases } from './creases.ts';
 import { flatPicture } from './flat-picture.ts';
 import { boxOf, HeldDrawings, type LoadFlat, type Reading } from './held-drawings.ts';
 import { HeldPaths, type Hold } from './held-paths.ts';
 import { netPictures } from './net-pictures.ts';
 import {
+  type ConnectionsPicture,
   type CopperPicture,
   type DrawingPicture,
   ELSEWHERE,
@@ -260,6 +262,12 @@ export function createSession(flat: LoadFlat = noFlat) {
       );
     },
 
+    /** Opens and shorts of the copper laid last, by its nets and by the project's netlist. */
+    connections(_: null, ctx: RunContext): ConnectionsPicture {
+      const { project: p, copper: c } = needCopper();
+      return connectionsPicture(p, c, drawings, ctx);
+    },
+
     /** Nets of the copper laid last, as they hang together. */
     nets(_: null, ctx: RunContext): NetPicture[] {
       const { project: p, copper: c } = needCopper();
@@ -272,14 +280,6 @@ export function createSession(flat: LoadFlat = noFlat) {
       ctx: RunContext,
     ): Promise<ExportResult> {
       const { project: p, unknown } = readProject(a.projectText, a.projectFile);
-      if (p.netlist !== undefined)
-        throw new InputError({
-          code: 'not-yet',
-          file: a.projectFile,
-          place: '$.netlist',
-          problem: 'the window does not compare netlists',
-          mend: 'run the job from the command line, or leave the field out',
-        });
       const others = drawings.of(p, a.projectFile);
       const pool = createPool(1, tasks, () => {
         throw new Fault('one thread needs no other');
