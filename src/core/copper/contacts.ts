@@ -1,117 +1,134 @@
-/** Which elements touch on the part, and where. */
+/** Which elements touch on the part: those whose copper conducts into each other's. */
 import type { CopperElement } from '../drape/copper.ts';
+import { JOIN } from './net-sheet.ts';
 
 export interface Contact {
-  /** Indices into the list given. */
+  /** Indices into the list given, a below b. */
   a: number;
   b: number;
-  /** Arc length on a trace where the other meets it, the middle of the touch; 0 on pads and regions. mm */
-  alongA: number;
-  alongB: number;
 }
 
-/** Patch triangles whose middles are this near touch, mm: about half a patch edge. */
-const TOUCH = 0.03;
-/** Grid cell, mm. */
+/** Grid cell, mm: about the longest patch edge. */
 const CELL = 0.1;
 
-/** Pairs of elements whose copper overlaps or touches, found on the triangles of their patches. */
+/**
+ * Pairs of elements with triangles that overlap or are nearer to each other than `JOIN`, as the sheet of a net has them. That
+ * two meet in a corner alone is a contact too, though no current passes there.
+ */
 export function contacts(elements: readonly CopperElement[]): Contact[] {
-  const discs = elements.map(discsOf);
+  const boxes = elements.map(boxOf);
   const out: Contact[] = [];
   for (let a = 0; a < elements.length; a++)
-    for (let b = a + 1; b < elements.length; b++) {
-      const touch = meet(elements[a], discs[a], elements[b], discs[b]);
-      if (touch) out.push({ a, b, ...touch });
-    }
+    for (let b = a + 1; b < elements.length; b++)
+      if (meet(elements[a], boxes[a], elements[b], boxes[b])) out.push({ a, b });
   return out;
 }
 
-/** Middles (3 a triangle), reach from the middle to the farthest corner, and the box around all, of an element's triangles. */
-interface Discs {
-  middle: Float64Array;
-  reach: Float64Array;
-  box: Float64Array;
-}
-
-function discsOf(e: CopperElement): Discs {
-  const { positions: x, triangles, face } = e.copper;
-  const middle = new Float64Array(3 * face.length);
-  const reach = new Float64Array(face.length);
+function boxOf({ copper: { positions: x } }: CopperElement): Float64Array {
   const box = Float64Array.of(Infinity, Infinity, Infinity, -Infinity, -Infinity, -Infinity);
-  for (let t = 0; t < face.length; t++) {
-    for (let k = 0; k < 3; k++) {
-      const m =
-        (x[3 * triangles[3 * t] + k] + x[3 * triangles[3 * t + 1] + k] + x[3 * triangles[3 * t + 2] + k]) / 3;
-      middle[3 * t + k] = m;
-      box[k] = Math.min(box[k], m);
-      box[3 + k] = Math.max(box[3 + k], m);
-    }
-    for (let i = 0; i < 3; i++) {
-      const o = 3 * triangles[3 * t + i];
-      reach[t] = Math.max(
-        reach[t],
-        Math.hypot(x[o] - middle[3 * t], x[o + 1] - middle[3 * t + 1], x[o + 2] - middle[3 * t + 2]),
-      );
-    }
+  for (let i = 0; i < x.length; i++) {
+    box[i % 3] = Math.min(box[i % 3], x[i]);
+    box[3 + (i % 3)] = Math.max(box[3 + (i % 3)], x[i]);
   }
-  return { middle, reach, box };
+  return box;
 }
 
-function meet(
-  a: CopperElement,
-  da: Discs,
-  b: CopperElement,
-  db: Discs,
-): { alongA: number; alongB: number } | null {
+function meet(a: CopperElement, boxA: Float64Array, b: CopperElement, boxB: Float64Array): boolean {
   // Only triangles where the boxes overlap can touch.
-  const lo = [0, 1, 2].map((k) => Math.max(da.box[k], db.box[k]) - CELL);
-  const hi = [0, 1, 2].map((k) => Math.min(da.box[3 + k], db.box[3 + k]) + CELL);
-  if (lo.some((x, k) => x > hi[k])) return null;
+  const lo = [0, 1, 2].map((k) => Math.max(boxA[k], boxB[k]) - JOIN);
+  const hi = [0, 1, 2].map((k) => Math.min(boxA[3 + k], boxB[3 + k]) + JOIN);
+  if (lo.some((x, k) => x > hi[k])) return false;
   const size = lo.map((x, k) => Math.floor((hi[k] - x) / CELL) + 1);
-  const inBox = (m: Float64Array, t: number) =>
-    [0, 1, 2].every((k) => m[3 * t + k] >= lo[k] && m[3 * t + k] <= hi[k]);
   const cells = new Map<number, number[]>();
-  const index = (m: Float64Array, t: number, k: number) => Math.floor((m[3 * t + k] - lo[k]) / CELL);
-  for (let t = 0; t < db.reach.length; t++) {
-    if (!inBox(db.middle, t)) continue;
-    const c = (index(db.middle, t, 2) * size[1] + index(db.middle, t, 1)) * size[0] + index(db.middle, t, 0);
-    const list = cells.get(c);
-    if (list) list.push(t);
-    else cells.set(c, [t]);
-  }
-  let sumA = 0;
-  let sumB = 0;
-  let n = 0;
-  for (let ta = 0; ta < da.reach.length; ta++) {
-    if (!inBox(da.middle, ta)) continue;
-    const [i, j, l] = [index(da.middle, ta, 0), index(da.middle, ta, 1), index(da.middle, ta, 2)];
-    for (let dz = -1; dz <= 1; dz++)
-      for (let dy = -1; dy <= 1; dy++)
-        for (let dx = -1; dx <= 1; dx++) {
-          if (i + dx < 0 || i + dx >= size[0] || j + dy < 0 || j + dy >= size[1]) continue;
-          for (const tb of cells.get(((l + dz) * size[1] + j + dy) * size[0] + i + dx) ?? []) {
-            const d = Math.hypot(
-              da.middle[3 * ta] - db.middle[3 * tb],
-              da.middle[3 * ta + 1] - db.middle[3 * tb + 1],
-              da.middle[3 * ta + 2] - db.middle[3 * tb + 2],
-            );
-            if (d > Math.max(TOUCH, Math.min(da.reach[ta], db.reach[tb]))) continue;
-            sumA += along(a, ta);
-            sumB += along(b, tb);
-            n++;
-          }
-        }
-  }
-  return n > 0 ? { alongA: sumA / n, alongB: sumB / n } : null;
+  for (let t = 0; t < b.copper.face.length; t++)
+    eachCell(b, t, lo, hi, size, (cell) => {
+      const list = cells.get(cell);
+      if (list) list.push(t);
+      else cells.set(cell, [t]);
+      return false;
+    });
+  for (let t = 0; t < a.copper.face.length; t++)
+    if (
+      eachCell(a, t, lo, hi, size, (cell) => (cells.get(cell) ?? []).some((u) => trianglesTouch(a, t, b, u)))
+    )
+      return true;
+  return false;
 }
 
-function along(e: CopperElement, t: number): number {
-  if (e.kind !== 'trace') return 0;
-  const s = 3 * e.copper.source[t];
-  const { triangles, along: at } = e.field;
-  return Math.min(
-    e.length,
-    Math.max(0, (at[triangles[s]] + at[triangles[s + 1]] + at[triangles[s + 2]]) / 3),
-  );
+/** Cells that a triangle's box passes, within lo … hi. @returns whether one of them was what is looked for */
+function eachCell(
+  e: CopperElement,
+  t: number,
+  lo: readonly number[],
+  hi: readonly number[],
+  size: readonly number[],
+  visit: (cell: number) => boolean,
+): boolean {
+  const from = [0, 0, 0];
+  const to = [0, 0, 0];
+  const { positions: x, triangles } = e.copper;
+  for (let k = 0; k < 3; k++) {
+    const [p, q, r] = [0, 1, 2].map((i) => x[3 * triangles[3 * t + i] + k]);
+    const [least, most] = [Math.min(p, q, r) - JOIN, Math.max(p, q, r) + JOIN];
+    if (most < lo[k] || least > hi[k]) return false;
+    from[k] = Math.max(0, Math.floor((least - lo[k]) / CELL));
+    to[k] = Math.min(size[k] - 1, Math.floor((most - lo[k]) / CELL));
+  }
+  for (let l = from[2]; l <= to[2]; l++)
+    for (let j = from[1]; j <= to[1]; j++)
+      for (let i = from[0]; i <= to[0]; i++) if (visit((l * size[1] + j) * size[0] + i)) return true;
+  return false;
 }
+
+/** Triangles of one face or of neighbours: their sides come near each other, or one holds a corner of the other. */
+function trianglesTouch(a: CopperElement, t: number, b: CopperElement, u: number): boolean {
+  const [p, q] = [cornersOf(a, t), cornersOf(b, u)];
+  for (let i = 0; i < 3; i++)
+    for (let j = 0; j < 3; j++)
+      if (sidesNear(p, 3 * i, 3 * ((i + 1) % 3), q, 3 * j, 3 * ((j + 1) % 3))) return true;
+  return holds(p, q) || holds(q, p);
+}
+
+function cornersOf({ copper: { positions: x, triangles } }: CopperElement, t: number): Float64Array {
+  const out = new Float64Array(9);
+  for (let i = 0; i < 9; i++) out[i] = x[3 * triangles[3 * t + Math.floor(i / 3)] + (i % 3)];
+  return out;
+}
+
+/** Whether two segments come within `JOIN`: C. Ericson, *Real-Time Collision Detection*, 2005, §5.1.9. */
+function sidesNear(p: Float64Array, a: number, b: number, q: Float64Array, c: number, d: number): boolean {
+  let [uu, uv, vv, uw, vw] = [0, 0, 0, 0, 0];
+  for (let k = 0; k < 3; k++) {
+    const [u, v, w] = [p[b + k] - p[a + k], q[d + k] - q[c + k], p[a + k] - q[c + k]];
+    uu += u * u;
+    uv += u * v;
+    vv += v * v;
+    uw += u * w;
+    vw += v * w;
+  }
+  const clamp = (x: number): number => Math.min(1, Math.max(0, x));
+  const area = uu * vv - uv * uv;
+  let s = area > 0 ? clamp((uv * vw - uw * vv) / area) : 0;
+  const t = vv > 0 ? clamp((uv * s + vw) / vv) : 0;
+  s = uu > 0 ? clamp((uv * t - uw) / uu) : 0;
+  let off = 0;
+  for (let k = 0; k < 3; k++)
+    off += (p[a + k] + s * (p[b + k] - p[a + k]) - q[c + k] - t * (q[d + k] - q[c + k])) ** 2;
+  return off < JOIN * JOIN;
+}
+
+/** Whether the first corner of q lies in p, no farther off its plane than `JOIN`. */
+function holds(p: Float64Array, q: Float64Array): boolean {
+  const u = [p[3] - p[0], p[4] - p[1], p[5] - p[2]];
+  const v = [p[6] - p[0], p[7] - p[1], p[8] - p[2]];
+  const w = [q[0] - p[0], q[1] - p[1], q[2] - p[2]];
+  const [uu, uv, vv, wu, wv] = [dot(u, u), dot(u, v), dot(v, v), dot(w, u), dot(w, v)];
+  const area = uu * vv - uv * uv;
+  if (!(area > 0)) return false;
+  const [s, t] = [(vv * wu - uv * wv) / area, (uu * wv - uv * wu) / area];
+  if (s < 0 || t < 0 || s + t > 1) return false;
+  const off = Math.max(0, dot(w, w) - 2 * (s * wu + t * wv) + s * s * uu + 2 * s * t * uv + t * t * vv);
+  return off < JOIN * JOIN;
+}
+
+const dot = (x: readonly number[], y: readonly number[]): number => x[0] * y[0] + x[1] * y[1] + x[2] * y[2];

@@ -1,4 +1,5 @@
 import { describe, expect, it } from 'vitest';
+import { randomFrom } from '../../../src/core/base/random.ts';
 import { quiet } from '../../../src/core/base/run-context.ts';
 import {
   connectivityRule,
@@ -6,9 +7,11 @@ import {
   netlistRule,
   type ProbedPoint,
 } from '../../../src/core/copper/connectivity.ts';
+import { contacts } from '../../../src/core/copper/contacts.ts';
 import { drapeCircuit } from '../../../src/core/drape/drape.ts';
 import type { Project } from '../../../src/core/project/schema.ts';
 import { partFrom, plate } from '../helpers/surfaces.ts';
+import { netOf, rect, region } from './patches.ts';
 
 const pad = (id: string, net: string, x: number, y: number, d = 2) => ({
   id,
@@ -56,6 +59,37 @@ describe('what touches is one net', () => {
     expect(told(pad('a', 'N', 0, 0, 6), pad('b', 'M', 0.5, 0.3, 1)).map((f) => f[2])).toEqual([
       'nets N and M are joined by copper that touches; move it apart or give it one net',
     ]);
+  });
+});
+
+describe('contacts', () => {
+  const strip = (x: number, y = 0) => region(rect(x, y, 3, 0.4, 11, 2));
+  it('elements touch where copper conducts into copper: overlapping, edge to edge, by a micrometre; not 5 µm apart', () => {
+    for (const [x, y] of [
+      [2, 0.1],
+      [3, 0],
+      [2.999, 0.2],
+      [3.0005, 0],
+      [1, 0.4],
+    ])
+      expect(contacts([strip(0), strip(x, y)])).toEqual([{ a: 0, b: 1 }]);
+    for (const [x, y] of [
+      [3.005, 0],
+      [1, 0.405],
+      [-3.005, -0.1],
+    ])
+      expect(contacts([strip(0), strip(x, y)])).toEqual([]);
+    // Small within large, without a side that crosses.
+    expect(contacts([region(rect(0, 0, 9, 9)), region(rect(5, 2, 0.05, 0.05))])).toEqual([{ a: 0, b: 1 }]);
+    expect(contacts([region(rect(5, 2, 0.05, 0.05)), region(rect(0, 0, 9, 9))])).toEqual([{ a: 0, b: 1 }]);
+  });
+
+  it('say the same as the sheet of all: strips thrown at random, seeds 1 to 40', () => {
+    for (let seed = 1; seed <= 40; seed++) {
+      const random = randomFrom(seed);
+      const thrown = Array.from({ length: 5 }, () => strip(7 * random(), 1.5 * random()));
+      expect(new Set(joinedPieces(thrown)).size).toBe(netOf(...thrown).pieces);
+    }
   });
 });
 
