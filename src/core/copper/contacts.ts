@@ -26,10 +26,11 @@ export function contacts(elements: readonly CopperElement[]): Contact[] {
 
 function boxOf({ copper: { positions: x } }: CopperElement): Float64Array {
   const box = Float64Array.of(Infinity, Infinity, Infinity, -Infinity, -Infinity, -Infinity);
-  for (let i = 0; i < x.length; i++) {
-    box[i % 3] = Math.min(box[i % 3], x[i]);
-    box[3 + (i % 3)] = Math.max(box[3 + (i % 3)], x[i]);
-  }
+  for (let i = 0; i < x.length; i += 3)
+    for (let k = 0; k < 3; k++) {
+      box[k] = Math.min(box[k], x[i + k]);
+      box[3 + k] = Math.max(box[3 + k], x[i + k]);
+    }
   return box;
 }
 
@@ -64,13 +65,18 @@ function eachCell(
   size: readonly number[],
   visit: (cell: number) => boolean,
 ): boolean {
+  const { positions: x, triangles } = e.copper;
+  const [a, b, c] = [3 * triangles[3 * t], 3 * triangles[3 * t + 1], 3 * triangles[3 * t + 2]];
+  // Most triangles of a large element are far away: they must cost little.
+  for (let k = 0; k < 3; k++) {
+    if (x[a + k] + JOIN < lo[k] && x[b + k] + JOIN < lo[k] && x[c + k] + JOIN < lo[k]) return false;
+    if (x[a + k] - JOIN > hi[k] && x[b + k] - JOIN > hi[k] && x[c + k] - JOIN > hi[k]) return false;
+  }
   const from = [0, 0, 0];
   const to = [0, 0, 0];
-  const { positions: x, triangles } = e.copper;
   for (let k = 0; k < 3; k++) {
-    const [p, q, r] = [0, 1, 2].map((i) => x[3 * triangles[3 * t + i] + k]);
-    const [least, most] = [Math.min(p, q, r) - JOIN, Math.max(p, q, r) + JOIN];
-    if (most < lo[k] || least > hi[k]) return false;
+    const least = Math.min(x[a + k], x[b + k], x[c + k]) - JOIN;
+    const most = Math.max(x[a + k], x[b + k], x[c + k]) + JOIN;
     from[k] = Math.max(0, Math.floor((least - lo[k]) / CELL));
     to[k] = Math.min(size[k] - 1, Math.floor((most - lo[k]) / CELL));
   }
