@@ -133,6 +133,10 @@ function freeEdges(triangles: readonly number[]): number[] {
   return out;
 }
 
+/** A cell is at least so many times the tolerance wide; places along an edge are this share of a cell apart. */
+const SPACED = 20;
+const STEP = 0.9;
+
 /** Ends of free edges that lie on other ones, in their order along each. */
 function verticesOn(
   x: Float64Array,
@@ -142,38 +146,44 @@ function verticesOn(
   const headOf = (e: number): number => triangles[e % 3 === 2 ? e - 2 : e + 1];
   const lengthOf = (e: number): number => distance(x, triangles[e], headOf(e));
   const total = free.reduce((sum, e) => sum + lengthOf(e), 0);
-  const cell = Math.max(total / Math.max(1, free.length), 4 * JOIN);
-  const cells = new Map<string, number[]>();
-  const index = (c: number): number => Math.floor(c / cell);
-  for (const v of new Set(free.flatMap((e) => [triangles[e], headOf(e)]))) {
-    const key = `${index(x[3 * v])} ${index(x[3 * v + 1])} ${index(x[3 * v + 2])}`;
-    const list = cells.get(key);
-    if (list) list.push(v);
-    else cells.set(key, [v]);
-  }
+  const cell = Math.max(total / Math.max(1, free.length), SPACED * JOIN);
+  // Cells that share a number do no harm: what lies on an edge is decided by distances, and asked once.
+  const cells = new Map<number, number[]>();
+  const number = (i: number, j: number, k: number): number =>
+    (Math.imul(i, 73856093) ^ Math.imul(j, 19349663) ^ Math.imul(k, 83492791)) >>> 0;
+  const asked = new Int32Array(x.length / 3).fill(-1);
+  for (const e of free)
+    for (const v of [triangles[e], headOf(e)]) {
+      if (asked[v] === -2) continue;
+      asked[v] = -2;
+      const key = number(
+        Math.floor(x[3 * v] / cell),
+        Math.floor(x[3 * v + 1] / cell),
+        Math.floor(x[3 * v + 2] / cell),
+      );
+      const list = cells.get(key);
+      if (list) list.push(v);
+      else cells.set(key, [v]);
+    }
   const out = new Map<number, number[]>();
   for (const e of free) {
     const [a, b] = [3 * triangles[e], 3 * headOf(e)];
     const l = lengthOf(e);
     if (l === 0) continue;
     const found: { v: number; t: number }[] = [];
-    const asked = new Set<string>();
-    // Places along the edge, half a cell apart: every cell that it passes is one of those, or beside one.
-    const steps = Math.ceil((2 * l) / cell);
+    // Places along the edge, less than a cell apart: what lies on it is in one of the eight cells around one of them.
+    const steps = Math.ceil(l / (STEP * cell));
     for (let s = 0; s <= steps; s++) {
-      const p = [0, 1, 2].map((k) => x[a + k] + (s / steps) * (x[b + k] - x[a + k]));
-      for (const i of nearCells(p[0], cell))
-        for (const j of nearCells(p[1], cell))
-          for (const k of nearCells(p[2], cell)) {
-            const key = `${i} ${j} ${k}`;
-            if (asked.has(key)) continue;
-            asked.add(key);
-            for (const v of cells.get(key) ?? []) {
-              if (3 * v === a || 3 * v === b) continue;
-              const t = shareOn(x, v, a, b, l);
-              if (t !== null) found.push({ v, t });
-            }
-          }
+      const [i, j, k] = [0, 1, 2].map((n) =>
+        Math.floor((x[a + n] + (s / steps) * (x[b + n] - x[a + n])) / cell - 0.5),
+      );
+      for (let n = 0; n < 8; n++)
+        for (const v of cells.get(number(i + (n & 1), j + ((n >> 1) & 1), k + (n >> 2))) ?? []) {
+          if (asked[v] === e || 3 * v === a || 3 * v === b) continue;
+          asked[v] = e;
+          const t = shareOn(x, v, a, b, l);
+          if (t !== null) found.push({ v, t });
+        }
     }
     if (found.length > 0)
       out.set(
@@ -183,12 +193,6 @@ function verticesOn(
   }
   return out;
 }
-
-/** Cells that are less than half a cell from a place. */
-const nearCells = (c: number, cell: number): [number, number] => {
-  const i = Math.floor(c / cell - 0.5);
-  return [i, i + 1];
-};
 
 /** How far along an edge a vertex lies on it, 0 … 1; null where it lies off. */
 function shareOn(x: Float64Array, v: number, a: number, b: number, l: number): number | null {
