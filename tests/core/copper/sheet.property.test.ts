@@ -86,6 +86,16 @@ describe('a sheet of copper', () => {
       element('pad', patch(rect(0, 3, 0.5, 1, 3, 1), b)),
     ];
     expectSame(netOf(...ends(7, 7), ...whole), netOf(...ends(4, 5), ...parts));
+    // A strip that ends within the side of a plate in another face, both ways round.
+    const plateAndStrip = (p: number, q: number) => [
+      element('pad', patch(rect(-1, 0, 1, 2), p)),
+      element('pad', patch(rect(5, 0.7, 1, 0.4), q)),
+      cells(p, 0, 0, 2, 2, 2, 3),
+      cells(q, 2, 0.7, 3, 0.4, 4, 1),
+    ];
+    const [one, two] = [netOf(...plateAndStrip(7, 7)), netOf(...plateAndStrip(1, 2))];
+    expect(two.pieces).toBe(1);
+    expectSame(one, two);
   });
 
   it('in series resistances add up, side by side conductances do', () => {
