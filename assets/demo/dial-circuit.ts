@@ -1,87 +1,85 @@
-/** Circuit of the touch dial: five sense electrodes, a guard ring that is open at the tail, and the tail with its pads. */
+/**
+ * Circuit of the touch dial: five sense electrodes with their leads and a guard ring from a drawing on the dome, the
+ * connector tail from a drawing on the skirt, and traces drawn on the part that join the two.
+ */
 import type { Vec3 } from '../../src/core/base/vec.ts';
+import type { CopperElement } from '../../src/core/drape/copper.ts';
+import type { Drape, Element } from '../../src/core/project/schema.ts';
+import { SVG_MIDDLE } from './dial-drawings.ts';
+import { ELECTRODES, FOOT, GUARD, TAIL } from './dial-layout.ts';
 import { dialPoint } from './dial-shape.ts';
 
-const rad = (deg: number): number => (deg * Math.PI) / 180;
-const at = (r: number, deg: number): { at: Vec3 } => {
-  const p = dialPoint(r, rad(deg));
-  return { at: [round(p[0]), round(p[1]), round(p[2])] };
-};
-const round = (x: number): number => Math.round(x * 1e4) / 1e4;
+const rounded = (p: ArrayLike<number>): [number, number, number] =>
+  [0, 1, 2].map((k) => Math.round(p[k] * 1e4) / 1e4) as [number, number, number];
 
-/** Places along an arc about the dial's axis, ends included, no farther apart than 7°. */
-function arc(r: number, from: number, to: number): { at: Vec3 }[] {
-  const n = Math.max(1, Math.ceil(Math.abs(to - from) / 7));
-  return Array.from({ length: n + 1 }, (_, i) => at(r, from + ((to - from) * i) / n));
-}
-
-/** Electrodes by their angles; no two are alike. `leave` is where the trace leaves, `lane` its radius, `tail` its angle in the tail. */
-const ELECTRODES = [
-  { name: 'SENSE1', from: -50, to: 10, inner: 6.2, outer: 10.6, leave: -42, lane: 12.6, tail: -69.8 },
-  { name: 'SENSE2', from: 22, to: 76, inner: 5.6, outer: 10.4, leave: 30, lane: 13.9, tail: -64.6 },
-  { name: 'SENSE3', from: 88, to: 150, inner: 6.4, outer: 10.8, leave: 143, lane: 15.2, tail: -85.4 },
-  { name: 'SENSE4', from: 161, to: 208, inner: 5.8, outer: 10.2, leave: 200, lane: 13.9, tail: -80.2 },
-  { name: 'SENSE5', from: 219, to: 262, inner: 6.8, outer: 10.6, leave: 255, lane: 12.6, tail: -75 },
-];
-const GUARD = { radius: 16.6, from: -59.2, to: 269.2, tailRight: -59.2, tailLeft: -90.8 };
-const PAD = { radius: 28.3, width: 1.1, length: 2.2 };
-
-export function dialElements(): object[] {
-  const elements: object[] = [];
-  for (const [i, e] of ELECTRODES.entries()) {
-    const n = i + 1;
-    // Counter-clockwise from outside: out along the first side, round, in along the second, back.
-    const outline = [...arc(e.outer, e.from, e.to), ...arc(e.inner, e.to, e.from)];
-    elements.push({ id: `electrode${n}`, kind: 'region', net: e.name, outline });
-    const way = e.leave > 180 ? e.leave - 360 : e.leave;
-    const goal = e.leave > 90 && e.leave <= 180 ? e.tail + 360 : e.tail;
-    const lane = arc(e.lane, e.leave > 180 ? way : e.leave, goal);
-    elements.push({
-      id: `lead${n}`,
-      kind: 'trace',
-      net: e.name,
-      width: 0.6,
-      route: [
-        at(e.outer - 0.5, e.leave),
-        ...lane,
-        at(18, e.tail),
-        at(20.5, e.tail),
-        at(24, e.tail),
-        at(PAD.radius, e.tail),
-      ],
-    });
-    elements.push(pad(`pad${n}`, e.name, e.tail));
-  }
-  elements.push({
-    id: 'guard',
-    kind: 'trace',
-    net: 'GUARD',
-    width: 0.8,
-    route: [
-      at(PAD.radius, GUARD.tailRight),
-      at(24, GUARD.tailRight),
-      at(20.5, GUARD.tailRight),
-      at(18, GUARD.tailRight),
-      ...arc(GUARD.radius, GUARD.from, GUARD.to),
-      at(18, GUARD.tailLeft),
-      at(20.5, GUARD.tailLeft),
-      at(24, GUARD.tailLeft),
-      at(PAD.radius, GUARD.tailLeft),
-    ],
+export function dialDrapes(): Drape[] {
+  const nets: Record<string, string> = { guard: 'GUARD' };
+  ELECTRODES.forEach((e, i) => {
+    nets[`electrode${i + 1}`] = e.net;
+    nets[`lead${i + 1}`] = e.net;
   });
-  elements.push(
-    pad('guard-pad-right', 'GUARD', GUARD.tailRight),
-    pad('guard-pad-left', 'GUARD', GUARD.tailLeft),
-  );
-  return elements;
+  const at = (TAIL.angle * Math.PI) / 180;
+  return [
+    {
+      id: 'dome',
+      drawing: 'electrodes.svg',
+      anchor: rounded(dialPoint(0, 0)),
+      origin: [SVG_MIDDLE, -SVG_MIDDLE],
+      turn: 0,
+      mirror: false,
+      evenLengths: true,
+      drawingLayers: {},
+      nets,
+    },
+    {
+      id: 'tail',
+      drawing: 'tail.gbr',
+      anchor: rounded(dialPoint(TAIL.radius, at)),
+      origin: [0, 0],
+      turn: tailTurn(at),
+      mirror: false,
+      evenLengths: true,
+      drawingLayers: {},
+      nets: {},
+    },
+  ];
 }
 
-/** Pad across the skirt with its long side down the slope: u runs with the part's +X, so the turn is the tail's own angle. */
-const pad = (id: string, net: string, deg: number): object => ({
-  id,
-  kind: 'pad',
-  net,
-  ...at(PAD.radius, deg),
-  shape: { rect: [PAD.length, PAD.width] },
-  turn: deg,
-});
+/** The drawing's v runs up the slope; at no turn its u is the part's +X laid on the skirt. Degrees, to a hundredth. */
+function tailTurn(at: number): number {
+  const d = 1e-4;
+  const diff = (p: Vec3, q: Vec3): Vec3 => [q[0] - p[0], q[1] - p[1], q[2] - p[2]];
+  const cross = (a: Vec3, b: Vec3): Vec3 => [
+    a[1] * b[2] - a[2] * b[1],
+    a[2] * b[0] - a[0] * b[2],
+    a[0] * b[1] - a[1] * b[0],
+  ];
+  const dot = (a: Vec3, b: Vec3): number => a[0] * b[0] + a[1] * b[1] + a[2] * b[2];
+  const around = diff(dialPoint(TAIL.radius, at - d), dialPoint(TAIL.radius, at + d));
+  const up = diff(dialPoint(TAIL.radius + d, at), dialPoint(TAIL.radius - d, at));
+  const n = cross(around, up);
+  const right = cross(up, n);
+  const u: Vec3 = [dot(n, n) - n[0] * n[0], -n[0] * n[1], -n[0] * n[2]];
+  const turn = Math.atan2(dot(cross(u, right), n) / Math.sqrt(dot(n, n)), dot(u, right));
+  return Math.round((turn * 18000) / Math.PI) / 100;
+}
+
+/** Traces from where leads and guard end on the dome to where the tail's lines begin. @param laid  copper of the two drawings */
+export function dialLinks(laid: readonly CopperElement[]): Element[] {
+  const end = (id: string, last: boolean): [number, number, number] => {
+    const points = laid.find((e) => e.id === id)?.path?.points;
+    if (!points) throw new Error(`${id} has no centre line`);
+    return rounded(last ? points.subarray(points.length - 3) : points);
+  };
+  const lines = laid.filter((e) => e.id.startsWith('tail/') && e.kind === 'trace');
+  return FOOT.map(({ net, angle, guard, pin }, i) => {
+    const lead = guard ? 'dome/guard' : `dome/lead${ELECTRODES.findIndex((e) => e.net === net) + 1}`;
+    return {
+      id: `link${pin}`,
+      kind: 'trace',
+      net,
+      width: guard ? GUARD.width : 0.6,
+      route: [{ at: end(lead, !guard || angle !== GUARD.from) }, { at: end(lines[i].id, false) }],
+    } as Element;
+  });
+}

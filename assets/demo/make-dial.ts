@@ -1,8 +1,17 @@
 /** Makes the demonstration: `node --import tsx assets/demo/make-dial.ts`. Same code, same bytes. */
 import { createHash } from 'node:crypto';
-import { writeFileSync } from 'node:fs';
+import { readFileSync, writeFileSync } from 'node:fs';
+import { createRequire } from 'node:module';
+import { quiet } from '../../src/core/base/run-context.ts';
+import { drapeCircuit } from '../../src/core/drape/drape.ts';
+import { DEFAULTS } from '../../src/core/drawing/drawing.ts';
+import { loadFlat } from '../../src/core/drawing/flat.ts';
+import { readDrawing } from '../../src/core/drawing/read-drawing.ts';
+import { loadPart } from '../../src/core/part/part.ts';
 import { newProject } from '../../src/core/project/new-project.ts';
-import { dialElements } from './dial-circuit.ts';
+import type { Project } from '../../src/core/project/schema.ts';
+import { dialDrapes, dialLinks } from './dial-circuit.ts';
+import { electrodesSvg, tailGerber } from './dial-drawings.ts';
 import { dialFacets } from './dial-shape.ts';
 
 const facets = dialFacets(156, 56);
@@ -25,7 +34,9 @@ for (let f = 0; f < count; f++) {
   });
 }
 const here = new URL('.', import.meta.url);
+const drawings = { 'electrodes.svg': electrodesSvg(), 'tail.gbr': tailGerber() };
 writeFileSync(new URL('dial.stl', here), stl);
+for (const [name, text] of Object.entries(drawings)) writeFileSync(new URL(name, here), text);
 
 // The dial stands turned by 20° about the optical axis and a little off the field's middle, the focal plane through its skirt.
 const half = (10 * Math.PI) / 180;
@@ -41,6 +52,22 @@ const project = {
       pose: { rotate: [0, 0, round(Math.sin(half)), round(Math.cos(half))], move: [2.5, -1.5, -8] },
     },
   ],
-  circuit: { elements: dialElements(), drapes: [] },
+  circuit: { elements: [], drapes: dialDrapes() },
 };
+
+// The drawings are laid once, to see where their lines end on the part: the links go on from there.
+const wasm = createRequire(import.meta.url).resolve('manifold-3d/manifold.wasm');
+const flat = await loadFlat(Uint8Array.from(readFileSync(wasm)));
+const read = new Map(
+  project.circuit.drapes.map((d) => {
+    const text = drawings[d.drawing as keyof typeof drawings];
+    return [
+      d.id,
+      readDrawing(new TextEncoder().encode(text), d.drawing, { ...DEFAULTS, unit: null }, flat, quiet),
+    ];
+  }),
+);
+const part = loadPart(Uint8Array.from(stl), 'dial.stl', 'mm', quiet);
+const { copper } = drapeCircuit(project as unknown as Project, 'touch-dial.drape.json', part, quiet, read);
+project.circuit.elements = dialLinks(copper.elements) as never[];
 writeFileSync(new URL('touch-dial.drape.json', here), JSON.stringify(project, null, 2) + '\n');

@@ -1,8 +1,11 @@
 /** The demonstration project, carried inside the program. */
 import dial from '../../assets/demo/dial.stl?inline';
+import electrodes from '../../assets/demo/electrodes.svg?raw';
+import tail from '../../assets/demo/tail.gbr?raw';
 import text from '../../assets/demo/touch-dial.drape.json?raw';
 import { Fault } from '../core/base/news.ts';
 import { readProject } from '../core/project/read.ts';
+import type { NamedFile } from '../worker/stand-alone.ts';
 import type { ProjectFiles } from './inputs.ts';
 
 export function demonstration(): ProjectFiles {
@@ -16,7 +19,9 @@ export function demonstration(): ProjectFiles {
     projectFile,
     projectText: text,
     part: { file: 'dial.stl', bytes },
-    others: [],
+    others: [named('electrodes.svg', electrodes), named('tail.gbr', tail)],
     notices: [],
   };
 }
+
+const named = (file: string, text: string): NamedFile => ({ file, bytes: new TextEncoder().encode(text) });

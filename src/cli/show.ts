@@ -59,8 +59,12 @@ export function showCheck(report: Report): string {
       : '  The circuit has no copper.',
     '',
     ...report.rules.flatMap((r) =>
-      r.text ? [`${r.level}: ${r.elements.length ? `${r.elements.join(', ')}: ` : ''}${r.text}.`] : [],
+      r.text && !CONNECTION.has(r.rule)
+        ? [`${r.level}: ${r.elements.length ? `${r.elements.join(', ')}: ` : ''}${r.text}.`]
+        : [],
     ),
+    ...drawingsBlock(report),
+    ...netsBlock(report),
     rulesBlock(report),
     '',
   ].join('\n');
@@ -86,6 +90,7 @@ export function showRun(report: Report, dir: string): string {
     '',
   );
   for (const setup of report.setups) lines.push(setupBlock(setup), '');
+  lines.push(...drawingsBlock(report), ...netsBlock(report));
   lines.push(unwritten(report), '', rulesBlock(report), '', proofBlock(report.proof), '');
   lines.push(`Job sheet: ${dir.replace(/\/$/, '')}/sheet.html`, '');
   return lines.join('\n');
@@ -127,6 +132,42 @@ function setupBlock(setup: Report['setups'][number]): string {
     `Setup "${setup.name}": the ${moves} moves; ${up}.`,
     table(['layer', 'set Z mm', 'copper at heights', 'defocus', 'mm²', 'mark mm', 'time', 'file'], rows),
   ].join('\n');
+}
+
+/** Each drawing with what the surface does to its lengths at the worst place. */
+function drawingsBlock(report: Report): string[] {
+  const rows = (report.drawings ?? []).map((d) => {
+    const own = report.elements.filter((e) => e.id.startsWith(`${d.drape}/`));
+    const worst = own.reduce<ElementReport | null>((w, e) => (w && w.stretch >= e.stretch ? w : e), null);
+    const { along, across, at } = worst?.stretched ?? {};
+    const percent = (ratio: number | undefined) =>
+      ratio === undefined ? '' : `${signed(100 * (ratio - 1), 1)} %`;
+    return [d.drape, d.file, String(own.length), worst?.id ?? '', percent(along), percent(across), where(at)];
+  });
+  if (rows.length === 0) return [];
+  const head = ['drawing', 'file', 'elements', 'stretched most', 'along', 'across', 'at x, y, z'];
+  return [`Drawings:\n${table(head, rows)}`, ''];
+}
+
+function netsBlock(report: Report): string[] {
+  const rows = report.nets.map((n) => {
+    const most = n.resistance_mohm.reduce<(typeof n.resistance_mohm)[number] | null>(
+      (m, r) => (m && m.value >= r.value ? m : r),
+      null,
+    );
+    return [
+      n.name,
+      String(n.pieces),
+      fixed(n.length, 1),
+      fixed(n.area, 1),
+      most ? fixed(most.value, 0) : '–',
+      most ? `${most.from} – ${most.to}` : '',
+      n.current_A > 0 ? fixed(n.current_A, 2) : '–',
+    ];
+  });
+  if (rows.length === 0) return [];
+  const head = ['net', 'pieces', 'traces mm', 'mm²', 'mΩ at most', 'between', 'A (guide)'];
+  return [`Nets:\n${table(head, rows)}`, ''];
 }
 
 function unwritten(report: Report): string {

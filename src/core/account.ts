@@ -93,8 +93,9 @@ export function openReport(
     nets: netReports(project, copper).map((n) => ({
       ...n,
       area: r(n.area),
+      length: r(n.length),
       current_A: r(n.current_A),
-      resistance_mohm: n.resistance_mohm.map((x) => ({ ...x, value: r(x.value) })),
+      resistance_mohm: n.resistance_mohm.map((x) => ({ ...x, value: r(x.value), within: r(x.within) })),
     })),
     plating: {
       area_dm2: r(plated.area_dm2),
@@ -230,6 +231,15 @@ function elementReport(
     area: r(element.area),
     drawnLength: r(element.drawnLength),
     stretch: r(element.stretch),
+    ...(element.stretched
+      ? {
+          stretched: {
+            along: r(element.stretched.along),
+            across: r(element.stretched.across),
+            at: at(element.stretched.at),
+          },
+        }
+      : {}),
     setups,
     layers,
     focus: { ok: !fails('focus') && !unwritten, worst: r(focus.value), at: focus.at },

@@ -20,7 +20,16 @@ test('the demonstration needs at least four layers on a two-pivot head, every ch
   expect(report.proof?.stray_mm2).toBeLessThan(0.001);
   const files = filesBelow(out);
   for (const layer of report.setups[0].layers) for (const f of layer.files) expect(files.has(f)).toBe(true);
-  expect(files.get('source/dial.stl')).toEqual(
-    readFileSync(new URL('../../assets/demo/dial.stl', import.meta.url)),
+  for (const name of ['dial.stl', 'electrodes.svg', 'tail.gbr'])
+    expect(files.get(`source/${name}`)).toEqual(
+      readFileSync(new URL(`../../assets/demo/${name}`, import.meta.url)),
+    );
+  // Electrodes come from one drawing, the tail from the other, and traces on the part join them.
+  const from = (id: string) => report.elements.filter((e) => e.id.startsWith(id));
+  expect(from('dome/electrode').map((e) => e.net)).toEqual([1, 2, 3, 4, 5].map((n) => `SENSE${n}`));
+  expect(from('tail/')).toHaveLength(14);
+  expect(from('link')).toHaveLength(7);
+  expect(report.nets.map((n) => [n.name, n.pieces]).sort()).toEqual(
+    ['GUARD', 'SENSE1', 'SENSE2', 'SENSE3', 'SENSE4', 'SENSE5'].map((n) => [n, 1]),
   );
 }, 180_000);

@@ -3,10 +3,11 @@ import { readFileSync } from 'node:fs';
 import { beforeAll, describe, expect, it } from 'vitest';
 import { quiet } from '../../src/core/base/run-context.ts';
 import { decodeUtf8, encodeUtf8 } from '../../src/core/base/utf8.ts';
+import type { Copper } from '../../src/core/drape/copper.ts';
 import { drapeCircuit } from '../../src/core/drape/drape.ts';
 import { checkPlan } from '../../src/core/layers/check-plan.ts';
 import { planLayers } from '../../src/core/layers/plan-layers.ts';
-import { type JobResult, loadPart, runJob } from '../../src/core/pipeline.ts';
+import { type JobInput, type JobResult, loadPart, readDrawings, runJob } from '../../src/core/pipeline.ts';
 import { readProject } from '../../src/core/project/read.ts';
 import type { ProofReport } from '../../src/core/project/report.ts';
 import type { Setup } from '../../src/core/project/schema.ts';
@@ -14,11 +15,24 @@ import { type ProofFormat, prove } from '../../src/core/proof/prove.ts';
 import { checkReach } from '../../src/core/reach/reach.ts';
 import { createPool } from '../../src/worker/pool.ts';
 import { tasks } from '../../src/worker/tasks.ts';
+import { flatForTests } from './helpers/flat.ts';
 
 const folder = new URL('../../assets/demo/', import.meta.url);
 const text = readFileSync(new URL('touch-dial.drape.json', folder), 'utf8');
 const bytes = readFileSync(new URL('dial.stl', folder));
 const { project } = readProject(text, 'touch-dial.drape.json');
+const drawings = ['electrodes.svg', 'tail.gbr'].map((file) => ({
+  file,
+  bytes: Uint8Array.from(readFileSync(new URL(file, folder))),
+}));
+const input: JobInput = {
+  project,
+  projectFile: 'touch-dial.drape.json',
+  projectText: text,
+  part: { file: 'dial.stl', bytes },
+  drawings,
+  flat: flatForTests,
+};
 const inline = createPool(1, tasks, () => {
   throw new Error('one thread needs no other');
 });
@@ -26,14 +40,11 @@ const inline = createPool(1, tasks, () => {
 describe('the touch dial', () => {
   let job: JobResult;
   const part = loadPart(bytes, 'dial.stl', 'mm', quiet);
-  const { copper } = drapeCircuit(project, 'x', part, quiet);
+  let copper: Copper;
   beforeAll(async () => {
-    job = await runJob(
-      { project, projectFile: 'touch-dial.drape.json', projectText: text, part: { file: 'dial.stl', bytes } },
-      { seed: 1 },
-      quiet,
-      inline,
-    );
+    const read = await readDrawings(project, drawings, flatForTests, quiet);
+    copper = drapeCircuit(project, 'x', part, quiet, read).copper;
+    job = await runJob(input, { seed: 1 }, quiet, inline);
   });
 
   it('every check holds, the proof is clean, and it takes four layers or more', () => {
@@ -75,12 +86,7 @@ describe('the touch dial', () => {
   });
 
   it('the same job gives the same bytes', async () => {
-    const again = await runJob(
-      { project, projectFile: 'touch-dial.drape.json', projectText: text, part: { file: 'dial.stl', bytes } },
-      { seed: 1 },
-      quiet,
-      inline,
-    );
+    const again = await runJob(input, { seed: 1 }, quiet, inline);
     expect(again.files.map((f) => f.path)).toEqual(job.files.map((f) => f.path));
     again.files.forEach((f, i) => {
       expect(Buffer.compare(Buffer.from(f.bytes), Buffer.from(job.files[i].bytes)), f.path).toBe(0);
@@ -170,7 +176,7 @@ describe('the touch dial', () => {
         p === 'top/layer-01.csv'
           ? c
               .split('\n')
-              .filter((l) => !l.includes(',pad3,'))
+              .filter((l) => !l.includes(',tail/10,'))
               .join('\n')
           : c,
     ],

@@ -10,8 +10,11 @@
 import { factor, type SparseRows } from '../base/sparse.ts';
 import type { MapPatch } from './map-patch.ts';
 
-/** What triangles without copper count: enough to keep the map whole, too little to bend it. */
-const REST = 1e-2;
+/**
+ * What triangles without copper count. Much less, and what must give way gives way in narrow gaps between pieces of copper,
+ * which then fold; much more, and the map is evened where nothing lies.
+ */
+const REST = 0.25;
 /** Copper counts in full out to this far past its edge, mm: its own triangles reach that far. */
 const BESIDE = 0.5;
 /** Rounds at the most; each lowers the error, the first few by nearly all. */

@@ -25,6 +25,8 @@ export interface Stretch {
 const FACES = 5;
 const LEAST = 1;
 const SHARE = 1 / 3;
+/** In a narrow figure they are shorter, down to this share: where faces are as long, they say nothing. */
+const SHORTEST = 0.4;
 
 /** Length of the chords on a map, mm. */
 export function chordLength(mesh: SurfaceMesh, patch: MapPatch, radius: number): number {
@@ -54,30 +56,55 @@ export function lineStretch(walk: PatchWalk, points: Float64Array, closed: boole
     for (let k = 0; k < steps; k++) {
       const share = (k + 0.5) / steps;
       const [u, v] = [points[2 * i] + share * du, points[2 * i + 1] + share * dv];
-      worst = worse(worst, walk, u, v, du / l, dv / l, chord);
+      worst = worse(worst, walk, u, v, du / l, dv / l, chord, chord);
     }
   }
   return worst;
 }
 
-/** Worst stretch in any of eight directions over a figure. */
+/**
+ * Worst stretch in any of eight directions over a figure, along chords that lie in it: what the surface does beside it is not
+ * its own. A figure too small for any chord is measured by chords about its places.
+ */
 export function areaStretch(walk: PatchWalk, figure: FlatFigure, chord: number): Stretch {
   let worst = NONE;
+  let measured = false;
   const [lu, lv, hu, hv] = figure.box;
   const step = (from: number, to: number): number =>
     (to - from) / Math.max(1, Math.ceil((2 * (to - from)) / chord));
   const [su, sv] = [step(lu, hu), step(lv, hv)];
-  for (let u = lu + su / 2; u < hu; u += su)
-    for (let v = lv + sv / 2; v < hv; v += sv) {
-      if (figure.at(u, v).edge > 0) continue;
-      for (let k = 0; k < 4; k++)
-        worst = worse(worst, walk, u, v, cosine((k * Math.PI) / 4), sine((k * Math.PI) / 4), chord);
-    }
+  const each = (look: (u: number, v: number, du: number, dv: number) => void): void => {
+    for (let u = lu + su / 2; u < hu; u += su)
+      for (let v = lv + sv / 2; v < hv; v += sv) {
+        if (figure.at(u, v).edge > 0) continue;
+        for (let k = 0; k < 4; k++) look(u, v, cosine((k * Math.PI) / 4), sine((k * Math.PI) / 4));
+      }
+  };
+  each((u, v, du, dv) => {
+    const along = within(figure, u, v, du, dv, chord);
+    const across = within(figure, u, v, -dv, du, chord);
+    measured ||= along > 0 || across > 0;
+    worst = worse(worst, walk, u, v, du, dv, along, across);
+  });
+  if (!measured)
+    each((u, v, du, dv) => {
+      worst = worse(worst, walk, u, v, du, dv, chord, chord);
+    });
   return worst;
+}
+
+/** Longest chord about a place, of the length asked for and its halves, whose ends lie in the figure; 0 when they are tiny. */
+function within(figure: FlatFigure, u: number, v: number, du: number, dv: number, chord: number): number {
+  for (let l = chord; l > SHORTEST * chord; l /= 2) {
+    const h = l / 2;
+    if (figure.at(u + h * du, v + h * dv).edge <= 0 && figure.at(u - h * du, v - h * dv).edge <= 0) return l;
+  }
+  return 0;
 }
 
 const NONE: Stretch = { stretch: 0, along: 1, across: 1, at: [0, 0, 0] };
 
+/** @param along, across  lengths of the two chords, mm; 0 for one that is not asked for */
 function worse(
   worst: Stretch,
   walk: PatchWalk,
@@ -85,14 +112,15 @@ function worse(
   v: number,
   du: number,
   dv: number,
-  chord: number,
+  along: number,
+  across: number,
 ): Stretch {
-  const along = ratio(walk, u, v, du, dv, chord);
-  const across = ratio(walk, u, v, -dv, du, chord);
-  const stretch = Math.max(Math.abs((along ?? 1) - 1), Math.abs((across ?? 1) - 1));
+  const a = along > 0 ? ratio(walk, u, v, du, dv, along) : null;
+  const b = across > 0 ? ratio(walk, u, v, -dv, du, across) : null;
+  const stretch = Math.max(Math.abs((a ?? 1) - 1), Math.abs((b ?? 1) - 1));
   if (stretch <= worst.stretch) return worst;
   const t = walk.locate(u, v);
-  return t < 0 ? worst : { stretch, along: along ?? 1, across: across ?? 1, at: walk.place(t, u, v) };
+  return t < 0 ? worst : { stretch, along: a ?? 1, across: b ?? 1, at: walk.place(t, u, v) };
 }
 
 /** Ratio over a chord about a place; null where the chord leaves the map. */

@@ -65,6 +65,8 @@ export interface ElementReport {
   area: number;
   drawnLength: number;
   stretch: number;
+  /** Of a drawing's element where it is stretched most: lengths on the part over lengths drawn, along its line and across. */
+  stretched?: { along: number; across: number; at: Vec3 };
   setups: string[];
   layers: number[];
   focus: { ok: boolean; worst: number; at: Vec3 };
