@@ -11,8 +11,8 @@ const NONE = 16;
 /** Pairs of sides looked at, for each side and at most. */
 const SAMPLE = 20;
 const MOST_SAMPLE = 400_000;
-/** Crossings in a drawing, and sides that a line sweeping up meets at all its stops together: each some three seconds. */
-const MOST_CROSSINGS = 4e5;
+/** Crossings in a drawing, and sides that a line sweeping up meets at all its stops together: each some two to three seconds. */
+const MOST_CROSSINGS = 1e5;
 const MOST_SWEPT = 1e7;
 
 /** Figures that need clipping: each takes a moment, however small. */
