@@ -36,8 +36,22 @@ export function arrange(segments: readonly Segment[], plane: Plane, tolerance: n
       const chain = [s.a, ...[...through].sort((p, q) => along(p) - along(q) || p - q), s.b];
       return chain.slice(1).map((b, k) => ({ a: chain[k], b, owner: s.owner }));
     });
+    list = withoutReturns(list);
   }
   return list;
+}
+
+/** Leaves out what one owner goes along forth and back: it bounds nothing. Among vertices about the tolerance apart such grow fast. */
+function withoutReturns(list: readonly Segment[]): Segment[] {
+  const net = new Map<string, number>();
+  const key = ({ a, b, owner }: Segment): string => `${Math.min(a, b)} ${Math.max(a, b)} ${owner}`;
+  for (const s of list) net.set(key(s), (net.get(key(s)) ?? 0) + (s.a < s.b ? 1 : -1));
+  return list.filter((s) => {
+    const left = net.get(key(s)) as number;
+    if (s.a < s.b ? left <= 0 : left >= 0) return false;
+    net.set(key(s), left + (s.a < s.b ? -1 : 1));
+    return true;
+  });
 }
 
 /** Vertices that each segment has to go through, by its place in the list. */
@@ -56,7 +70,9 @@ function cutsOf(list: readonly Segment[], plane: Plane, tolerance: number): Map<
     const [px, py] = [plane.x(v) - ax, plane.y(v) - ay];
     const l = dx * dx + dy * dy;
     const t = px * dx + py * dy;
-    return t > 0 && t < l && (dx * py - dy * px) ** 2 < tolerance * tolerance * l;
+    // Both pieces are shorter than the whole: so cutting comes to an end.
+    const [near, far] = [px * px + py * py, (px - dx) ** 2 + (py - dy) ** 2];
+    return t > 0 && near < l && far < l && (dx * py - dy * px) ** 2 < tolerance * tolerance * l;
   };
   for (const [cell, inCell] of cells) {
     for (const v of vertices.get(cell) ?? [])
