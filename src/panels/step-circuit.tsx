@@ -13,7 +13,7 @@ export function CircuitStep() {
   const { store } = useWindow();
   const state = useSteady();
   const { project, pen, tool, selection } = state;
-  const { copper } = current(state);
+  const { copper, rules } = current(state);
   if (!project) return <p>Open a part first.</p>;
   const round = 'circle' in pen.shape;
   const size = 'circle' in pen.shape ? pen.shape.circle : 'rect' in pen.shape ? pen.shape.rect[0] : 1.6;
@@ -170,7 +170,7 @@ export function CircuitStep() {
           (p) => `${p.file === project.name ? '' : `${p.file}, `}${p.place}: ${p.problem}; ${p.mend}.`,
         ),
         ...(copper?.findings ?? []).map((f) => `${f.element}: ${f.text}.`),
-        ...(copper?.rules ?? []).map((r) => `${r.elements.join(' and ')}: ${ruleWords(r)}.`),
+        ...rules.map((r) => `${r.elements.join(' and ')}: ${ruleWords(r)}.`),
       ].map((t) => (
         <p key={t} className="wrong">
           {t}

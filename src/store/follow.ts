@@ -38,7 +38,7 @@ export function createFollower(
       if (revision === followed) return;
       followed = revision;
       if (!project || !part) {
-        api.setState({ copper: null, reach: null, plan: null, connections: null, nets: null });
+        api.setState({ copper: null, reach: null, plan: null, rules: null, connections: null, nets: null });
         continue;
       }
       const since = performance.now();
@@ -83,11 +83,14 @@ export function createFollower(
     }
   }
 
-  /** Nets come last: nothing waits for them, and a change of the document stops them. */
+  /** Shop rules and nets come last: nothing waits for them, and a change of the document stops them. */
   async function measure(revision: number): Promise<void> {
     const mine = ++measures;
     measuring = mine;
     try {
+      const rules = await worker.call('rules', null);
+      if (late(revision)) return;
+      api.setState({ rules: { revision, value: rules } });
       const connections = await worker.call('connections', null);
       if (late(revision)) return;
       api.setState({ connections: { revision, value: connections } });
@@ -96,7 +99,7 @@ export function createFollower(
     } catch (error) {
       if (late(revision)) return;
       api.setState({ nets: { revision, value: null } });
-      if (!wasStopped(error)) fail(error, 'Working out the nets');
+      if (!wasStopped(error)) fail(error, 'Working out rules and nets');
     } finally {
       if (measuring === mine) measuring = 0;
     }

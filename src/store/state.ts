@@ -1,6 +1,7 @@
 /** The window's whole state: the document, what was derived from it, and what the person is doing. */
+
 import type { Vec3 } from '../core/base/vec.ts';
-import type { Report } from '../core/project/report.ts';
+import type { Report, RuleFinding } from '../core/project/report.ts';
 import type { PadShape, Project } from '../core/project/schema.ts';
 import type {
   ConnectionsPicture,
@@ -96,6 +97,8 @@ export interface State {
   copper: Derived<CopperPicture> | null;
   reach: Derived<ReachPicture[]> | null;
   plan: Derived<PlanPicture[]> | null;
+  /** Shop rules that the copper breaks. */
+  rules: Derived<RuleFinding[]> | null;
   connections: Derived<ConnectionsPicture> | null;
   /** Null inside: it could not be worked out. */
   nets: Derived<NetPicture[] | null> | null;
@@ -133,6 +136,7 @@ export const firstState: State = {
   copper: null,
   reach: null,
   plan: null,
+  rules: null,
   connections: null,
   nets: null,
   exported: null,
@@ -163,9 +167,12 @@ export function current(s: State): {
   copper: CopperPicture | null;
   reach: ReachPicture | null;
   plan: PlanPicture | null;
+  /** None while they are not known. */
+  rules: readonly RuleFinding[];
 } {
   const copper = s.copper?.value ?? null;
   const fits = <T>(d: Derived<T[]> | null): T | null =>
     d && s.copper && d.revision === s.copper.revision ? (d.value[s.setup] ?? null) : null;
-  return { copper, reach: fits(s.reach), plan: fits(s.plan) };
+  const rules = s.rules && s.copper?.revision === s.rules.revision ? s.rules.value : [];
+  return { copper, reach: fits(s.reach), plan: fits(s.plan), rules };
 }

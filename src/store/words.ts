@@ -66,7 +66,7 @@ export function stepWords(s: State): Record<StepName, StepWords> {
       heights: none,
       files: none,
     };
-  const { copper, reach, plan } = current(s);
+  const { copper, reach, plan, rules } = current(s);
   const elements = project.circuit.elements;
   const count = (kind: string, word: string) => {
     const n = elements.filter((e) => e.kind === kind).length;
@@ -79,7 +79,7 @@ export function stepWords(s: State): Record<StepName, StepWords> {
     ...count('region', 'region'),
     ...(drapes.length === 0 ? [] : [`${drapes.length} drawing${drapes.length === 1 ? '' : 's'}`]),
   ];
-  const broken = copper?.rules.filter((r) => r.level === 'error').length ?? 0;
+  const broken = rules.filter((r) => r.level === 'error').length;
   const troubles = (copper?.problems.length ?? 0) + (copper?.findings.length ?? 0);
 
   const size = part

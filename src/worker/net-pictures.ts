@@ -11,7 +11,7 @@ export function netPictures(project: Project, copper: Copper, ctx: RunContext): 
   return names.flatMap((name, i) => {
     ctx.step('reach', i, names.length);
     const own = { elements: copper.elements.filter((e) => e.net === name) };
-    return netReports(project, own).map((report) => ({
+    return netReports(project, own, { step: () => ctx.step('reach', i, names.length) }).map((report) => ({
       name: report.name,
       pieces: report.pieces,
       area: report.area,

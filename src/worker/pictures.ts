@@ -104,8 +104,6 @@ export interface CopperPicture {
   problems: InputProblem[];
   /** Elements that were laid with bad news, or not at all: no way over the surface, no room. */
   findings: DrapeFinding[];
-  /** Shop rules that the copper breaks; empty while elements are pending. */
-  rules: RuleFinding[];
   /** Copper on the surface, mm², each place counted once; null while elements are pending. */
   covered: number | null;
   /** Part frame, 3 a vertex. */

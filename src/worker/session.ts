@@ -24,6 +24,7 @@ import { type CornerNormals, normalAt } from '../core/part/normals.ts';
 import { loadPart, type Part, type Units } from '../core/part/part.ts';
 import { runJob, setupsOf } from '../core/pipeline.ts';
 import { readProject, writeProject } from '../core/project/read.ts';
+import type { RuleFinding } from '../core/project/report.ts';
 import type { Head, Project, Setup } from '../core/project/schema.ts';
 import { checkReach } from '../core/reach/reach.ts';
 import type { SetupReach } from '../core/reach/result.ts';
@@ -224,15 +225,12 @@ export function createSession(flat: LoadFlat = noFlat) {
       });
       for (const key of laid.keys()) if (!keep.has(key)) laid.delete(key);
       copper = { elements };
-      const { limits } = project;
-      const rules = pending > 0 ? [] : shopRules(here, elements, limits);
       const covered = pending > 0 ? null : unionArea(elements.map((e) => e.copper));
       return {
         ...copperPicture(copper, here, posesOf(project), drapeOf),
         drawings: read,
         problems,
         findings,
-        rules,
         pending,
         covered,
       };
@@ -260,6 +258,12 @@ export function createSession(flat: LoadFlat = noFlat) {
       return planLayers(p, setupsOf(p, p.name), c, reach, ctx).map((plan) =>
         planPicture(plan, c, reach[plan.setup]),
       );
+    },
+
+    /** Shop rules that the copper laid last breaks. */
+    rules(_: null, ctx: RunContext): RuleFinding[] {
+      const { project: p, copper: c } = needCopper();
+      return shopRules(needPart(), c.elements, p.limits, ctx);
     },
 
     /** Opens and shorts of the copper laid last, by its nets and by the project's netlist. */
@@ -408,7 +412,7 @@ function copperPicture(
   part: Part,
   setups: Setup[],
   drapeOf: ReadonlyMap<string, string>,
-): Omit<CopperPicture, 'drawings' | 'problems' | 'findings' | 'rules' | 'pending' | 'covered'> {
+): Omit<CopperPicture, 'drawings' | 'problems' | 'findings' | 'pending' | 'covered'> {
   const triangles = copper.elements.reduce((n, e) => n + e.copper.triangles.length / 3, 0);
   const vertices = copper.elements.reduce((n, e) => n + e.copper.positions.length / 3, 0);
   const positions = new Float32Array(3 * vertices);

@@ -1,4 +1,5 @@
 /** Nets as they lie on the part: what touches, how much copper, and the resistance between its pads (model.md §8). */
+import { quiet, type RunContext } from '../base/run-context.ts';
 import type { Copper, CopperElement } from '../drape/copper.ts';
 import type { NetReport } from '../project/report.ts';
 import type { Project } from '../project/schema.ts';
@@ -16,12 +17,15 @@ import { unionArea } from './union-area.ts';
  * of all its traces.
  * The current is what the guide allows for the narrowest place that current from pad to pad has to pass; where no two pads
  * are joined, for the narrowest trace.
+ * @throws Cancelled by `ctx`, which is asked before each net and each refinement
  */
-export function netReports(project: Project, copper: Copper): NetReport[] {
+export function netReports(project: Project, copper: Copper, ctx: RunContext = quiet): NetReport[] {
   const names = [...new Set(copper.elements.map((e) => e.net).filter((n) => n !== ''))];
-  return names.map((name) => {
+  return names.map((name, i) => {
+    const step = (): void => ctx.step('reach', i, names.length);
+    step();
     const elements = copper.elements.filter((e) => e.net === name);
-    const { pieces, pairs } = padPairs(elements);
+    const { pieces, pairs } = padPairs(elements, step);
     const traces = elements.filter((e) => e.kind === 'trace');
     // A square of the sheet: a strip as long as it is wide.
     const square = stripResistance(1, 1, project.copper);
@@ -50,12 +54,15 @@ interface PadPair extends SheetResistance {
 }
 
 /** Resistances between pads: every pad from the first one of its piece. */
-function padPairs(elements: readonly CopperElement[]): { pieces: number; pairs: PadPair[] } {
+function padPairs(
+  elements: readonly CopperElement[],
+  step: () => void,
+): { pieces: number; pairs: PadPair[] } {
   const sheet = netSheet(elements);
   const { pieces, padAt } = sheetPieces(sheet);
   const solved = pieces.map((piece) => ({
     piece,
-    found: piece.pads.length > 1 ? solvePiece(sheet, piece, padAt) : [],
+    found: piece.pads.length > 1 ? solvePiece(sheet, piece, padAt, step) : [],
   }));
   const firsts = new Map<SheetPiece, number>();
   const pairs: PadPair[] = [];
@@ -82,8 +89,9 @@ function solvePiece(
   { positions, triangles }: { positions: Float64Array; triangles: Uint32Array },
   { triangles: free, pads }: SheetPiece,
   padAt: (a: number, b: number) => number,
+  step: () => void,
 ): SheetResistance[] {
   const corners = free.flatMap((t) => [triangles[3 * t], triangles[3 * t + 1], triangles[3 * t + 2]]);
   const mesh = new IntrinsicMesh(positions, corners, (a, b) => pads.indexOf(padAt(a, b)));
-  return sheetResistance(mesh, pads.length);
+  return sheetResistance(mesh, pads.length, step);
 }

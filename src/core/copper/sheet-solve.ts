@@ -32,11 +32,17 @@ export interface SheetResistance {
 /**
  * @param mesh        one piece, all of it joined by triangles and electrodes; it is cut finer
  * @param electrodes  their number; every electrode is joined to the others
+ * @param step        called before each solution; what it throws stops the work
  * @returns from electrode 0 to each of the others, no current at the rest
  */
-export function sheetResistance(mesh: IntrinsicMesh, electrodes: number): SheetResistance[] {
+export function sheetResistance(
+  mesh: IntrinsicMesh,
+  electrodes: number,
+  step: () => void = () => {},
+): SheetResistance[] {
   mesh.makeDelaunay();
   for (;;) {
+    step();
     const upper = solve(mesh, electrodes, mesh.tail, mesh.electrode, 1);
     const middles = mesh.edge.map((_, c) => mesh.edge[c % 3 === 2 ? c - 2 : c + 1]);
     const lower = solve(mesh, electrodes, middles, mesh.held, 4);

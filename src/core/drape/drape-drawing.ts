@@ -113,9 +113,7 @@ export function drapeDrawing(
         text: 'its line leaves the surface that the drawing reaches: it stops there',
       });
     const worst =
-      figure.kind === 'stroke'
-        ? lineStretch(walk, figure.points, figure.closed, chord)
-        : areaStretch(walk, own.flat, chord);
+      figure.kind === 'stroke' ? lineStretch(walk, figure, chord) : areaStretch(walk, own.flat, chord);
     const middle = laid.copper.positions.length / 6;
     const o = 3 * Math.floor(middle);
     elements.push({

@@ -11,12 +11,14 @@ import { factor, type SparseRows } from '../base/sparse.ts';
 import type { MapPatch } from './map-patch.ts';
 
 /**
- * What triangles without copper count. Much less, and what must give way gives way in narrow gaps between pieces of copper,
- * which then fold; much more, and the map is evened where nothing lies.
+ * What triangles without copper count, from little to as much as the others. Little is best for the copper, but where much
+ * must give way between pieces of copper that little folds: then more is tried.
  */
-const REST = 0.25;
+const REST = [1e-2, 5e-2, 0.25, 1];
+/** A map is crushed where a triangle keeps less than this share of its area. */
+const CRUSHED = 0.1;
 /** Copper counts in full out to this far past its edge, mm: its own triangles reach that far. */
-const BESIDE = 0.5;
+export const BESIDE = 0.5;
 /** Rounds at the most; each lowers the error, the first few by nearly all. */
 const ROUNDS = 12;
 /** A round that moves no corner by more than this share of the map's size is the last. */
@@ -28,7 +30,7 @@ const HOLD = 1e-7;
  * Changes `patch.flat`.
  * @param edge  signed distance to the nearest copper of the drawing at a flat place, mm
  * @param step  called before each round; what it throws stops the work, and the map is then of no use
- * @returns whether the map was evened; false where that would have folded it over copper: it is as it was then
+ * @returns whether the map was evened; false where that would have folded it: it is as it was then
  */
 export function evenLengths(
   patch: MapPatch,
@@ -40,15 +42,28 @@ export function evenLengths(
   if (count === 0) return true;
   const before = flat.slice();
   const sides = flatSides(patch);
-  const weight = Float64Array.from({ length: count }, (_, t) => {
+  const handed = Math.sign(handedness(patch));
+  const copper = Uint8Array.from({ length: count }, (_, t) => {
     const [u, v] = middle(flat, triangles, t);
-    return edge(u, v) < BESIDE ? 1 : REST;
+    return edge(u, v) < BESIDE ? 1 : 0;
   });
+  for (const rest of REST) {
+    const weight = Float64Array.from(copper, (c) => (c ? 1 : rest));
+    relax(patch, sides, weight, handed, step);
+    turnBack(patch, before);
+    if (!isCrushed(patch, before, handed)) return true;
+    flat.set(before);
+  }
+  return false;
+}
+
+/** Local and global steps until the map is still. */
+function relax(patch: MapPatch, sides: Sides, weight: Float64Array, handed: number, step: () => void): void {
+  const { flat, anchor } = patch;
   const { rows, hold } = laplacian(patch, sides, weight);
   const factors = factor(rows);
   const size = flat.reduce((m, x) => Math.max(m, Math.abs(x)), 0);
-  const handed = Math.sign(handedness(patch));
-  const anchorAt = [before[2 * patch.anchor], before[2 * patch.anchor + 1]];
+  const anchorAt = [flat[2 * anchor], flat[2 * anchor + 1]];
   for (let round = 0; round < ROUNDS; round++) {
     step();
     const right = rightSide(patch, sides, weight, handed);
@@ -56,7 +71,7 @@ export function evenLengths(
     for (let k = 0; k < 2; k++) {
       for (let i = 0; i < hold.length; i++) right[k][i] += hold[i] * flat[2 * i + k];
       const x = factors.solve(right[k]);
-      const back = anchorAt[k] - x[patch.anchor];
+      const back = anchorAt[k] - x[anchor];
       for (let i = 0; i < x.length; i++) {
         moved = Math.max(moved, Math.abs(x[i] + back - flat[2 * i + k]));
         flat[2 * i + k] = x[i] + back;
@@ -64,10 +79,6 @@ export function evenLengths(
     }
     if (moved < STILL * size) break;
   }
-  turnBack(patch, before);
-  if (!folds(patch, weight, handed)) return true;
-  flat.set(before);
-  return false;
 }
 
 /** Corners of each triangle laid flat: 6 numbers, in its own frame, and the cotangents of its angles: 3. */
@@ -220,9 +231,12 @@ function handedness({ flat, triangles }: MapPatch): number {
   return sum;
 }
 
-function folds({ flat, triangles }: MapPatch, weight: Float64Array, handed: number): boolean {
-  for (let t = 0; t < weight.length; t++)
-    if (weight[t] === 1 && handed * flatArea(flat, triangles, t) <= 0) return true;
+/** Whether a triangle that was not folded before is now, or nearly. */
+function isCrushed({ flat, triangles }: MapPatch, before: Float64Array, handed: number): boolean {
+  for (let t = 0; t < triangles.length / 3; t++) {
+    const was = handed * flatArea(before, triangles, t);
+    if (was > 0 && handed * flatArea(flat, triangles, t) < CRUSHED * was) return true;
+  }
   return false;
 }
 

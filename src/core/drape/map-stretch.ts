@@ -6,7 +6,9 @@
  */
 import { cosine, sine } from '../base/trig.ts';
 import type { Vec3 } from '../base/vec.ts';
+import type { Stroke } from '../drawing/drawing.ts';
 import type { SurfaceMesh } from '../mesh/surface-mesh.ts';
+import { BESIDE } from './even-lengths.ts';
 import type { FlatFigure } from './flat-figure.ts';
 import type { MapPatch } from './map-patch.ts';
 import type { PatchWalk } from './patch-walk.ts';
@@ -43,8 +45,13 @@ export function chordLength(mesh: SurfaceMesh, patch: MapPatch, radius: number):
   return Math.min(Math.max(LEAST, FACES * side), SHARE * radius);
 }
 
-/** Worst stretch along a flat line. @param points  2 a point */
-export function lineStretch(walk: PatchWalk, points: Float64Array, closed: boolean, chord: number): Stretch {
+/** Worst stretch along a flat line, and across it no farther than its own copper counts. @param points  2 a point */
+export function lineStretch(
+  walk: PatchWalk,
+  { points, closed, width }: Pick<Stroke, 'points' | 'closed' | 'width'>,
+  chord: number,
+): Stretch {
+  const across = Math.min(chord, width + 2 * BESIDE);
   let worst = NONE;
   const n = points.length / 2;
   for (let i = 0; i + (closed ? 0 : 1) < n; i++) {
@@ -56,7 +63,7 @@ export function lineStretch(walk: PatchWalk, points: Float64Array, closed: boole
     for (let k = 0; k < steps; k++) {
       const share = (k + 0.5) / steps;
       const [u, v] = [points[2 * i] + share * du, points[2 * i + 1] + share * dv];
-      worst = worse(worst, walk, u, v, du / l, dv / l, chord, chord);
+      worst = worse(worst, walk, u, v, du / l, dv / l, chord, across);
     }
   }
   return worst;

@@ -1,4 +1,5 @@
 /** Every shop rule that looks at copper as it lies: what report and window show. */
+import { quiet, type RunContext } from '../base/run-context.ts';
 import { innerCornerRule } from '../copper/inner-corners.ts';
 import type { CopperElement } from '../drape/copper.ts';
 import type { DrapePart } from '../drape/drape.ts';
@@ -9,15 +10,23 @@ import { gapRule } from './gap.ts';
 import { stretchRule } from './stretch.ts';
 import { widthRule } from './width.ts';
 
-export const shopRules = (
+/** @throws Cancelled by `ctx`, which is asked before each rule */
+export function shopRules(
   part: DrapePart,
   elements: readonly CopperElement[],
   limits: Limits,
-): RuleFinding[] => [
-  ...widthRule(part, elements, limits),
-  ...gapRule(part, elements, limits),
-  ...stretchRule(elements, limits),
-  ...sharpEdgeRule(part.mesh, elements, limits),
-  ...borderRule(part.mesh, elements, limits),
-  ...innerCornerRule(elements, limits),
-];
+  ctx: RunContext = quiet,
+): RuleFinding[] {
+  const rules = [
+    () => widthRule(part, elements, limits),
+    () => gapRule(part, elements, limits),
+    () => stretchRule(elements, limits),
+    () => sharpEdgeRule(part.mesh, elements, limits),
+    () => borderRule(part.mesh, elements, limits),
+    () => innerCornerRule(elements, limits),
+  ];
+  return rules.flatMap((rule, i) => {
+    ctx.step('drape', i, rules.length);
+    return rule();
+  });
+}
