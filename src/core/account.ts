@@ -74,7 +74,7 @@ export function openReport(
     rules: [
       ...findings.map((f) => ({
         rule: f.rule,
-        level: 'error' as const,
+        level: f.rule === 'not-evened' ? ('warning' as const) : ('error' as const),
         value: 0,
         limit: 0,
         elements: [f.element],

@@ -63,13 +63,23 @@ export function drapeDrawing(
   const patch = mapPatch(solver, anchor, radius, radiansFromDegrees(drape.turn), drape.mirror);
   const limits = patch.limits((u, v) => nearestEdge(shapes, u, v));
   step();
-  if (drape.evenLengths && shapes.length > 0) evenLengths(patch, (u, v) => nearestEdge(shapes, u, v), step);
+  const evened =
+    !drape.evenLengths ||
+    shapes.length === 0 ||
+    evenLengths(patch, (u, v) => nearestEdge(shapes, u, v), step);
   const walk = new PatchWalk(patch);
   const read = flatReader(patch);
   const chord = chordLength(solver.mesh, patch, radius);
   const findings: DrapeFinding[] = limits
     .filter((limit) => limit.measure < -TRUE_TO)
     .map((limit) => ({ rule: 'beyond-map', element: drape.id, at: limit.at, text: BEYOND[limit.kind] }));
+  if (!evened)
+    findings.push({
+      rule: 'not-evened',
+      element: drape.id,
+      at: anchor.point,
+      text: 'lengths are as the map gives them: evening them out would have folded it',
+    });
   // Flat lengths grow by at most this on the way over the part: fields far from copper must not grow by more than 1.
   const steep = Math.min(steepest(patch), TORN);
   const elements: CopperElement[] = [];

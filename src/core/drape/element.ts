@@ -56,7 +56,7 @@ export function lineLength(points: Float64Array): number {
 
 /** What could not be laid on the part: news for the report, not an error of the file. */
 export interface DrapeFinding {
-  rule: 'no-way' | 'no-copper' | 'crossed' | 'beyond-map' | 'left-map';
+  rule: 'no-way' | 'no-copper' | 'crossed' | 'beyond-map' | 'left-map' | 'not-evened';
   element: string;
   at: Vec3;
   text: string;

@@ -15,7 +15,7 @@ import type { MapPatch } from './map-patch.ts';
  * must give way between pieces of copper that little folds: then more is tried.
  */
 const REST = [1e-2, 5e-2, 0.25, 1];
-/** A map is crushed where a triangle keeps less than this share of its area. */
+/** A map is crushed where a triangle has less than this share of the area that it has on the part. */
 const CRUSHED = 0.1;
 /** Copper counts in full out to this far past its edge, mm: its own triangles reach that far. */
 export const BESIDE = 0.5;
@@ -51,7 +51,7 @@ export function evenLengths(
     const weight = Float64Array.from(copper, (c) => (c ? 1 : rest));
     relax(patch, sides, weight, handed, step);
     turnBack(patch, before);
-    if (!isCrushed(patch, before, handed)) return true;
+    if (!isCrushed(patch, sides, before, handed)) return true;
     flat.set(before);
   }
   return false;
@@ -231,11 +231,17 @@ function handedness({ flat, triangles }: MapPatch): number {
   return sum;
 }
 
-/** Whether a triangle that was not folded before is now, or nearly. */
-function isCrushed({ flat, triangles }: MapPatch, before: Float64Array, handed: number): boolean {
+/** Whether a triangle that was neither folded nor crushed before is now. */
+function isCrushed(
+  { flat, triangles }: MapPatch,
+  { l, fy }: Sides,
+  before: Float64Array,
+  handed: number,
+): boolean {
   for (let t = 0; t < triangles.length / 3; t++) {
-    const was = handed * flatArea(before, triangles, t);
-    if (was > 0 && handed * flatArea(flat, triangles, t) < CRUSHED * was) return true;
+    const least = (CRUSHED * l[t] * fy[t]) / 2;
+    if (handed * flatArea(flat, triangles, t) < least && handed * flatArea(before, triangles, t) >= least)
+      return true;
   }
   return false;
 }
