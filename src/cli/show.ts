@@ -60,7 +60,9 @@ export function showCheck(report: Report): string {
     '',
     ...report.rules.flatMap((r) =>
       r.text && !CONNECTION.has(r.rule)
-        ? [`${r.level}: ${r.elements.length ? `${r.elements.join(', ')}: ` : ''}${r.text}.`]
+        ? [
+            `${r.level}: ${r.elements.length ? `${r.elements.join(', ')}: ` : ''}${r.text} (at ${where(r.at)}).`,
+          ]
         : [],
     ),
     ...drawingsBlock(report),

@@ -98,7 +98,7 @@ export function drapeDrawing(
       if (!at) return { edge: Math.max(MARGIN, distance(p, anchor.point) - farthest), hatch: 0, along: 0 };
       const field = own.flat.at(at[0], at[1]);
       const edge = near.reduce((e, h) => Math.max(e, holeEdge(h, at[0], at[1])), field.edge);
-      return { ...field, edge: edge > 0 ? edge / steep : edge };
+      return { ...field, edge: edge > BENT ? BENT + (edge - BENT) / steep : edge };
     };
     const triangles = walk.within(grown(own.flat.box, MARGIN));
     const faces = [...new Set([...triangles].map((t) => patch.face[t]))].sort((a, b) => a - b);
@@ -311,8 +311,10 @@ function nearestEdge(shapes: readonly Moved[], u: number, v: number): number {
   return best;
 }
 
-/** A torn map has triangles of no end: refining follows nothing there. */
+/** A map is nowhere steeper: what is torn is left out (`map-patch.ts`). */
 const TORN = 3;
+/** Out to here fields are the flat distances themselves, mm: the outline runs straight through the triangles that it crosses. */
+const BENT = MARGIN / 2;
 
 const endOf = (points: Float64Array): Vec3 => {
   const o = points.length - 3;

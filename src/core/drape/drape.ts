@@ -104,7 +104,10 @@ export function layDrawing(shared: DrapeShared, task: DrawingTask): DrawingDrape
   return drapeDrawingOn(draperOf(shared), task);
 }
 
-/** @throws InputError `far-from-surface`, Cancelled */
+/** A drawing of more points is read and shown flat, but not laid: that would take many minutes. */
+const MOST_LAID = 200_000;
+
+/** @throws InputError `far-from-surface`, `too-large`, Cancelled */
 export function drapeDrawingOn(
   draper: Draper,
   { drape, drawing, path, file }: DrawingTask,
@@ -112,6 +115,21 @@ export function drapeDrawingOn(
 ): DrawingDraped {
   const { mesh, queries } = draper.part;
   const anchor = pull(queries, mesh, drape.anchor, { file, place: `${path}.anchor` });
+  const points = drawing.shapes
+    .filter((s) => drape.drawingLayers[s.layer] !== 'skip')
+    .reduce(
+      (n, { figure: f }) =>
+        n + (f.kind === 'stroke' ? f.points.length : f.rings.reduce((m, r) => m + r.length, 0)) / 2,
+      0,
+    );
+  if (points > MOST_LAID)
+    throw new InputError({
+      code: 'too-large',
+      file,
+      place: `${path}.drawing`,
+      problem: `${drape.drawing} has ${points} points once its curves are flattened, more than the ${MOST_LAID} that are laid`,
+      mend: 'leave out layers that are no copper, or draw with fewer points',
+    });
   return drapeDrawing(draper.solver, drape, drawing, anchor, ctx);
 }
 

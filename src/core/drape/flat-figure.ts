@@ -59,6 +59,15 @@ function strokeFigure(stroke: Stroke): FlatFigure {
   };
   const atEnd = (i: number, share: number): 'first' | 'last' | null =>
     closed ? null : share === 0 && i === 0 ? 'first' : share === 1 && i === count - 1 ? 'last' : null;
+  /** How far beyond the end of an open line that does not end round, mm: the more negative the farther inside; far inside elsewhere. */
+  const pastEnd = (i: number, u: number, v: number): number => {
+    if (closed || stroke.ends === 'round') return -Infinity;
+    const more = stroke.ends === 'square' ? half : 0;
+    const t = ahead(i, u, v);
+    return (
+      Math.max(i === 0 ? -t : -Infinity, i === count - 1 ? t - (start[i + 1] - start[i]) : -Infinity) - more
+    );
+  };
   return {
     box: [lu - reach, lv - reach, hu + reach, hv + reach],
     length: start[Math.max(1, count)],
@@ -76,7 +85,8 @@ function strokeFigure(stroke: Stroke): FlatFigure {
         return { edge: boxDistance(cap, Math.abs(across) - half), hatch: across, along };
       }
       const along = start[i] + share * (start[i + 1] - start[i]);
-      if (share > 0 && share < 1) return { edge: distance - half, hatch: across, along };
+      if (share > 0 && share < 1)
+        return { edge: boxDistance(pastEnd(i, u, v), distance - half), hatch: across, along };
       // On the outside of a bend.
       const other = share === 0 ? (i + count - 1) % count : (i + 1) % count;
       const [before, after] = share === 0 ? [other, i] : [i, other];

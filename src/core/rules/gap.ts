@@ -5,6 +5,7 @@
  * sides of a thin wall is as far apart as the way around it.
  */
 import { addScaled, distance, scale, sub, type Vec3 } from '../base/vec.ts';
+import { contacts } from '../copper/contacts.ts';
 import type { CopperElement } from '../drape/copper.ts';
 import type { DrapePart } from '../drape/drape.ts';
 import { shortestWith } from '../geodesic/shortest.ts';
@@ -29,8 +30,10 @@ const LIFT = 1e-3;
  */
 export function gapRule(part: DrapePart, elements: readonly CopperElement[], limits: Limits): RuleFinding[] {
   const n = elements.length;
+  // What touches is one piece of copper: a short where nets are named, and no gap.
+  const touching = new Set(contacts(elements).map(({ a, b }) => a * n + b));
   const pairs = new OutlineGrid(elements, limits.safeGap).pairs(
-    (a, b) => a !== b && !sameNet(elements[a], elements[b]),
+    (a, b) => a !== b && !sameNet(elements[a], elements[b]) && !touching.has(a * n + b),
   );
   const gaps = new GapMeasure(part, limits.safeGap);
   return [...pairs]

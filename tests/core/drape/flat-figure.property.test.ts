@@ -38,6 +38,31 @@ describe('flat figures', () => {
     }
   });
 
+  it('a straight line with plain or square ends has the signed distance of its rectangle, inside its ends too, seed 54', () => {
+    const random = randomFrom(54);
+    for (const ends of ['butt', 'square'] as const) {
+      const stroke: Stroke = {
+        kind: 'stroke',
+        points: Float64Array.of(-3, 1, 4, 1),
+        closed: false,
+        width: 0.8,
+        ends,
+        bends: 'round',
+      };
+      const more = ends === 'square' ? 0.4 : 0;
+      const outline: [number, number][] = [
+        [-3 - more, 0.6],
+        [4 + more, 0.6],
+        [4 + more, 1.4],
+        [-3 - more, 1.4],
+      ];
+      for (let k = 0; k < 400; k++) {
+        const [u, v] = [10 * random() - 4.5, 4 * random() - 1];
+        expect(flatFigure(stroke).at(u, v).edge).toBeCloseTo(polygonDistance(outline, u, v), 10);
+      }
+    }
+  });
+
   it('an area with a hole has the signed distance of its rings, by even and odd, seed 52', () => {
     const random = randomFrom(52);
     for (let n = 0; n < 30; n++) {
