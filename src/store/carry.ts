@@ -83,7 +83,7 @@ export function createCarrier(tools: CarryTools) {
   function end(): void {
     clearTimeout(carry?.timer);
     carry = null;
-    tools.preview([]);
+    // What was sketched last stays in sight until the copper lies there (`follow.ts`).
     tools.release();
   }
 

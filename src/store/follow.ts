@@ -57,7 +57,10 @@ export function createFollower(
         for (let patience = FIRST_LOOK; ; patience *= 2) {
           const copper = await worker.call('drape', { project, patience }, drape);
           if (late(revision)) break;
-          api.setState({ copper: { revision, value: copper } });
+          api.setState({
+            copper: { revision, value: copper },
+            ...(copper.pending === 0 ? { preview: [] } : {}),
+          });
           if (copper.pending === 0) break;
         }
         if (late(revision)) continue;
@@ -74,6 +77,7 @@ export function createFollower(
         if (late(revision)) continue;
         api.setState({ plan: { revision, value: plan } });
       } catch (error) {
+        api.setState({ preview: [] });
         if (!wasStopped(error)) fail(error, 'Working out the copper');
       } finally {
         beyondDrape = false;

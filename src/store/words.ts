@@ -67,6 +67,7 @@ export function stepWords(s: State): Record<StepName, StepWords> {
       files: none,
     };
   const { copper, reach, plan, rules } = current(s);
+  const joined = s.connections?.revision === s.copper?.revision ? (s.connections?.value.rules ?? []) : [];
   const elements = project.circuit.elements;
   const count = (kind: string, word: string) => {
     const n = elements.filter((e) => e.kind === kind).length;
@@ -79,7 +80,7 @@ export function stepWords(s: State): Record<StepName, StepWords> {
     ...count('region', 'region'),
     ...(drapes.length === 0 ? [] : [`${drapes.length} drawing${drapes.length === 1 ? '' : 's'}`]),
   ];
-  const broken = rules.filter((r) => r.level === 'error').length;
+  const broken = [...rules, ...joined].filter((r) => r.level === 'error').length;
   const troubles = (copper?.problems.length ?? 0) + (copper?.findings.length ?? 0);
 
   const size = part

@@ -7,7 +7,13 @@ import { addScaled, at3, dot, normalize, type Vec2, type Vec3 } from '../core/ba
 import { focusedBeam, usableDepth } from '../core/beam/beam.ts';
 import { unionArea } from '../core/copper/union-area.ts';
 import type { Copper, CopperElement } from '../core/drape/copper.ts';
-import { type Draper, drapeDrawingOn, drapeElement, prepareDraper } from '../core/drape/drape.ts';
+import {
+  type Draper,
+  drapeDrawingOn,
+  drapeElement,
+  holesBeside,
+  prepareDraper,
+} from '../core/drape/drape.ts';
 import type { DrawingDraped } from '../core/drape/drape-drawing.ts';
 import type { Draped, DrapeFinding } from '../core/drape/element.ts';
 import { triangleArea } from '../core/drape/level-lines.ts';
@@ -25,7 +31,7 @@ import { loadPart, type Part, type Units } from '../core/part/part.ts';
 import { runJob, setupsOf } from '../core/pipeline.ts';
 import { readProject, writeProject } from '../core/project/read.ts';
 import type { RuleFinding } from '../core/project/report.ts';
-import type { Head, Project, Setup } from '../core/project/schema.ts';
+import type { Drape, Head, Project, Setup } from '../core/project/schema.ts';
 import { checkReach } from '../core/reach/reach.ts';
 import type { SetupReach } from '../core/reach/result.ts';
 import { shopRules } from '../core/rules/shop-rules.ts';
@@ -196,6 +202,15 @@ export function createSession(flat: LoadFlat = noFlat) {
           findings.push(...(one?.findings ?? []));
         });
       });
+      /** One that cannot be read is named in its own turn. */
+      const readOr = (drape: Drape, i: number) => {
+        try {
+          return drawings.read(drape, file, `$.circuit.drapes[${i}]`, ctx).drawing;
+        } catch (error) {
+          if (!(error instanceof InputError)) throw error;
+          return null;
+        }
+      };
       drapes.forEach((drape, i) => {
         each(drawn.length + i, () => {
           const path = `$.circuit.drapes[${i}]`;
@@ -210,10 +225,17 @@ export function createSession(flat: LoadFlat = noFlat) {
             rims: [],
           };
           read.push(picture);
-          const all = known(`${key} ${JSON.stringify(drape)}`, () =>
+          const holes = holesBeside(
+            drape,
+            drapes.flatMap((d, j) => {
+              const other = readOr(d, j);
+              return other ? [{ drape: d, drawing: other }] : [];
+            }),
+          );
+          const all = known(`${key} ${JSON.stringify([drape, holes])}`, () =>
             drapeDrawingOn(
               draper!,
-              { drape, drawing, path, file },
+              { drape, drawing, holes, path, file },
               { step: () => ctx.step('drape', drawn.length + i, drawn.length + drapes.length) },
             ),
           );

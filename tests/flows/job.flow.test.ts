@@ -50,7 +50,13 @@ async function dragMarkerTo(z: number): Promise<void> {
 const seen = (as: (t: Tally) => boolean) =>
   poll(async () => {
     const now = await tally(w.page);
-    return as(now) || now;
+    return (
+      as(now) || {
+        ...now,
+        strip: await w.page.locator('.strip-foot').textContent(),
+        rows: await w.page.locator('table.layers tbody tr').allTextContents(),
+      }
+    );
   }).toBe(true);
 
 const count = async (look: string): Promise<number> =>
@@ -95,6 +101,8 @@ describe('the height strip', () => {
       await w.page.mouse.click(box.x + 6, box.y + 60);
       const said = poll(() => band.getAttribute('aria-valuetext'));
       await (alone ? said : said.not).toContain('shown alone');
+      // The picture follows; a click while it is still drawn comes late.
+      await planned(w.page);
     };
     await click(true);
     await click(false);

@@ -40,6 +40,7 @@ interface Moved {
 /**
  * @param drape   where the drawing lies; layers named `skip` are left out
  * @param anchor  surface place nearest to `drape.anchor`
+ * @param beside  holes of other drawings, in this one's axes: copper keeps out of them as out of its own
  * @returns elements in the drawing's order, and what could not be laid: the rest is kept
  * @throws Cancelled by `ctx`, which is asked between shapes and while the map is made
  */
@@ -49,9 +50,11 @@ export function drapeDrawing(
   drawing: Drawing,
   anchor: Place,
   ctx: RunContext = quiet,
+  beside: readonly Hole[] = [],
 ): DrawingDraped {
   const shapes = movedShapes(drape, drawing);
   const holes = drawing.holes.map((h) => movedHole(h, drape.origin));
+  const through = [...holes, ...beside.map((h) => movedHole(h, drape.origin))];
   // Without shapes there is no copper, and the map is for the holes alone.
   const laid = shapes.length > 0 ? shapes.map((s) => s.flat.box) : holes.map(holeBox);
   if (laid.length === 0) return { elements: [], findings: [], rims: [] };
@@ -92,7 +95,7 @@ export function drapeDrawing(
       findings.push(...pulled.findings);
       continue;
     }
-    const near = holes.filter((h) => boxesMeet(own.flat.box, holeBox(h)));
+    const near = through.filter((h) => boxesMeet(own.flat.box, holeBox(h)));
     const evaluate = (face: number, p: Vec3) => {
       const at = read(face, p);
       if (!at) return { edge: Math.max(MARGIN, distance(p, anchor.point) - farthest), hatch: 0, along: 0 };

@@ -1,7 +1,8 @@
 /** Circuit + part → copper on the surface. */
 import { Fault, InputError, type InputProblem } from '../base/news.ts';
 import { quiet, type RunContext } from '../base/run-context.ts';
-import type { Drawing } from '../drawing/drawing.ts';
+import type { Vec2 } from '../base/vec.ts';
+import type { Drawing, Hole } from '../drawing/drawing.ts';
 import { WindowSolver } from '../geodesic/windows.ts';
 import { restoreQueries, type SurfaceQueries, type SurfaceTree, serializeQueries } from '../mesh/queries.ts';
 import type { SurfaceMesh } from '../mesh/surface-mesh.ts';
@@ -82,6 +83,8 @@ export interface DrapeTask {
 export interface DrawingTask {
   drape: Drape;
   drawing: Drawing;
+  /** Holes of other drawings that lie in the same place, in this one's axes: copper keeps out of them too. */
+  holes?: readonly Hole[];
   /** JSON path of the drape, and the file it stands in. */
   path: string;
   file: string;
@@ -96,8 +99,29 @@ export const drawingTasks = (
   project.circuit.drapes.map((drape, i) => {
     const drawing = drawings.get(drape.id);
     if (!drawing) throw new Fault(`the drawing of drape ${drape.id} was not read`);
-    return { drape, drawing, path: `$.circuit.drapes[${i}]`, file };
+    const others = project.circuit.drapes.map((d) => ({ drape: d, drawing: drawings.get(d.id) as Drawing }));
+    return {
+      drape,
+      drawing,
+      holes: holesBeside(drape, others),
+      path: `$.circuit.drapes[${i}]`,
+      file,
+    };
   });
+
+/** Holes of other drawings with the anchor, turn and mirror of this one: a drill file comes beside the copper that it goes through. */
+export const holesBeside = (drape: Drape, others: readonly { drape: Drape; drawing: Drawing }[]): Hole[] =>
+  others
+    .filter(({ drape: d }) => d.id !== drape.id && placeOf(d) === placeOf(drape))
+    .flatMap(({ drape: d, drawing }) => {
+      const by = ([u, v]: Vec2): Vec2 => [
+        u - d.origin[0] + drape.origin[0],
+        v - d.origin[1] + drape.origin[1],
+      ];
+      return drawing.holes.map((h) => ({ ...h, at: by(h.at), to: by(h.to) }));
+    });
+
+const placeOf = ({ anchor, turn, mirror }: Drape): string => JSON.stringify([anchor, turn, mirror]);
 
 /** A task on whatever thread it runs. @throws InputError `far-from-surface` */
 export function layDrawing(shared: DrapeShared, task: DrawingTask): DrawingDraped {
@@ -110,7 +134,7 @@ const MOST_LAID = 200_000;
 /** @throws InputError `far-from-surface`, `too-large`, Cancelled */
 export function drapeDrawingOn(
   draper: Draper,
-  { drape, drawing, path, file }: DrawingTask,
+  { drape, drawing, holes, path, file }: DrawingTask,
   ctx: RunContext = quiet,
 ): DrawingDraped {
   const { mesh, queries } = draper.part;
@@ -130,7 +154,7 @@ export function drapeDrawingOn(
       problem: `${drape.drawing} has ${points} points once its curves are flattened, more than the ${MOST_LAID} that are laid`,
       mend: 'leave out layers that are no copper, or draw with fewer points',
     });
-  return drapeDrawing(draper.solver, drape, drawing, anchor, ctx);
+  return drapeDrawing(draper.solver, drape, drawing, anchor, ctx, holes);
 }
 
 /** One independent task an element. */
