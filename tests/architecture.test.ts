@@ -47,7 +47,8 @@ function inCore(room: string): string {
 }
 
 /** Files of types with a constant or a small formula beside them: what the window may know of the core besides types. */
-const DOORS = /^src\/core\/(base\/[\w-]+|reach\/result|project\/(new-project|rule-words)|files\/cautions)\.ts$/;
+const DOORS =
+  /^src\/core\/(base\/[\w-]+|reach\/result|project\/(new-project|rule-words)|files\/cautions)\.ts$/;
 const WINDOW_ROOMS = ['store', 'view', 'panels'];
 
 /** Outside libraries that only these files may import, within the core and the bridge. */
