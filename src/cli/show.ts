@@ -109,7 +109,10 @@ const unknownLines = (report: Report): string[] => [
     ? [`Not understood, kept as they are: ${report.unknownFields.join(', ')}.`]
     : []),
   ...(report.drawings ?? []).flatMap((d) =>
-    d.notes.map((n) => `${d.file}, ${n.place}: ${n.text}${n.count > 1 ? ` (${n.count} times)` : ''}.`),
+    d.notes.map(
+      (n) =>
+        `${d.file}, ${n.place}: ${n.text.replace(/\.$/, '')}${n.count > 1 ? ` (${n.count} times)` : ''}.`,
+    ),
   ),
 ];
 

@@ -625,11 +625,12 @@ export function createStore(workers: Workers) {
     /** Puts a layer at a height chosen by hand; the project keeps all heights of the setup from then on. */
     moveLayer(layer: number, height: number, gesture: string | null) {
       const s = get();
-      const { plan } = current(s);
-      if (!plan || !s.project || s.project.setups === 'auto') return;
-      const heights = [
-        ...(s.project.setups[s.setup]?.focusHeights ?? plan.layers.map((l) => l.focusHeight)),
-      ].sort((a, b) => a - b);
+      if (!s.project || s.project.setups === 'auto') return;
+      // Once moved by hand, heights are the document's own: no move waits for the plan, and none is lost.
+      const now =
+        s.project.setups[s.setup]?.focusHeights ?? current(s).plan?.layers.map((l) => l.focusHeight);
+      if (!now) return;
+      const heights = [...now].sort((a, b) => a - b);
       const old = heights[layer];
       if (old === undefined) return;
       // Layers are numbered from below: one does not pass its neighbour, and so keeps its number.

@@ -95,6 +95,20 @@ describe('following the document', () => {
     expect(s().notices.at(-1)!.text).toContain('$.setups[0].focusHeights[1]');
   });
 
+  test('a layer dragged while the plan is worked out goes all the way: no move is lost', async () => {
+    const [first] = current(s()).plan!.layers.map((l) => l.focusHeight);
+    const height = () => (s().project!.setups as { focusHeights?: number[] }[])[0]!.focusHeights![0];
+    for (let i = 1; i <= 8; i++) {
+      store.moveLayer(0, first! - 0.1 * i, 'band');
+      expect(height()).toBeCloseTo(first! - 0.1 * i, 6);
+      // The copper of this move is there, its plan not yet.
+      await until(() => s().copper!.revision === s().revision);
+    }
+    store.seal();
+    await store.settled();
+    expect(s().history.past.map((h) => h.name)).toEqual(['change height of layer 1']);
+  });
+
   test('a layer does not pass its neighbour', async () => {
     const fewest = current(s()).plan!.layers.map((l) => l.focusHeight);
     store.moveLayer(0, fewest[1]! + 5, null);

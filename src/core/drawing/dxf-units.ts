@@ -40,6 +40,6 @@ export function unitOf(dxf: DxfFile, options: DrawingOptions, file: string): num
     file,
     place: dxf.units ? `line ${dxf.units.line}` : '',
     problem: 'the drawing does not say in which unit it is drawn',
-    mend: 'say how many mm one unit is, or set the unit where the drawing is made',
+    mend: 'say "units" in its drape (mm, cm, m, um or inch), or set the unit where the drawing is made',
   });
 }

@@ -314,7 +314,7 @@ class Reader {
         file: this.file,
         place: '',
         problem: 'the file does not say whether it is in mm or in inches',
-        mend: 'say which',
+        mend: 'say "units" in its drape: mm or inch',
       });
     this.#setUnit(this.options.unit);
     this.found.note('units-given', 'start', 'The file has no unit; the one that was given is taken.');
