@@ -14,7 +14,7 @@ import type { CopperElement } from './copper.ts';
 import { type Draped, type DrapeFinding, layOut, lineLength, MARGIN, TRUE_TO } from './element.ts';
 import { evenLengths } from './even-lengths.ts';
 import { type FlatFigure, flatFigure } from './flat-figure.ts';
-import { flatReader, mapPatch } from './map-patch.ts';
+import { flatReader, type MapPatch, mapPatch, withoutTorn } from './map-patch.ts';
 import { areaStretch, chordLength, lineStretch, steepest } from './map-stretch.ts';
 import { AREA_STEP } from './pad.ts';
 import { PatchWalk } from './patch-walk.ts';
@@ -63,13 +63,11 @@ export function drapeDrawing(
   let done = 0;
   const step = (): void => ctx.step('drape', done, shapes.length);
   step();
-  const patch = mapPatch(solver, anchor, radius, radiansFromDegrees(drape.turn), drape.mirror);
+  let patch = mapPatch(solver, anchor, radius, radiansFromDegrees(drape.turn), drape.mirror);
   const limits = patch.limits((u, v) => nearestEdge(shapes, u, v));
   step();
-  const evened =
-    !drape.evenLengths ||
-    shapes.length === 0 ||
-    evenLengths(patch, (u, v) => nearestEdge(shapes, u, v), step);
+  const evened = !drape.evenLengths || shapes.length === 0 || evenMap(patch, shapes, step);
+  patch = withoutTorn(patch);
   const walk = new PatchWalk(patch);
   const read = flatReader(patch);
   const chord = chordLength(solver.mesh, patch, radius);
@@ -101,7 +99,7 @@ export function drapeDrawing(
       if (!at) return { edge: Math.max(MARGIN, distance(p, anchor.point) - farthest), hatch: 0, along: 0 };
       const field = own.flat.at(at[0], at[1]);
       const edge = near.reduce((e, h) => Math.max(e, holeEdge(h, at[0], at[1])), field.edge);
-      return { ...field, edge: edge > BENT ? BENT + (edge - BENT) / steep : edge };
+      return { ...field, edge: edge > 0 ? edge / steep : edge };
     };
     const triangles = walk.within(grown(own.flat.box, MARGIN));
     const faces = [...new Set([...triangles].map((t) => patch.face[t]))].sort((a, b) => a - b);
@@ -206,6 +204,19 @@ function pullStraight(solver: WindowSolver, walk: PatchWalk, own: Moved, stroke:
     stretch: left ? 0 : Math.abs(laid.element.length / drawn - 1),
   };
   return { element, findings: left ? [...laid.findings, left] : laid.findings } as Draped;
+}
+
+/**
+ * Evens a map. Over a rim it brings torn triangles back to their size; where they lie across the cut locus nothing does, and
+ * the map is evened without them.
+ */
+function evenMap(patch: MapPatch, shapes: readonly Moved[], step: () => void): boolean {
+  const edge = (u: number, v: number): number => nearestEdge(shapes, u, v);
+  const before = patch.flat.slice();
+  if (evenLengths(patch, edge, step) && withoutTorn(patch).face.length === patch.face.length) return true;
+  patch.flat.set(before);
+  // The same corners, and so the same flat coordinates.
+  return evenLengths(withoutTorn(patch), edge, step);
 }
 
 const BEYOND = {
@@ -316,8 +327,6 @@ function nearestEdge(shapes: readonly Moved[], u: number, v: number): number {
 
 /** A map is nowhere steeper: what is torn is left out (`map-patch.ts`). */
 const TORN = 3;
-/** Out to here fields are the flat distances themselves, mm: the outline runs straight through the triangles that it crosses. */
-const BENT = MARGIN / 2;
 
 const endOf = (points: Float64Array): Vec3 => {
   const o = points.length - 3;

@@ -82,7 +82,7 @@ export function mapPatch(
   }
   const known: number[] = [];
   for (let t = 0; t < laid.face.length; t++)
-    if (!isTorn(laid.positions, flat, laid.triangles, t)) known.push(t);
+    if ([0, 1, 2].every((i) => Number.isFinite(flat[2 * laid.triangles[3 * t + i]]))) known.push(t);
   const triangles = Uint32Array.from(known.flatMap((t) => [...laid.triangles.subarray(3 * t, 3 * t + 3)]));
   let nearest = 0;
   for (let i = 1; i < laid.hatch.length; i++) if (laid.edge[i] < laid.edge[nearest]) nearest = i;
@@ -105,13 +105,22 @@ const TORN = 3;
 /** Sides shorter than this, mm, are stretched by rounding alone. */
 const SHORT = 1e-6;
 
-/** Also where a corner has no place. */
+/** The map without the triangles that it tears: the same corners, and the same arrays of them. */
+export function withoutTorn(patch: MapPatch): MapPatch {
+  const { positions, flat, triangles, face } = patch;
+  const kept: number[] = [];
+  for (let t = 0; t < face.length; t++) if (!isTorn(positions, flat, triangles, t)) kept.push(t);
+  if (kept.length === face.length) return patch;
+  const left = Uint32Array.from(kept.flatMap((t) => [...triangles.subarray(3 * t, 3 * t + 3)]));
+  return { ...patch, triangles: left, face: Int32Array.from(kept, (t) => face[t]), across: neighbours(left) };
+}
+
 function isTorn(x: Float64Array, flat: Float64Array, triangles: Uint32Array, t: number): boolean {
   for (let i = 0; i < 3; i++) {
     const [a, b] = [triangles[3 * t + i], triangles[3 * t + ((i + 1) % 3)]];
     const real = Math.hypot(x[3 * a] - x[3 * b], x[3 * a + 1] - x[3 * b + 1], x[3 * a + 2] - x[3 * b + 2]);
     const drawn = Math.hypot(flat[2 * a] - flat[2 * b], flat[2 * a + 1] - flat[2 * b + 1]);
-    if (!(drawn <= TORN * real + SHORT)) return true;
+    if (drawn > TORN * real + SHORT) return true;
   }
   return false;
 }
